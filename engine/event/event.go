@@ -40,19 +40,19 @@ const (
 type Rule uint8
 
 const (
-	_             Rule = iota
-	Phase4             // the focus completed its cycle (Discharge)
-	Fired              // the site was depolarised by its own focus (Activate)
-	Captured           // the site was depolarised by a stimulus (Activate)
-	Conducted          // an impulse arrived along a path (Activate)
-	PathRefractory     // the path had not recovered (Block)
-	SiteRefractory     // the site at the end had not recovered (Block)
-	Collision          // two opposite impulses met in a path (Block)
-	OneWay             // the path does not conduct in this direction (Block)
-	Dropped            // a drop pattern put on the path stopped the impulse (Block)
-	Premature          // a single planned stimulus (Stimulus)
-	Train              // a stimulus of a planned train (Stimulus)
-	Planned            // a planned change of a number (Change)
+	_              Rule = iota
+	Phase4              // the focus completed its cycle (Discharge)
+	Fired               // the site was depolarised by its own focus (Activate)
+	Captured            // the site was depolarised by a stimulus (Activate)
+	Conducted           // an impulse arrived along a path (Activate)
+	PathRefractory      // the path had not recovered (Block)
+	SiteRefractory      // the site at the end had not recovered (Block)
+	Collision           // two opposite impulses met in a path (Block)
+	OneWay              // the path does not conduct in this direction (Block)
+	Dropped             // a drop pattern put on the path stopped the impulse (Block)
+	Premature           // a single planned stimulus (Stimulus)
+	Train               // a stimulus of a planned train (Stimulus)
+	Planned             // a planned change of a number (Change)
 )
 
 // Dir is the direction along a path. Down is from [Path.From] to [Path.To],
@@ -115,14 +115,14 @@ func (e *Event) MissedBy() tick.Dur {
 type Tissue uint8
 
 const (
-	_          Tissue = iota
-	Sinus             // the sinus node and its exit path
-	Atrium            // atrial muscle
-	Node              // the AV node and the junction below its pathways
-	His               // the His bundle
-	Purkinje          // bundles and fascicles
-	Ventricle         // ventricular muscle
-	Accessory         // accessory pathways
+	_         Tissue = iota
+	Sinus            // the sinus node and its exit path
+	Atrium           // atrial muscle
+	Node             // the AV node and the junction below its pathways
+	His              // the His bundle
+	Purkinje         // bundles and fascicles
+	Ventricle        // ventricular muscle
+	Accessory        // accessory pathways
 )
 
 // Site is a piece of tissue that can be depolarised.
