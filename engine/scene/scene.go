@@ -4,7 +4,41 @@
 //
 // The origin is the top left corner, x to the right, y down. A mark has a
 // [Class], which names its look ([Style]); it may belong to an event, which makes
-// it selectable.
+// it selectable. Everything is already clipped to the sheet and in the order in
+// which it is to be painted.
+//
+// # Wire form
+//
+// [Encode] gives a painter on the other side of a message two things. meta is
+// JSON:
+//
+//	{"width":262,"height":118.5,"font_mm":3,
+//	 "axis":{"t0_us":0,"x0":12,"mm_per_s":25},
+//	 "lanes":[{"name":"lead:II","label":"II","y0":10,"y1":35},...],
+//	 "marks":[[1,"grid-minor",12,10,12,35],...]}
+//
+// All lengths are millimetres. Lanes are named "lead:II" (and so on), "axis" and
+// "ladder". An instant t_us stands at x0 + (t_us - t0_us)/1e6*mm_per_s. A mark is
+// an array, of which trailing zero or empty values may be missing:
+//
+//	[shape, "class", x, y, x2, y2, r, "text", anchor, event, pointOffset, pointCount]
+//
+//	shape 1 line    from x,y to x2,y2
+//	      2 poly    open polyline through its points
+//	      3 rect    x,y to x2,y2, filled
+//	      4 disc    filled circle, radius r at x,y
+//	      5 ring    open circle, radius r at x,y
+//	      6 text    at x,y: x by anchor, y is the baseline
+//	anchor 0 start, 1 middle, 2 end
+//	event  id of the event the mark belongs to, 0 for none
+//
+// points is one array of x, y pairs for all polylines: point k of a mark is
+// points[2*(pointOffset+k)], points[2*(pointOffset+k)+1].
+//
+// [StylesJSON] tells how to paint a class: lines, polylines and rings with
+// stroke, width (mm) and dash (mm); discs and rects with fill; texts with fill,
+// weight and an em size of size*font_mm, in a sans with tabular figures. Where a
+// colour is missing nothing is painted; such marks are there for hit testing.
 package scene
 
 import (
@@ -71,6 +105,7 @@ func (a Axis) X(t tick.Time) float64 { return a.X0 + float64(t-a.T0)/1e6*a.MMPer
 // Scene is a finished drawing.
 type Scene struct {
 	Width, Height float64
+	FontMM        float64 // em size of text of size 1; see [Style]
 	Axis          Axis
 	Lanes         []Lane
 	Marks         []Mark

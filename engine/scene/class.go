@@ -1,0 +1,73 @@
+package scene
+
+// Class names the look of a mark. The zero Class is invalid.
+//
+// One class serves every shape of its kind: a line of class Atrium is an impulse
+// in the atria, a disc of it an atrial focus that discharged.
+type Class uint8
+
+const (
+	_           Class = iota
+	GridMinor         // fine paper grid
+	GridMajor         // coarse paper grid
+	Second            // a whole second, drawn through the ladder
+	Trace             // a lead
+	Wave              // the area of a P or QRS-T: not painted, for hit testing
+	Calibration       // the pulse that shows 1 mV
+	AxisLine          // the time axis and its ticks
+	AxisText          // seconds
+	LaneLabel         // the name of a lead or of the ladder
+	TierEdge          // the line between two tiers
+	TierLabel         // the name of a tier
+	Sinus             // impulses and foci, by tissue
+	Atrium
+	Node
+	NodeSlow // in the slow pathway
+	His
+	BundleLeft
+	BundleRight
+	Ventricle
+	Accessory
+	Block      // the bar across a stroke
+	BlockLabel // where it was blocked
+	Tail       // what a concealed impulse left refractory
+	Stimulus   // ring; a disc of this class inside it marks capture
+	Dim        // dimension line with its end ticks
+	DimText    // the number on it
+	DimWeak    // the line of a number that had no room for its name
+	Selected   // halo beneath the marks of the selected event
+	Title
+	Statement
+	Caution
+	Note // scales, legend
+	classEnd
+)
+
+var classNames = [classEnd]string{
+	GridMinor: "grid-minor", GridMajor: "grid-major", Second: "second",
+	Trace: "trace", Wave: "wave", Calibration: "calibration",
+	AxisLine: "axis", AxisText: "axis-text", LaneLabel: "lane-label",
+	TierEdge: "tier-edge", TierLabel: "tier-label",
+	Sinus: "sinus", Atrium: "atrium", Node: "node", NodeSlow: "node-slow", His: "his",
+	BundleLeft: "bundle-left", BundleRight: "bundle-right", Ventricle: "ventricle", Accessory: "accessory",
+	Block: "block", BlockLabel: "block-label", Tail: "tail", Stimulus: "stimulus",
+	Dim: "dim", DimText: "dim-text", DimWeak: "dim-weak", Selected: "selected",
+	Title: "title", Statement: "statement", Caution: "caution", Note: "note",
+}
+
+// String is the stable name, as in the wire form and the styles.
+func (c Class) String() string {
+	if c == 0 || c >= classEnd {
+		return "invalid"
+	}
+	return classNames[c]
+}
+
+// Classes lists all classes, for tests and legends.
+func Classes() []Class {
+	var all []Class
+	for c := GridMinor; c < classEnd; c++ {
+		all = append(all, c)
+	}
+	return all
+}

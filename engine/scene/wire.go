@@ -1,0 +1,107 @@
+package scene
+
+import (
+	"encoding/json"
+	"math"
+	"strconv"
+)
+
+// Encode gives the wire form, described in the package comment: meta is JSON,
+// points holds the places of all Poly marks as x, y pairs.
+func Encode(s *Scene) (meta []byte, points []float32) {
+	b := make([]byte, 0, 4096+64*len(s.Marks))
+	b = append(b, `{"width":`...)
+	b = number(b, s.Width)
+	b = append(b, `,"height":`...)
+	b = number(b, s.Height)
+	b = append(b, `,"font_mm":`...)
+	b = number(b, s.FontMM)
+	b = append(b, `,"axis":{"t0_us":`...)
+	b = strconv.AppendInt(b, int64(s.Axis.T0), 10)
+	b = append(b, `,"x0":`...)
+	b = number(b, s.Axis.X0)
+	b = append(b, `,"mm_per_s":`...)
+	b = number(b, s.Axis.MMPerS)
+	b = append(b, `},"lanes":[`...)
+	for i := range s.Lanes {
+		b = lane(comma(b, i), &s.Lanes[i])
+	}
+	b = append(b, `],"marks":[`...)
+	for i := range s.Marks {
+		m := &s.Marks[i]
+		b = m.encode(comma(b, i), len(points)/2)
+		for _, p := range m.Points {
+			points = append(points, p.X, p.Y)
+		}
+	}
+	return append(b, `]}`...), points
+}
+
+func comma(b []byte, i int) []byte {
+	if i > 0 {
+		return append(b, ',')
+	}
+	return b
+}
+
+func lane(b []byte, l *Lane) []byte {
+	b = append(b, `{"name":`...)
+	b = quoted(b, l.Name)
+	b = append(b, `,"label":`...)
+	b = quoted(b, l.Label)
+	b = append(b, `,"y0":`...)
+	b = number(b, l.Y0)
+	b = append(b, `,"y1":`...)
+	b = number(b, l.Y1)
+	return append(b, '}')
+}
+
+// encode writes the mark as an array and cuts trailing zero values.
+func (m *Mark) encode(b []byte, offset int) []byte {
+	b = append(b, '[')
+	b = strconv.AppendInt(b, int64(m.Shape), 10)
+	b = append(b, ',', '"')
+	b = append(append(b, m.Class.String()...), '"')
+	end := len(b) // what stands behind it is only zeros so far
+	keep := func(filled bool) {
+		if filled {
+			end = len(b)
+		}
+	}
+	for _, v := range [...]float64{m.X, m.Y, m.X2, m.Y2, m.R} {
+		b = number(append(b, ','), v)
+		keep(round(v) != 0)
+	}
+	b = quoted(append(b, ','), m.Text)
+	keep(m.Text != "")
+	if len(m.Points) == 0 {
+		offset = 0
+	}
+	for i, v := range [...]int64{int64(m.Anchor), int64(m.Event), int64(offset), int64(len(m.Points))} {
+		b = strconv.AppendInt(append(b, ','), v, 10)
+		keep(v != 0 && (i < 2 || len(m.Points) > 0))
+	}
+	return append(b[:end], ']')
+}
+
+// round is to a tenth of a micrometre: at 100 mm/s that is one microsecond.
+func round(v float64) float64 { return math.Round(v*1e4) / 1e4 }
+
+func number(b []byte, v float64) []byte {
+	v = round(v)
+	if v == 0 || math.IsNaN(v) || math.IsInf(v, 0) {
+		return append(b, '0') // also for -0
+	}
+	return strconv.AppendFloat(b, v, 'f', -1, 64)
+}
+
+func quoted(b []byte, s string) []byte {
+	if s == "" {
+		return append(b, '"', '"')
+	}
+	q, err := json.Marshal(s)
+	if err != nil {
+		panic("scene: text does not encode: " + err.Error())
+	}
+	return append(b, q...)
+}
