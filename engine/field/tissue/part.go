@@ -1,0 +1,64 @@
+// Package tissue is heart muscle as numbers: where it is, how long an impulse
+// takes from node to node, how long each node stays depolarised, and what every
+// bit of its surface contributes to the leads.
+//
+// Muscle is a net of nodes and a closed surface of triangles on those nodes. By
+// the equivalent double layer (uniform anisotropy ratio; Geselowitz 1989, from
+// memory) the potential at an electrode is a weighted sum of the transmembrane
+// potentials on the surface alone, so the weights can be computed beforehand
+// and the nodes within the wall only carry the impulse.
+//
+// Nothing here knows sites, events or a clock. Times are whole microseconds
+// after an instant the caller chooses; amplitudes are millivolts.
+package tissue
+
+// Leads is the number of leads a surface has weights for: I, II and V1 to V6.
+// The other four follow from I and II.
+const Leads = 8
+
+// Part is one piece of muscle: both ventricles, or both atria.
+type Part struct {
+	Name    string
+	Graph   Graph
+	X       [][3]float32 // position of each node, mm: left, back, up
+	Kind    []uint8      // layer or chamber of each node, as the generator numbers them
+	APD     []int32      // duration of each node's action potential at the reference cycle, microseconds
+	Tri     [][3]uint16  // closed surface
+	Weights [Leads][]float32
+	Shape   Shape
+	Entries []Entry
+}
+
+// Shape is the transmembrane potential of a node: a logistic upstroke and a
+// repolarisation that is the product of two logistic falls, rates in 1/ms.
+type Shape struct {
+	Rise, Fall, Fall2 float32
+}
+
+// Entry is how an impulse gets into the part from a site of the network: nodes
+// and the time from the site to each.
+type Entry struct {
+	Site  string
+	Ports []Seed
+}
+
+// Entry finds an entry by its site, or nil.
+func (p *Part) Entry(site string) *Entry {
+	for i := range p.Entries {
+		if p.Entries[i].Site == site {
+			return &p.Entries[i]
+		}
+	}
+	return nil
+}
+
+// Travel is the time between two entries: the shortest way out of one and in by
+// the other. It is the same in both directions.
+func (p *Part) Travel(s *Solver, from, to *Entry) int32 {
+	at := s.Arrivals(&p.Graph, from.Ports)
+	best := Far
+	for _, port := range to.Ports {
+		best = min(best, at[port.Node]+port.At)
+	}
+	return best
+}
