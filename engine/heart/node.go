@@ -1,0 +1,158 @@
+package heart
+
+import (
+	"fmt"
+
+	"escapement/engine/portmath"
+	"escapement/engine/tick"
+)
+
+// Unmet says that clinical numbers cannot hold together. Part is the place in the
+// heart ("av_node.fast"); Text names the numbers and Note what would help.
+type Unmet struct{ Part, Text, Note string }
+
+func (u *Unmet) Error() string { return u.Part + ": " + u.Text }
+
+// DefaultTauMS is the time constant of AV-nodal recovery where no functional
+// refractory period is typed. (Our choice inside the range of published fits.)
+const DefaultTauMS = 120
+
+// nodeTask is the problem of one pathway: find tau, min, alpha and theta so that
+// the typed numbers are measured back.
+type nodeTask struct {
+	ah, ahCycle    float64 // delay of the pathway alone at the cycle at which AH was measured
+	erp, drive     float64
+	wcl, frp       float64
+	slope          float64
+	min, alpha     float64 // found
+	theta, driveAH float64 // found: theta and delay at the drive cycle
+}
+
+// solveNode turns AH, ERP, Wenckebach cycle length and, if measured, the
+// functional refractory period into a curve:
+//
+//	f(ahCycle - ah) = ah              AH at its cycle
+//	theta(drive) + f(drive - .) = ERP  the shortest conducted coupling at the drive
+//	theta(WCL) + f(theta(WCL)) = WCL   where 1:1 ends
+//
+// with theta(c) = theta + slope (c - drive). lower is the conduction time from the
+// junction to the His bundle, a part of AH.
+func solveNode(part string, n *NodeNumbers, ahCycle, driveMS, lower float64) (Curve, error) {
+	k := nodeTask{ah: n.AHMS - lower, ahCycle: ahCycle, erp: n.ERPMS, drive: driveMS, wcl: n.WCLMS, frp: n.FRPMS, slope: SlopeNode}
+	fail := func(note, format string, a ...any) (Curve, error) {
+		return Curve{}, &Unmet{part, fmt.Sprintf(format, a...), note}
+	}
+	switch {
+	case k.ah < 1:
+		return fail("AH includes the way from the junction to the His bundle", "ah_ms %g is not longer than the %g ms below the node", n.AHMS, lower)
+	case n.WCLMS >= ahCycle:
+		return fail("set heart.av_node.ah_at_cycle_ms to a cycle that conducts 1:1", "ah_ms %g cannot be measured at a cycle of %g ms: 1:1 conduction ends at wenckebach_cl_ms %g", n.AHMS, ahCycle, n.WCLMS)
+	case n.WCLMS >= driveMS:
+		return fail("set heart.av_node.erp_at_cycle_ms to a cycle that conducts 1:1", "erp_ms %g cannot be measured at a drive of %g ms: 1:1 conduction ends at wenckebach_cl_ms %g", n.ERPMS, driveMS, n.WCLMS)
+	}
+	tau := float64(DefaultTauMS)
+	if k.frp > 0 {
+		var ok bool
+		if tau, ok = k.fitTau(); !ok {
+			return fail("leave frp_ms out, or move it nearer to the value that the other numbers give", "no time constant between 20 and 600 ms gives frp_ms %g with ah_ms %g, erp_ms %g and wenckebach_cl_ms %g", n.FRPMS, n.AHMS, n.ERPMS, n.WCLMS)
+		}
+	}
+	if why := k.solve(tau); why != "" {
+		return fail(why, "ah_ms %g, erp_ms %g and wenckebach_cl_ms %g do not fit one recovery curve", n.AHMS, n.ERPMS, n.WCLMS)
+	}
+	c := Curve{MinMS: k.min, AlphaMS: k.alpha, TauMS: tau, Inner: n.Inner,
+		Theta: Cycled{BaseMS: k.theta, PerCycle: k.slope, CycleMS: driveMS, FloorMS: 20}}
+	wtheta := c.Theta.At(tick.MS(n.WCLMS)).MS()
+	if s := c.Slope(wtheta); s <= -1 {
+		return fail("raise erp_ms, or lower wenckebach_cl_ms", "ah_ms %g, erp_ms %g and wenckebach_cl_ms %g need a recovery curve of slope %.2f at the edge of block, steeper than -1: long and short AH would alternate before 1:1 ends", n.AHMS, n.ERPMS, n.WCLMS, s)
+	}
+	return c, nil
+}
+
+// solve finds min, alpha and theta for a time constant. It returns what to change
+// where there is no solution.
+func (k *nodeTask) solve(tau float64) string {
+	// Everything follows from the delay at the drive cycle, a; the residual is zero
+	// where the curve gives that delay back.
+	residual := func(a float64) (float64, bool) {
+		theta := k.erp - a
+		wtheta := theta + k.slope*(k.wcl-k.drive)
+		edge := k.wcl - wtheta // the delay of the last 1:1 cycle
+		ew, eb := portmath.Exp(-wtheta/tau), portmath.Exp(-(k.ahCycle-k.ah)/tau)
+		if theta <= 0 || wtheta <= 0 || edge <= 0 || ew <= eb {
+			return 0, false
+		}
+		k.alpha = (edge - k.ah) / (ew - eb)
+		k.min = k.ah - k.alpha*eb
+		k.theta, k.driveAH = theta, a
+		return k.min + k.alpha*portmath.Exp(-(k.drive-a)/tau) - a, true
+	}
+	const steps = 400
+	last, lastOK, lo := 0.0, false, 0.0
+	for i := 1; i < steps; i++ {
+		a := k.erp * float64(i) / steps
+		r, ok := residual(a)
+		if ok && lastOK && (r > 0) != (last > 0) {
+			root := bisect(lo, a, func(a float64) float64 { r, _ := residual(a); return r })
+			if residual(root); k.alpha >= 0 && k.min >= 1 {
+				return ""
+			}
+		}
+		last, lastOK, lo = r, ok, a
+	}
+	if k.wcl-k.erp < 0 {
+		return "wenckebach_cl_ms is shorter than erp_ms: the node would have to follow a train faster than single beats"
+	}
+	return "raise wenckebach_cl_ms or lower erp_ms: between them the node must have room to conduct more slowly than ah_ms"
+}
+
+// fitTau finds the time constant at which the curve has the typed functional
+// refractory period at the drive.
+func (k *nodeTask) fitTau() (float64, bool) {
+	miss := func(tau float64) (float64, bool) {
+		if k.solve(tau) != "" {
+			return 0, false
+		}
+		c := Curve{MinMS: k.min, AlphaMS: k.alpha, TauMS: tau, Theta: Cycled{BaseMS: k.theta}}
+		return c.Functional() - k.frp, true
+	}
+	last, lastOK, lo := 0.0, false, 0.0
+	for tau := 20.0; tau <= 600; tau *= 1.03 {
+		m, ok := miss(tau)
+		if ok && lastOK && (m > 0) != (last > 0) {
+			return bisect(lo, tau, func(x float64) float64 { m, _ := miss(x); return m }), true
+		}
+		last, lastOK, lo = m, ok, tau
+	}
+	return 0, false
+}
+
+// solveUp finds the retrograde curve of a pathway: at a ventricular drive of
+// DriveMS the node takes a = VA - outside, and 1:1 ends at the retrograde
+// Wenckebach cycle length where one is typed. theta and tau are those downwards.
+func solveUp(part string, n *NodeNumbers, down Curve, outside float64) (Curve, error) {
+	a := n.VAMS - outside
+	if a < 1 {
+		return Curve{}, &Unmet{part, fmt.Sprintf("va_ms %g is not longer than the way outside the node, %.1f ms from the right ventricular apex to the junction and from the atrial septum to the right atrium", n.VAMS, outside), fmt.Sprintf("give va_ms over %.0f", outside+1)}
+	}
+	c := down
+	r := DriveMS - a
+	if n.VAWCL > 0 {
+		theta := c.Theta.At(tick.MS(n.VAWCL)).MS()
+		edge, ew, er := n.VAWCL-theta, portmath.Exp(-theta/c.TauMS), portmath.Exp(-r/c.TauMS)
+		if edge <= a || n.VAWCL >= DriveMS || ew <= er {
+			return Curve{}, &Unmet{part, fmt.Sprintf("va_ms %g and va_wenckebach_cl_ms %g do not fit: at its edge retrograde conduction would take %.1f ms in the node and %.1f ms at a drive of %d", n.VAMS, n.VAWCL, edge, a, DriveMS), fmt.Sprintf("give va_wenckebach_cl_ms between %.0f and %d", theta+a+1, DriveMS-1)}
+		}
+		c.AlphaMS = (edge - a) / (ew - er)
+	}
+	c.MinMS = a - c.AlphaMS*portmath.Exp(-r/c.TauMS)
+	if c.MinMS < 1 {
+		// A node this quick upwards has no room for the decrement it has downwards.
+		c.AlphaMS = (a - 1) / portmath.Exp(-r/c.TauMS)
+		c.MinMS = 1
+	}
+	if c.Theta.At(DriveMS*tick.Millisecond).MS() > r {
+		return Curve{}, &Unmet{part, fmt.Sprintf("va_ms %g leaves %.1f ms of recovery at a drive of %d, and the node needs %.1f", n.VAMS, r, DriveMS, c.Theta.BaseMS), "lower va_ms or erp_ms"}
+	}
+	return c, nil
+}

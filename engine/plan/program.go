@@ -1,0 +1,34 @@
+package plan
+
+import (
+	"escapement/engine/event"
+	"escapement/engine/heart"
+	"escapement/engine/tick"
+)
+
+// Program is a plan made ready to run: the heart's parameters, and what happens
+// at which time.
+type Program struct {
+	Heart   *heart.Heart
+	Span    tick.Time
+	Seed    uint64
+	Stimuli []Stimulus
+	Changes []Change
+}
+
+// Stimulus is one artificial stimulus.
+type Stimulus struct {
+	T    tick.Time
+	Site event.SiteID
+	Rule event.Rule // Premature or Train
+}
+
+// Change puts another set of parameters in force. Field and To are recorded where
+// Field is not empty; the steps of a ramp after its first are silent. Heart is nil
+// where the field is a rate, which every heart of the program holds over the
+// whole strip.
+type Change struct {
+	T         tick.Time
+	Field, To string
+	Heart     *heart.Heart
+}

@@ -1,0 +1,88 @@
+package sim
+
+import (
+	"math/rand/v2"
+
+	"escapement/engine/event"
+	"escapement/engine/portmath"
+	"escapement/engine/tick"
+)
+
+// focusState is a focus between two discharges.
+type focusState struct {
+	gen         uint32 // of the cycle that runs
+	start       tick.Time
+	due         tick.Time
+	cause       event.ID // what began the cycle; 0 for the start of the strip
+	suppression float64  // S: the next cycle lasts 1+S times as long
+	at          tick.Time
+	random      *rand.Rand
+}
+
+func (s *focusState) init(m *Machine, i int) {
+	f := &m.h.Foci[i]
+	if f.Jitter > 0 {
+		s.random = rand.New(rand.NewPCG(m.prog.Seed, uint64(i)<<1|1))
+	}
+	if f.First > 0 {
+		s.due = tick.Time(m.quantise(f.First))
+		m.push(s.due, classDischarge, i, 0, s.gen)
+		return
+	}
+	m.cycle(i, 0)
+}
+
+// cycle begins a new cycle of a focus now.
+func (m *Machine) cycle(i int, cause event.ID) {
+	f, s := &m.h.Foci[i], &m.foci[i]
+	s.gen++
+	s.start, s.cause = m.now, cause
+	length := f.Rate.Next(m.now, 1+s.suppression).Sub(m.now)
+	if s.random != nil {
+		length += tick.Dur((2*s.random.Float64() - 1) * float64(f.Jitter))
+	}
+	s.due = m.now.Add(max(m.quantise(length), m.h.Quantum))
+	m.push(s.due, classDischarge, i, 0, s.gen)
+}
+
+// discharge fires a focus. The tissue around it may be refractory: then nothing
+// leaves it, and its next cycle begins all the same.
+func (m *Machine) discharge(i int) {
+	f, s := &m.h.Foci[i], &m.foci[i]
+	id := m.record(event.Event{Kind: event.Discharge, Rule: event.Phase4, Site: f.Site, Path: event.None, Cause: s.cause})
+	s.decay(f.OverdriveTau, m.now)
+	m.cycle(i, id)
+	st := &m.sites[f.Site]
+	if st.id == 0 || m.now >= st.until {
+		m.activate(event.Event{Rule: event.Fired, Site: f.Site, Path: event.None, Cause: id})
+		return
+	}
+	m.record(event.Event{Kind: event.Block, Rule: event.SiteRefractory, Site: f.Site, Path: event.None, Cause: id,
+		Recovery: m.now.Sub(st.last), Needed: st.until.Sub(st.last)})
+}
+
+// reset begins the cycles of the foci at a site that was depolarised, except
+// where the focus is protected or did it itself.
+func (m *Machine) reset(site event.SiteID, id event.ID, fired bool) {
+	for i := range m.h.Foci {
+		f, s := &m.h.Foci[i], &m.foci[i]
+		if f.Site != site || f.Protected || fired && s.start == m.now {
+			continue
+		}
+		s.decay(f.OverdriveTau, m.now)
+		if f.OverdriveGain > 0 {
+			own := f.Rate.Next(s.start, 1).Sub(s.start)
+			if cut := 1 - float64(m.now.Sub(s.start))/float64(own); cut > 0 {
+				s.suppression += float64(f.OverdriveGain * cut)
+			}
+		}
+		m.cycle(i, id)
+	}
+}
+
+func (s *focusState) decay(tau tick.Dur, now tick.Time) {
+	if s.suppression != 0 && tau > 0 {
+		s.suppression = float64(s.suppression * portmath.Exp(-float64(now.Sub(s.at))/float64(tau)))
+	}
+	s.at = now
+}
