@@ -24,6 +24,7 @@ type nodeTask struct {
 	erp, drive     float64
 	wcl, frp       float64
 	slope          float64
+	tau            float64 // chosen or found
 	min, alpha     float64 // found
 	theta, driveAH float64 // found: theta and delay at the drive cycle
 }
@@ -50,28 +51,61 @@ func solveNode(part string, n *NodeNumbers, ahCycle, driveMS, lower float64) (Cu
 	case n.WCLMS >= driveMS:
 		return fail("set heart.av_node.erp_at_cycle_ms to a cycle that conducts 1:1", "erp_ms %g cannot be measured at a drive of %g ms: 1:1 conduction ends at wenckebach_cl_ms %g", n.ERPMS, driveMS, n.WCLMS)
 	}
-	tau := float64(DefaultTauMS)
 	if k.frp > 0 {
-		var ok bool
-		if tau, ok = k.fitTau(); !ok {
-			return fail("leave frp_ms out, or move it nearer to the value that the other numbers give", "no time constant between 20 and 600 ms gives frp_ms %g with ah_ms %g, erp_ms %g and wenckebach_cl_ms %g", n.FRPMS, n.AHMS, n.ERPMS, n.WCLMS)
+		if !k.fitTau() {
+			return fail("leave frp_ms out, or move it nearer to the value that the other numbers give", "no time constant between 20 and 1000 ms gives frp_ms %g with ah_ms %g, erp_ms %g and wenckebach_cl_ms %g", n.FRPMS, n.AHMS, n.ERPMS, n.WCLMS)
 		}
-	}
-	if why := k.solve(tau); why != "" {
+	} else if why := k.chooseTau(); why != "" {
 		return fail(why, "ah_ms %g, erp_ms %g and wenckebach_cl_ms %g do not fit one recovery curve", n.AHMS, n.ERPMS, n.WCLMS)
 	}
-	c := Curve{MinMS: k.min, AlphaMS: k.alpha, TauMS: tau, Inner: n.Inner,
-		Theta: Cycled{BaseMS: k.theta, PerCycle: k.slope, CycleMS: driveMS, FloorMS: 20}}
-	wtheta := c.Theta.At(tick.MS(n.WCLMS)).MS()
-	if s := c.Slope(wtheta); s <= -1 {
-		return fail("raise erp_ms, or lower wenckebach_cl_ms", "ah_ms %g, erp_ms %g and wenckebach_cl_ms %g need a recovery curve of slope %.2f at the edge of block, steeper than -1: long and short AH would alternate before 1:1 ends", n.AHMS, n.ERPMS, n.WCLMS, s)
+	c := k.curve()
+	c.Inner = n.Inner
+	if s := k.edgeSlope(); s <= -1 {
+		return fail("raise erp_ms, lower wenckebach_cl_ms, or leave frp_ms out", "ah_ms %g, erp_ms %g and wenckebach_cl_ms %g need a recovery curve of slope %.2f at the edge of block, steeper than -1: long and short AH would alternate before 1:1 ends", n.AHMS, n.ERPMS, n.WCLMS, s)
 	}
 	return c, nil
+}
+
+func (k *nodeTask) curve() Curve {
+	return Curve{MinMS: k.min, AlphaMS: k.alpha, TauMS: k.tau, Theta: Cycled{BaseMS: k.theta, PerCycle: k.slope, CycleMS: k.drive, FloorMS: 20}}
+}
+
+// edgeSlope is the slope of the curve at the last recovery of 1:1 conduction.
+func (k *nodeTask) edgeSlope() float64 {
+	c := k.curve()
+	return c.Slope(c.Theta.At(tick.MS(k.wcl)).MS())
+}
+
+// steepest is the slope that a curve may have at its edge when its time constant
+// is ours to choose: at -1 long and short AH would alternate before 1:1 ends.
+const steepest = -0.9
+
+// chooseTau takes the default time constant or, where that would make the curve
+// too steep at its edge, the first longer one that does not.
+func (k *nodeTask) chooseTau() (why string) {
+	found := false
+	for tau := float64(DefaultTauMS); tau < 1000; tau *= 1.02 {
+		if why = k.solve(tau); why != "" {
+			if found {
+				break
+			}
+			continue
+		}
+		found = true
+		if k.edgeSlope() >= steepest {
+			return ""
+		}
+	}
+	if found {
+		return "raise erp_ms or lower wenckebach_cl_ms: no time constant makes this much decrement without alternation of long and short AH"
+	}
+	return why
 }
 
 // solve finds min, alpha and theta for a time constant. It returns what to change
 // where there is no solution.
 func (k *nodeTask) solve(tau float64) string {
+	k.tau = tau
 	// Everything follows from the delay at the drive cycle, a; the residual is zero
 	// where the curve gives that delay back.
 	residual := func(a float64) (float64, bool) {
@@ -107,31 +141,38 @@ func (k *nodeTask) solve(tau float64) string {
 }
 
 // fitTau finds the time constant at which the curve has the typed functional
-// refractory period at the drive.
-func (k *nodeTask) fitTau() (float64, bool) {
+// refractory period at the drive, and leaves the solution for it.
+func (k *nodeTask) fitTau() bool {
 	miss := func(tau float64) (float64, bool) {
 		if k.solve(tau) != "" {
 			return 0, false
 		}
-		c := Curve{MinMS: k.min, AlphaMS: k.alpha, TauMS: tau, Theta: Cycled{BaseMS: k.theta}}
+		c := k.curve()
 		return c.Functional() - k.frp, true
 	}
 	last, lastOK, lo := 0.0, false, 0.0
-	for tau := 20.0; tau <= 600; tau *= 1.03 {
+	for tau := 20.0; tau <= 1000; tau *= 1.03 {
 		m, ok := miss(tau)
 		if ok && lastOK && (m > 0) != (last > 0) {
-			return bisect(lo, tau, func(x float64) float64 { m, _ := miss(x); return m }), true
+			return k.solve(bisect(lo, tau, func(x float64) float64 { m, _ := miss(x); return m })) == ""
 		}
 		last, lastOK, lo = m, ok, tau
 	}
-	return 0, false
+	return false
 }
+
+// leastVA is the time in the node that the default VA leaves where the way outside
+// it is long.
+const leastVA = 40
 
 // solveUp finds the retrograde curve of a pathway: at a ventricular drive of
 // DriveMS the node takes a = VA - outside, and 1:1 ends at the retrograde
 // Wenckebach cycle length where one is typed. theta and tau are those downwards.
 func solveUp(part string, n *NodeNumbers, down Curve, outside float64) (Curve, error) {
 	a := n.VAMS - outside
+	if a < leastVA && n.VADefault {
+		a = leastVA
+	}
 	if a < 1 {
 		return Curve{}, &Unmet{part, fmt.Sprintf("va_ms %g is not longer than the way outside the node, %.1f ms from the right ventricular apex to the junction and from the atrial septum to the right atrium", n.VAMS, outside), fmt.Sprintf("give va_ms over %.0f", outside+1)}
 	}

@@ -55,14 +55,15 @@ type NodeNumbers struct {
 	ByCurve bool
 	Direct  // the curve, when ByCurve
 
-	NoDown bool    // complete antegrade block
-	AHMS   float64 // atrial septum to His at Numbers.AHCycleMS
-	ERPMS  float64 // longest coupling of an atrial extrastimulus, at a drive of Numbers.ERPCycleMS, that does not reach the His bundle
-	WCLMS  float64 // Wenckebach cycle length: 1:1 conduction ends below it
-	FRPMS  float64 // shortest interval between two impulses reaching the His bundle at that drive; 0 if not measured
-	NoUp   bool    // no retrograde conduction
-	VAMS   float64 // first ventricular activation to right atrium, pacing the right ventricular apex at DriveMS
-	VAWCL  float64 // retrograde Wenckebach cycle length; 0 if not measured
+	NoDown    bool    // complete antegrade block
+	AHMS      float64 // atrial septum to His at Numbers.AHCycleMS
+	ERPMS     float64 // longest coupling of an atrial extrastimulus, at a drive of Numbers.ERPCycleMS, that does not reach the His bundle
+	WCLMS     float64 // Wenckebach cycle length: 1:1 conduction ends below it
+	FRPMS     float64 // shortest interval between two impulses reaching the His bundle at that drive; 0 if not measured
+	NoUp      bool    // no retrograde conduction
+	VAMS      float64 // first ventricular activation to right atrium, pacing the right ventricular apex at DriveMS
+	VADefault bool    // VAMS was not typed: it may give way to a long HV
+	VAWCL     float64 // retrograde Wenckebach cycle length; 0 if not measured
 
 	Inner   float64 // share of theta from which a blocked impulse is concealed; 1 for none
 	UpReach float64 // where nothing is conducted upwards, depth 0 to 1 to which impulses come

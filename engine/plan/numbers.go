@@ -83,6 +83,7 @@ func (p *Plan) pathway(at string) heart.NodeNumbers {
 	n.NoDown, n.NoUp = p.null(at+".ah_ms"), p.null(at+".va_ms")
 	n.AHMS, n.ERPMS, n.WCLMS, n.FRPMS = p.orDefault(at+".ah_ms"), p.number(at+".erp_ms"), p.number(at+".wenckebach_cl_ms"), p.number(at+".frp_ms")
 	n.VAMS, n.VAWCL = p.orDefault(at+".va_ms"), p.number(at+".va_wenckebach_cl_ms")
+	n.VADefault = !p.given(at + ".va_ms")
 	n.Inner = p.number(at + ".concealed_from")
 	return n
 }
