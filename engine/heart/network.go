@@ -56,7 +56,7 @@ func SiteLabel(name string) string {
 const (
 	sinusERP    = 150
 	junctionERP = 100
-	hisERP      = 200
+	hisERP      = 250
 	purkinjeERP = 220
 	purkinjeGap = 200 // theta of a fascicle's endings
 )
