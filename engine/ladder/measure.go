@@ -1,0 +1,160 @@
+package ladder
+
+import (
+	"escapement/engine/event"
+	"escapement/engine/tick"
+)
+
+// priorities of the measures. A number that differs from the one before it of
+// its kind says more than one that does not, and is kept longer.
+var priorities = [...]int{PP: 65, RR: 70, PR: 80, RP: 75, AH: 50, HV: 40, HA: 45, NodeUp: 38, NodeIn: 38, Escape: 90}
+
+const changedBonus = 15
+
+// measure finds the intervals of the diagram, in order of measure and time.
+func (b *builder) measure() {
+	b.cycles('A', PP, b.lay.aTop)
+	b.cycles('V', RR, b.lay.vFoot)
+	for i := range b.ws.all {
+		if v := &b.ws.all[i]; v.chamber == 'V' {
+			b.conducted(v)
+		} else {
+			b.retrograde(v)
+		}
+	}
+	b.node()
+	b.escapes()
+	var last [len(priorities)]tick.Dur
+	for i := range b.d.Dims {
+		d := &b.d.Dims[i]
+		d.Priority = priorities[d.Measure]
+		v := d.T1.Sub(d.T0)
+		if was := last[d.Measure]; was != 0 && max(v-was, was-v) > max(10*tick.Millisecond, was/33) {
+			d.Priority += changedBonus
+		}
+		last[d.Measure] = v
+	}
+}
+
+func (b *builder) dim(m Measure, from, to *event.Event, y0, y1 float64, tissue event.Tissue) {
+	if to.T > from.T {
+		b.d.Dims = append(b.d.Dims, Dim{Measure: m, T0: from.T, T1: to.T, Y0: y0, Y1: y1, Event: to.ID, Tissue: tissue})
+	}
+}
+
+func (b *builder) cycles(chamber byte, m Measure, y float64) {
+	var was *event.Event
+	for i := range b.ws.all {
+		v := &b.ws.all[i]
+		if v.chamber != chamber {
+			continue
+		}
+		e := v.first(b.l)
+		if was != nil {
+			b.dim(m, was, e, y, y, b.l.Sites[e.Site].Tissue)
+		}
+		was = e
+	}
+}
+
+// up walks from an activation along its conduction and gives the nearest
+// activation at a site of the tissue, or nil.
+func (b *builder) up(e *event.Event, tissue event.Tissue) *event.Event {
+	for e != nil && e.Kind == event.Activate && e.Rule == event.Conducted {
+		if e = b.l.At(e.Cause); e != nil && e.Kind == event.Activate && b.l.Sites[e.Site].Tissue == tissue {
+			return e
+		}
+	}
+	return nil
+}
+
+// conducted measures a QRS from the P and the His bundle that it came from.
+func (b *builder) conducted(v *wave) {
+	e := v.first(b.l)
+	if a := b.up(e, event.Atrium); a != nil && b.ws.of[a.ID] >= 0 {
+		p := b.ws.all[b.ws.of[a.ID]].first(b.l)
+		b.dim(PR, p, e, b.lay.aTop, b.lay.vTop, event.Node)
+	}
+	if h := b.up(e, event.His); h != nil {
+		b.dim(HV, h, e, b.lay.y[h.Site], b.lay.vTop, event.Purkinje)
+	}
+}
+
+// retrograde measures a P that came from below.
+func (b *builder) retrograde(v *wave) {
+	for i, id := range v.members {
+		if v.entries[i] != below && v.entries[i] != beside {
+			continue
+		}
+		e := b.l.At(id)
+		if q := b.up(e, event.Ventricle); q != nil && b.ws.of[q.ID] >= 0 {
+			from := b.ws.all[b.ws.of[q.ID]].first(b.l)
+			b.dim(RP, from, v.first(b.l), b.lay.vTop, b.lay.aFoot, event.Node)
+		}
+		if v.entries[i] == beside {
+			return
+		}
+		if h := b.up(e, event.His); h != nil {
+			b.dim(HA, h, e, b.lay.y[h.Site], b.lay.aFoot, event.Node)
+		} else if j := b.up(e, event.Node); j != nil {
+			b.dim(NodeUp, j, e, b.lay.y[j.Site], b.lay.aFoot, event.Node)
+		}
+		return
+	}
+}
+
+// node measures the crossings of the AV node downwards.
+func (b *builder) node() {
+	reached := make([]bool, len(b.l.Events)+1) // by event id: the His bundle was reached from it
+	for i := range b.l.Events {
+		e := &b.l.Events[i]
+		if e.Kind != event.Activate || e.Site < 0 || b.l.Sites[e.Site].Tissue != event.His {
+			continue
+		}
+		reached[e.Cause] = true
+		if a := b.up(e, event.Atrium); a != nil {
+			b.dim(AH, a, e, b.lay.aFoot, b.lay.y[e.Site], event.Node)
+		}
+	}
+	for i := range b.l.Events {
+		e := &b.l.Events[i]
+		if e.Kind != event.Activate || e.Site < 0 || b.l.Sites[e.Site].Tissue != event.Node || reached[e.ID] {
+			continue
+		}
+		if a := b.l.At(e.Cause); a != nil && a.Kind == event.Activate && b.l.Sites[a.Site].Tissue == event.Atrium {
+			b.dim(NodeIn, a, e, b.lay.aFoot, b.lay.y[e.Site], event.Node)
+		}
+	}
+}
+
+// escapes measures the waits of foci below the sinus node that another impulse
+// had reset, where the wait was no shorter than the ventricular cycle before it.
+func (b *builder) escapes() {
+	for i := range b.l.Events {
+		a := &b.l.Events[i]
+		if a.Kind != event.Activate || a.Rule != event.Fired {
+			continue
+		}
+		e := b.l.At(a.Cause)
+		if e == nil || e.Site < 0 || b.l.Sites[e.Site].Tissue < event.Node {
+			continue
+		}
+		from := b.l.At(e.Cause)
+		if from == nil || from.Kind != event.Activate || from.Rule == event.Fired || e.T.Sub(from.T) < b.cycleBefore(from.T) {
+			continue
+		}
+		y := b.origin(e)
+		b.dim(Escape, from, e, y, y, b.l.Sites[e.Site].Tissue)
+	}
+}
+
+// cycleBefore is the last ventricular cycle complete at t, or 0.
+func (b *builder) cycleBefore(t tick.Time) tick.Dur {
+	var d tick.Dur
+	for i := range b.d.Dims {
+		if c := &b.d.Dims[i]; c.Measure == RR && c.T1 <= t.Add(beat) {
+			d = c.T1.Sub(c.T0)
+		}
+	}
+	return d
+}
