@@ -1,0 +1,151 @@
+package measure
+
+import (
+	"fmt"
+
+	"escapement/engine/event"
+	"escapement/engine/tick"
+)
+
+// sinusRhythm names the sinus rate. Limits: below 50/min bradycardia (2018
+// ACC/AHA/HRS; older texts 60), above 100/min tachycardia (common practice).
+func (f *finder) sinusRhythm() {
+	var ids []event.ID
+	n := 0
+	for i := range f.p {
+		if f.pOrigin(i) == fromSinus && f.descending(i) {
+			ids = append(ids, f.p[i].id)
+			n++
+		}
+	}
+	cycle := f.sinusCycle()
+	if n < 2 || cycle == 0 {
+		return
+	}
+	slug, name := "sinus_rhythm", "sinus rhythm"
+	switch bpm := cycle.BPM(); {
+	case bpm < sinusBradycardy:
+		slug, name = "sinus_bradycardia", "sinus bradycardia"
+	case bpm > 100:
+		slug, name = "sinus_tachycardia", "sinus tachycardia"
+	}
+	f.add(orderAtria, Finding{
+		Slug: slug, Evidence: ids, Count: n,
+		Text:   fmt.Sprintf("%s from the sinus node, median %s: consistent with %s.", plural(n, "P wave", "P waves"), perMinute(cycle), name),
+		clause: "sinus " + perMinute(cycle),
+	})
+	f.arrhythmia(cycle)
+}
+
+// arrhythmia: PP of neighbouring sinus beats varies by more than 120 ms, up and
+// down (textbooks, from memory). Long intervals that are pauses are left out.
+func (f *finder) arrhythmia(cycle tick.Dur) {
+	var ids []event.ID
+	var lo, hi, last tick.Dur
+	turns, sign := 0, 0
+	for i := 1; i < len(f.p); i++ {
+		d := f.pp(i)
+		if f.pOrigin(i) != fromSinus || f.pOrigin(i-1) != fromSinus || 2*d > 3*cycle {
+			last = 0
+			continue
+		}
+		if lo == 0 || d < lo {
+			lo = d
+		}
+		hi = max(hi, d)
+		ids = append(ids, f.p[i].id)
+		if last != 0 && d != last {
+			s := 1
+			if d < last {
+				s = -1
+			}
+			if sign != 0 && s != sign {
+				turns++
+			}
+			sign = s
+		}
+		last = d
+	}
+	if hi-lo <= 120*tick.Millisecond || turns < 2 || f.exitBlocked() {
+		return
+	}
+	f.add(orderAtria, Finding{
+		Slug: "sinus_arrhythmia", Evidence: ids, Count: len(ids),
+		Text:   fmt.Sprintf("PP varies between %s and %s ms: consistent with sinus arrhythmia.", whole(lo), whole(hi)),
+		clause: "sinus arrhythmia",
+	})
+}
+
+// otherAtrial names runs of three or more P waves from one place other than the
+// sinus node. Rates: ectopic rhythm up to 100/min, tachycardia above, flutter
+// from 240/min (2001 definition, Saoudi et al., Eur Heart J 2001;22:1162, which
+// itself calls a rate limit obsolete; regular here means within 20 ms).
+func (f *finder) otherAtrial() {
+	for i := 0; i < len(f.p); {
+		j := i + 1
+		for j < len(f.p) && f.sameSource(j, i) && f.descending(i) {
+			j++
+		}
+		if j-i >= 3 && f.pOrigin(i) != fromSinus && f.descending(i) {
+			f.atrialRun(i, j)
+		}
+		i = j
+	}
+	f.fibrillation()
+}
+
+func (f *finder) atrialRun(i, j int) {
+	var ids []event.ID
+	var d []tick.Dur
+	for k := i; k < j; k++ {
+		ids = append(ids, f.p[k].id)
+		if k > i {
+			d = append(d, f.pp(k))
+		}
+	}
+	cycle := medianDur(d)
+	slug, name := "ectopic_atrial_rhythm", "ectopic atrial rhythm"
+	switch {
+	case f.pOrigin(i) == fromStimulus:
+		slug, name = "atrial_stimulation", "atrial stimulation"
+	case f.pOrigin(i) == fromJunction:
+		return // echoes and junctional beats have findings of their own
+	case cycle.BPM() >= 240:
+		slug, name = "atrial_flutter", "a regular atrial driver in the range of flutter"
+	case cycle.BPM() > 100:
+		slug, name = "atrial_tachycardia", "atrial tachycardia"
+	}
+	f.add(orderAtria, Finding{
+		Slug: slug, Evidence: ids, Count: j - i,
+		Text:   fmt.Sprintf("%s in a row from one place in the atria, %s: consistent with %s.", plural(j-i, "P wave", "P waves"), perMinute(cycle), name),
+		clause: name + " " + perMinute(cycle),
+	})
+}
+
+// fibrillation: atrial waves above 350/min whose intervals differ by more than a
+// quarter of their median (texts, from memory; 147-227 ms measured by Petrutiu
+// et al. 2007). Runs from one place were named already.
+func (f *finder) fibrillation() {
+	var ids []event.ID
+	var d []tick.Dur
+	lo, hi := tick.Dur(0), tick.Dur(0)
+	for i := 1; i < len(f.p); i++ {
+		if f.descending(i) && f.pOrigin(i) != fromSinus {
+			d = append(d, f.pp(i))
+			ids = append(ids, f.p[i].id)
+			if lo == 0 || f.pp(i) < lo {
+				lo = f.pp(i)
+			}
+			hi = max(hi, f.pp(i))
+		}
+	}
+	m := medianDur(d)
+	if len(d) < 10 || m.BPM() < 350 || 4*(hi-lo) < m {
+		return
+	}
+	f.add(orderAtria, Finding{
+		Slug: "atrial_fibrillation", Evidence: ids, Count: len(ids),
+		Text:   fmt.Sprintf("Atrial waves at %s with irregular intervals: consistent with atrial fibrillation.", perMinute(m)),
+		clause: "atrial fibrillation",
+	})
+}

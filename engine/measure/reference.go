@@ -1,0 +1,250 @@
+package measure
+
+import (
+	"slices"
+
+	"escapement/engine/event"
+	"escapement/engine/tick"
+)
+
+// early is how much shorter than the expected interval a beat must come to be
+// called premature: nine tenths (a choice of this package; no source gives a
+// number, and sinus rhythm itself varies by a tenth).
+const earlyTenths = 9
+
+func early(d, expected tick.Dur) bool { return expected > 0 && 10*d < earlyTenths*expected }
+
+// origin of an atrial or ventricular wave in the report's words.
+const (
+	fromSinus       = "sinus"
+	fromAtrium      = "atrial"
+	fromJunction    = "junctional"
+	fromFascicle    = "fascicular"
+	fromVentricle   = "ventricular"
+	fromStimulus    = "stimulus"
+	fromAccessory   = "accessory"
+	fromUnknown     = "unknown"
+	sinusBradycardy = 50  // /min, 2018 ACC/AHA/HRS (older texts 60)
+	physiological   = 100 // /min, upper limit for naming AV block, 2018 ACC/AHA/HRS
+)
+
+func (s *strip) origin(id event.ID) string {
+	o := s.log.At(s.mark[id].origin)
+	switch {
+	case o == nil:
+		return fromUnknown
+	case o.Kind == event.Stimulus:
+		return fromStimulus
+	}
+	switch s.log.Sites[o.Site].Tissue {
+	case event.Sinus:
+		return fromSinus
+	case event.Atrium:
+		return fromAtrium
+	case event.Node, event.His:
+		return fromJunction
+	case event.Purkinje:
+		return fromFascicle
+	case event.Ventricle:
+		return fromVentricle
+	}
+	return fromAccessory
+}
+
+func (s *strip) pOrigin(i int) string {
+	if s.p[i].circling {
+		return fromAtrium
+	}
+	return s.origin(s.p[i].id)
+}
+
+func (s *strip) vOrigin(i int) string {
+	if s.v[i].circling {
+		return fromVentricle
+	}
+	return s.origin(s.v[i].id)
+}
+
+// own tells whether a ventricular beat began below the atria: no P led to it.
+func (s *strip) own(i int) bool { return s.v[i].p < 0 }
+
+// stimulated is the tissue of the stimulus a beat began from, or 0.
+func (s *strip) stimulated(id event.ID) event.Tissue {
+	o := s.log.At(s.mark[id].origin)
+	if o == nil || o.Kind != event.Stimulus {
+		return 0
+	}
+	return s.log.Sites[o.Site].Tissue
+}
+
+// sourceSite is the site a beat began at: beats from one site form a run.
+func (s *strip) sourceSite(id event.ID) event.SiteID {
+	if o := s.log.At(s.mark[id].origin); o != nil {
+		return o.Site
+	}
+	return event.None
+}
+
+func (s *strip) pp(i int) tick.Dur {
+	if i <= 0 || i >= len(s.p) {
+		return 0
+	}
+	return s.p[i].t.Sub(s.p[i-1].t)
+}
+
+func (s *strip) rr(i int) tick.Dur {
+	if i <= 0 || i >= len(s.v) {
+		return 0
+	}
+	return s.v[i].t.Sub(s.v[i-1].t)
+}
+
+func (s *strip) pr(i int) tick.Dur { return s.v[s.p[i].to].t.Sub(s.p[i].t) }
+
+// descending tells whether a P came from above the AV node.
+func (s *strip) descending(i int) bool { return !s.p[i].retrograde }
+
+func medianDur(d []tick.Dur) tick.Dur {
+	if len(d) == 0 {
+		return 0
+	}
+	d = slices.Clone(d)
+	slices.Sort(d)
+	return (d[(len(d)-1)/2] + d[len(d)/2]) / 2
+}
+
+// sinusCycle is the median interval between neighbouring sinus P waves.
+func (s *strip) sinusCycle() tick.Dur {
+	var d []tick.Dur
+	for i := 1; i < len(s.p); i++ {
+		if s.pOrigin(i) == fromSinus && s.pOrigin(i-1) == fromSinus && s.descending(i) && s.descending(i-1) {
+			d = append(d, s.pp(i))
+		}
+	}
+	return medianDur(d)
+}
+
+// conductedCycle is the median interval between neighbouring conducted beats.
+func (s *strip) conductedCycle() tick.Dur {
+	var d []tick.Dur
+	for i := 1; i < len(s.v); i++ {
+		if !s.own(i) && !s.own(i-1) && !s.p[s.v[i].p].premature && !s.p[s.v[i-1].p].premature {
+			d = append(d, s.rr(i))
+		}
+	}
+	return medianDur(d)
+}
+
+// judge marks premature beats and the P waves that met what a beat from
+// elsewhere had left refractory.
+func (s *strip) judge() {
+	sinus := s.sinusCycle()
+	s.cycle0 = sinus
+	for i := range s.p {
+		s.p[i].premature = s.prematureP(i, sinus)
+	}
+	conducted := s.conductedCycle()
+	if conducted == 0 && s.anyConducted() {
+		conducted = sinus
+	}
+	var all []tick.Dur
+	for i := 1; i < len(s.v); i++ {
+		all = append(all, s.rr(i))
+	}
+	usual := medianDur(all)
+	for i := range s.v {
+		s.v[i].premature = s.prematureV(i, conducted, usual)
+	}
+	for i := range s.p {
+		s.p[i].interfered = s.interference(i)
+	}
+}
+
+func (s *strip) anyConducted() bool {
+	return slices.ContainsFunc(s.p, func(w pwave) bool { return w.to >= 0 && !w.retrograde })
+}
+
+// prematureP: a P that is not the sinus node's own and comes early, against the
+// run it belongs to where there is one, else against the sinus cycle.
+func (s *strip) prematureP(i int, sinus tick.Dur) bool {
+	if i == 0 || !s.descending(i) || s.pOrigin(i) == fromSinus {
+		return false
+	}
+	if i >= 2 && s.sameSource(i, i-1) && s.sameSource(i, i-2) {
+		return early(s.pp(i), s.pp(i-1))
+	}
+	if i >= 2 && s.sameSource(i, i-1) && i+1 < len(s.p) && s.sameSource(i, i+1) && !early(s.pp(i), s.pp(i+1)) {
+		return false // second of a run of three or more
+	}
+	return early(s.pp(i), sinus)
+}
+
+func (s *strip) sameSource(i, j int) bool {
+	return s.pOrigin(i) == s.pOrigin(j) && s.sourceSite(s.p[i].id) == s.sourceSite(s.p[j].id) && s.descending(j)
+}
+
+// prematureV: a beat that began below the atria and came early. In a run of
+// three or more only the first is called premature; the run has its own name.
+func (s *strip) prematureV(i int, conducted, usual tick.Dur) bool {
+	if i == 0 || !s.own(i) {
+		return false
+	}
+	expected := conducted
+	if expected == 0 {
+		expected = usual
+	}
+	if !early(s.rr(i), expected) {
+		return false
+	}
+	return !(s.linked(i-1, i) && (s.linked(i-2, i-1) || s.linked(i, i+1)))
+}
+
+// linked tells whether beats i and j are neighbours of one run below the atria.
+func (s *strip) linked(i, j int) bool {
+	return i >= 0 && j < len(s.v) && s.own(i) && s.own(j) && s.sourceSite(s.v[i].id) == s.sourceSite(s.v[j].id)
+}
+
+// interference: the P was blocked, at the deepest level it reached, in tissue
+// that something other than an ordinary P before it had left refractory. Such a
+// P had no opportunity to conduct and says nothing about block.
+func (s *strip) interference(i int) bool {
+	w := &s.p[i]
+	if w.to >= 0 {
+		return false
+	}
+	for _, id := range s.deepest(i) {
+		e := s.log.At(id)
+		switch e.Rule {
+		case event.Collision:
+			return true
+		case event.PathRefractory, event.SiteRefractory:
+			b := s.log.At(s.mark[id].blocker)
+			if b != nil && s.foreign(b) {
+				return true
+			}
+		}
+	}
+	return false
+}
+
+// foreign tells whether an event belongs to anything but an ordinary P on its way down.
+func (s *strip) foreign(b *event.Event) bool {
+	p := s.mark[b.ID].p
+	return b.Dir == event.Up || b.Rule == event.Fired || b.Rule == event.Captured || p < 0 || s.p[p].premature || s.p[p].retrograde
+}
+
+// deepest are the blocks of a P that stopped its impulse for good: those in the
+// His-Purkinje system if it reached the His bundle, else those above.
+func (s *strip) deepest(i int) []event.ID {
+	w := &s.p[i]
+	var ids []event.ID
+	for _, id := range w.blocks {
+		if (w.his != 0) == (s.levelOf(id) != levelNode) {
+			ids = append(ids, id)
+		}
+	}
+	if len(ids) == 0 {
+		return w.blocks
+	}
+	return ids
+}
