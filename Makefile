@@ -1,0 +1,61 @@
+# Everything a contributor runs. `make` alone lists it.
+
+GO      ?= go
+SITE    := site/dist
+WASM    := $(SITE)/engine/escapement.wasm
+PORT    ?= 8017
+# Pinned; the tool runs from the module cache and leaves go.mod alone.
+STATICCHECK := honnef.co/go/tools/cmd/staticcheck@v0.7.0
+PARTS   := index.html icon.svg main.js base css engine model views
+
+.PHONY: help
+help: ## list what can be run
+	@awk -F ':.*## ' '/^[a-z-]+:.*## / { printf "make %-8s %s\n", $$1, $$2 }' $(MAKEFILE_LIST)
+
+.PHONY: run
+run: site ## build the site and serve it on this machine
+	@echo "escapement is at the address below; Ctrl C ends it."
+	@$(GO) run ./engine/cmd/escapement serve -port $(PORT)
+
+.PHONY: site
+site: need-go ## build site/dist, ready for any static host
+	@rm -rf $(SITE) && mkdir -p $(SITE)
+	@cd site && cp -R $(PARTS) dist/
+	@cp "$$($(GO) env GOROOT)/lib/wasm/wasm_exec.js" $(SITE)/engine/
+	@GOOS=js GOARCH=wasm $(GO) build -trimpath -ldflags="-s -w" -o $(WASM) ./wasm/live
+	@printf '%-34s %9d bytes, %8d gzipped\n' $(WASM) "$$(wc -c < $(WASM))" "$$(gzip -9 -c $(WASM) | wc -c)"
+	@printf '%-34s %9d bytes, %8d gzipped\n' "the rest of the page" \
+		"$$(find $(SITE) -type f ! -name '*.wasm' -exec cat {} + | wc -c)" \
+		"$$(find $(SITE) -type f ! -name '*.wasm' -exec gzip -9 -c {} \; | wc -c)"
+
+.PHONY: test
+test: need-go need-browser site ## all tests: Go, WebAssembly, page (installs what it needs)
+	@bash .ci/tests
+
+.PHONY: check
+check: need-go need-node ## the gate: format, vet, staticcheck, types of the page, all tests
+	@bad="$$(gofmt -l $$(git ls-files -co --exclude-standard '*.go'))"; if [ -n "$$bad" ]; then echo "gofmt would change:"; echo "$$bad"; exit 1; fi
+	$(GO) vet ./...
+	GOOS=js GOARCH=wasm $(GO) vet ./wasm/...
+	$(GO) run $(STATICCHECK) ./...
+	cd site/test && npx tsc -p .
+	$(MAKE) test
+
+.PHONY: golden
+golden: need-go ## rewrite the goldens and show what changed
+	$(GO) test ./... -update || true
+	@git --no-pager diff --stat -- '*testdata*' && git --no-pager diff -- '*testdata*'
+
+.PHONY: bench
+bench: need-go ## benchmarks: work per second and ratios taken in one run
+	$(GO) test -run '^$$' -bench . ./...
+
+.PHONY: need-go need-node need-browser
+need-go:
+	@command -v $(GO) >/dev/null || { echo "Go is missing: install Go 1.26 or later from your system or go.dev, then run this again."; exit 1; }
+
+need-node:
+	@bash .ci/need node
+
+need-browser: need-node
+	@bash .ci/need browser

@@ -1,0 +1,67 @@
+package main
+
+import (
+	"errors"
+	"flag"
+	"fmt"
+	"mime"
+	"net"
+	"net/http"
+	"os"
+	"path/filepath"
+	"strings"
+	"time"
+)
+
+// serve puts the built site on a loopback port, so that it can be used from a
+// clone. It serves files and nothing else; nothing is ever sent to it.
+//
+//	escapement serve [-port 8017] [-dir site/dist]
+//
+// Port 0 takes any free one. The address goes to standard output.
+func serve(args []string) error {
+	flags := flag.NewFlagSet("serve", flag.ContinueOnError)
+	port := flags.Int("port", 8017, "port on the loopback address; 0 takes any free one")
+	dir := flags.String("dir", filepath.Join("site", "dist"), "folder of the built site")
+	if err := flags.Parse(args); err != nil {
+		return err
+	}
+	if _, err := os.Stat(filepath.Join(*dir, "index.html")); err != nil {
+		return fmt.Errorf("%s holds no built site: run `make site` first, or name its folder with -dir", *dir)
+	}
+	listener, err := net.Listen("tcp", fmt.Sprintf("127.0.0.1:%d", *port))
+	if err != nil {
+		return fmt.Errorf("port %d cannot be had (%w): name another with -port, or 0 for any", *port, err)
+	}
+	fmt.Printf("http://%s/\n", listener.Addr())
+	server := &http.Server{Handler: files(*dir), ReadHeaderTimeout: 10 * time.Second}
+	if err := server.Serve(listener); !errors.Is(err, http.ErrServerClosed) {
+		return err
+	}
+	return nil
+}
+
+// files serves a folder as a static host would, with the types a browser insists
+// on and without lists of folders.
+func files(dir string) http.Handler {
+	// Machines differ in their tables of types; the page needs these to be right.
+	for ext, typ := range map[string]string{".js": "text/javascript; charset=utf-8", ".wasm": "application/wasm", ".css": "text/css; charset=utf-8", ".svg": "image/svg+xml"} {
+		if err := mime.AddExtensionType(ext, typ); err != nil {
+			panic("serve: " + err.Error())
+		}
+	}
+	host := http.FileServer(http.Dir(dir))
+	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+		if r.Method != http.MethodGet && r.Method != http.MethodHead {
+			http.Error(w, "this server only hands out files", http.StatusMethodNotAllowed)
+			return
+		}
+		if strings.HasSuffix(r.URL.Path, "/") && r.URL.Path != "/" {
+			http.NotFound(w, r)
+			return
+		}
+		w.Header().Set("Cache-Control", "no-cache") // asked again each time, answered 304 where nothing changed
+		w.Header().Set("X-Content-Type-Options", "nosniff")
+		host.ServeHTTP(w, r)
+	})
+}

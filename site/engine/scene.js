@@ -1,0 +1,125 @@
+// The wire form of a scene, read. The engine lays out in millimetres; what each
+// number means is told in the package comment of engine/scene.
+
+/**
+ * @typedef {object} Mark
+ * @property {number} shape 1 line, 2 polyline, 3 rectangle, 4 disc, 5 ring, 6 text
+ * @property {string} cls
+ * @property {number} x
+ * @property {number} y
+ * @property {number} x2
+ * @property {number} y2
+ * @property {number} r
+ * @property {string} text
+ * @property {number} anchor 0 start, 1 middle, 2 end
+ * @property {number} event id, 0 for none
+ * @property {number} from first of its points
+ * @property {number} count of its points
+ */
+
+/** @typedef {{name: string, label: string, y0: number, y1: number}} Lane */
+
+/**
+ * @typedef {object} Scene
+ * @property {number} width mm
+ * @property {number} height mm
+ * @property {number} font_mm
+ * @property {{t0_us: number, x0: number, mm_per_s: number}} axis
+ * @property {Lane[]} lanes
+ * @property {Mark[]} marks
+ * @property {Float32Array} points x, y pairs
+ * @property {[number, number][]} times id and milliseconds of every event that has a mark
+ */
+
+export const LINE = 1;
+export const POLY = 2;
+export const RECT = 3;
+export const DISC = 4;
+export const RING = 5;
+export const TEXT = 6;
+
+/**
+ * @param {any} meta
+ * @param {Float32Array | null} points
+ * @returns {Scene}
+ */
+export function readScene(meta, points) {
+  return { times: [], ...meta, marks: meta.marks.map(readMark), points: points ?? new Float32Array() };
+}
+
+/**
+ * @param {any[]} a
+ * @returns {Mark}
+ */
+function readMark(a) {
+  const [shape, cls, x = 0, y = 0, x2 = 0, y2 = 0, r = 0, text = "", anchor = 0, event = 0, from = 0, count = 0] = a;
+  return { shape, cls, x, y, x2, y2, r, text, anchor, event, from, count };
+}
+
+/**
+ * The instant at a place on the sheet, in milliseconds of the strip.
+ * @param {Scene} s
+ * @param {number} x mm
+ */
+export function timeAt(s, x) {
+  return s.axis.t0_us / 1000 + ((x - s.axis.x0) / s.axis.mm_per_s) * 1000;
+}
+
+/**
+ * The place of an instant, in millimetres.
+ * @param {Scene} s
+ * @param {number} ms
+ */
+export function placeOf(s, ms) {
+  return s.axis.x0 + ((ms - s.axis.t0_us / 1000) / 1000) * s.axis.mm_per_s;
+}
+
+/**
+ * How far a mark is from a place, in millimetres.
+ * @param {Mark} m
+ * @param {number} x
+ * @param {number} y
+ */
+export function distance(m, x, y) {
+  switch (m.shape) {
+    case LINE: {
+      const dx = m.x2 - m.x;
+      const dy = m.y2 - m.y;
+      const len = dx * dx + dy * dy;
+      const u = len === 0 ? 0 : Math.min(1, Math.max(0, ((x - m.x) * dx + (y - m.y) * dy) / len));
+      return Math.hypot(x - m.x - u * dx, y - m.y - u * dy);
+    }
+    case RECT:
+      return Math.hypot(Math.max(m.x - x, 0, x - m.x2), Math.max(m.y - y, 0, y - m.y2));
+    case DISC:
+    case RING:
+      return Math.max(0, Math.hypot(x - m.x, y - m.y) - m.r);
+  }
+  return Infinity;
+}
+
+/**
+ * The mark with an event that lies nearest to a place, within reach. Where two
+ * are as near, the one painted later; an area counts only where nothing else is.
+ * @param {Scene} s
+ * @param {number} x
+ * @param {number} y
+ * @param {number} reach mm
+ * @returns {Mark | null}
+ */
+export function nearest(s, x, y, reach) {
+  let best = null;
+  let least = reach;
+  let area = null;
+  for (const m of s.marks) {
+    if (m.event === 0) continue;
+    const d = distance(m, x, y);
+    if (m.shape === RECT) {
+      if (d === 0) area = m;
+    } else if (d <= least) {
+      least = d;
+      best = m;
+    }
+  }
+  return best ?? area;
+}

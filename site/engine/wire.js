@@ -1,0 +1,94 @@
+// What the engine's function answers, as types. The Go side is wasm/live.
+
+/**
+ * @typedef {object} Field one value of the plan; see engine/plan
+ * @property {string} path
+ * @property {string} label
+ * @property {string} unit
+ * @property {"number" | "switch" | "choice" | "pattern" | "list" | "any" | "group"} kind
+ * @property {number} min
+ * @property {number} max
+ * @property {number | null} default null where it is left out
+ * @property {{low: number, high: number} | null} normal
+ * @property {boolean} [nullable]
+ * @property {string} [null] what null means
+ * @property {boolean} [is_null] null is the default
+ * @property {string[]} [choices]
+ * @property {Record<string, string>} [names] of the choices, for people
+ * @property {string} [source]
+ * @property {string} [help]
+ * @property {boolean} [curve]
+ * @property {boolean} [advanced]
+ */
+
+/** @typedef {{name: string, title: string, note: string, plan: any}} Preset */
+/** @typedef {{name: string, label: string}} SiteName */
+
+/**
+ * @typedef {object} Style
+ * @property {string} [stroke]
+ * @property {number} [width] mm
+ * @property {number[]} [dash] mm
+ * @property {string} [fill]
+ * @property {number} [size] multiple of the scene's font_mm
+ * @property {number} [weight]
+ */
+
+/**
+ * @typedef {object} Styles
+ * @property {string} paper
+ * @property {string} ink
+ * @property {string} quiet
+ * @property {string} device
+ * @property {string} warning
+ * @property {Record<string, Style>} classes
+ */
+
+/**
+ * @typedef {object} Catalogue
+ * @property {Field[]} fields
+ * @property {Preset[]} presets
+ * @property {SiteName[]} sites
+ * @property {{light: Styles, dark: Styles}} styles
+ */
+
+/** @typedef {{path: string, found: string, allowed: string, note: string, text: string}} Diagnosis */
+/** @typedef {{text: string, events: number[]}} Clause */
+
+/**
+ * @typedef {object} Overview
+ * @property {number[]} atrium milliseconds at which a wave in the atria began
+ * @property {number[]} ventricle
+ * @property {number[]} blocks
+ * @property {number[]} stimuli
+ */
+
+/** @typedef {{name: string, label: string, value: number | null, unit: string, normal: [number, number] | null, help: string, source: string}} Measured */
+/** @typedef {{text: string, events: number[], t_ms: number, note: string, rivals: string[]}} Finding */
+
+/**
+ * @typedef {object} Answer
+ * @property {string} title
+ * @property {string} note
+ * @property {Clause[]} statement
+ * @property {string[]} warnings
+ * @property {Measured[]} measured medians over the strip
+ * @property {Finding[]} findings
+ * @property {number} events how many
+ * @property {number} span_ms
+ * @property {string} fingerprint
+ * @property {Overview} overview
+ */
+
+/** @typedef {{id: number, t_ms: number, text: string}} Line */
+
+/**
+ * @typedef {object} Account
+ * @property {number} event
+ * @property {number} t_ms
+ * @property {string} title
+ * @property {string[]} sentences
+ * @property {Line[]} chain nearest cause first
+ */
+
+export {};

@@ -1,0 +1,87 @@
+// What part of the strip is shown and how large. Holds no DOM.
+
+import { clamp } from "../base/scale.js";
+
+/**
+ * @typedef {object} View
+ * @property {number} t0_ms instant at the left edge
+ * @property {number} width_mm room for the time axis, without the gutter
+ * @property {number} mm_per_s paper speed
+ * @property {number} mm_per_mv gain
+ * @property {string[]} leads shown, in the usual order
+ * @property {"plain" | "full"} ladder
+ */
+
+export const SPEEDS = [25, 50];
+export const GAINS = [5, 10, 20];
+export const LEADS = ["I", "II", "III", "aVR", "aVL", "aVF", "V1", "V2", "V3", "V4", "V5", "V6"];
+
+/** Slowest and fastest free zoom, in mm/s. */
+const MIN_SPEED = 1;
+const MAX_SPEED = 800;
+
+/** @type {View} */
+export const FIRST_VIEW = { t0_ms: 0, width_mm: 200, mm_per_s: 25, mm_per_mv: 10, leads: ["II", "V1"], ladder: "plain" };
+
+/**
+ * How much of the strip the view shows, in milliseconds.
+ * @param {View} v
+ */
+export function shown(v) {
+  return (v.width_mm / v.mm_per_s) * 1000;
+}
+
+/**
+ * Keeps the view on the strip. A strip shorter than the view starts at the left edge.
+ * @param {View} v
+ * @param {number} span milliseconds
+ * @returns {View}
+ */
+export function onStrip(v, span) {
+  const t0_ms = clamp(v.t0_ms, 0, span - shown(v));
+  return t0_ms === v.t0_ms ? v : { ...v, t0_ms };
+}
+
+/**
+ * @param {View} v
+ * @param {number} ms
+ * @param {number} span
+ */
+export function pan(v, ms, span) {
+  return onStrip({ ...v, t0_ms: v.t0_ms + ms }, span);
+}
+
+/**
+ * Changes the speed so that the instant t stays where it is.
+ * @param {View} v
+ * @param {number} mm_per_s
+ * @param {number} t milliseconds
+ * @param {number} span
+ */
+export function zoomTo(v, mm_per_s, t, span) {
+  const slowest = Math.max(MIN_SPEED, Math.min(25, (v.width_mm / span) * 1000));
+  const speed = clamp(mm_per_s, slowest, MAX_SPEED);
+  const t0_ms = t - ((t - v.t0_ms) * v.mm_per_s) / speed;
+  return onStrip({ ...v, mm_per_s: speed, t0_ms }, span);
+}
+
+/**
+ * The speed at which the whole strip fits.
+ * @param {View} v
+ * @param {number} span
+ */
+export function fitSpeed(v, span) {
+  return (v.width_mm / span) * 1000;
+}
+
+/**
+ * Moves the view only as far as is needed to have an instant well inside it.
+ * @param {View} v
+ * @param {number} t
+ * @param {number} span
+ */
+export function reveal(v, t, span) {
+  const w = shown(v);
+  if (t >= v.t0_ms + w * 0.04 && t <= v.t0_ms + w * 0.96) return v;
+  return onStrip({ ...v, t0_ms: t - w / 3 }, span);
+}

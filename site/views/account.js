@@ -1,0 +1,108 @@
+// The right-hand side: why the selected event came, or, with none selected, what
+// was measured and what it is consistent with.
+
+import { el, fill } from "../base/dom.js";
+import { num, seconds } from "../base/format.js";
+import { reveal } from "../model/view.js";
+import { rangeBar, verdict } from "./range.js";
+
+/**
+ * @typedef {import("../model/store.js").Store} Store
+ * @typedef {import("../model/store.js").State} State
+ * @typedef {import("../engine/wire.js").Account} Account
+ * @typedef {import("../engine/wire.js").Answer} Answer
+ * @typedef {import("../engine/wire.js").Measured} Measured
+ * @typedef {import("../engine/wire.js").Finding} Finding
+ */
+
+/**
+ * @param {HTMLElement} root
+ * @param {Store} store
+ */
+export function accountView(root, store) {
+  const title = el("h2", { "aria-live": "polite" }, "Measured");
+  const back = el("button", { type: "button", id: "deselect", onclick: () => store.set({ selected: 0 }) }, "Measured");
+  const shut = el("button", { type: "button", class: "drawer-close", onclick: () => store.set({ drawer: "" }) }, "Close");
+  const body = el("div", { class: "account-body" });
+  root.append(el("div", { class: "part" }, title, back, shut), body);
+
+  /** @param {number} id @param {number} t */
+  function go(id, t) {
+    const { view, answer } = store.get();
+    if (answer) store.set({ selected: id, lit: [], view: reveal(view, t, answer.span_ms) });
+  }
+
+  /** @param {Account} a */
+  function event(a) {
+    title.textContent = a.title;
+    back.hidden = false;
+    fill(body,
+      el("p", { class: "when" }, seconds(a.t_ms)),
+      el("div", { class: "sentences" }, a.sentences.map((s) => el("p", null, s))),
+      a.chain.length > 0 && el("h3", null, "How it came about"),
+      a.chain.length > 0 && el("ol", { class: "chain" }, a.chain.map((step) => el("li", null,
+        el("span", { class: "at" }, seconds(step.t_ms)),
+        el("button", { type: "button", class: "link", "data-event": String(step.id), onclick: () => go(step.id, step.t_ms) }, step.text)))));
+  }
+
+  /** @param {Answer} answer @param {State} state */
+  function measured(answer, state) {
+    title.textContent = "Measured";
+    back.hidden = true;
+    const note = String(state.plan.note || answer.note || "");
+    fill(body,
+      note && el("section", { class: "look" }, el("h3", null, "Look for"), el("p", null, note)),
+      el("dl", { class: "numbers" }, answer.measured.filter((m) => m.value !== null).map(row).flat()),
+      answer.findings.length > 0 && el("section", null,
+        el("h3", null, "Consistent with"),
+        el("ul", { class: "findings" }, answer.findings.map(finding))),
+      el("p", { class: "hint" }, "Press any stroke, wave or bar to read why it came."));
+  }
+
+  /** @param {Measured} m */
+  function row(m) {
+    const bar = rangeBar();
+    bar.show(m.value, m.normal);
+    const how = m.normal && m.value !== null ? verdict(m.value, m.normal) : "normal";
+    return [
+      el("dt", { title: m.source ? `${m.help} ${m.source}` : m.help }, m.label),
+      el("dd", { "data-verdict": how },
+        el("span", { class: "value" }, num(m.value ?? NaN, 0)),
+        el("span", { class: "unit" }, m.unit),
+        bar.node,
+        el("span", { class: "normal" }, m.normal ? `${how === "normal" ? "" : `${how}, `}${num(m.normal[0], 0)}–${num(m.normal[1], 0)}` : "")),
+    ];
+  }
+
+  /** @param {Finding} f */
+  function finding(f) {
+    const first = f.events[0] ?? 0;
+    /** @param {number[]} lit */
+    const light = (lit) => store.set({ lit });
+    return el("li", null,
+      first
+        ? el("button", {
+            type: "button", class: "link",
+            onpointerenter: () => light(f.events), onpointerleave: () => light([]),
+            onfocus: () => light(f.events), onblur: () => light([]),
+            onclick: () => go(first, f.t_ms),
+          }, f.text)
+        : el("span", null, f.text),
+      f.note && el("p", { class: "aside" }, f.note),
+      f.rivals.length > 0 && el("p", { class: "aside" }, `Fits as well: ${f.rivals.join("; ")}.`));
+  }
+
+  return {
+    /** @param {State} state @param {Set<string>} changed */
+    update(state, changed) {
+      if (!["answer", "account", "selected"].some((k) => changed.has(k))) return;
+      if (state.selected !== 0) {
+        if (state.account && state.account.event === state.selected) event(state.account);
+      } else if (state.answer) measured(state.answer, state);
+      if (changed.has("selected")) body.scrollTop = 0;
+    },
+    destroy() {
+      fill(root);
+    },
+  };
+}

@@ -1,0 +1,179 @@
+// The whole span on one line a chamber. Drag the frame, or press where to go.
+
+import { el } from "../base/dom.js";
+import { seconds } from "../base/format.js";
+import { clamp, tOf, xOf } from "../base/scale.js";
+import { pan, shown } from "../model/view.js";
+
+/**
+ * @typedef {import("../model/store.js").Store} Store
+ * @typedef {import("../model/store.js").State} State
+ */
+
+const GUTTER = 76; // px, room for the names of the lines
+const HEIGHT = 48;
+const ROWS = { atrium: 11, ventricle: 27 };
+
+/**
+ * @param {HTMLElement} root
+ * @param {Store} store
+ */
+export function overviewView(root, store) {
+  const canvas = el("canvas", {
+    tabIndex: 0, role: "slider", "aria-label": "Part of the strip that is shown",
+    "aria-valuemin": "0", onkeydown: keys, onpointerdown: grab, onpointermove: drag, onpointerup: drop, onpointercancel: drop,
+  });
+  root.append(canvas);
+  const g = /** @type {CanvasRenderingContext2D} */ (canvas.getContext("2d"));
+  let held = false;
+  let offset = 0;
+
+  function scale() {
+    const span = store.get().answer?.span_ms ?? 1;
+    return { t0: 0, x0: GUTTER, pxPerMs: (canvas.clientWidth - GUTTER - 8) / span };
+  }
+
+  /** @param {PointerEvent} e */
+  function at(e) {
+    return tOf(scale(), e.clientX - canvas.getBoundingClientRect().left);
+  }
+
+  /** @param {number} t0_ms */
+  function go(t0_ms) {
+    const { view, answer } = store.get();
+    if (answer) store.set({ view: pan({ ...view, t0_ms }, 0, answer.span_ms) });
+  }
+
+  /** @param {PointerEvent} e */
+  function grab(e) {
+    const { view } = store.get();
+    const w = shown(view);
+    const t = at(e);
+    canvas.setPointerCapture(e.pointerId);
+    held = true;
+    offset = t >= view.t0_ms && t <= view.t0_ms + w ? t - view.t0_ms : w / 2;
+    go(t - offset);
+  }
+
+  /** @param {PointerEvent} e */
+  function drag(e) {
+    if (held) go(at(e) - offset);
+  }
+
+  function drop() {
+    held = false;
+  }
+
+  /** @param {KeyboardEvent} e */
+  function keys(e) {
+    const { view } = store.get();
+    const w = shown(view);
+    /** @type {Record<string, number>} */
+    const to = { ArrowLeft: view.t0_ms - w / 4, ArrowRight: view.t0_ms + w / 4, PageUp: view.t0_ms - w, PageDown: view.t0_ms + w, Home: 0, End: Infinity };
+    if (!(e.key in to)) return;
+    e.preventDefault();
+    go(Math.min(to[e.key], store.get().answer?.span_ms ?? 0));
+  }
+
+  function draw() {
+    const { answer, view } = store.get();
+    const width = canvas.clientWidth;
+    if (!answer || width === 0) return;
+    const dpr = window.devicePixelRatio || 1;
+    canvas.width = Math.round(width * dpr);
+    canvas.height = HEIGHT * dpr;
+    g.setTransform(dpr, 0, 0, dpr, 0, 0);
+    g.clearRect(0, 0, width, HEIGHT);
+    const look = getComputedStyle(root);
+    const colour = (/** @type {string} */ name) => look.getPropertyValue(name).trim();
+    const s = scale();
+    const right = width - 8;
+
+    const x0 = xOf(s, view.t0_ms);
+    const x1 = Math.min(right, xOf(s, view.t0_ms + shown(view)));
+    g.fillStyle = colour("--wash");
+    g.fillRect(x0, 1, x1 - x0, HEIGHT - 15);
+    g.fillStyle = colour("--device");
+    g.fillRect(x0, 1, 1.5, HEIGHT - 15);
+    g.fillRect(x1 - 1.5, 1, 1.5, HEIGHT - 15);
+
+    g.font = `12px ${look.fontFamily}`;
+    g.textBaseline = "middle";
+    line("atria", ROWS.atrium, colour("--atrium"), answer.overview.atrium);
+    line("ventricles", ROWS.ventricle, colour("--ventricle"), answer.overview.ventricle);
+    g.fillStyle = colour("--alarm");
+    for (const t of answer.overview.blocks) flag(xOf(s, t), 19);
+    g.strokeStyle = colour("--device");
+    for (const t of answer.overview.stimuli) ring(xOf(s, t), 19);
+    ticks(colour("--ink-soft"), colour("--rule-strong"));
+
+    /**
+     * @param {string} name
+     * @param {number} y
+     * @param {string} ink
+     * @param {number[]} times
+     */
+    function line(name, y, ink, times) {
+      g.textAlign = "right";
+      g.fillStyle = colour("--ink-soft");
+      g.fillText(name, GUTTER - 10, y);
+      g.fillStyle = colour("--rule-strong");
+      g.fillRect(s.x0, y, right - s.x0, 1);
+      g.fillStyle = ink;
+      let last = -10;
+      for (const t of times) {
+        const x = xOf(s, t);
+        if (x - last < 0.6) continue; // denser than the screen shows
+        last = x;
+        g.fillRect(x - 0.75, y - 5, 1.5, 10);
+      }
+    }
+
+    /** @param {number} x @param {number} y */
+    function flag(x, y) {
+      g.beginPath();
+      g.moveTo(x - 3.5, y - 3);
+      g.lineTo(x + 3.5, y - 3);
+      g.lineTo(x, y + 3);
+      g.fill();
+    }
+
+    /** @param {number} x @param {number} y */
+    function ring(x, y) {
+      g.beginPath();
+      g.arc(x, y, 2.4, 0, 2 * Math.PI);
+      g.stroke();
+    }
+
+    /** @param {string} ink @param {string} rule */
+    function ticks(ink, rule) {
+      const step = [1, 2, 5, 10, 20, 30, 60, 120, 300, 600, 1800, 3600].find((n) => n * 1000 * s.pxPerMs >= 44) ?? 7200;
+      g.textAlign = "center";
+      for (let k = 0; k * step * 1000 <= (answer?.span_ms ?? 0); k++) {
+        const x = xOf(s, k * step * 1000);
+        g.fillStyle = rule;
+        g.fillRect(x, HEIGHT - 14, 1, 4);
+        g.fillStyle = ink;
+        g.fillText(`${k * step}${k === 0 ? " s" : ""}`, clamp(x, s.x0 + 6, right - 8), HEIGHT - 5);
+      }
+    }
+  }
+
+  const watch = new ResizeObserver(draw);
+  watch.observe(root);
+
+  return {
+    /** @param {State} state @param {Set<string>} changed */
+    update(state, changed) {
+      if (!["answer", "view", "dark"].some((k) => changed.has(k)) || !state.answer) return;
+      draw();
+      canvas.setAttribute("aria-valuemax", String(Math.round(state.answer.span_ms)));
+      canvas.setAttribute("aria-valuenow", String(Math.round(state.view.t0_ms)));
+      canvas.setAttribute("aria-valuetext", `${seconds(state.view.t0_ms)} to ${seconds(Math.min(state.answer.span_ms, state.view.t0_ms + shown(state.view)))}`);
+    },
+    destroy() {
+      watch.disconnect();
+      canvas.remove();
+    },
+  };
+}

@@ -1,0 +1,94 @@
+// Puts a scene on a canvas. It decides nothing: places come from the scene,
+// looks from the engine's styles.
+
+import { DISC, LINE, POLY, RECT, RING, TEXT } from "../engine/scene.js";
+
+/**
+ * @typedef {import("../engine/scene.js").Scene} Scene
+ * @typedef {import("../engine/scene.js").Mark} Mark
+ * @typedef {import("../engine/wire.js").Style} Style
+ * @typedef {import("../engine/wire.js").Styles} Styles
+ */
+
+/** @type {CanvasTextAlign[]} */
+const ALIGN = ["left", "center", "right"];
+
+/**
+ * @param {CanvasRenderingContext2D} g already scaled so that one unit is one millimetre
+ * @param {Scene} scene
+ * @param {Styles} styles
+ * @param {string} family of fonts
+ * @param {{hairMM: number}} device thinnest line that shows
+ */
+export function paint(g, scene, styles, family, device) {
+  let cls = "";
+  /** @type {Style | undefined} */
+  let style;
+  for (const m of scene.marks) {
+    if (m.cls !== cls) {
+      cls = m.cls;
+      style = styles.classes[cls];
+      if (style) dress(g, style, scene, family, device);
+    }
+    if (style) put(g, m, style, scene);
+  }
+}
+
+/**
+ * @param {CanvasRenderingContext2D} g
+ * @param {Style} style
+ * @param {Scene} scene
+ * @param {string} family
+ * @param {{hairMM: number}} device
+ */
+function dress(g, style, scene, family, device) {
+  if (style.stroke) {
+    g.strokeStyle = style.stroke;
+    g.lineWidth = Math.max(style.width ?? 0, device.hairMM);
+    g.setLineDash(style.dash ?? []);
+  }
+  if (style.fill) g.fillStyle = style.fill;
+  if (style.size) g.font = `${style.weight ?? 400} ${style.size * scene.font_mm}px ${family}`;
+  g.lineCap = style.dash ? "butt" : "round";
+  g.lineJoin = "round";
+}
+
+/**
+ * @param {CanvasRenderingContext2D} g
+ * @param {Mark} m
+ * @param {Style} style
+ * @param {Scene} scene
+ */
+function put(g, m, style, scene) {
+  switch (m.shape) {
+    case LINE:
+      if (!style.stroke) return;
+      g.beginPath();
+      g.moveTo(m.x, m.y);
+      g.lineTo(m.x2, m.y2);
+      g.stroke();
+      return;
+    case POLY:
+      if (!style.stroke || m.count === 0) return;
+      g.beginPath();
+      for (let i = 0, p = 2 * m.from; i < m.count; i++, p += 2) {
+        g.lineTo(scene.points[p], scene.points[p + 1]);
+      }
+      g.stroke();
+      return;
+    case RECT:
+      if (style.fill) g.fillRect(m.x, m.y, m.x2 - m.x, m.y2 - m.y);
+      return;
+    case DISC:
+    case RING:
+      g.beginPath();
+      g.arc(m.x, m.y, m.r, 0, 2 * Math.PI);
+      if (m.shape === DISC && style.fill) g.fill();
+      if (m.shape === RING && style.stroke) g.stroke();
+      return;
+    case TEXT:
+      if (!style.fill || !style.size) return;
+      g.textAlign = ALIGN[m.anchor];
+      g.fillText(m.text, m.x, m.y);
+  }
+}

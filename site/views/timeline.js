@@ -1,0 +1,244 @@
+// The sheet itself: the painted scene, the hair line, and the hand on both.
+
+import { el, say } from "../base/dom.js";
+import { nextFrame } from "../base/frame.js";
+import { seconds } from "../base/format.js";
+import { PX_PER_MM } from "../base/scale.js";
+import { nearest, placeOf, timeAt } from "../engine/scene.js";
+import { pan, zoomTo } from "../model/view.js";
+import { paint } from "./paint.js";
+import { timelineKeys } from "./keys.js";
+
+/**
+ * @typedef {import("../model/store.js").Store} Store
+ * @typedef {import("../model/store.js").State} State
+ * @typedef {import("../engine/client.js").Engine} Engine
+ * @typedef {import("../engine/wire.js").Catalogue} Catalogue
+ */
+
+const REACH_PX = 9; // how near a press must be to a mark
+const SNAP_PX = 7; // how near the hair line must be to an event to jump to it
+const FAMILY = 'system-ui, -apple-system, "Segoe UI", Roboto, "Noto Sans", "Liberation Sans", Arial, sans-serif';
+
+/**
+ * @param {HTMLElement} root
+ * @param {Store} store
+ * @param {Engine} _engine
+ * @param {Catalogue} catalogue
+ */
+export function timelineView(root, store, _engine, catalogue) {
+  const canvas = el("canvas", { role: "img" });
+  const hairTime = el("span", { class: "hair-time" });
+  const hair = el("div", { class: "hair", hidden: true, "aria-hidden": "true" }, hairTime);
+  const paper = el("div", { class: "paper" }, canvas, hair);
+  const pane = el("div", {
+    id: "timeline", class: "timeline", tabIndex: 0, role: "group",
+    "aria-label": "Timeline. Arrow keys pan, comma and full stop walk the events, question mark lists all keys.",
+    onkeydown: (/** @type {KeyboardEvent} */ e) => timelineKeys(e, store),
+    onscroll: () => hideHair(),
+  }, paper);
+  root.append(pane);
+
+  const g = /** @type {CanvasRenderingContext2D} */ (canvas.getContext("2d"));
+  let width = 0;
+
+  function draw() {
+    const { scene, dark } = store.get();
+    if (!scene || width === 0) return;
+    const dpr = window.devicePixelRatio || 1;
+    const styles = dark ? catalogue.styles.dark : catalogue.styles.light;
+    const w = Math.round(scene.width * PX_PER_MM);
+    const h = Math.round(scene.height * PX_PER_MM);
+    if (canvas.width !== Math.round(w * dpr) || canvas.height !== Math.round(h * dpr)) {
+      canvas.width = Math.round(w * dpr);
+      canvas.height = Math.round(h * dpr);
+      canvas.style.width = `${w}px`;
+      canvas.style.height = `${h}px`;
+      paper.style.height = `${h}px`;
+    }
+    const k = PX_PER_MM * dpr;
+    g.setTransform(k, 0, 0, k, 0, 0);
+    g.fillStyle = styles.paper;
+    g.fillRect(0, 0, scene.width, scene.height);
+    paint(g, scene, styles, FAMILY, { hairMM: 1 / k });
+    canvas.dataset.marks = String(scene.marks.length);
+  }
+
+  function hideHair() {
+    hair.hidden = true;
+  }
+
+  /** @param {PointerEvent | WheelEvent} e */
+  function place(e) {
+    const box = canvas.getBoundingClientRect();
+    return { x: (e.clientX - box.left) / PX_PER_MM, y: (e.clientY - box.top) / PX_PER_MM };
+  }
+
+  /** @param {PointerEvent} e */
+  function moveHair(e) {
+    const { scene, answer } = store.get();
+    if (!scene || !answer) return;
+    const { x, y } = place(e);
+    let t = timeAt(scene, x);
+    let snapped = false;
+    const hit = nearest(scene, x, y, REACH_PX / PX_PER_MM);
+    const own = hit ? scene.times.find((s) => s[0] === hit.event) : undefined;
+    if (own && Math.abs(placeOf(scene, own[1]) - x) * PX_PER_MM <= 3 * SNAP_PX) {
+      t = own[1];
+      snapped = true;
+    } else {
+      let least = (SNAP_PX / PX_PER_MM / scene.axis.mm_per_s) * 1000;
+      for (const [, at] of scene.times) {
+        const d = Math.abs(at - timeAt(scene, x));
+        if (d <= least) {
+          least = d;
+          t = at;
+          snapped = true;
+        }
+      }
+    }
+    hair.hidden = x < scene.axis.x0 || t < 0 || t > answer.span_ms;
+    if (hair.hidden) return;
+    const px = placeOf(scene, t) * PX_PER_MM;
+    hair.style.transform = `translateX(${px}px)`;
+    hair.classList.toggle("snapped", snapped);
+    hairTime.classList.toggle("left", px > width - 80);
+    say(hairTime, seconds(t));
+    pane.classList.toggle("over-mark", hit !== null);
+  }
+
+  /** @param {PointerEvent} e */
+  function pick(e) {
+    const { scene } = store.get();
+    if (!scene) return;
+    const { x, y } = place(e);
+    const hit = nearest(scene, x, y, REACH_PX / PX_PER_MM);
+    store.set({ selected: hit?.event ?? 0, drawer: hit && narrow() ? "account" : store.get().drawer });
+  }
+
+  const hand = grip(canvas, store, { moveHair, hideHair, pick, place });
+
+  pane.addEventListener("wheel", (e) => {
+    const { scene, answer, view } = store.get();
+    if (!scene || !answer) return;
+    if (e.ctrlKey || e.metaKey) {
+      e.preventDefault();
+      const t = timeAt(scene, place(e).x);
+      store.set({ view: zoomTo(view, view.mm_per_s * Math.exp(-e.deltaY * 0.0025), t, answer.span_ms) });
+      return;
+    }
+    const tall = pane.scrollHeight > pane.clientHeight + 1;
+    const across = e.shiftKey && e.deltaX === 0 ? e.deltaY : e.deltaX;
+    const px = tall || across !== 0 ? across : e.deltaY;
+    if (px === 0) return;
+    e.preventDefault();
+    store.set({ view: pan(view, (px / PX_PER_MM / view.mm_per_s) * 1000, answer.span_ms) });
+  }, { passive: false });
+
+  const watch = new ResizeObserver(() => {
+    if (pane.clientWidth === width || pane.clientWidth === 0) return;
+    width = pane.clientWidth;
+    store.set({ view: { ...store.get().view, width_mm: width / PX_PER_MM } });
+    nextFrame(draw);
+  });
+  watch.observe(pane);
+
+  return {
+    /** @param {State} state @param {Set<string>} changed */
+    update(state, changed) {
+      if (changed.has("scene") || changed.has("dark")) draw();
+      if (changed.has("view")) hideHair();
+      if (changed.has("answer") && state.answer) {
+        canvas.setAttribute("aria-label", `Leads and ladder diagram. ${state.answer.statement.map((c) => c.text).join(" ")}`);
+        document.body.dataset.fingerprint = state.answer.fingerprint;
+      }
+      if (changed.has("tab")) pane.hidden = state.tab !== "timeline";
+    },
+    destroy() {
+      watch.disconnect();
+      hand.destroy();
+      pane.remove();
+    },
+  };
+}
+
+/** Whether Settings and Account are drawers. */
+function narrow() {
+  return matchMedia("(max-width: 1100px)").matches;
+}
+
+/**
+ * Pointers on the canvas: one that moves pans, one that does not picks, two pinch.
+ * @param {HTMLCanvasElement} canvas
+ * @param {Store} store
+ * @param {{moveHair: (e: PointerEvent) => void, hideHair: () => void, pick: (e: PointerEvent) => void, place: (e: PointerEvent) => {x: number, y: number}}} on
+ */
+function grip(canvas, store, on) {
+  /** @type {Map<number, {x: number, y: number}>} */
+  const down = new Map();
+  let moved = false;
+  let from = { x: 0, t0: 0 };
+  let pinch = { gap: 0, speed: 0, t: 0 };
+
+  const gap = () => {
+    const [a, b] = [...down.values()];
+    return Math.max(20, Math.abs(a.x - b.x));
+  };
+
+  /** @param {PointerEvent} e */
+  function press(e) {
+    if (e.button !== 0) return;
+    canvas.setPointerCapture(e.pointerId);
+    down.set(e.pointerId, { x: e.clientX, y: e.clientY });
+    const { view, scene } = store.get();
+    if (down.size === 1) {
+      moved = false;
+      from = { x: e.clientX, t0: view.t0_ms };
+    } else if (down.size === 2 && scene) {
+      moved = true;
+      pinch = { gap: gap(), speed: view.mm_per_s, t: timeAt(scene, on.place(e).x) };
+    }
+  }
+
+  /** @param {PointerEvent} e */
+  function move(e) {
+    const at = down.get(e.pointerId);
+    const { view, answer } = store.get();
+    if (!at || !answer) {
+      if (e.pointerType !== "touch") on.moveHair(e);
+      return;
+    }
+    at.x = e.clientX;
+    at.y = e.clientY;
+    if (down.size === 2) {
+      store.set({ view: zoomTo(view, (pinch.speed * gap()) / pinch.gap, pinch.t, answer.span_ms) });
+      return;
+    }
+    const dx = e.clientX - from.x;
+    if (!moved && Math.abs(dx) < 4) return;
+    moved = true;
+    canvas.classList.add("grabbed");
+    on.hideHair();
+    const t0_ms = from.t0 - (dx / PX_PER_MM / view.mm_per_s) * 1000;
+    store.set({ view: pan({ ...view, t0_ms }, 0, answer.span_ms) });
+  }
+
+  /** @param {PointerEvent} e */
+  function lift(e) {
+    const was = down.delete(e.pointerId);
+    canvas.classList.remove("grabbed");
+    if (was && !moved && e.type === "pointerup") on.pick(e);
+    if (down.size === 1) from = { x: [...down.values()][0].x, t0: store.get().view.t0_ms };
+  }
+
+  canvas.addEventListener("pointerdown", press);
+  canvas.addEventListener("pointermove", move);
+  canvas.addEventListener("pointerup", lift);
+  canvas.addEventListener("pointercancel", lift);
+  canvas.addEventListener("pointerleave", on.hideHair);
+  return {
+    destroy() {
+      down.clear();
+    },
+  };
+}

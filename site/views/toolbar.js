@@ -1,0 +1,126 @@
+// What the timeline shows and how large: leads, speed, gain, ladder.
+
+import { el, fill, say } from "../base/dom.js";
+import { num } from "../base/format.js";
+import { fitSpeed, GAINS, LEADS, shown, SPEEDS, zoomTo } from "../model/view.js";
+
+/**
+ * @typedef {import("../model/store.js").Store} Store
+ * @typedef {import("../model/store.js").State} State
+ */
+
+/** @type {[string, string[]][]} */
+const SETS = [
+  ["II, V1", ["II", "V1"]],
+  ["limb", LEADS.slice(0, 6)],
+  ["chest", LEADS.slice(6)],
+  ["all twelve", LEADS],
+];
+
+/**
+ * @param {HTMLElement} root
+ * @param {Store} store
+ */
+export function toolbarView(root, store) {
+  const view = () => store.get().view;
+  /** @param {Partial<import("../model/view.js").View>} patch */
+  const set = (patch) => store.set({ view: { ...view(), ...patch } });
+
+  /** @param {number} mm_per_s */
+  function speed(mm_per_s) {
+    const { answer } = store.get();
+    if (!answer) return;
+    const v = view();
+    store.set({ view: zoomTo(v, mm_per_s, v.t0_ms + shown(v) / 2, answer.span_ms) });
+  }
+
+  const boxes = LEADS.map((lead) => el("input", {
+    type: "checkbox", value: lead,
+    onchange: () => {
+      const leads = LEADS.filter((l, i) => boxes[i].checked);
+      set({ leads });
+    },
+  }));
+  const leadsName = el("span", { class: "chosen" });
+  const leads = el("details", { class: "pop" },
+    el("summary", null, "Leads ", leadsName),
+    el("div", { class: "pop-body" },
+      el("div", { class: "choices" }, SETS.map(([name, list]) => el("button", { type: "button", onclick: () => set({ leads: list }) }, name))),
+      el("div", { class: "boxes" }, boxes.map((b) => el("label", null, b, b.value)))));
+  const closeLeads = (/** @type {Event} */ e) => {
+    if (e instanceof KeyboardEvent ? e.key === "Escape" : !leads.contains(/** @type {Node} */ (e.target))) leads.open = false;
+  };
+  document.addEventListener("pointerdown", closeLeads);
+  leads.addEventListener("keydown", closeLeads);
+
+  const speeds = SPEEDS.map((s) => press(String(s), () => speed(s), `${s} millimetres a second`));
+  const fit = press("whole", () => {
+    const { answer } = store.get();
+    if (answer) speed(fitSpeed(view(), answer.span_ms));
+  }, "The whole strip");
+  const current = el("span", { class: "reading" });
+  const gains = GAINS.map((gain) => press(String(gain), () => set({ mm_per_mv: gain }), `${gain} millimetres a millivolt`));
+  const ladders = /** @type {const} */ (["plain", "full"]).map((l) => press(l, () => set({ ladder: l }), l === "plain" ? "Atria, node, ventricles" : "Every level of the conduction system"));
+  const tabs = /** @type {const} */ (["timeline", "listing"]).map((t) => el("button", {
+    type: "button", role: "tab", id: `tab-${t}`, onclick: () => store.set({ tab: t }),
+  }, t === "timeline" ? "Timeline" : "Listing"));
+
+  const bar = el("div", { class: "toolbar" },
+    el("button", { type: "button", class: "drawer-open", id: "open-settings", onclick: () => store.set({ drawer: "settings" }) }, "Settings"),
+    el("div", { class: "tabs", role: "tablist", "aria-label": "Timeline or listing" }, tabs),
+    leads,
+    group("Speed", speeds, fit, el("button", { type: "button", onclick: () => speed(view().mm_per_s / 1.25), "aria-label": "Squeeze time" }, "−"),
+      el("button", { type: "button", onclick: () => speed(view().mm_per_s * 1.25), "aria-label": "Stretch time" }, "+"), current),
+    group("Gain", gains, el("span", { class: "reading" }, "mm/mV")),
+    group("Ladder", ladders),
+    el("button", { type: "button", class: "drawer-open last", id: "open-account", onclick: () => store.set({ drawer: "account" }) }, "Account"));
+  root.append(bar);
+
+  return {
+    /** @param {State} state @param {Set<string>} changed */
+    update(state, changed) {
+      if (changed.has("tab")) tabs.forEach((b) => b.setAttribute("aria-selected", String(b.id === `tab-${state.tab}`)));
+      if (!changed.has("view") && !changed.has("answer")) return;
+      const v = state.view;
+      boxes.forEach((b) => {
+        b.checked = v.leads.includes(b.value);
+      });
+      say(leadsName, v.leads.length === 12 ? "all" : v.leads.length === 0 ? "none" : v.leads.length > 3 ? `${v.leads.length} of 12` : v.leads.join(", "));
+      speeds.forEach((b, i) => mark(b, Math.abs(v.mm_per_s - SPEEDS[i]) < 0.01));
+      mark(fit, state.answer !== null && Math.abs(v.mm_per_s - fitSpeed(v, state.answer.span_ms)) < 0.01);
+      say(current, `${num(v.mm_per_s, v.mm_per_s < 10 ? 1 : 0)} mm/s`);
+      gains.forEach((b, i) => mark(b, v.mm_per_mv === GAINS[i]));
+      ladders.forEach((b) => mark(b, b.textContent === v.ladder));
+    },
+    destroy() {
+      document.removeEventListener("pointerdown", closeLeads);
+      fill(bar);
+      bar.remove();
+    },
+  };
+}
+
+/**
+ * @param {string} text
+ * @param {() => void} act
+ * @param {string} title
+ */
+function press(text, act, title) {
+  return el("button", { type: "button", onclick: act, title, "aria-pressed": "false" }, text);
+}
+
+/**
+ * @param {HTMLButtonElement} b
+ * @param {boolean} on
+ */
+function mark(b, on) {
+  b.setAttribute("aria-pressed", String(on));
+}
+
+/**
+ * @param {string} name
+ * @param {...any} children
+ */
+function group(name, ...children) {
+  return el("div", { class: "group", role: "group", "aria-label": name }, el("span", { class: "label" }, name), ...children.flat());
+}

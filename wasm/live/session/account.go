@@ -1,0 +1,5 @@
+package session
+
+func (s *Session) account(args []byte) []byte { return none }
+
+func (s *Session) listing(args []byte) []byte { return none }

@@ -1,0 +1,55 @@
+package session
+
+import (
+	"encoding/json"
+
+	"escapement/engine/heart"
+	"escapement/engine/plan"
+	"escapement/engine/scene"
+	"escapement/presets"
+)
+
+type catalogueReply struct {
+	Fields  []plan.Field `json:"fields"`
+	Presets []preset     `json:"presets"`
+	Sites   []site       `json:"sites"`
+	Styles  struct {
+		Light json.RawMessage `json:"light"`
+		Dark  json.RawMessage `json:"dark"`
+	} `json:"styles"`
+	Margin float64 `json:"margin_mm"` // what a scene needs beside its time axis
+}
+
+type preset struct {
+	presets.Entry
+	Plan json.RawMessage `json:"plan"`
+}
+
+type site struct {
+	Name  string `json:"name"`
+	Label string `json:"label"`
+}
+
+func catalogue() *catalogueReply {
+	r := &catalogueReply{Fields: plan.Catalogue(), Margin: margin + edge}
+	for _, e := range presets.List() {
+		file, ok := presets.Read(e.Name)
+		if !ok {
+			panic("session: preset " + e.Name + " is listed but not there")
+		}
+		r.Presets = append(r.Presets, preset{e, file})
+	}
+	r.Sites = sites()
+	r.Styles.Light = scene.StylesJSON(false)
+	r.Styles.Dark = scene.StylesJSON(true)
+	return r
+}
+
+// sites are those that a focus or a stimulus may be put on.
+func sites() []site {
+	var out []site
+	for _, name := range heart.SiteNames() {
+		out = append(out, site{name, heart.SiteLabel(name)})
+	}
+	return out
+}

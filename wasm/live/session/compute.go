@@ -1,0 +1,137 @@
+package session
+
+import (
+	"encoding/json"
+	"errors"
+	"fmt"
+	"time"
+
+	"escapement/engine/event"
+	"escapement/engine/ladder"
+	"escapement/engine/measure"
+	"escapement/engine/plan"
+	"escapement/engine/sim"
+)
+
+type computeReply struct {
+	OK        bool            `json:"ok"`
+	Diagnoses []diagnosis     `json:"diagnoses,omitempty"`
+	Answer    *answer         `json:"answer,omitempty"`
+	Scene     json.RawMessage `json:"scene,omitempty"`
+}
+
+// diagnosis is plan.Diagnosis with its one wording.
+type diagnosis struct {
+	plan.Diagnosis
+	Text string `json:"text"`
+}
+
+type answer struct {
+	Title       string    `json:"title"`
+	Note        string    `json:"note"`
+	Statement   []clause  `json:"statement"`
+	Warnings    []string  `json:"warnings"`
+	Measured    []number  `json:"measured"`
+	Findings    []finding `json:"findings"`
+	Events      int       `json:"events"`
+	Span        float64   `json:"span_ms"`
+	Fingerprint string    `json:"fingerprint"`
+	Overview    overview  `json:"overview"`
+	Took        float64   `json:"took_ms"` // the computation, without the scene
+}
+
+type clause struct {
+	Text   string     `json:"text"`
+	Events []event.ID `json:"events"`
+}
+
+type finding struct {
+	Text   string     `json:"text"`
+	Events []event.ID `json:"events"`
+	T      float64    `json:"t_ms"`
+	Note   string     `json:"note"`
+	Rivals []string   `json:"rivals"`
+}
+
+func (s *Session) compute(args []byte) ([]byte, []float32) {
+	var q struct {
+		Plan json.RawMessage `json:"plan"`
+		view
+	}
+	decode(args, &q)
+	began := time.Now()
+	t, err := s.run(q.Plan)
+	if err != nil {
+		return encode(computeReply{Diagnoses: diagnose(err)}), nil
+	}
+	s.current = t
+	a := t.answer()
+	a.Took = float64(time.Since(began).Microseconds()) / 1000
+	meta, points := t.scene(&q.view)
+	return encode(computeReply{OK: true, Answer: a, Scene: meta}), points
+}
+
+func (s *Session) run(file []byte) (*timeline, error) {
+	p, err := plan.Decode(file)
+	if err != nil {
+		return nil, err
+	}
+	log, err := sim.Run(p)
+	if err != nil {
+		return nil, err
+	}
+	rec := s.field.Record(log)
+	return &timeline{plan: p, log: log, record: rec, report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{}}, nil
+}
+
+// diagnose puts any refusal in the form of a diagnosis.
+func diagnose(err error) []diagnosis {
+	var found plan.Diagnoses
+	if !errors.As(err, &found) {
+		return []diagnosis{{Text: err.Error()}}
+	}
+	out := make([]diagnosis, len(found))
+	for i, d := range found {
+		out[i] = diagnosis{d, d.String()}
+	}
+	return out
+}
+
+func (t *timeline) answer() *answer {
+	a := &answer{
+		Title: t.plan.Title, Note: t.plan.Note,
+		Statement: []clause{}, Warnings: []string{}, Findings: []finding{},
+		Measured: numbers(&t.report.Summary), Events: len(t.log.Events), Span: t.log.Span.MS(),
+		Fingerprint: fmt.Sprintf("%016x", t.log.Fingerprint()),
+		Overview:    t.overview(),
+	}
+	for _, c := range t.report.Clauses {
+		a.Statement = append(a.Statement, clause{c.Text, list(c.Evidence)})
+	}
+	if len(a.Statement) == 0 && t.report.Statement != "" {
+		a.Statement = append(a.Statement, clause{t.report.Statement, []event.ID{}})
+	}
+	for i := range t.report.Findings {
+		f := &t.report.Findings[i]
+		out := finding{Text: f.Text, Events: list(f.Evidence), T: f.FromUS.MS(), Note: f.Note, Rivals: f.Rivals}
+		if len(f.Evidence) > 0 {
+			out.T = t.log.At(f.Evidence[0]).T.MS()
+		}
+		if out.Rivals == nil {
+			out.Rivals = []string{}
+		}
+		a.Findings = append(a.Findings, out)
+	}
+	return a
+}
+
+// evidenceLimit bounds how many events a clause points at; on a long strip it
+// rests on thousands, and the first ones show what it means.
+const evidenceLimit = 400
+
+func list(ids []event.ID) []event.ID {
+	if ids == nil {
+		return []event.ID{}
+	}
+	return ids[:min(len(ids), evidenceLimit)]
+}

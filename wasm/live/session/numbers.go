@@ -1,0 +1,40 @@
+package session
+
+import "escapement/engine/measure"
+
+// number is one measured value as the page shows it.
+type number struct {
+	Name   string      `json:"name"`
+	Label  string      `json:"label"`
+	Value  *float64    `json:"value"`
+	Unit   string      `json:"unit"`
+	Normal *[2]float64 `json:"normal"`
+	Help   string      `json:"help"`
+	Source string      `json:"source"`
+}
+
+const (
+	statpearls = `StatPearls, "Atrioventricular Block"`
+	aha3       = "AHA/ACCF/HRS 2009 part III, from memory"
+	aha4       = "AHA/ACCF/HRS 2009 part IV, limit for men, from memory"
+	alboni     = "Alboni et al., Eur Heart J 1985;6:602-608, and Josephson, from memory"
+)
+
+// numbers lists the medians of a strip with adult normal ranges and whose they are.
+func numbers(s *measure.Summary) []number {
+	between := func(lo, hi float64) *[2]float64 { return &[2]float64{lo, hi} }
+	return []number{
+		{"p_rate_bpm", "P rate", s.PRate, "/min", between(60, 100), "Median rate of P waves.", "Common practice."},
+		{"v_rate_bpm", "QRS rate", s.VRate, "/min", between(60, 100), "Median rate of QRS complexes.", "Common practice."},
+		{"pr_ms", "PR", s.PR, "ms", between(120, 200), "Start of P to the first ventricular activation it led to.", statpearls},
+		{"p_ms", "P", s.P, "ms", between(60, 120), "Duration in all leads together.", "Upper limit: consensus on interatrial block, Bayes de Luna et al., 2012; lower end common practice."},
+		{"qrs_ms", "QRS", s.QRS, "ms", between(70, 110), "Duration in all leads together.", aha3},
+		{"qt_ms", "QT", s.QT, "ms", nil, "Start of QRS to end of T in all leads together.", ""},
+		{"qtc_fridericia_ms", "QTc Fridericia", s.Fridericia, "ms", between(350, 450), "QT divided by the cube root of RR in seconds.", aha4},
+		{"qrs_axis_deg", "QRS axis", s.QRSAxis, "°", between(-30, 90), "In the frontal plane, by area.", aha3},
+		{"p_axis_deg", "P axis", s.PAxis, "°", between(0, 75), "In the frontal plane, by area.", "Common practice."},
+		{"ah_ms", "AH", s.AH, "ms", between(55, 125), "Low atrial septum to His bundle.", alboni},
+		{"hv_ms", "HV", s.HV, "ms", between(35, 55), "His bundle to the first ventricular activation.", alboni},
+		{"va_ms", "VA", s.VA, "ms", nil, "First ventricular activation to the activation of the right atrium that it led to.", ""},
+	}
+}

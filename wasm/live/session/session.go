@@ -1,0 +1,77 @@
+// Package session is what the page asks of the engine: operations by name, JSON
+// in, JSON and drawn points out. It remembers the last plan that could be
+// computed, so that another view of it needs no new computation.
+//
+//	catalogue  {}                    fields of a plan, presets, sites, styles
+//	compute    {plan, view, marked}  a plan's timeline: measures, statement, scene; or its diagnoses
+//	layout     {view, marked}        another scene of the same timeline
+//	account    {event}               why an event came
+//	listing    {from_ms, to_ms}      events as text
+//
+// Every answer but compute's is null while nothing has been computed. An operation
+// that does not exist and arguments that are not JSON are bugs of the page and
+// panic.
+package session
+
+import (
+	"encoding/json"
+
+	"escapement/engine/event"
+	"escapement/engine/field"
+	"escapement/engine/ladder"
+	"escapement/engine/lead"
+	"escapement/engine/measure"
+	"escapement/engine/plan"
+)
+
+// Session is one page's engine. Use it from one goroutine.
+type Session struct {
+	field   *field.Field
+	current *timeline // nil until a plan was computed
+}
+
+// timeline is a computed plan.
+type timeline struct {
+	plan     *plan.Plan
+	log      *event.Log
+	record   *lead.Record
+	report   *measure.Report
+	diagrams map[ladder.Form]*ladder.Diagram // made when first drawn
+}
+
+// New is a session without a timeline.
+func New() *Session { return &Session{field: field.New()} }
+
+// Call carries out an operation. points belong to the scene in the reply.
+func (s *Session) Call(op string, args []byte) (reply []byte, points []float32) {
+	switch op {
+	case "catalogue":
+		return encode(catalogue()), nil
+	case "compute":
+		return s.compute(args)
+	case "layout":
+		return s.layout(args)
+	case "account":
+		return s.account(args), nil
+	case "listing":
+		return s.listing(args), nil
+	}
+	panic("session: there is no operation " + op)
+}
+
+func decode(args []byte, into any) {
+	if err := json.Unmarshal(args, into); err != nil {
+		panic("session: arguments do not decode: " + err.Error() + ": " + string(args))
+	}
+}
+
+func encode(v any) []byte {
+	b, err := json.Marshal(v)
+	if err != nil {
+		panic("session: the reply does not encode: " + err.Error())
+	}
+	return b
+}
+
+// none is the reply where nothing has been computed.
+var none = []byte("null")
