@@ -18,6 +18,7 @@ const (
 // outer and the inner side of the wall, joined by strips around the holes.
 type atria struct {
 	p       *Parameters
+	centre  [2]r3.Vec
 	x       []r3.Vec
 	normal  []r3.Vec
 	dir     []r3.Vec // from the chamber's centre, on the unit sphere
@@ -52,6 +53,7 @@ type hole struct {
 }
 
 func (a *atria) addShell(chamber int, centre, half r3.Vec, holes []hole) {
+	a.centre[chamber] = centre
 	dirs, faces := icosphere(2)
 	var keep [][3]int
 	used := map[int]int{}
@@ -133,14 +135,38 @@ func (a *atria) linkWalls() {
 		}
 		for j := range reach {
 			if j > i {
-				speed := a.p.Atria.Speed
-				if a.crista(i) && a.crista(j) {
-					speed = a.p.Atria.SpeedCrista
-				}
-				a.edges[[2]int{i, j}] = a.distance(i, j) / speed
+				a.edges[[2]int{i, j}] = a.distance(i, j) / a.speed(i, j)
 			}
 		}
 	}
+}
+
+// speed of the wall between two nodes.
+func (a *atria) speed(i, j int) float64 {
+	s := &a.p.Atria
+	speed := s.Speed
+	if a.crista(i) && a.crista(j) {
+		speed = s.SpeedCrista
+	}
+	if a.internodal(i) && a.internodal(j) {
+		speed = max(speed, s.SpeedInternodal)
+	}
+	return speed
+}
+
+// internodal tells whether a node lies within a band of about twenty degrees on
+// either side of the shortest way from the sinus exit to the AV node's inputs:
+// the terminal crest and the rim of the fossa lead impulses down to the node
+// faster than the walls around them.
+func (a *atria) internodal(n int) bool {
+	if a.chamber[n] != rightAtrium {
+		return false
+	}
+	from, to := r3.Unit(a.p.Atria.Exit), r3.Unit(a.p.Atria.Septum)
+	pole := r3.Unit(r3.Cross(from, to))
+	d := a.dir[n]
+	middle := r3.Unit(r3.Add(from, to))
+	return math.Abs(r3.Dot(d, pole)) < 0.34 && r3.Dot(d, middle) > r3.Dot(from, middle)-0.1
 }
 
 // crista tells whether a node lies on the crista terminalis, a strip down the

@@ -86,8 +86,8 @@ func (p *Parameters) fascicles() []string {
 func (v *ventricles) entries() []tissue.Entry {
 	var out []tissue.Entry
 	for _, site := range v.p.fascicles() {
-		e := tissue.Entry{Site: site}
 		at := v.p.fascicleAt(site)
+		e := tissue.Entry{Site: site, After: microseconds(at)}
 		for _, t := range v.p.Terminals {
 			if t.Fascicle != site {
 				continue
@@ -110,13 +110,24 @@ func (v *ventricles) entries() []tissue.Entry {
 	return out
 }
 
+// atrialSites is how many of the atria's entries are sites of the network; the
+// others are places where atrial foci are usually found.
+const atrialSites = 3
+
 func (a *atria) entries() []tissue.Entry {
 	s := &a.p.Atria
 	at := func(n int, ms float64) tissue.Seed { return tissue.Seed{Node: uint16(n), At: microseconds(ms)} }
+	focus := func(site string, chamber int, x, y, z float64) tissue.Entry {
+		return tissue.Entry{Site: site, Ports: []tissue.Seed{at(a.near(chamber, r3.Vec{X: x, Y: y, Z: z}), 0)}}
+	}
 	return []tissue.Entry{
 		{Site: "right_atrium", Ports: []tissue.Seed{at(a.near(rightAtrium, s.Exit), 0)}},
 		{Site: "left_atrium", Ports: []tissue.Seed{at(a.near(leftAtrium, s.Lateral), 0)}},
 		{Site: "atrial_septum", Ports: []tissue.Seed{at(a.near(rightAtrium, s.Septum), 0), at(a.sinusMouth(), s.SinusInput)}},
+		{Site: "coronary_sinus", Ports: []tissue.Seed{at(a.sinusMouth(), 0)}},
+		focus("left_pulmonary_veins", leftAtrium, 0.85, 0.3, 0.4),
+		focus("right_pulmonary_veins", leftAtrium, -0.5, 0.8, -0.2),
+		focus("right_appendage", rightAtrium, -0.2, -0.8, 0.55),
 	}
 }
 

@@ -3,30 +3,64 @@
 // repository's root:
 //
 //	go run ./engine/field/generate
+//
+// It builds the shape of the ventricles and atria, the net of travel times, the
+// torso as a volume conductor with two cavities of blood, and what each bit of
+// muscle surface contributes to each lead. Everything that takes mathematics
+// beyond adding and multiplying happens here, once: the result is the same file
+// on every machine that runs the program later.
 package main
 
 import (
+	"flag"
 	"fmt"
 	"os"
+	"path/filepath"
 
+	"escapement/engine/field/criteria"
 	"escapement/engine/field/tissue"
 )
 
 func main() {
-	p := fitted()
-	v := buildVentricles(p)
-	a := buildAtria(p, v)
-	vp := &tissue.Part{Name: "ventricles", Graph: tissue.NewGraph(len(v.x), links(len(v.x), v.edges)), Entries: v.entries()}
-	ap := &tissue.Part{Name: "atria", Graph: tissue.NewGraph(len(a.x), links(len(a.x), a.edges)), Entries: a.entries()}
-	for _, d := range travels(vp, len(p.fascicles())) {
-		fmt.Fprintln(os.Stderr, d)
+	root := flag.String("root", ".", "the repository's root")
+	fit := flag.String("fit", "", "search for better parameters, print them and write nothing: atria")
+	seed := flag.Uint64("seed", 1, "of the search")
+	tries := flag.Int("tries", 2000, "of the search")
+	flag.Parse()
+	var err error
+	switch *fit {
+	case "":
+		err = run(*root)
+	case "atria":
+		_, err = fitAtria(fitted(), *seed, *tries)
+	default:
+		err = fmt.Errorf("there is no search for %q; there is one for atria", *fit)
 	}
-	for _, d := range travels(ap, 0) {
-		fmt.Fprintln(os.Stderr, d)
-	}
-	fmt.Fprintln(os.Stderr, len(v.x), len(v.tri), len(v.edges), len(a.x), len(a.tri), len(a.edges), volume(v.x, v.tri)/1000)
-	if err := os.WriteFile("engine/heart/anatomy_table.go", anatomyTable(p, vp, ap), 0o644); err != nil {
-		fmt.Fprintln(os.Stderr, err)
+	if err != nil {
+		fmt.Fprintln(os.Stderr, "generate:", err)
 		os.Exit(1)
 	}
+}
+
+// limits are the thresholds the field marks its waves by.
+var limits = criteria.Limits{Ventricles: tissue.VentricularLimits, Atria: tissue.AtrialLimits}
+
+func run(root string) error {
+	m, err := build(fitted())
+	if err != nil {
+		return err
+	}
+	for _, f := range []struct {
+		path string
+		data []byte
+	}{
+		{"engine/field/muscle.bin", tissue.Encode(m.ventricles, m.atria)},
+		{"engine/heart/anatomy_table.go", anatomyTable(m.p, m.ventricles, m.atria)},
+	} {
+		if err := os.WriteFile(filepath.Join(root, f.path), f.data, 0o644); err != nil {
+			return err
+		}
+		fmt.Printf("%s: %d bytes\n", f.path, len(f.data))
+	}
+	return nil
 }

@@ -103,6 +103,7 @@ type Atria struct {
 	Speed               float64 // of the walls
 	SpeedBachmann       float64
 	SpeedCrista         float64 // crista terminalis
+	SpeedInternodal     float64 // band of the septum between the sinus exit and the inputs of the AV node
 	Valve               float64 // cosine of the half angle cut out for the valve
 	Amplitude           float64 // factor on Conductor.Amplitude
 	Duration            float64 // of the action potential

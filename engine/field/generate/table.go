@@ -67,13 +67,13 @@ func shortest(paths []delay, from, to string) int32 {
 	return tissue.Far
 }
 
-// travels lists the times between all pairs of a part's entries, fascicles apart
-// from each other.
-func travels(p *tissue.Part, fascicles int) []delay {
+// travels lists the times between all pairs of a part's first entries, fascicles
+// apart from each other.
+func travels(p *tissue.Part, sites, fascicles int) []delay {
 	var s tissue.Solver
 	var out []delay
-	for i := range p.Entries {
-		for j := i + 1; j < len(p.Entries); j++ {
+	for i := range sites {
+		for j := i + 1; j < sites; j++ {
 			if j >= fascicles {
 				out = append(out, delay{p.Entries[i].Site, p.Entries[j].Site, p.Travel(&s, &p.Entries[i], &p.Entries[j])})
 			}
@@ -90,7 +90,7 @@ func anatomyTable(p *Parameters, ventricles, atria *tissue.Part) []byte {
 		isFascicle[f] = true
 	}
 	var purkinje, muscle []delay
-	for _, d := range prune(travels(ventricles, len(fascicles))) {
+	for _, d := range prune(travels(ventricles, len(ventricles.Entries), len(fascicles))) {
 		if isFascicle[d.From] {
 			purkinje = append(purkinje, d)
 		} else {
@@ -133,7 +133,7 @@ type anatomyDelay struct {
 	}
 	list("anatomyPurkinje", "lists the times from a fascicle over its terminals to regions of muscle.", purkinje)
 	list("anatomyMuscle", "lists the times between regions of ventricular muscle.", muscle)
-	list("anatomyAtria", "lists the times between the atrial sites.", travels(atria, 0))
+	list("anatomyAtria", "lists the times between the atrial sites.", travels(atria, atrialSites, 0))
 	src, err := format.Source(b.Bytes())
 	if err != nil {
 		panic(err)

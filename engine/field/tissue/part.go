@@ -12,6 +12,8 @@
 // after an instant the caller chooses; amplitudes are millivolts.
 package tissue
 
+import "math"
+
 // Leads is the number of leads a surface has weights for: I, II and V1 to V6.
 // The other four follow from I and II.
 const Leads = 8
@@ -20,11 +22,12 @@ const Leads = 8
 type Part struct {
 	Name    string
 	Graph   Graph
-	X       [][3]float32 // position of each node, mm: left, back, up
-	Kind    []uint8      // layer or chamber of each node, as the generator numbers them
-	APD     []int32      // duration of each node's action potential at the reference cycle, microseconds
-	Tri     [][3]uint16  // closed surface
-	Weights [Leads][]float32
+	X       [][3]float32   // position of each node, mm: left, back, up
+	Kind    []uint8        // layer or chamber of each node, as the generator numbers them
+	APD     []int32        // duration of each node's action potential at the reference cycle, microseconds
+	Tri     [][3]uint16    // closed surface
+	Weights [Leads][]int16 // per triangle, in steps; each lead's sum to zero
+	Step    [Leads]float32 // millivolts per step, for one full depolarisation
 	Shape   Shape
 	Entries []Entry
 }
@@ -39,6 +42,7 @@ type Shape struct {
 // and the time from the site to each.
 type Entry struct {
 	Site  string
+	After int32 // fascicles: microseconds from the His bundle to the site in the normal beat; 0 for others
 	Ports []Seed
 }
 
@@ -61,4 +65,24 @@ func (p *Part) Travel(s *Solver, from, to *Entry) int32 {
 		best = min(best, at[port.Node]+port.At)
 	}
 	return best
+}
+
+// SetWeights stores the contribution of every triangle to a lead, millivolts per
+// full depolarisation. Rounding is carried on from one triangle to the next so
+// that weights that sum to zero still do, exactly: a closed surface that is
+// depolarised all over makes no potential.
+func (p *Part) SetWeights(l int, mv []float64) {
+	largest := 0.0
+	for _, w := range mv {
+		largest = max(largest, math.Abs(w))
+	}
+	step := float32(largest / 32000)
+	p.Step[l], p.Weights[l] = step, make([]int16, len(mv))
+	sum, before := 0.0, 0.0
+	for k, w := range mv {
+		sum += w / float64(step)
+		now := math.Round(sum)
+		p.Weights[l][k] = int16(now - before)
+		before = now
+	}
 }
