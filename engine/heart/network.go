@@ -58,7 +58,7 @@ const (
 	junctionERP = 100
 	hisERP      = 250
 	purkinjeERP = 220
-	purkinjeGap = 200 // theta of a fascicle's endings
+	purkinjeGap = 200 // theta of a fascicle without an ERP of its own
 )
 
 // New makes the heart of the numbers. The error, an *Unmet, says which numbers
@@ -197,7 +197,9 @@ func (b *builder) purkinje() {
 		b.trunk(t.name, t.from, t.to, d, t.n)
 	}
 	for _, a := range anatomyPurkinje {
-		c := plain(a.Delay, purkinjeGap)
+		// No theta of its own: an ending that let nothing in while the wave passes
+		// would let the muscle re-enter the fascicle long after. Its two ends decide.
+		c := plain(a.Delay, 0)
 		b.add(a.From+"-"+a.To, SiteLabel(a.From)+" to "+SiteLabel(a.To), event.Purkinje, a.From, a.To, c, c).Silent = true
 	}
 }

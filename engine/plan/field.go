@@ -164,7 +164,7 @@ func purkinjeFields() []*Field {
 		erp, slope  *float64
 	}{
 		{"right_bundle", "right bundle branch", ptr(340), ptr(heart.SlopeBundle)},
-		{"left_bundle", "left bundle branch", ptr(320), ptr(0.22)},
+		{"left_bundle", "left bundle branch", ptr(310), ptr(0.12)},
 		{"left_anterior", "left anterior fascicle", nil, ptr(0)},
 		{"left_posterior", "left posterior fascicle", nil, ptr(0)},
 		{"left_septal", "left septal fascicle", nil, ptr(0)},
