@@ -24,34 +24,37 @@ import (
 
 // Cycled is a length that follows the preceding cycle in a straight line: At
 // the reference cycle it is BaseMS, and it changes by PerCycle ms for each ms of
-// cycle. It never falls below FloorMS.
+// cycle. It never falls below FloorMS, and cycles over CapMS count as CapMS: the
+// published slopes were measured on drives of 400 to 1000 ms, and a pause must not
+// stretch a refractory period without end.
 type Cycled struct {
 	BaseMS   float64 // at CycleMS
 	PerCycle float64 // ms per ms; 0 for a constant
 	CycleMS  float64 // the reference cycle
 	FloorMS  float64 // lower bound, ms
+	CapMS    float64 // longest cycle that counts; 0 is CycleCapMS
 }
 
-// At gives the length after a preceding cycle. Cycles over CycleCap count as CycleCap:
-// the published slopes were measured on drives of 400 to 1000 ms, and a pause must
-// not stretch a refractory period without end.
+// At gives the length after a preceding cycle.
 func (c *Cycled) At(cycle tick.Dur) tick.Dur {
 	if c.PerCycle == 0 {
 		return tick.MS(c.BaseMS)
 	}
-	ms := cycle.MS()
-	if ms > CycleCapMS {
-		ms = CycleCapMS
+	top := c.CapMS
+	if top == 0 {
+		top = CycleCapMS
 	}
-	v := c.BaseMS + float64(c.PerCycle*(ms-c.CycleMS))
-	if v < c.FloorMS {
-		v = c.FloorMS
-	}
-	return tick.MS(v)
+	ms := min(cycle.MS(), top)
+	return tick.MS(max(c.BaseMS+float64(c.PerCycle*(ms-c.CycleMS)), c.FloorMS))
 }
 
-// CycleCapMS is the longest preceding cycle that still lengthens a refractory period.
-const CycleCapMS = 2000
+// CycleCapMS is the longest preceding cycle that still lengthens the refractory
+// period of a path; MuscleCapMS that of a site, whose action potential reaches its
+// plateau at cycles of 800 to 1000 ms (Franz et al., JCI 1988;82:972).
+const (
+	CycleCapMS  = 2000
+	MuscleCapMS = 1000
+)
 
 // Conduct is how a path conducts in one direction.
 type Conduct struct {

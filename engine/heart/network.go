@@ -54,11 +54,11 @@ func SiteLabel(name string) string {
 // the paths decide, long enough that nothing turns round inside a bundle. From
 // memory of usual values; no check rests on them.
 const (
-	sinusERP    = 150
-	junctionERP = 100
-	hisERP      = 250
-	purkinjeERP = 220
-	purkinjeGap = 200 // theta of a fascicle without an ERP of its own
+	sinusERP      = 150
+	junctionERP   = 100
+	hisERP        = 250
+	purkinjeExtra = 20
+	purkinjeGap   = 200 // theta of a fascicle without an ERP of its own
 )
 
 // New makes the heart of the numbers. The error, an *Unmet, says which numbers
@@ -101,7 +101,10 @@ func (b *builder) sites() {
 		case event.His:
 			r = constant(hisERP)
 		case event.Purkinje:
-			r = constant(purkinjeERP)
+			// Longer than the muscle's, so that a premature impulse stops in the Purkinje
+			// system rather than in a part of the muscle.
+			r = b.n.VentricERP
+			r.BaseMS += purkinjeExtra
 		case event.Ventricle:
 			r = b.n.VentricERP
 		}
