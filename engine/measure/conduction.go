@@ -85,6 +85,9 @@ func (f *finder) concealed() {
 		if b == nil || b.Kind != event.Block || b.Path != e.Path || f.mark[b.ID].p == f.mark[e.ID].p && f.mark[b.ID].p >= 0 {
 			continue
 		}
+		if r := e.Recovery; e.Kind == event.Activate && r != event.Unknown && f.log.At(e.Cause).T.Sub(b.T) < r-tick.Millisecond {
+			continue // the path counts its recovery from something earlier
+		}
 		if b.Dir == event.Down && f.ordinary(b) {
 			continue // a dropped beat of the rhythm itself, not concealment
 		}

@@ -135,50 +135,89 @@ func (f *finder) exit2(ids []event.ID, n int) {
 	})
 }
 
-// arrest: no sinus P from some point on for more than three seconds. Named as far
-// as the surface shows. Other atrial beats explain the silence, and retrograde
-// ones do if they come no slower than the sinus node would.
-func (f *finder) arrest(stuck []event.ID) {
-	last := tick.Time(0)
-	var ids []event.ID
-	var others []tick.Dur
-	for i := range f.p {
-		switch {
-		case f.pOrigin(i) == fromSinus && f.descending(i):
-			last, ids, others = f.p[i].t, []event.ID{f.p[i].id}, nil
-		case f.descending(i):
-			return
-		default:
-			others = append(others, f.p[i].t.Sub(last))
+// silence is a stretch without a sinus P: after one, before the next or the end
+// of the strip, with only beats from below in it.
+type silence struct {
+	from, until tick.Time
+	first, last event.ID
+	others      []tick.Time // retrograde P waves in it
+	ends        bool        // a sinus P ends it
+}
+
+// silences longer than three seconds. Other P waves from above explain why no
+// sinus P comes and end a stretch without making it one.
+func (f *finder) silences() []silence {
+	var out []silence
+	s := silence{}
+	broken := false
+	end := func(at tick.Time, id event.ID, ends bool) {
+		s.until, s.last, s.ends = at, id, ends
+		if !broken && at.Sub(s.from) > 3*tick.Second {
+			out = append(out, s)
 		}
 	}
-	if f.log.Span.Sub(last) <= 3*tick.Second || len(f.p)+len(f.v)+len(f.sinus) == 0 || f.overdriven(others) {
+	for i := range f.p {
+		w := &f.p[i]
+		switch {
+		case !f.descending(i):
+			s.others = append(s.others, w.t)
+		case f.pOrigin(i) == fromSinus:
+			end(w.t, w.id, true)
+			s, broken = silence{from: w.t, first: w.id}, false
+		default:
+			broken = true
+		}
+	}
+	end(f.log.Span, 0, false)
+	return out
+}
+
+// arrest names silences as far as the surface shows: with no P at all up to a
+// sinus P it is a pause (see sinoatrial), with beats from below in it or without
+// an end it is arrest. Beats from below that come no slower than the sinus node
+// would explain the silence themselves.
+func (f *finder) arrest(stuck []event.ID) {
+	if len(f.p)+len(f.v)+len(f.sinus) == 0 {
 		return
 	}
-	fired := 0
-	for _, id := range f.sinus {
-		if f.log.At(id).T > last {
-			fired++
+	var ids []event.ID
+	n, fired := 0, 0
+	var first silence
+	for _, s := range f.silences() {
+		if s.ends && len(s.others) == 0 && s.first != 0 || f.overdriven(s.others) {
+			continue
+		}
+		if n == 0 {
+			first = s
+		}
+		n++
+		ids = append(append(ids, s.first, s.last), between(f.log, stuck, s.from, s.until)...)
+		for _, id := range between(f.log, f.sinus, s.from, s.until) {
+			if d := f.log.At(id); d.T > s.from && !(s.ends && s.until.Sub(d.T) < 200*tick.Millisecond) {
+				fired++
+			}
 		}
 	}
-	held := between(f.log, stuck, last, f.log.Span)
+	if n == 0 {
+		return
+	}
 	model := "In the model the sinus node does not fire."
 	if fired > 0 {
-		model = fmt.Sprintf("In the model the sinus node fires %s and its impulse does not become a P of its own.", times(fired))
+		model = fmt.Sprintf("In the model the sinus node fires %s meanwhile and no P comes of it.", times(fired))
 	}
+	stretch := fmt.Sprintf("from %.1f s to %.1f s", first.from.Seconds(), first.until.Seconds())
 	f.add(orderExit, Finding{
-		Slug: "sinus_arrest", Evidence: append(ids, held...),
-		Text:    fmt.Sprintf("No sinus P from %.1f s to the end of the strip: consistent with sinus arrest.", last.Seconds()),
+		Slug: "sinus_arrest", Evidence: ids, Count: n,
+		Text:    fmt.Sprintf("No sinus P %s: consistent with sinus arrest.", stretch),
 		Surface: "undetermined", Note: "The surface shows only that no sinus P comes; arrest and complete exit block look alike. " + model,
 		Rivals: []string{"complete sinoatrial exit block"},
-		clause: fmt.Sprintf("no sinus P from %.1f s on", last.Seconds()),
+		clause: "no sinus P " + stretch,
 	})
 }
 
-// overdriven tells whether beats at these distances from the last sinus P come
-// fast enough to keep the sinus node silent. Without a known sinus cycle that is
-// 60/min.
-func (f *finder) overdriven(at []tick.Dur) bool {
+// overdriven tells whether beats come fast enough to keep the sinus node silent.
+// Without a known sinus cycle that is 60/min.
+func (f *finder) overdriven(at []tick.Time) bool {
 	if len(at) < 2 {
 		return false
 	}
@@ -186,5 +225,5 @@ func (f *finder) overdriven(at []tick.Dur) bool {
 	if cycle == 0 {
 		cycle = tick.Second
 	}
-	return (at[len(at)-1]-at[0])/tick.Dur(len(at)-1) <= cycle+cycle/20
+	return at[len(at)-1].Sub(at[0])/tick.Dur(len(at)-1) <= cycle+cycle/20
 }

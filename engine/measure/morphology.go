@@ -67,9 +67,11 @@ func Judge(c *lead.Complex) Morphology {
 			m.Patterns = append(m.Patterns, p.slug)
 		}
 	}
-	bundle := m.Has(RBBB) || m.Has(LBBB) || m.Has(IncompleteRBBB) || m.Has(IncompleteLBBB)
-	m.Criteria = append(m.Criteria, Criterion{Nonspecific, "QRS above 110 ms without a bundle branch pattern", fmt.Sprintf("%d ms", x.qrs), x.qrs > 110 && !bundle, true})
-	if x.qrs > 110 && !bundle {
+	// Part III excludes the bundle branch patterns only; a fascicular block names
+	// the cause of a width between 110 and 120 as well, so it is left out here too.
+	delay := x.qrs > 110 && len(m.Patterns) == 0
+	m.Criteria = append(m.Criteria, Criterion{Nonspecific, "QRS above 110 ms without one of the patterns above", fmt.Sprintf("%d ms", x.qrs), delay, true})
+	if delay {
 		m.Patterns = append(m.Patterns, Nonspecific)
 	}
 	return m

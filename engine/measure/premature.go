@@ -133,7 +133,17 @@ func (f *finder) pauseAfter(j int) Pause {
 		return 0
 	}
 	span := f.p[b].t.Sub(f.p[a].t)
-	return Compensatory(span, 0, basic, max(pauseTolerance, basic/20))
+	return Compensatory(span, 0, basic, max(pauseTolerance, f.jitter(a)))
+}
+
+// jitter is how much the two PP intervals before a P differ: a pause cannot be
+// judged more finely than the cycle keeps time.
+func (f *finder) jitter(i int) tick.Dur {
+	if i < 2 || f.p[i-1].premature || f.p[i-2].premature || !f.descending(i-1) || !f.descending(i-2) {
+		return 0
+	}
+	d := f.pp(i) - f.pp(i-1)
+	return min(max(d, -d), f.pp(i)/10)
 }
 
 // localCycle is the PP just before a P if both are ordinary, else the sinus cycle.

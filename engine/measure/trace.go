@@ -168,7 +168,7 @@ func (t *tracer) block(e *event.Event, m *mark) {
 	if e.Path < 0 {
 		return
 	}
-	if e.Depth > 0 && (e.Rule == event.PathRefractory || e.Rule == event.SiteRefractory) {
+	if e.Depth > 0 && e.Rule != event.Dropped {
 		t.use(e)
 	}
 	switch t.log.Paths[e.Path].Tissue {
