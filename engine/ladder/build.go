@@ -89,6 +89,7 @@ func (b *builder) block(e *event.Event) {
 	bar := Mark{Sign: Bar, Event: e.ID, T: e.T, Y: b.origin(e), Tissue: b.l.Sites[e.Site].Tissue, Missed: e.MissedBy()}
 	from := b.l.At(e.Cause)
 	if e.Path < 0 || from == nil || from.Kind != event.Activate {
+		bar.Up = bar.Y == b.lay.vFoot
 		b.d.Marks = append(b.d.Marks, bar)
 		return
 	}

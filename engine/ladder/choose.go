@@ -76,7 +76,8 @@ func (s *seeder) activate(e *event.Event) bool {
 		return s.lay.y[e.Site] == s.lay.aTop || s.lay.y[e.Site] == s.lay.aFoot
 	case event.Purkinje:
 		if s.chamberOf(e) == 'V' {
-			return once(&s.down[s.ws.of[e.ID]][s.lay.side(p)])
+			w := s.ws.of[e.ID]
+			return s.ws.inside(s.l, w, e) == 0 && once(&s.down[w][s.lay.side(p)])
 		}
 		return s.lay.branch[p.From] == Trunk || s.lay.branch[p.To] == Trunk && s.l.Sites[p.To].Chamber() == 0
 	}
@@ -103,8 +104,11 @@ func (s *seeder) block(e *event.Event) bool {
 	if p.Tissue == event.Ventricle {
 		return false
 	}
-	if p.Tissue != event.Purkinje || s.lay.branch[p.From] == Trunk {
+	if p.Tissue != event.Purkinje {
 		return true
+	}
+	if s.lay.branch[p.From] == Trunk {
+		return e.Dir == event.Down || e.Rule != event.OneWay || s.ectopic(e)
 	}
 	own := e.Rule == event.Collision
 	if l := s.l.At(s.last[p.Exit(e.Dir)]); l != nil && e.T.Sub(l.T) < beat {
@@ -118,4 +122,20 @@ func (s *seeder) block(e *event.Event) bool {
 		return once(&s.up[w][s.lay.side(p)])
 	}
 	return e.Rule != event.SiteRefractory || s.l.Sites[p.Exit(e.Dir)].Tissue == event.Purkinje
+}
+
+// ectopic tells whether an impulse came from a ventricular wave that began in the
+// ventricles. A beat from above that only comes back to a dead bundle is no news.
+func (s *seeder) ectopic(e *event.Event) bool {
+	from := s.l.At(e.Cause)
+	if from == nil {
+		return false
+	}
+	if s.chamberOf(from) != 'V' {
+		from = s.ancestor(from, event.Ventricle)
+	}
+	if from == nil || s.ws.of[from.ID] < 0 {
+		return false
+	}
+	return s.ws.all[s.ws.of[from.ID]].entries[0] == born
 }

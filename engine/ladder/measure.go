@@ -57,9 +57,9 @@ func (b *builder) cycles(chamber byte, m Measure, y float64) {
 	}
 }
 
-// up walks from an activation along its conduction and gives the nearest
+// ancestor walks from an activation along its conduction and gives the nearest
 // activation at a site of the tissue, or nil.
-func (b *builder) up(e *event.Event, tissue event.Tissue) *event.Event {
+func (b *builder) ancestor(e *event.Event, tissue event.Tissue) *event.Event {
 	for e != nil && e.Kind == event.Activate && e.Rule == event.Conducted {
 		if e = b.l.At(e.Cause); e != nil && e.Kind == event.Activate && b.l.Sites[e.Site].Tissue == tissue {
 			return e
@@ -71,11 +71,11 @@ func (b *builder) up(e *event.Event, tissue event.Tissue) *event.Event {
 // conducted measures a QRS from the P and the His bundle that it came from.
 func (b *builder) conducted(v *wave) {
 	e := v.first(b.l)
-	if a := b.up(e, event.Atrium); a != nil && b.ws.of[a.ID] >= 0 {
+	if a := b.ancestor(e, event.Atrium); a != nil && b.ws.of[a.ID] >= 0 {
 		p := b.ws.all[b.ws.of[a.ID]].first(b.l)
 		b.dim(PR, p, e, b.lay.aTop, b.lay.vTop, event.Node)
 	}
-	if h := b.up(e, event.His); h != nil {
+	if h := b.ancestor(e, event.His); h != nil {
 		b.dim(HV, h, e, b.lay.y[h.Site], b.lay.vTop, event.Purkinje)
 	}
 }
@@ -87,16 +87,16 @@ func (b *builder) retrograde(v *wave) {
 			continue
 		}
 		e := b.l.At(id)
-		if q := b.up(e, event.Ventricle); q != nil && b.ws.of[q.ID] >= 0 {
+		if q := b.ancestor(e, event.Ventricle); q != nil && b.ws.of[q.ID] >= 0 {
 			from := b.ws.all[b.ws.of[q.ID]].first(b.l)
 			b.dim(RP, from, v.first(b.l), b.lay.vTop, b.lay.aFoot, event.Node)
 		}
 		if v.entries[i] == beside {
 			return
 		}
-		if h := b.up(e, event.His); h != nil {
+		if h := b.ancestor(e, event.His); h != nil {
 			b.dim(HA, h, e, b.lay.y[h.Site], b.lay.aFoot, event.Node)
-		} else if j := b.up(e, event.Node); j != nil {
+		} else if j := b.ancestor(e, event.Node); j != nil {
 			b.dim(NodeUp, j, e, b.lay.y[j.Site], b.lay.aFoot, event.Node)
 		}
 		return
@@ -112,7 +112,7 @@ func (b *builder) node() {
 			continue
 		}
 		reached[e.Cause] = true
-		if a := b.up(e, event.Atrium); a != nil {
+		if a := b.ancestor(e, event.Atrium); a != nil {
 			b.dim(AH, a, e, b.lay.aFoot, b.lay.y[e.Site], event.Node)
 		}
 	}

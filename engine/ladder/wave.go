@@ -67,7 +67,7 @@ func findWaves(l *event.Log) *waves {
 			w = int32(len(ws.all))
 			ws.all = append(ws.all, wave{chamber: chamber})
 		}
-		ws.join(w, e, how)
+		ws.join(l, w, e, how)
 		latest[c] = w
 	}
 	return ws
@@ -83,14 +83,25 @@ func (ws *waves) takes(l *event.Log, w int32, e *event.Event, how entry) bool {
 	return how == within || e.T.Sub(v.last(l).T) <= waveGap
 }
 
-func (ws *waves) join(w int32, e *event.Event, how entry) {
+func (ws *waves) join(l *event.Log, w int32, e *event.Event, how entry) {
 	v := &ws.all[w]
 	ws.of[e.ID], ws.member[e.ID] = w, int32(len(v.members))
 	top := how == above || how == beside && v.chamber == 'V'
-	if how == within && ws.of[e.Cause] == w {
-		top = v.top[ws.member[e.Cause]]
+	if from := ws.inside(l, w, e); from != 0 {
+		top = v.top[ws.member[from]]
 	}
 	v.members, v.entries, v.top = append(v.members, e.ID), append(v.entries, how), append(v.top, top)
+}
+
+// inside is the member of the wave that an activation came from, through muscle
+// or round over the bundles, or 0.
+func (ws *waves) inside(l *event.Log, w int32, e *event.Event) event.ID {
+	for e != nil && e.Kind == event.Activate && e.Rule == event.Conducted {
+		if e = l.At(e.Cause); e != nil && ws.of[e.ID] == w {
+			return e.ID
+		}
+	}
+	return 0
 }
 
 func howEntered(l *event.Log, e *event.Event, chamber byte) entry {

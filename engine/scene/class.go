@@ -34,7 +34,6 @@ const (
 	Stimulus   // ring; a disc of this class inside it marks capture
 	Dim        // dimension line with its end ticks
 	DimText    // the number on it
-	DimWeak    // the line of a number that had no room for its name
 	Selected   // halo beneath the marks of the selected event
 	Title
 	Statement
@@ -51,7 +50,7 @@ var classNames = [classEnd]string{
 	Sinus: "sinus", Atrium: "atrium", Node: "node", NodeSlow: "node-slow", His: "his",
 	BundleLeft: "bundle-left", BundleRight: "bundle-right", Ventricle: "ventricle", Accessory: "accessory",
 	Block: "block", BlockLabel: "block-label", Tail: "tail", Stimulus: "stimulus",
-	Dim: "dim", DimText: "dim-text", DimWeak: "dim-weak", Selected: "selected",
+	Dim: "dim", DimText: "dim-text", Selected: "selected",
 	Title: "title", Statement: "statement", Caution: "caution", Note: "note",
 }
 

@@ -3,6 +3,7 @@ package scene
 import (
 	"sort"
 	"strconv"
+	"strings"
 
 	"escapement/engine/event"
 	"escapement/engine/ladder"
@@ -33,14 +34,10 @@ func (r *rungs) labels() {
 	}
 	for i := range r.d.Marks {
 		m := &r.d.Marks[i]
-		if m.Sign != ladder.Bar || !r.inside(m.T) || m.Label == "" && m.Missed == 0 {
+		if m.Sign != ladder.Bar || !r.inside(m.T) || m.Up || m.Label == "" && m.Missed == 0 {
 			continue
 		}
-		priority := 85
-		if m.Up {
-			priority = 30
-		}
-		add(priority, m.T, func() bool { return r.bar(m) })
+		add(barPriority, m.T, func() bool { return r.bar(m) })
 	}
 	sort.Slice(all, func(i, j int) bool {
 		a, b := &all[i], &all[j]
@@ -57,6 +54,10 @@ func (r *rungs) labels() {
 	}
 }
 
+// barPriority is that of the name of a block among the priorities of package
+// ladder. A block on the way up is not named: the tier and the stroke say enough.
+const barPriority = 85
+
 // ms writes a span in whole milliseconds.
 func ms(d tick.Dur) string { return strconv.FormatInt((int64(d)+500)/1000, 10) }
 
@@ -68,7 +69,9 @@ func (r *rungs) dim(d *ladder.Dim) bool {
 		return r.row(rowAbove, d, text, value)
 	case ladder.RR:
 		return r.row(rowCycle, d, text, value)
-	case ladder.PR, ladder.RP:
+	case ladder.PR:
+		return r.row(rowConduction, d, text, value)
+	case ladder.RP:
 		return r.row(rowConduction, d, text)
 	case ladder.Escape:
 		return r.along(d, text)
@@ -79,6 +82,9 @@ func (r *rungs) dim(d *ladder.Dim) bool {
 // row puts a dimension line into a row outside the tiers, the number in a break
 // of the line or, where the line is too short, beside it.
 func (r *rungs) row(row int, d *ladder.Dim, texts ...string) bool {
+	if r.named[row] {
+		texts = texts[len(texts)-1:]
+	}
 	y := r.rows[row] + 0.55*r.rowH
 	x0, x1 := r.Axis.X(max(d.T0, r.o.From)), r.Axis.X(min(d.T1, r.o.To))
 	h := DimText.height(r.o.FontMM)
@@ -164,7 +170,7 @@ func (r *rungs) beside(d *ladder.Dim, texts ...string) bool {
 	h := DimText.height(r.o.FontMM)
 	for _, text := range texts {
 		m := Mark{Shape: Text, Class: DimText, Text: text, Event: d.Event}
-		for _, part := range [...]float64{0.5, 0.35, 0.65, 0.2, 0.8} {
+		for _, part := range [...]float64{0.4, 0.25, 0.55, 0.7, 0.85} {
 			y := y0 + part*(y1-y0)
 			if y-h*0.6 < top || y+h*0.6 > foot {
 				continue
@@ -183,13 +189,20 @@ func (r *rungs) beside(d *ladder.Dim, texts ...string) bool {
 				if side == End {
 					m.X = x - lean - 0.8
 				}
-				if r.inWindow(&m) && r.place(m) {
+				if r.inWindow(&m) && r.clear(&m, 0.7) && r.place(m) {
 					return true
 				}
 			}
 		}
 	}
 	return false
+}
+
+// clear tells whether a text would stand free with some room left and right.
+func (r *rungs) clear(m *Mark, mm float64) bool {
+	b := r.TextBox(m)
+	b.X0, b.X1 = max(b.X0-mm, 0), min(b.X1+mm, r.Width)
+	return r.room.free(b)
 }
 
 func (r *rungs) inWindow(m *Mark) bool {
@@ -223,26 +236,28 @@ func (r *rungs) along(d *ladder.Dim, text string) bool {
 // bar names the part that blocked and by how much the impulse was too early.
 func (r *rungs) bar(m *ladder.Mark) bool {
 	var texts []string
-	if m.Missed > 0 && !m.Up {
-		missed := "missed by " + ms(m.Missed)
-		if m.Label != "" {
-			missed = m.Label + " " + missed
-		}
-		texts = append(texts, missed)
+	if m.Missed > 0 {
+		texts = append(texts, strings.TrimSpace(m.Label+" "+ms(m.Missed)+" early"))
 	}
 	if m.Label != "" {
 		texts = append(texts, m.Label)
 	}
 	x, y, h := r.Axis.X(m.T), r.y(m.Y), BlockLabel.height(r.o.FontMM)
+	sides := [...]Anchor{Start, End}
+	if m.Branch == ladder.Left {
+		sides = [...]Anchor{End, Start}
+	}
 	for _, text := range texts {
-		for _, c := range [...]struct {
-			dx, dy float64
-			anchor Anchor
-		}{{barSide + 0.6, 0.35 * h, Start}, {barSide + 0.6, 1.1 * h, Start}, {0.8, 1.3 * h, Start}, {-barSide - 0.6, 0.35 * h, End},
-			{-barSide - 0.6, 1.1 * h, End}, {barSide + 0.6, -0.5 * h, Start}, {-barSide - 0.6, -0.5 * h, End}} {
-			t := Mark{Shape: Text, Class: BlockLabel, X: x + c.dx, Y: y + c.dy, Text: text, Anchor: c.anchor, Event: m.Event}
-			if r.inWindow(&t) && r.place(t) {
-				return true
+		for _, side := range sides {
+			dx := barSide + 0.6
+			if side == End {
+				dx = -dx
+			}
+			for _, dy := range [...]float64{0.35, 1.1, -0.5, 1.6, -1} {
+				t := Mark{Shape: Text, Class: BlockLabel, X: x + dx, Y: y + dy*h, Text: text, Anchor: side, Event: m.Event}
+				if r.inWindow(&t) && r.place(t) {
+					return true
+				}
 			}
 		}
 	}

@@ -36,7 +36,7 @@ func (s *sheet) leads() {
 	}
 	for i, n := range s.o.Leads {
 		s.trace(Trace, n, zeros[i], s.o.From, s.o.To, 0)
-		s.name(n, zeros[i])
+		s.name(n, zeros[i], &s.Lanes[first+i])
 	}
 }
 
@@ -59,17 +59,21 @@ func extent(mv []float32) (low, high float64) {
 	return float64(l), float64(h)
 }
 
-func (s *sheet) name(n lead.Name, zero float64) {
+// name writes a lead's name before its zero line, and the pulse of 1 mV where the
+// lane has room for it: on the zero line, or lower where the lane ends too soon
+// above it.
+func (s *sheet) name(n lead.Name, zero float64, l *Lane) {
 	h := s.o.FontMM
 	s.place(Mark{Shape: Text, Class: LaneLabel, X: pad, Y: zero + 0.35*h, Text: n.String()})
 	x := s.Axis.X0 - pad - 3
-	if x < pad+LaneLabel.Width(n.String(), h)+1 {
+	foot := max(zero, l.Y0+s.o.MMPerMV+0.5)
+	if x < pad+LaneLabel.Width(n.String(), h)+1 || foot > l.Y1-0.2 {
 		return
 	}
-	y := zero - s.o.MMPerMV
+	y := foot - s.o.MMPerMV
 	s.mark(Mark{Shape: Poly, Class: Calibration, Points: []Point{
-		{float32(x - 0.8), float32(zero)}, {float32(x), float32(zero)}, {float32(x), float32(y)},
-		{float32(x + 2), float32(y)}, {float32(x + 2), float32(zero)}, {float32(x + 2.8), float32(zero)}}})
+		{float32(x - 0.8), float32(foot)}, {float32(x), float32(foot)}, {float32(x), float32(y)},
+		{float32(x + 2), float32(y)}, {float32(x + 2), float32(foot)}, {float32(x + 2.8), float32(foot)}}})
 }
 
 // waves lays the areas of P and QRS-T for hit testing, and the halo of the

@@ -22,9 +22,17 @@ const (
 type rungs struct {
 	*sheet
 	d        *ladder.Diagram
-	top, per float64 // mm, mm per unit
-	rows     [3]float64
+	top, per float64    // mm, mm per unit
+	rows     [3]float64 // top of each row of dimension lines
+	named    [3]bool    // the row has its name in the margin
 	rowH     float64
+	foci     map[place]bool
+}
+
+// place is an instant and a height.
+type place struct {
+	t tick.Time
+	y float64
 }
 
 // The rows of dimension lines: one above the tiers and two below.
@@ -35,25 +43,47 @@ const (
 )
 
 func (s *sheet) ladder() {
-	r := rungs{sheet: s, d: s.in.Diagram, rowH: 1.35 * DimText.height(s.o.FontMM)}
+	r := rungs{sheet: s, d: s.in.Diagram, rowH: 1.35 * DimText.height(s.o.FontMM), foci: map[place]bool{}}
 	start := s.y
-	r.rows[rowAbove] = start
-	r.top = start + r.rowH + 0.3*s.o.FontMM
+	r.open(rowAbove, ladder.PP)
+	r.top = s.y + 0.3*s.o.FontMM
 	r.per = s.o.LadderMM / r.d.Height()
 	foot := r.y(r.d.Height())
-	r.rows[rowConduction] = foot + 0.35*s.o.FontMM
-	r.rows[rowCycle] = r.rows[rowConduction] + r.rowH
-	s.y = r.rows[rowCycle] + r.rowH
+	s.y = foot + 0.35*s.o.FontMM
+	r.open(rowConduction, ladder.PR, ladder.RP)
+	r.open(rowCycle, ladder.RR)
 	s.lane("ladder", "ladder", start, s.y)
 	r.tiers(foot)
 	for i := range r.d.Strokes {
 		r.stroke(&r.d.Strokes[i])
 	}
 	for i := range r.d.Marks {
+		if m := &r.d.Marks[i]; m.Sign == ladder.Focus {
+			r.foci[place{m.T, m.Y}] = true
+		}
+	}
+	for i := range r.d.Marks {
 		r.sign(&r.d.Marks[i])
 	}
 	s.Marks = append(append(s.Marks, s.halo...), s.over...)
 	r.labels()
+}
+
+// open makes room for a row of dimension lines if the diagram, not only the
+// window, has any of its measures, and names it in the margin.
+func (r *rungs) open(row int, measures ...ladder.Measure) {
+	r.rows[row] = r.sheet.y
+	for i := range r.d.Dims {
+		if m := r.d.Dims[i].Measure; m != measures[0] && m != measures[len(measures)-1] {
+			continue
+		}
+		h, name := TierLabel.height(r.o.FontMM), measures[0].String()
+		if TierLabel.Width(name, r.o.FontMM) <= r.Axis.X0-2*pad {
+			r.named[row] = r.place(Mark{Shape: Text, Class: TierLabel, X: pad, Y: r.sheet.y + 0.55*r.rowH + 0.35*h, Text: name})
+		}
+		r.sheet.y += r.rowH
+		return
+	}
 }
 
 func (r *rungs) y(units float64) float64 { return r.top + units*r.per }
@@ -67,6 +97,7 @@ func (r *rungs) tiers(foot float64) {
 		r.mark(Mark{Shape: Line, Class: Second, X: r.Axis.X(t), Y: r.top, X2: r.Axis.X(t), Y2: foot})
 	})
 	edge := func(y float64) {
+		r.room.line(r.Axis.X0, y, r.right, y) // no text across an edge
 		r.mark(Mark{Shape: Line, Class: TierEdge, X: r.Axis.X0, Y: y, X2: r.right, Y2: y})
 	}
 	for i := range r.d.Tiers {
@@ -165,6 +196,11 @@ func (r *rungs) sign(m *ladder.Mark) {
 		r.disc(Ring, Stimulus, x, y, stimulusR, m.Event)
 		r.disc(Disc, Stimulus, x, y, captureR, m.Event)
 	case ladder.Bar:
+		if r.foci[place{m.T, m.Y}] { // beside the disc, on the side to which the impulse did not go
+			if y += focusR + 0.5; m.Up {
+				y -= 2 * (focusR + 0.5)
+			}
+		}
 		x0, x1 := x-barHalf, x+barHalf
 		switch m.Branch {
 		case ladder.Right:

@@ -99,8 +99,6 @@ func (p *Palette) Style(c Class) Style {
 		return line(p.Device, 0.4)
 	case Dim:
 		return line(p.Quiet, 0.18)
-	case DimWeak:
-		return line(p.GridMajor, 0.18)
 	case Selected:
 		return line(p.Halo, 2)
 	case LaneLabel:
@@ -116,7 +114,7 @@ func (p *Palette) Style(c Class) Style {
 	case DimText:
 		return text(p.Ink, 0.9, 400)
 	case BlockLabel:
-		return text(p.Warning, 0.9, 700)
+		return text(p.Warning, 0.9, 400)
 	case Caution:
 		return text(p.Warning, 0.9, 400)
 	}
