@@ -110,7 +110,7 @@ func (f *finder) evidence(groups []avGroup) (ids []event.ID, blocked []int) {
 func (f *finder) firstDegree(groups []avGroup, kinds []behaviour) {
 	var ps []int
 	for k, g := range groups {
-		if kinds[k] != oneToOne || len(g.c) < 3 || !g.open && kinds[k-1] == mobitz1 {
+		if kinds[k] != oneToOne || len(g.c) < 3 || !g.open && kinds[k-1] == mobitz1 || medianDur(f.prs(g.c)) <= 200*tick.Millisecond {
 			continue
 		}
 		for _, i := range g.c {

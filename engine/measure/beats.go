@@ -178,6 +178,7 @@ func (s *strip) summarise(beats []Beat) Summary {
 	return sum
 }
 
+// median rounds to a thousandth, a microsecond where v is in milliseconds.
 func median(v []float64) *float64 {
 	if len(v) == 0 {
 		return nil
@@ -187,6 +188,7 @@ func median(v []float64) *float64 {
 	if len(v)%2 == 0 {
 		m = (v[len(v)/2-1] + m) / 2
 	}
+	m = math.Round(m*1000) / 1000
 	return &m
 }
 
@@ -210,7 +212,7 @@ func middleAngle(v []float64) *float64 {
 	for i, a := range v {
 		turned[i] = wrap(a - first)
 	}
-	m := wrap(*median(turned) + first)
+	m := math.Round(wrap(*median(turned)+first)*10) / 10
 	return &m
 }
 

@@ -46,6 +46,19 @@ func (m *Morphology) Has(slug string) bool {
 	return false
 }
 
+// key is equal for shapes that look the same to a reader.
+func (m *Morphology) key() string {
+	axis := "none"
+	if m.Axis != nil {
+		axis = fmt.Sprint(*m.Axis)
+	}
+	k := fmt.Sprint(m.QRS, axis, m.Patterns)
+	for l := range lead.Name(lead.Count) {
+		k += " " + m.Letters[l.String()]
+	}
+	return k
+}
+
 // Judge applies the criteria of AHA/ACCF/HRS 2009 part III (Surawicz et al.,
 // JACC 2009;53:976), adults, to one complex. The limits are half-open: below
 // 110 ms normal, from 110 to below 120 incomplete, from 120 complete; a delay

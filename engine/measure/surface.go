@@ -3,6 +3,7 @@ package measure
 import (
 	"math"
 
+	"escapement/engine/event"
 	"escapement/engine/lead"
 	"escapement/engine/tick"
 )
@@ -26,6 +27,7 @@ func (s *strip) surface(rec *lead.Record, r *Report) *surface {
 		return f
 	}
 	seen := map[*lead.Complex]int{} // looked up only, never ranged over
+	same := map[string]int{}        // waves that differ in their T wave only are one shape
 	for i := range rec.Waves {
 		w := &rec.Waves[i]
 		g := s.waveOf(w)
@@ -40,9 +42,13 @@ func (s *strip) surface(rec *lead.Record, r *Report) *surface {
 			}
 			n, ok := seen[w.Complex]
 			if !ok {
-				n = len(f.shapes)
+				m := Judge(w.Complex)
+				if n, ok = same[m.key()]; !ok {
+					n = len(f.shapes)
+					same[m.key()] = n
+					f.shapes = append(f.shapes, m)
+				}
 				seen[w.Complex] = n
-				f.shapes = append(f.shapes, Judge(w.Complex))
 			}
 			f.shape[g] = n
 		}
@@ -53,18 +59,24 @@ func (s *strip) surface(rec *lead.Record, r *Report) *surface {
 	return f
 }
 
-// waveOf finds the wave of the log that shares an activation of the right
-// chamber with a wave of the record, or -1.
+// waveOf finds the wave of the log that a wave of the record shows, or -1: the
+// one that holds one of its sources, or that a source in a bundle or fascicle
+// led to.
 func (s *strip) waveOf(w *lead.Wave) int {
 	chamber := byte('A')
 	if w.Kind == lead.QRS {
 		chamber = 'V'
 	}
 	for _, id := range w.Sources {
-		if e := s.log.At(id); e != nil && e.Site >= 0 && s.log.Sites[e.Site].Chamber() == chamber {
-			if g := s.mark[id].wave; g >= 0 {
-				return int(g)
-			}
+		e := s.log.At(id)
+		if e == nil || e.Kind != event.Activate {
+			continue
+		}
+		switch m := &s.mark[id]; {
+		case m.wave >= 0 && s.log.Sites[e.Site].Chamber() == chamber:
+			return int(m.wave)
+		case m.led >= 0 && chamber == 'V':
+			return int(m.led)
 		}
 	}
 	return -1

@@ -27,6 +27,7 @@ type mark struct {
 	blocker event.ID // what left refractory the path or site that this event met
 	p, v    int32    // the wave the impulse passed last: one of the two at most, else -1
 	wave    int32    // the wave an atrial or ventricular activation belongs to, else -1
+	led     int32    // the ventricular wave that this activation above the muscle led to, else -1
 }
 
 // pwave is one depolarisation of the atria.
@@ -101,7 +102,7 @@ func read(l *event.Log) *strip {
 
 func (t *tracer) event(e *event.Event) {
 	m := &t.mark[e.ID]
-	*m = mark{p: -1, v: -1, wave: -1}
+	*m = mark{p: -1, v: -1, wave: -1, led: -1}
 	switch e.Kind {
 	case event.Discharge, event.Stimulus:
 		m.origin = e.ID
@@ -275,6 +276,9 @@ func (t *tracer) ventricular(e *event.Event, m *mark) {
 		if m.p >= 0 && t.p[m.p].to < 0 {
 			t.p[m.p].to = g
 		}
+	}
+	if c := &t.mark[e.Cause]; c.wave < 0 && c.led < 0 {
+		c.led = g
 	}
 	t.in[e.Site] = g
 	m.wave, m.v, m.p = g, g, -1
