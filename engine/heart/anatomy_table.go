@@ -90,7 +90,7 @@ var anatomyMuscle = []anatomyDelay{
 
 // anatomyAtria lists the times between the atrial sites.
 var anatomyAtria = []anatomyDelay{
-	{"right_atrium", "left_atrium", 91357},
-	{"right_atrium", "atrial_septum", 41206},
-	{"left_atrium", "atrial_septum", 78084},
+	{"right_atrium", "left_atrium", 91651},
+	{"right_atrium", "atrial_septum", 41327},
+	{"left_atrium", "atrial_septum", 80652},
 }

@@ -56,7 +56,7 @@ func SiteLabel(name string) string {
 const (
 	sinusERP      = 150
 	junctionERP   = 100
-	hisERP        = 250
+	hisERP        = 210
 	purkinjeExtra = 20
 	purkinjeGap   = 200 // theta of a fascicle without an ERP of its own
 )

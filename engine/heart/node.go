@@ -167,7 +167,8 @@ const leastVA = 40
 
 // solveUp finds the retrograde curve of a pathway: at a ventricular drive of
 // DriveMS the node takes a = VA - outside, and 1:1 ends at the retrograde
-// Wenckebach cycle length where one is typed. theta and tau are those downwards.
+// Wenckebach cycle length where one is typed. theta is that downwards, and so is tau
+// unless the curve would be too steep at its edge.
 func solveUp(part string, n *NodeNumbers, down Curve, outside float64) (Curve, error) {
 	a := n.VAMS - outside
 	if a < leastVA && n.VADefault {
@@ -180,13 +181,22 @@ func solveUp(part string, n *NodeNumbers, down Curve, outside float64) (Curve, e
 	r := DriveMS - a
 	if n.VAWCL > 0 {
 		theta := c.Theta.At(tick.MS(n.VAWCL)).MS()
-		edge, ew, er := n.VAWCL-theta, portmath.Exp(-theta/c.TauMS), portmath.Exp(-r/c.TauMS)
-		if edge <= a || n.VAWCL >= DriveMS || ew <= er {
-			return Curve{}, &Unmet{part, fmt.Sprintf("va_ms %g and va_wenckebach_cl_ms %g do not fit: at its edge retrograde conduction would take %.1f ms in the node and %.1f ms at a drive of %d", n.VAMS, n.VAWCL, edge, a, DriveMS), fmt.Sprintf("give va_wenckebach_cl_ms between %.0f and %d", theta+a+1, DriveMS-1)}
+		edge := n.VAWCL - theta
+		// As downwards: a longer time constant where the curve would be too steep.
+		for c.AlphaMS = -1; c.AlphaMS < 0 || c.Slope(theta) < steepest; c.TauMS *= 1.02 {
+			ew, er := portmath.Exp(-theta/c.TauMS), portmath.Exp(-r/c.TauMS)
+			if edge <= a || n.VAWCL >= DriveMS || ew <= er || c.TauMS > 1000 {
+				return Curve{}, &Unmet{part, fmt.Sprintf("va_ms %g and va_wenckebach_cl_ms %g do not fit: at its edge retrograde conduction would take %.1f ms in the node, after %.1f ms at a drive of %d", n.VAMS, n.VAWCL, edge, a, DriveMS), fmt.Sprintf("give va_wenckebach_cl_ms between %.0f and %d", theta+a+1, DriveMS-1)}
+			}
+			if c.AlphaMS = (edge - a) / (ew - er); c.Slope(theta) >= steepest {
+				break
+			}
 		}
-		c.AlphaMS = (edge - a) / (ew - er)
 	}
 	c.MinMS = a - c.AlphaMS*portmath.Exp(-r/c.TauMS)
+	if c.MinMS < 1 && n.VAWCL > 0 {
+		return Curve{}, &Unmet{part, fmt.Sprintf("va_ms %g and va_wenckebach_cl_ms %g do not fit: only %.1f ms of va_ms are spent in the node, too few for so much decrement", n.VAMS, n.VAWCL, a), "lower va_wenckebach_cl_ms or raise va_ms"}
+	}
 	if c.MinMS < 1 {
 		// A node this quick upwards has no room for the decrement it has downwards.
 		c.AlphaMS = (a - 1) / portmath.Exp(-r/c.TauMS)

@@ -126,5 +126,6 @@ func diffs(ts []float64) []float64 {
 // exact is the tolerance of checks marked exact.
 const exact = 1.0
 
-// quiet is a sinus node that stays out of the way of pacing from elsewhere.
-const quiet = `"sinus":{"rate_bpm":10,"first_ms":60000,"exit":{"up":null,"drop":"1:0"}}`
+// quiet is a sinus node whose impulses never leave it, out of the way of pacing
+// from elsewhere.
+const quiet = `"sinus":{"rate_bpm":60,"exit":{"up":null,"drop":"1:0"}}`
