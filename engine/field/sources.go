@@ -31,7 +31,9 @@ type group []source
 // muscle the field works out itself.
 //
 // A wave begins with the first source that comes too long after the last wave's
-// first one, or at a site that wave has already used.
+// first one, or at a site that wave has already used. A fascicle that muscle
+// itself depolarised begins none: its impulse is part of the wave it comes from,
+// however late, and without one there is nothing it could add.
 func (c *chamber) groups(log *event.Log) []group {
 	entries := c.entriesBySite(log)
 	var out []group
@@ -41,9 +43,11 @@ func (c *chamber) groups(log *event.Log) []group {
 			continue
 		}
 		s := source{e.ID, e.T, entries[e.Site]}
-		if last := len(out) - 1; last >= 0 && s.at.Sub(out[last][0].at) <= c.group && !out[last].has(s.entry) {
+		last := len(out) - 1
+		switch {
+		case last >= 0 && s.at.Sub(out[last][0].at) <= c.group && !out[last].has(s.entry):
 			out[last] = append(out[last], s)
-		} else {
+		case !fromMuscle(log, e):
 			out = append(out, group{s})
 		}
 	}
@@ -86,4 +90,14 @@ func (c *chamber) enters(log *event.Log, e *event.Event) bool {
 		return true // a fascicle
 	}
 	return via != event.Ventricle && via != event.Purkinje
+}
+
+// fromMuscle tells whether an activation came out of ventricular muscle into the
+// Purkinje system.
+func fromMuscle(log *event.Log, e *event.Event) bool {
+	if e.Path < 0 {
+		return false
+	}
+	entry := log.Paths[e.Path].Entry(e.Dir)
+	return log.Sites[entry].Tissue == event.Ventricle && log.Sites[e.Site].Tissue == event.Purkinje
 }

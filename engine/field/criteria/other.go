@@ -91,7 +91,7 @@ func (j *judge) atrial() {
 	y := b.qrs(lead.V1)
 	hi, _ := extremes(y[:len(y)/2])
 	_, lo := extremes(y[len(y)/2:])
-	j.say("V1 first up, then down", "textbook", atLeast("up", hi, 0.02, 0.02), atMost("down", lo, -0.015, 0.02))
+	j.say("V1 first up, then down", "textbook", within("up", hi, 0.02, 0.15, 0.02), atMost("down", lo, -0.015, 0.02))
 	up, down := b.rs(lead.AVR)
 	j.say("aVR negative", "textbook", atMost("up", up, 0.02, 0.02), atLeast("down", down, 0.03, 0.02))
 	j.say("septum reached after 25-60 ms (PA)", "Josephson, from memory", within("PA", j.set.septumAt, 25, 60, 5))
@@ -137,7 +137,8 @@ func (s *Set) AtrialTargets() []Verdict {
 	b := j.from("right_atrium")
 	var solver tissue.Solver
 	far := s.Atria.Travel(&solver, s.Atria.Entry("right_atrium"), s.Atria.Entry("left_atrium"))
-	j.say("targets", "choice", within("PA", s.septumAt, 40, 48, 3), within("P", b.Duration(), 88, 108, 8), within("axis", b.axis(0), 40, 64, 10),
+	up, _ := b.rs(lead.V1)
+	j.say("targets", "choice", within("V1", up, 0.04, 0.12, 0.02), within("PA", s.septumAt, 40, 48, 3), within("P", b.Duration(), 88, 108, 8), within("axis", b.axis(0), 40, 64, 10),
 		within("II", b.r(lead.II), 0.1, 0.18, 0.04), within("lateral left atrium", float64(far)/1000, 65, 92, 8))
 	for _, site := range []string{"coronary_sinus", "atrial_septum"} {
 		b := j.from(site)

@@ -7,7 +7,7 @@ import "gonum.org/v1/gonum/spatial/r3"
 // for fourteen conditions at once: the values are one heart that meets most
 // published criteria, not measurements of a person. The atria are what
 //
-//	go run ./engine/field/generate -fit atria -seed 4 -tries 500
+//	go run ./engine/field/generate -fit atria -seed 3 -tries 500
 //
 // found from [firstAtria].
 func fitted() *Parameters {
@@ -60,16 +60,16 @@ func fitted() *Parameters {
 			Amplitude: 0.3122533810305328, PotentialSwing: 100, Subdivision: 2,
 		},
 		Atria: Atria{
-			RightFrom: r3.Vec{X: 36.46069247702257, Y: 46.65081359064737, Z: 0.706414774706397},
-			LeftFrom:  r3.Vec{X: 49.94356645654509, Y: 1.4434093335919638, Z: 4.296394282599972},
-			RightHalf: r3.Vec{X: 21.938691573463387, Y: 21.409520280090504, Z: 24.07282482726979},
-			LeftHalf:  r3.Vec{X: 25.609431014700835, Y: 21.697287587585716, Z: 20.078834460492814},
-			Wall:      2.5, Speed: 0.9959569059369264, SpeedBachmann: 1.572631359811409, SpeedCrista: 1.4, SpeedInternodal: 1.1920701951889991,
-			Valve: 0.72, Amplitude: 1.1653181279762475, Duration: 190, Fall: 0.03, Fall2: 0.06,
-			Exit:    r3.Vec{X: -0.33351477397716633, Y: 0.5844757382714778, Z: 0.687641568093548},
-			Septum:  r3.Vec{X: 0.647841174802834, Y: -0.03014673037002247, Z: -0.6361530805249316},
+			RightFrom: r3.Vec{X: 40.67447196816703, Y: 48.50411310760335, Z: 1.0749943837424425},
+			LeftFrom:  r3.Vec{X: 48.948936870980546, Y: 5.734639626232083, Z: 0.5951993240657114},
+			RightHalf: r3.Vec{X: 19.273653245022782, Y: 25, Z: 24},
+			LeftHalf:  r3.Vec{X: 26.477566579033432, Y: 20.342376841869708, Z: 20.244076782086832},
+			Wall:      2.5, Speed: 0.9811745805822987, SpeedBachmann: 1.7, SpeedCrista: 1.0693289422826242, SpeedInternodal: 1.3563197067858648,
+			Valve: 0.72, Amplitude: 0.8651829942511122, Duration: 190, Fall: 0.03, Fall2: 0.06,
+			Exit:    r3.Vec{X: -0.6269137108111041, Y: 0.4491199535576799, Z: 0.5410549174117673},
+			Septum:  r3.Vec{X: 0.5717980118436239, Y: -0.012445284989710662, Z: -0.44999999999999996},
 			Lateral: r3.Vec{X: 0.85, Y: 0.3, Z: -0.1},
-			Fossa:   7.055636372287991, Sinus: 2, SinusInput: 3,
+			Fossa:   7.6240851139928605, Sinus: 6.5533362018510815, SinusInput: 3.9932966542877564,
 		},
 	}
 }
