@@ -63,7 +63,8 @@ func place(data []byte, err error) string {
 	if !errors.As(err, &syntax) {
 		return ""
 	}
-	before := data[:min(int(syntax.Offset), len(data))]
+	// Offset counts the byte that was wrong.
+	before := data[:min(max(int(syntax.Offset)-1, 0), len(data))]
 	return fmt.Sprintf(" (line %d, column %d)", 1+bytes.Count(before, []byte("\n")), len(before)-bytes.LastIndexByte(before, '\n'))
 }
 

@@ -1,0 +1,117 @@
+// Package engine holds no code of its own, only the rule of who may import whom.
+package engine
+
+import (
+	"go/parser"
+	"go/token"
+	"io/fs"
+	"path/filepath"
+	"slices"
+	"strconv"
+	"strings"
+	"testing"
+)
+
+// allowed lists, for every package of the module, the packages of the module that
+// it may import. Lower ones stand first; siblings do not know each other. A package
+// that is not in the table fails the test, and so does an import that is not in its
+// row. Tests may import more.
+var allowed = map[string][]string{
+	"engine/tick":           {},
+	"engine/portmath":       {},
+	"engine/event":          {"engine/tick"},
+	"engine/lead":           {"engine/tick", "engine/event"},
+	"engine/heart":          {"engine/tick", "engine/portmath", "engine/event"},
+	"engine/plan":           {"engine/tick", "engine/event", "engine/heart"},
+	"engine/sim":            {"engine/tick", "engine/portmath", "engine/event", "engine/heart", "engine/plan"},
+	"engine/ladder":         {"engine/tick", "engine/event"},
+	"engine/field":          {"engine/tick", "engine/portmath", "engine/event", "engine/lead", "engine/field/tissue"},
+	"engine/field/tissue":   {"engine/tick", "engine/portmath", "engine/lead"},
+	"engine/field/criteria": {"engine/tick", "engine/portmath", "engine/lead", "engine/field/tissue"},
+	"engine/field/generate": {"engine/tick", "engine/portmath", "engine/lead", "engine/field/tissue", "engine/field/criteria"},
+	"engine/measure":        {"engine/tick", "engine/portmath", "engine/event", "engine/lead"},
+	"engine/account":        {"engine/tick", "engine/event"},
+	"engine/scene":          {"engine/tick", "engine/event", "engine/lead", "engine/ladder"},
+	"engine/press":          {"engine/scene"},
+	"presets":               {},
+	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
+		"engine/account", "engine/scene", "presets"},
+}
+
+// top are the programs: they wire everything, and nothing imports them.
+var top = []string{"engine/cmd/escapement", "wasm/live"}
+
+const module = "escapement/"
+
+func TestImportsFollowTheTable(t *testing.T) {
+	root := ".."
+	err := filepath.WalkDir(root, func(path string, d fs.DirEntry, err error) error {
+		if err != nil || d.IsDir() && (d.Name() == "node_modules" || d.Name() == "dist" || strings.HasPrefix(d.Name(), ".") && path != root) {
+			if d != nil && d.IsDir() && err == nil {
+				return fs.SkipDir
+			}
+			return err
+		}
+		if !strings.HasSuffix(path, ".go") || strings.HasSuffix(path, "_test.go") {
+			return nil
+		}
+		rel, err := filepath.Rel(root, filepath.Dir(path))
+		if err != nil {
+			return err
+		}
+		check(t, filepath.ToSlash(rel), path)
+		return nil
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+}
+
+func check(t *testing.T, pkg, path string) {
+	row, known := allowed[pkg]
+	if !known && !slices.Contains(top, pkg) {
+		t.Errorf("%s: package %s is not in the table of imports", path, pkg)
+		return
+	}
+	f, err := parser.ParseFile(token.NewFileSet(), path, nil, parser.ImportsOnly)
+	if err != nil {
+		t.Error(err)
+		return
+	}
+	for _, im := range f.Imports {
+		name, err := strconv.Unquote(im.Path.Value)
+		if err != nil {
+			t.Error(err)
+			continue
+		}
+		if name == "syscall/js" && !strings.HasPrefix(pkg, "wasm/") {
+			t.Errorf("%s imports syscall/js, which belongs under wasm/", path)
+		}
+		if own, ours := strings.CutPrefix(name, module); ours {
+			if slices.Contains(top, own) {
+				t.Errorf("%s imports %s, a program", path, own)
+			} else if known && !slices.Contains(row, own) {
+				t.Errorf("%s imports %s; allowed for %s: %s", path, own, pkg, strings.Join(row, ", "))
+			}
+		}
+	}
+}
+
+// The page's first load must stay small: the drawing library is for prints.
+func TestTheWorkbenchDoesNotCarryTheDrawingLibrary(t *testing.T) {
+	files, err := filepath.Glob("../wasm/live/*.go")
+	if err != nil || len(files) == 0 {
+		t.Fatalf("no files under wasm/live: %v", err)
+	}
+	for _, path := range files {
+		f, err := parser.ParseFile(token.NewFileSet(), path, nil, parser.ImportsOnly)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, im := range f.Imports {
+			if strings.Contains(im.Path.Value, "engine/press") || strings.Contains(im.Path.Value, "tdewolff") {
+				t.Errorf("%s imports %s", path, im.Path.Value)
+			}
+		}
+	}
+}
