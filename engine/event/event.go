@@ -86,8 +86,8 @@ type Event struct {
 
 	// Recovery is the time since an impulse last left the path, and Needed the
 	// time it needed to conduct again, for an impulse that met the path's recovery
-	// (Activate by conduction, Block by PathRefractory). For SiteRefractory and a
-	// stimulus without capture they are the time since the site was last
+	// (Activate by conduction, Block by PathRefractory or Collision). For
+	// SiteRefractory and a stimulus they are the time since the site was last
 	// depolarised and its refractory period. Recovery is negative when another
 	// impulse was still inside, and Unknown when none had passed yet.
 	Recovery, Needed tick.Dur
@@ -195,17 +195,26 @@ func (p *Path) Exit(d Dir) SiteID {
 // Chain is the event and its causes, nearest first, back to one without a cause.
 func (l *Log) Chain(id ID) []ID {
 	var ids []ID
-	for e := l.At(id); e != nil; e = l.At(e.Cause) {
+	for e := l.At(id); e != nil; e = l.before(e) {
 		ids = append(ids, e.ID)
 	}
 	return ids
+}
+
+// before is the cause of an event, or nil. A cause that is not earlier, in a log
+// that [Validate] would refuse, counts as none: a walk must end.
+func (l *Log) before(e *Event) *Event {
+	if e.Cause >= e.ID {
+		return nil
+	}
+	return l.At(e.Cause)
 }
 
 // Origin is the last event of [Log.Chain] that a focus or a stimulus made: where
 // the impulse that led to the event began. A focus discharges because an earlier
 // event began its cycle, so the walk stops at the first Discharge or Stimulus.
 func (l *Log) Origin(id ID) *Event {
-	for e := l.At(id); e != nil; e = l.At(e.Cause) {
+	for e := l.At(id); e != nil; e = l.before(e) {
 		if e.Kind == Discharge || e.Kind == Stimulus || e.Cause == 0 {
 			return e
 		}
