@@ -34,18 +34,52 @@ func (f *finder) sinusRhythm() {
 		Text:   fmt.Sprintf("%s from the sinus node, median %s: consistent with %s.", plural(n, "P wave", "P waves"), perMinute(cycle), name),
 		clause: "sinus " + perMinute(cycle),
 	})
-	f.arrhythmia(cycle)
+	f.arrhythmia()
 }
 
 // arrhythmia: PP of neighbouring sinus beats varies by more than 120 ms, up and
-// down (textbooks, from memory). Long intervals that are pauses are left out.
-func (f *finder) arrhythmia(cycle tick.Dur) {
+// down (textbooks, from memory), in at least half of the stretches of ten beats.
+// Long intervals that are pauses are left out.
+func (f *finder) arrhythmia() {
+	if f.exitBlocked() {
+		return
+	}
 	var ids []event.ID
-	var lo, hi, last tick.Dur
-	turns, sign := 0, 0
-	for i := 1; i < len(f.p); i++ {
+	var low, high tick.Dur
+	wavy, all := 0, 0
+	for i := 1; i < len(f.p); i += 10 {
+		lo, hi, turns, in := f.swing(i, min(i+10, len(f.p)))
+		if len(in) < 3 {
+			continue
+		}
+		all++
+		if hi-lo > 120*tick.Millisecond && turns >= 2 {
+			wavy++
+			ids = append(ids, in...)
+			if low == 0 || lo < low {
+				low = lo
+			}
+			high = max(high, hi)
+		}
+	}
+	if wavy == 0 || 2*wavy < all {
+		return
+	}
+	f.add(orderAtria, Finding{
+		Slug: "sinus_arrhythmia", Evidence: ids, Count: len(ids),
+		Text:   fmt.Sprintf("PP varies between %s and %s ms: consistent with sinus arrhythmia.", whole(low), whole(high)),
+		clause: "sinus arrhythmia",
+	})
+}
+
+// swing is the range of sinus intervals among P waves i to j, and how often they
+// turn from growing to shrinking.
+func (f *finder) swing(i, j int) (lo, hi tick.Dur, turns int, ids []event.ID) {
+	var last tick.Dur
+	sign := 0
+	for ; i < j; i++ {
 		d := f.pp(i)
-		if f.pOrigin(i) != fromSinus || f.pOrigin(i-1) != fromSinus || 2*d > 3*cycle {
+		if f.pOrigin(i) != fromSinus || f.pOrigin(i-1) != fromSinus || !f.descending(i-1) || 2*d > 3*f.local[i] {
 			last = 0
 			continue
 		}
@@ -66,14 +100,7 @@ func (f *finder) arrhythmia(cycle tick.Dur) {
 		}
 		last = d
 	}
-	if hi-lo <= 120*tick.Millisecond || turns < 2 || f.exitBlocked() {
-		return
-	}
-	f.add(orderAtria, Finding{
-		Slug: "sinus_arrhythmia", Evidence: ids, Count: len(ids),
-		Text:   fmt.Sprintf("PP varies between %s and %s ms: consistent with sinus arrhythmia.", whole(lo), whole(hi)),
-		clause: "sinus arrhythmia",
-	})
+	return lo, hi, turns, ids
 }
 
 // otherAtrial names runs of three or more P waves from one place other than the
@@ -81,27 +108,32 @@ func (f *finder) arrhythmia(cycle tick.Dur) {
 // from 240/min (2001 definition, Saoudi et al., Eur Heart J 2001;22:1162, which
 // itself calls a rate limit obsolete; regular here means within 20 ms).
 func (f *finder) otherAtrial() {
+	var all []gathered
 	for i := 0; i < len(f.p); {
 		j := i + 1
 		for j < len(f.p) && f.sameSource(j, i) && f.descending(i) {
 			j++
 		}
 		if j-i >= 3 && f.pOrigin(i) != fromSinus && f.descending(i) {
-			f.atrialRun(i, j)
+			all = f.atrialRun(all, i, j)
 		}
 		i = j
+	}
+	for _, g := range all {
+		cycle := medianDur(g.paces)
+		f.add(orderAtria, Finding{
+			Slug: g.slug, Evidence: g.ids, Count: g.beats,
+			Text:   fmt.Sprintf("%s in a row from one place in the atria, %s: consistent with %s.", plural(g.beats, "P wave", "P waves"), perMinute(cycle), g.words),
+			clause: g.words + " " + perMinute(cycle),
+		})
 	}
 	f.fibrillation()
 }
 
-func (f *finder) atrialRun(i, j int) {
-	var ids []event.ID
+func (f *finder) atrialRun(all []gathered, i, j int) []gathered {
 	var d []tick.Dur
-	for k := i; k < j; k++ {
-		ids = append(ids, f.p[k].id)
-		if k > i {
-			d = append(d, f.pp(k))
-		}
+	for k := i + 1; k < j; k++ {
+		d = append(d, f.pp(k))
 	}
 	cycle := medianDur(d)
 	slug, name := "ectopic_atrial_rhythm", "ectopic atrial rhythm"
@@ -109,17 +141,19 @@ func (f *finder) atrialRun(i, j int) {
 	case f.pOrigin(i) == fromStimulus:
 		slug, name = "atrial_stimulation", "atrial stimulation"
 	case f.pOrigin(i) == fromJunction:
-		return // echoes and junctional beats have findings of their own
+		return all // echoes and junctional beats have findings of their own
 	case cycle.BPM() >= 240:
 		slug, name = "atrial_flutter", "a regular atrial driver in the range of flutter"
 	case cycle.BPM() > 100:
 		slug, name = "atrial_tachycardia", "atrial tachycardia"
 	}
-	f.add(orderAtria, Finding{
-		Slug: slug, Evidence: ids, Count: j - i,
-		Text:   fmt.Sprintf("%s in a row from one place in the atria, %s: consistent with %s.", plural(j-i, "P wave", "P waves"), perMinute(cycle), name),
-		clause: name + " " + perMinute(cycle),
-	})
+	all, g := gather(all, slug, name)
+	g.beats += j - i
+	g.paces = append(g.paces, d...)
+	for k := i; k < j; k++ {
+		g.ids = append(g.ids, f.p[k].id)
+	}
+	return all
 }
 
 // fibrillation: atrial waves above 350/min whose intervals differ by more than a

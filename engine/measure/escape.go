@@ -77,6 +77,17 @@ type gathered struct {
 	paces       []tick.Dur
 }
 
+// gather finds the entry with the name, or adds one.
+func gather(all []gathered, slug, words string) ([]gathered, *gathered) {
+	for k := range all {
+		if all[k].words == words {
+			return all, &all[k]
+		}
+	}
+	all = append(all, gathered{slug: slug, words: words})
+	return all, &all[len(all)-1]
+}
+
 func (f *finder) escapes() {
 	var all []gathered
 	for _, r := range f.runs() {
@@ -95,14 +106,8 @@ func (f *finder) escapes() {
 		if slug == "" {
 			continue
 		}
-		k := 0
-		for k < len(all) && all[k].words != words {
-			k++
-		}
-		if k == len(all) {
-			all = append(all, gathered{slug: slug, words: words})
-		}
-		g := &all[k]
+		var g *gathered
+		all, g = gather(all, slug, words)
 		g.beats += n
 		if pace > 0 {
 			g.paces = append(g.paces, pace)

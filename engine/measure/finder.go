@@ -97,10 +97,16 @@ func statement(found []Finding) (string, []Clause) {
 // whole writes milliseconds without decimals.
 func whole(d tick.Dur) string { return strconv.FormatInt((int64(d)+500)/1000, 10) }
 
+// wholes lists intervals; of more than nine the first four and last three.
 func wholes(ds []tick.Dur) string {
 	var w []string
-	for _, d := range ds {
-		w = append(w, whole(d))
+	for k, d := range ds {
+		switch {
+		case len(ds) <= 9 || k < 4 || k >= len(ds)-3:
+			w = append(w, whole(d))
+		case k == 4:
+			w = append(w, "...")
+		}
 	}
 	return strings.Join(w, ", ")
 }

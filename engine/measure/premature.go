@@ -15,9 +15,8 @@ func (f *finder) prematureAtrial() {
 	var ids []event.ID
 	n, stopped, reset := 0, 0, 0
 	var firstBlocked string
-	basic := f.sinusCycle()
 	for i := range f.p {
-		w := &f.p[i]
+		w, basic := &f.p[i], f.local[i]
 		if !w.premature || f.origin(w.id) == fromSinus {
 			continue
 		}
@@ -32,7 +31,7 @@ func (f *finder) prematureAtrial() {
 				firstBlocked = f.level(i)
 			}
 		}
-		if i > 0 && i+1 < len(f.p) && basic > 0 && Compensatory(f.pp(i), f.pp(i+1), basic, pauseTolerance) == LessThanFull {
+		if i > 0 && i+1 < len(f.p) && basic > 0 && Compensatory(f.pp(i), f.pp(i+1), basic, max(pauseTolerance, f.noise)) == LessThanFull {
 			reset++
 		}
 	}
@@ -133,28 +132,18 @@ func (f *finder) pauseAfter(j int) Pause {
 		return 0
 	}
 	span := f.p[b].t.Sub(f.p[a].t)
-	return Compensatory(span, 0, basic, max(pauseTolerance, f.jitter(a)))
-}
-
-// jitter is how much the two PP intervals before a P differ: a pause cannot be
-// judged more finely than the cycle keeps time.
-func (f *finder) jitter(i int) tick.Dur {
-	if i < 2 || f.p[i-1].premature || f.p[i-2].premature || !f.descending(i-1) || !f.descending(i-2) {
-		return 0
-	}
-	d := f.pp(i) - f.pp(i-1)
-	return min(max(d, -d), f.pp(i)/10)
+	return Compensatory(span, 0, basic, max(pauseTolerance, f.noise))
 }
 
 // localCycle is the PP just before a P if both are ordinary, else the sinus cycle.
 func (f *finder) localCycle(i int) tick.Dur {
-	if i > 0 && f.pOrigin(i) == f.pOrigin(i-1) && f.descending(i-1) && !f.p[i].premature && !f.p[i-1].premature {
-		c := f.cycle0
+	if f.plain(i) && !f.p[i].premature && !f.p[i-1].premature {
+		c := f.local[i]
 		if d := f.pp(i); c == 0 || 10*d > 7*c && 10*d < 13*c {
 			return d
 		}
 	}
-	return f.cycle0
+	return f.local[i]
 }
 
 func (f *finder) pauses(kinds []pauseFinding) {

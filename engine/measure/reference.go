@@ -113,11 +113,37 @@ func medianDur(d []tick.Dur) tick.Dur {
 	return (d[(len(d)-1)/2] + d[len(d)/2]) / 2
 }
 
+// plain tells whether the interval before P i lies between two sinus P waves
+// with no beat from below between them: such a beat may hide a P, or reset the
+// node, and the interval is not the sinus node's own.
+func (s *strip) plain(i int) bool {
+	return i > 0 && s.pOrigin(i) == fromSinus && s.pOrigin(i-1) == fromSinus && s.descending(i) && s.descending(i-1) && !s.crossed[i]
+}
+
+// findCrossed notes the P waves with a beat from below since the P before. Where
+// every interval is crossed, as in some complete block, none counts as crossed.
+func (s *strip) findCrossed() {
+	s.crossed = make([]bool, len(s.p))
+	free := 0
+	j := 0
+	for i := range s.p {
+		for ; j < len(s.v) && s.v[j].t < s.p[i].t; j++ {
+			s.crossed[i] = s.crossed[i] || s.own(j)
+		}
+		if s.plain(i) {
+			free++
+		}
+	}
+	if free == 0 {
+		clear(s.crossed)
+	}
+}
+
 // sinusCycle is the median interval between neighbouring sinus P waves.
 func (s *strip) sinusCycle() tick.Dur {
 	var d []tick.Dur
-	for i := 1; i < len(s.p); i++ {
-		if s.pOrigin(i) == fromSinus && s.pOrigin(i-1) == fromSinus && s.descending(i) && s.descending(i-1) {
+	for i := range s.p {
+		if s.plain(i) {
 			d = append(d, s.pp(i))
 		}
 	}
@@ -135,29 +161,72 @@ func (s *strip) conductedCycle() tick.Dur {
 	return medianDur(d)
 }
 
+// window is how many sinus intervals before a beat make the cycle it is held
+// against: the heart rate drifts over a long strip.
+const window = 8
+
+// localCycles gives, for each P, the median of the last sinus intervals before
+// it, or the median of the whole strip where there are fewer than three.
+func (s *strip) localCycles() []tick.Dur {
+	local := make([]tick.Dur, len(s.p)+1)
+	var last []tick.Dur
+	for i := range local {
+		local[i] = s.cycle0
+		if len(last) >= 3 {
+			local[i] = medianDur(last)
+		}
+		if i < len(s.p) && s.plain(i) {
+			last = append(last, s.pp(i))
+			last = last[max(0, len(last)-window):]
+		}
+	}
+	return local
+}
+
 // judge marks premature beats and the P waves that met what a beat from
 // elsewhere had left refractory.
 func (s *strip) judge() {
-	sinus := s.sinusCycle()
-	s.cycle0 = sinus
+	s.findCrossed()
+	s.cycle0 = s.sinusCycle()
+	s.local = s.localCycles()
+	s.noise = s.sinusNoise()
 	for i := range s.p {
-		s.p[i].premature = s.prematureP(i, sinus)
+		s.p[i].premature = s.prematureP(i, s.local[i])
 	}
 	conducted := s.conductedCycle()
-	if conducted == 0 && s.anyConducted() {
-		conducted = sinus
-	}
+	s.conducts = s.anyConducted()
 	var all []tick.Dur
 	for i := 1; i < len(s.v); i++ {
 		all = append(all, s.rr(i))
 	}
 	usual := medianDur(all)
-	for i := range s.v {
-		s.v[i].premature = s.prematureV(i, conducted, usual)
+	i := 0
+	for j := range s.v {
+		for i < len(s.p) && s.p[i].t < s.v[j].t {
+			i++
+		}
+		expected := conducted
+		if l := s.local[i]; s.conducts && l > 0 {
+			expected = l
+		}
+		s.v[j].premature = s.prematureV(j, expected, usual)
 	}
 	for i := range s.p {
 		s.p[i].interfered = s.interference(i)
 	}
+}
+
+// sinusNoise is twice the median change of the sinus interval from beat to beat:
+// no interval can be judged more finely than the node keeps time.
+func (s *strip) sinusNoise() tick.Dur {
+	var d []tick.Dur
+	for i := 2; i < len(s.p); i++ {
+		if s.plain(i) && s.plain(i-1) {
+			c := s.pp(i) - s.pp(i-1)
+			d = append(d, max(c, -c))
+		}
+	}
+	return min(2*medianDur(d), s.cycle0/10)
 }
 
 func (s *strip) anyConducted() bool {
@@ -176,24 +245,35 @@ func (s *strip) prematureP(i int, sinus tick.Dur) bool {
 	if i >= 2 && s.sameSource(i, i-1) && i+1 < len(s.p) && s.sameSource(i, i+1) && !early(s.pp(i), s.pp(i+1)) {
 		return false // second of a run of three or more
 	}
-	return early(s.pp(i), sinus)
+	if i+1 < len(s.p) && s.sameSource(i, i+1) {
+		return early(s.pp(i), sinus) // a run begins
+	}
+	return sinus > 0 && s.pp(i) < sinus-max(pauseTolerance, s.noise)
 }
 
 func (s *strip) sameSource(i, j int) bool {
 	return s.pOrigin(i) == s.pOrigin(j) && s.sourceSite(s.p[i].id) == s.sourceSite(s.p[j].id) && s.descending(j)
 }
 
-// prematureV: a beat that began below the atria and came early. In a run of
-// three or more only the first is called premature; the run has its own name.
-func (s *strip) prematureV(i int, conducted, usual tick.Dur) bool {
+// prematureV: a beat that began below the atria before the next one from above
+// was due. A focus that fires no faster than escape rhythms do is not premature
+// even so: the beat from above is late. Where nothing conducts, early is against
+// the usual RR. In a run of three or more only the first is called premature; the
+// run has its own name.
+func (s *strip) prematureV(i int, expected, usual tick.Dur) bool {
 	if i == 0 || !s.own(i) {
 		return false
 	}
-	expected := conducted
-	if expected == 0 {
-		expected = usual
+	limit := tick.PerMinute(50) // escape limits as in rhythmName
+	if s.vOrigin(i) == fromJunction {
+		limit = tick.PerMinute(60)
 	}
-	if !early(s.rr(i), expected) {
+	switch {
+	case s.vOrigin(i) != fromStimulus && s.rr(i) >= limit:
+		return false
+	case expected > 0 && s.rr(i) >= expected-max(pauseTolerance, s.noise):
+		return false
+	case expected == 0 && !early(s.rr(i), usual):
 		return false
 	}
 	return !(s.linked(i-1, i) && (s.linked(i-2, i-1) || s.linked(i, i+1)))

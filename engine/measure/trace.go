@@ -17,7 +17,11 @@ type strip struct {
 	rightAtrium, septum, his event.SiteID
 	exits                    []event.ID // blocks in the tissue between sinus node and atrium
 	sinus                    []event.ID // discharges of the sinus node
-	cycle0                   tick.Dur   // sinus cycle
+	cycle0                   tick.Dur   // sinus cycle, over the whole strip
+	local                    []tick.Dur // by P: sinus cycle just before it
+	crossed                  []bool     // by P: a beat from below came since the P before
+	noise                    tick.Dur   // how finely the sinus node keeps time
+	conducts                 bool       // any P from above reached the ventricles
 }
 
 // mark is what one event descends from, and what stood in its way.
