@@ -133,7 +133,7 @@ type Heart struct {
 	// preceding cycle of every first beat.
 	Basic tick.Dur
 
-	// Quantum rounds every delay, refractory period and discharge to a multiple of
+	// Quantum rounds every delay, refractory period and discharge up to a multiple of
 	// itself; 1 microsecond in use. Tests set it coarser, to compare with a
 	// fixed-step simulation exactly.
 	Quantum tick.Dur

@@ -16,16 +16,14 @@ type focusState struct {
 	cause       event.ID // what began the cycle; 0 for the start of the strip
 	suppression float64  // S: the next cycle lasts 1+S times as long
 	at          tick.Time
-	random      *rand.Rand
+	random      *rand.Rand // nil until it is needed
 }
 
 func (s *focusState) init(m *Machine, i int) {
 	f := &m.h.Foci[i]
-	if f.Jitter > 0 {
-		s.random = rand.New(rand.NewPCG(m.prog.Seed, uint64(i)<<1|1))
-	}
 	if f.First > 0 {
 		s.due = tick.Time(m.quantise(f.First))
+		s.start = s.due.Add(-tick.PerMinute(f.Rate.At(s.due)))
 		m.push(s.due, classDischarge, i, 0, s.gen)
 		return
 	}
@@ -38,7 +36,10 @@ func (m *Machine) cycle(i int, cause event.ID) {
 	s.gen++
 	s.start, s.cause = m.now, cause
 	length := f.Rate.Next(m.now, 1+s.suppression).Sub(m.now)
-	if s.random != nil {
+	if f.Jitter > 0 {
+		if s.random == nil {
+			s.random = rand.New(rand.NewPCG(m.prog.Seed, uint64(i)<<1|1))
+		}
 		length += tick.Dur((2*s.random.Float64() - 1) * float64(f.Jitter))
 	}
 	s.due = m.now.Add(max(m.quantise(length), m.h.Quantum))
@@ -63,16 +64,16 @@ func (m *Machine) discharge(i int) {
 
 // reset begins the cycles of the foci at a site that was depolarised, except
 // where the focus is protected or did it itself.
-func (m *Machine) reset(site event.SiteID, id event.ID, fired bool) {
+func (m *Machine) reset(e *event.Event, id event.ID) {
 	for i := range m.h.Foci {
 		f, s := &m.h.Foci[i], &m.foci[i]
-		if f.Site != site || f.Protected || fired && s.start == m.now {
+		if f.Site != e.Site || f.Protected || e.Rule == event.Fired && s.cause == e.Cause {
 			continue
 		}
 		s.decay(f.OverdriveTau, m.now)
 		if f.OverdriveGain > 0 {
 			own := f.Rate.Next(s.start, 1).Sub(s.start)
-			if cut := 1 - float64(m.now.Sub(s.start))/float64(own); cut > 0 {
+			if cut := 1 - float64(max(m.now.Sub(s.start), 0))/float64(own); cut > 0 {
 				s.suppression += float64(f.OverdriveGain * cut)
 			}
 		}

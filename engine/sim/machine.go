@@ -6,29 +6,45 @@
 //
 //  1. A site that is reached at t is depolarised if t >= the end of its refractory
 //     period; that period then begins anew, its length by the cycle since the
-//     site's depolarisation before. Otherwise the impulse is blocked (SiteRefractory),
-//     unless its path is silent, and leaves no trace.
-//  2. A depolarised site sends an impulse into every path that ends there, except
-//     the one it came by, in order of path number.
-//  3. A path that does not conduct in that direction blocks it (OneWay) after Reach
-//     of its length; with a Reach above 0 the path counts as left at that moment.
-//  4. Let r be the time since an impulse last left the path, at either end; it is
-//     negative while one is inside, except that an impulse coming the other way is
-//     judged by what left before that one entered. If r < theta the impulse is blocked
-//     (PathRefractory). theta follows the interval between the last two entries.
-//     If r lies above Inner*theta, and no opposite impulse is inside, it comes to a
-//     depth of (r-inner)/(theta-inner), taking that share of the delay at theta, and
-//     the path counts as left when it stops.
-//  5. A drop pattern then may stop it at the entrance (Dropped); down only.
-//  6. It is conducted with the delay of the recovery curve; the path counts as left
-//     when it arrives. If an opposite impulse is inside, both stop where they meet
-//     (Collision) and the path counts as left then.
-//  7. A focus discharges when its rate has run through one cycle, lengthened by
-//     overdrive suppression, since its last discharge or, unless it is protected, the
-//     last depolarisation of its site.
+//     site's depolarisation before (the basic cycle at first). Otherwise the impulse
+//     is blocked (SiteRefractory). No block on a silent path is recorded.
+//  2. A depolarised site first resets its foci (rule 8), then sends an impulse into
+//     every path that ends there, except the one it came by, in order of path number.
+//  3. Let r be the time since an impulse last left the path, at either end. While
+//     one is inside r is negative, counted to the moment at which it will leave; but
+//     while one is being conducted the other way, r is counted from what left before
+//     that one entered. The path has recovered if r >= theta or nothing ever left it.
+//     theta follows the interval between the last two impulses that rule 7 let in,
+//     either way (the basic cycle until there are two).
+//  4. A path that does not conduct in that direction blocks the impulse (OneWay): at
+//     the entrance where Reach is 0 or the path has not recovered, otherwise after
+//     Reach of its length, taking that share of the delay of rule 7. The path then
+//     counts as left when it stops. If an opposite impulse is inside, both stop as in
+//     rule 7; if they would meet beyond Reach, this one stops at Reach and the other
+//     (Collision) when it comes to that place, and the path counts as left then.
+//  5. A path that has not recovered blocks the impulse (PathRefractory): at the
+//     entrance or, if r lies above inner = Inner*theta and no opposite impulse is
+//     inside, at a depth of (r-inner)/(theta-inner), taking that share of the delay
+//     at theta. The path then counts as left when it stops. Depths are rounded down,
+//     this one to 1 to 999 thousandths.
+//  6. A drop pattern then may stop it at the entrance (Dropped); down only. The count
+//     of a pattern begins with its Phase when it is put in force.
+//  7. It is conducted with the delay of the recovery curve at r; the path counts as
+//     left when it arrives. If an opposite impulse is inside, both stop where they
+//     meet (Collision), the one that entered first recorded first, and the path
+//     counts as left then.
+//  8. A focus discharges when its rate has run through 1+S cycles since its last
+//     discharge or, unless it is protected, the last depolarisation of its site by
+//     anything but itself: that event is the discharge's cause. Jitter is drawn when
+//     a cycle begins. A reset after the share x of the focus's own cycle (S = 0) adds
+//     gain*(1-x) to S, if positive. Where First is given, the cycle under way at the
+//     start counts as begun one cycle before it, and a reset before that as x = 0.
 //
-// Ties are decided by the class table in queue.go. Random numbers come from one
-// PCG stream per focus and per path, seeded by the plan.
+// Ties are decided by the class table in queue.go; an impulse that stops where and
+// when it enters is recorded at once. A change of parameters holds for what begins
+// after it: impulses and cycles under way keep theirs. Random numbers come from one
+// PCG stream for each focus and path, of the plan's seed and 2*number+1 or 2*number,
+// and are drawn only where there is jitter or a chance of dropping.
 package sim
 
 import (
@@ -102,10 +118,10 @@ func New(prog *plan.Program) *Machine {
 	}
 	for i := range h.Paths {
 		p := &h.Paths[i]
+		m.paths[i].drops.seen = p.Drop.Phase
 		m.log.Paths = append(m.log.Paths, p.Path)
 		m.exits[p.From] = append(m.exits[p.From], exit{event.PathID(i), event.Down})
 		m.exits[p.To] = append(m.exits[p.To], exit{event.PathID(i), event.Up})
-		m.paths[i].drops.init(&p.Drop, prog.Seed, i)
 	}
 	m.use(h)
 	for i := range h.Foci {
@@ -208,9 +224,15 @@ func (m *Machine) change(c *plan.Change) {
 	if c.Field != "" {
 		m.record(event.Event{Kind: event.Change, Rule: event.Planned, Site: event.None, Path: event.None, Field: c.Field, To: c.To})
 	}
-	if c.Heart != nil {
-		m.use(c.Heart)
+	if c.Heart == nil {
+		return
 	}
+	for i := range m.paths {
+		if d := c.Heart.Paths[i].Drop; d != m.h.Paths[i].Drop {
+			m.paths[i].drops.seen = d.Phase
+		}
+	}
+	m.use(c.Heart)
 }
 
 func (m *Machine) stimulate(s *plan.Stimulus) {
@@ -236,7 +258,7 @@ func (m *Machine) activate(e event.Event) {
 	e.Until = m.now.Add(m.quantise(m.h.Sites[e.Site].Refractory.At(cycle)))
 	id := m.record(e)
 	st.last, st.until, st.id = m.now, e.Until, id
-	m.reset(e.Site, id, e.Rule == event.Fired)
+	m.reset(&e, id)
 	for _, x := range m.exits[e.Site] {
 		if x.path != e.Path {
 			m.enter(x.path, x.dir, id, e.Site)

@@ -81,24 +81,30 @@ func (m *Machine) enter(p event.PathID, d event.Dir, cause event.ID, from event.
 	if used {
 		e.Recovery = m.now.Sub(left)
 	}
-	recovered := !used || e.Recovery >= e.Needed
+	recovery, recovered := e.Recovery, !used || e.Recovery >= e.Needed
 	switch {
 	case !w.c.Open && (w.c.Reach == 0 || !recovered):
 		e.Rule, e.Recovery, e.Needed = event.OneWay, 0, 0
 		m.blocked(w, m.now, e)
 	case !recovered:
 		m.refuse(w, st, e, against.active)
-	case w.c.Open && d == event.Down && st.drops.stops(&m.h.Paths[p].Drop):
+	case w.c.Open && d == event.Down && st.drops.stops(&m.h.Paths[p].Drop, m.prog.Seed, p):
 		e.Rule, e.Recovery, e.Needed = event.Dropped, 0, 0
 		m.blocked(w, m.now, e)
 	case against.active:
 		m.collide(w, st, e, against)
 	case !w.c.Open:
 		e.Rule, e.Recovery, e.Needed, e.Depth = event.OneWay, 0, 0, w.c.Reach
-		m.stopInside(w, st, m.quantise(w.min*tick.Dur(w.c.Reach)/1000), e)
+		m.stopInside(w, st, m.reach(w, m.delay(w, recovery)), e)
 	default:
 		m.conduct(p, w, st, e)
 	}
+}
+
+// reach is how long an impulse with a delay takes to come as deep as it can in a
+// direction that is not open.
+func (m *Machine) reach(w *way, delay tick.Dur) tick.Dur {
+	return m.quantise(delay * tick.Dur(w.c.Reach) / 1000)
 }
 
 func (m *Machine) blocked(w *way, t tick.Time, e event.Event) {
@@ -159,15 +165,24 @@ func (m *Machine) collide(w *way, st *pathState, e event.Event, against *transit
 	x = min(x, rest)
 	against.active = false
 	against.gen++
-	st.enter(m.now)
-	st.left, st.used = m.now.Add(x), true
-	e.Rule = event.Collision
 	gone := m.now.Add(x).Sub(against.start)
+	e.Rule, e.Depth = event.Collision, uint16(min(x*1000/mine, 1000))
+	if w.c.Open {
+		st.enter(m.now)
+	} else {
+		e.Recovery, e.Needed = 0, 0
+		if reach := m.reach(w, mine); reach < x {
+			// It stops before they meet, and the other one where it finds that tissue
+			// depolarised.
+			x, gone = reach, m.quantise(theirs*tick.Dur(1000-w.c.Reach)/1000)
+			e.Rule, e.Depth = event.OneWay, w.c.Reach
+		}
+	}
+	st.left, st.used = against.start.Add(gone), true
 	they := event.Event{Kind: event.Block, Rule: event.Collision, Dir: other(e.Dir), Path: e.Path, Site: w.exit, Cause: against.cause,
 		Recovery: against.recovery, Needed: against.needed, Depth: uint16(min(gone*1000/theirs, 1000))}
-	e.Depth = uint16(min(x*1000/mine, 1000))
 	m.blocked(w, st.left, they)
-	m.blocked(w, st.left, e)
+	m.blocked(w, m.now.Add(x), e)
 }
 
 // arrive brings an impulse to the far end of its path.
@@ -189,23 +204,19 @@ func (m *Machine) arrive(p event.PathID, d event.Dir, gen uint32) {
 // dropState counts the impulses of a drop pattern.
 type dropState struct {
 	seen   int
-	random *rand.Rand
+	random *rand.Rand // nil until it is needed
 }
 
-func (s *dropState) init(d *heart.Drop, seed uint64, path int) {
-	s.seen = d.Phase
-	if d.Chance > 0 {
-		s.random = rand.New(rand.NewPCG(seed, uint64(path)<<1))
-	}
-}
-
-// stops tells whether the pattern stops the next impulse.
-func (s *dropState) stops(d *heart.Drop) bool {
-	if s.random != nil {
-		return s.random.Float64() < d.Chance
-	}
+// stops tells whether the pattern stops the next impulse of a path.
+func (s *dropState) stops(d *heart.Drop, seed uint64, p event.PathID) bool {
 	if d.Of == 0 {
-		return false
+		if d.Chance == 0 {
+			return false
+		}
+		if s.random == nil {
+			s.random = rand.New(rand.NewPCG(seed, uint64(p)<<1))
+		}
+		return s.random.Float64() < d.Chance
 	}
 	place := s.seen % d.Of
 	s.seen++
