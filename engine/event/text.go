@@ -138,6 +138,9 @@ func (l *Log) parseEvent(w []string) error {
 			return fmt.Errorf("event %d: field %q is not understood", id, f)
 		}
 	}
+	if (e.Path >= 0) != (e.Dir != 0) {
+		return fmt.Errorf("event %d: path and dir come together", id)
+	}
 	l.Events = append(l.Events, e)
 	return nil
 }
