@@ -92,6 +92,9 @@ func anyStrip(r *rapid.T) (*Scene, Options) {
 		Statement: rapid.SampledFrom([]string{"", "Sinus 95/min, 4:3 AV block with growing PR (180, 260, 300 ms), at the AV node."}).Draw(r, "statement"),
 		Selected:  event.ID(rapid.IntRange(0, len(l.Events)).Draw(r, "selected")),
 	}
+	if rapid.Bool().Draw(r, "page12") {
+		return Page12(in, o), o
+	}
 	return Strip(in, o), o
 }
 

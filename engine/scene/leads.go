@@ -2,6 +2,7 @@ package scene
 
 import (
 	"math"
+	"slices"
 
 	"escapement/engine/event"
 	"escapement/engine/lead"
@@ -11,37 +12,76 @@ import (
 // pulseRoom is what the calibration pulse needs left of the window, mm.
 const pulseRoom = 6
 
-// leads draws the chosen leads, each in a lane of its own. A lane is as high as
-// the lead's whole record needs, so that it does not change as the window moves.
-func (s *sheet) leads() {
+// segment is a lead over a part of the window.
+type segment struct {
+	lead     lead.Name
+	from, to tick.Time
+}
+
+// row is a lane of one or more segments side by side.
+type row struct {
+	parts []segment
+	lane  Lane
+	zero  float64 // y of 0 mV
+}
+
+// leads draws rows of leads. A row is as high as the whole records of its leads
+// need, so that it does not change as the window moves.
+func (s *sheet) leads(rows []row) {
 	top := s.y
-	zeros := make([]float64, len(s.o.Leads))
-	for i, n := range s.o.Leads {
-		low, high := extent(s.in.Record.MV[n])
-		up := grow(high*s.o.MMPerMV, 0.5*s.o.MMPerMV)
-		down := grow(-low*s.o.MMPerMV, 0.3*s.o.MMPerMV)
+	for i := range rows {
+		r := &rows[i]
+		up, down := 0.5*s.o.MMPerMV, 0.3*s.o.MMPerMV
+		name, label := "lead:", ""
+		for j, p := range r.parts {
+			low, high := extent(s.in.Record.MV[p.lead])
+			up, down = max(up, high*s.o.MMPerMV), max(down, -low*s.o.MMPerMV)
+			if j > 0 {
+				name, label = name+",", label+" "
+			}
+			name, label = name+p.lead.String(), label+p.lead.String()
+		}
+		up, down = math.Ceil(up+0.5), math.Ceil(down+0.5)
+		if len(r.parts) > 1 {
+			up += LaneLabel.height(s.o.FontMM) // names stand over the traces
+		}
 		if short := 1.4*s.o.FontMM - up - down; short > 0 {
 			up, down = up+short/2, down+short/2
 		}
-		zeros[i] = s.y + up
-		s.lane("lead:"+n.String(), n.String(), s.y, s.y+up+down)
-		s.y += up + down
+		r.zero = s.y + up
+		r.lane = Lane{Name: name, Label: label, Y0: s.y, Y1: s.y + up + down}
+		s.Lanes = append(s.Lanes, r.lane)
+		s.y = r.lane.Y1
 	}
 	if s.o.Grid {
 		s.grid(top, s.y)
 	}
-	first := len(s.Lanes) - len(s.o.Leads)
-	for i, n := range s.o.Leads {
-		s.waves(&s.Lanes[first+i], n, zeros[i])
+	for i := range rows {
+		for _, p := range rows[i].parts {
+			s.waves(&rows[i], p)
+		}
 	}
-	for i, n := range s.o.Leads {
-		s.trace(Trace, n, zeros[i], s.o.From, s.o.To, 0)
-		s.name(n, zeros[i], &s.Lanes[first+i])
+	for i := range rows {
+		r := &rows[i]
+		for j, p := range r.parts {
+			s.trace(Trace, p.lead, r.zero, p.from, p.to, 0)
+			if len(r.parts) > 1 {
+				s.heading12(r, p, j > 0)
+			}
+		}
+		s.margin(r)
 	}
 }
 
-// grow rounds a height up to whole millimetres, with a little room, from a least one.
-func grow(mm, least float64) float64 { return math.Ceil(max(mm, least) + 0.5) }
+// heading12 writes the name of one of several leads of a row over its beginning, with
+// a short line where it follows on another.
+func (s *sheet) heading12(r *row, p segment, follows bool) {
+	x, h := s.Axis.X(p.from), LaneLabel.height(s.o.FontMM)
+	s.place(Mark{Shape: Text, Class: LaneLabel, X: x + 1, Y: r.lane.Y0 + ascent*h, Text: p.lead.String()})
+	if follows {
+		s.mark(Mark{Shape: Line, Class: Calibration, X: x, Y: r.zero - 0.25*s.o.MMPerMV, X2: x, Y2: r.zero + 0.25*s.o.MMPerMV})
+	}
+}
 
 func extent(mv []float32) (low, high float64) {
 	var l, h float32
@@ -59,15 +99,18 @@ func extent(mv []float32) (low, high float64) {
 	return float64(l), float64(h)
 }
 
-// name writes a lead's name before its zero line, and the pulse of 1 mV where the
-// lane has room for it: on the zero line, or lower where the lane ends too soon
-// above it.
-func (s *sheet) name(n lead.Name, zero float64, l *Lane) {
-	h := s.o.FontMM
-	s.place(Mark{Shape: Text, Class: LaneLabel, X: pad, Y: zero + 0.35*h, Text: n.String()})
+// margin writes the name of a row's only lead before its zero line, and the pulse
+// of 1 mV where the lane has room for it: on the zero line, or lower where the
+// lane ends too soon above it.
+func (s *sheet) margin(r *row) {
+	h, name := s.o.FontMM, ""
+	if len(r.parts) == 1 {
+		name = r.parts[0].lead.String()
+		s.place(Mark{Shape: Text, Class: LaneLabel, X: pad, Y: r.zero + 0.35*h, Text: name})
+	}
 	x := s.Axis.X0 - pad - 3
-	foot := max(zero, l.Y0+s.o.MMPerMV+0.5)
-	if x < pad+LaneLabel.Width(n.String(), h)+1 || foot > l.Y1-0.2 {
+	foot := max(r.zero, r.lane.Y0+s.o.MMPerMV+0.5)
+	if x < pad+LaneLabel.Width(name, h)+1 || foot > r.lane.Y1-0.2 {
 		return
 	}
 	y := foot - s.o.MMPerMV
@@ -78,28 +121,19 @@ func (s *sheet) name(n lead.Name, zero float64, l *Lane) {
 
 // waves lays the areas of P and QRS-T for hit testing, and the halo of the
 // selected one.
-func (s *sheet) waves(l *Lane, n lead.Name, zero float64) {
+func (s *sheet) waves(r *row, p segment) {
 	for i := range s.in.Record.Waves {
 		w := &s.in.Record.Waves[i]
 		end := max(w.Offset, w.End)
-		if end < s.o.From || w.Onset > s.o.To || len(w.Sources) == 0 {
+		if end < p.from || w.Onset > p.to || len(w.Sources) == 0 {
 			continue
 		}
-		from, to := max(w.Onset, s.o.From), min(end, s.o.To)
-		if s.o.Selected != 0 && holds(w.Sources, s.o.Selected) {
-			s.trace(Selected, n, zero, from, to, s.o.Selected)
+		from, to := max(w.Onset, p.from), min(end, p.to)
+		if s.o.Selected != 0 && slices.Contains(w.Sources, s.o.Selected) {
+			s.trace(Selected, p.lead, r.zero, from, to, s.o.Selected)
 		}
-		s.mark(Mark{Shape: Rect, Class: Wave, X: s.Axis.X(from), Y: l.Y0, X2: s.Axis.X(to), Y2: l.Y1, Event: w.Sources[0]})
+		s.mark(Mark{Shape: Rect, Class: Wave, X: s.Axis.X(from), Y: r.lane.Y0, X2: s.Axis.X(to), Y2: r.lane.Y1, Event: w.Sources[0]})
 	}
-}
-
-func holds(ids []event.ID, id event.ID) bool {
-	for _, v := range ids {
-		if v == id {
-			return true
-		}
-	}
-	return false
 }
 
 // trace draws a lead between two instants. Where samples are denser than columns

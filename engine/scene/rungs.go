@@ -46,10 +46,10 @@ func (s *sheet) ladder() {
 	r := rungs{sheet: s, d: s.in.Diagram, rowH: 1.35 * DimText.height(s.o.FontMM), foci: map[place]bool{}}
 	start := s.y
 	r.open(rowAbove, ladder.PP)
-	r.top = s.y + 0.3*s.o.FontMM
+	r.top = s.y + max(0.3*s.o.FontMM, stimulusR+0.5) // a ring may stand on the edge
 	r.per = s.o.LadderMM / r.d.Height()
 	foot := r.y(r.d.Height())
-	s.y = foot + 0.35*s.o.FontMM
+	s.y = foot + max(0.35*s.o.FontMM, stimulusR+0.5)
 	r.open(rowConduction, ladder.PR, ladder.RP)
 	r.open(rowCycle, ladder.RR)
 	s.lane("ladder", "ladder", start, s.y)

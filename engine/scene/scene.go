@@ -17,7 +17,7 @@
 //	 "lanes":[{"name":"lead:II","label":"II","y0":10,"y1":35},...],
 //	 "marks":[[1,"grid-minor",12,10,12,35],...]}
 //
-// All lengths are millimetres. Lanes are named "lead:II" (and so on), "axis" and
+// All lengths are millimetres. Lanes are named "lead:II" (several leads side by side: "lead:I,aVR,V1,V4"), "axis" and
 // "ladder". An instant t_us stands at x0 + (t_us - t0_us)/1e6*mm_per_s. A mark is
 // an array, of which trailing zero or empty values may be missing:
 //

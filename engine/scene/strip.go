@@ -104,23 +104,71 @@ type sheet struct {
 
 // Strip lays out leads, time axis and ladder one below the other on one axis.
 func Strip(in Input, o Options) *Scene {
-	o.fill(&in)
-	s := &sheet{Scene: &Scene{FontMM: o.FontMM, Axis: Axis{T0: o.From, X0: o.Margin, MMPerS: o.MMPerS}}, in: &in, o: o, y: pad}
+	s := begin(&in, o)
+	var rows []row
+	for _, n := range s.o.Leads {
+		rows = append(rows, row{parts: []segment{{n, s.o.From, s.o.To}}})
+	}
+	return s.finish(rows)
+}
+
+// columns of the twelve-lead page, each shown one after the other in time
+// (common practice), and the lead that runs below them all.
+var columns = [4][3]lead.Name{{lead.I, lead.II, lead.III}, {lead.AVR, lead.AVL, lead.AVF}, {lead.V1, lead.V2, lead.V3}, {lead.V4, lead.V5, lead.V6}}
+
+// Page12 is the usual page of twelve leads: four columns of three, which follow
+// one another in time, over a rhythm strip of lead II ([Options.Leads] names
+// others). A window of ten seconds gives columns of 2.5 s. Time still runs from
+// left to right over the whole page, so the ladder fits below it.
+func Page12(in Input, o Options) *Scene {
+	rhythm := o.Leads
+	if len(rhythm) == 0 {
+		rhythm = []lead.Name{lead.II}
+	}
+	o.Leads = rhythm
+	if o.To == 0 {
+		o.To = o.From.Add(10 * tick.Second)
+		if in.Log != nil {
+			o.To = min(o.To, in.Log.Span)
+		}
+	}
+	s := begin(&in, o)
+	rows := make([]row, 3)
+	for c := range columns {
+		part := (s.o.To - s.o.From) / tick.Time(len(columns))
+		from := s.o.From + tick.Time(c)*part
+		for i, n := range columns[c] {
+			rows[i].parts = append(rows[i].parts, segment{n, from, from + part})
+		}
+	}
+	for _, n := range rhythm {
+		rows = append(rows, row{parts: []segment{{n, s.o.From, s.o.To}}})
+	}
+	return s.finish(rows)
+}
+
+func begin(in *Input, o Options) *sheet {
+	o.fill(in)
+	s := &sheet{Scene: &Scene{FontMM: o.FontMM, Axis: Axis{T0: o.From, X0: o.Margin, MMPerS: o.MMPerS}}, in: in, o: o, y: pad}
 	s.right = s.Axis.X(o.To)
 	s.Width = max(s.right+pad, 24*o.FontMM)
 	s.room = newRoom(s.Width)
+	return s
+}
+
+func (s *sheet) finish(rows []row) *Scene {
 	s.heading()
-	if in.Record != nil && len(o.Leads) > 0 {
-		s.leads()
+	if s.in.Record != nil {
+		s.leads(rows)
 	}
 	s.axis()
-	if in.Diagram != nil {
+	if s.in.Diagram != nil {
 		s.ladder()
+		if s.o.Legend {
+			s.legend()
+		}
 	}
-	if o.Legend && in.Diagram != nil {
-		s.legend()
-	}
-	if o.Caution {
+	if s.o.Caution {
 		s.foot()
 	}
 	s.Height = s.y + pad
