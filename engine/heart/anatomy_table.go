@@ -57,6 +57,8 @@ var anatomyPurkinje = []anatomyDelay{
 // anatomyMuscle lists the times between regions of ventricular muscle.
 var anatomyMuscle = []anatomyDelay{
 	{"rv_septum", "rv_apex", 49569},
+	{"rv_septum", "rv_outflow", 111310},
+	{"rv_septum", "rv_free_wall", 154745},
 	{"rv_septum", "lv_septum", 38326},
 	{"rv_septum", "lv_apex", 70498},
 	{"rv_septum", "lv_anterior", 80589},
@@ -73,9 +75,11 @@ var anatomyMuscle = []anatomyDelay{
 	{"rv_outflow", "lv_septum", 111634},
 	{"rv_outflow", "lv_apex", 152336},
 	{"rv_outflow", "lv_anterior", 59564},
+	{"rv_outflow", "lv_lateral", 149901},
 	{"rv_outflow", "lv_posterior", 148799},
 	{"rv_free_wall", "lv_septum", 157247},
 	{"rv_free_wall", "lv_anterior", 138491},
+	{"rv_free_wall", "lv_lateral", 214099},
 	{"rv_free_wall", "lv_posterior", 136654},
 	{"lv_septum", "lv_apex", 69016},
 	{"lv_septum", "lv_anterior", 65410},
@@ -84,6 +88,7 @@ var anatomyMuscle = []anatomyDelay{
 	{"lv_apex", "lv_anterior", 101063},
 	{"lv_apex", "lv_lateral", 90998},
 	{"lv_apex", "lv_posterior", 119925},
+	{"lv_anterior", "lv_lateral", 96899},
 	{"lv_anterior", "lv_posterior", 123312},
 	{"lv_lateral", "lv_posterior", 103740},
 }

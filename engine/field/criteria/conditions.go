@@ -109,24 +109,24 @@ func (s *Set) ventricular(condition string) []source {
 	case "left bundle paced":
 		return s.fascicles(map[string]float64{"right_bundle": 38})
 	case "WPW left lateral":
-		return append(all, s.pathway("lv_lateral", 1))
+		return append(all, s.pathway("lv_lateral", tissue.LeftAtrium))
 	case "WPW left lateral alone":
-		return []source{s.pathway("lv_lateral", 1)}
+		return []source{s.pathway("lv_lateral", tissue.LeftAtrium)}
 	case "WPW posteroseptal":
-		return append(all, s.pathway("lv_posterior", 1))
+		return append(all, s.pathway("lv_posterior", tissue.LeftAtrium))
 	case "WPW posteroseptal alone":
-		return []source{s.pathway("lv_posterior", 1)}
+		return []source{s.pathway("lv_posterior", tissue.LeftAtrium)}
 	case "WPW right free wall":
-		return append(all, s.pathway("rv_free_wall", 0))
+		return append(all, s.pathway("rv_free_wall", tissue.RightAtrium))
 	case "WPW right free wall alone":
-		return []source{s.pathway("rv_free_wall", 0)}
+		return []source{s.pathway("rv_free_wall", tissue.RightAtrium)}
 	}
 	panic("criteria: no condition is called " + condition)
 }
 
 // pathway enters at a region after the sinus beat has reached the atrial node of
-// the chamber (0 right, 1 left) that lies nearest to it.
-func (s *Set) pathway(region string, chamber uint8) source {
+// the chamber that lies nearest to it.
+func (s *Set) pathway(region string, chamber tissue.Kind) source {
 	at := s.a.Activation(s.Atria.Entry("right_atrium").Ports)
 	to := s.Ventricles.X[s.Ventricles.Entry(region).Ports[0].Node]
 	best, arrive := math.Inf(1), int32(0)
@@ -176,6 +176,25 @@ func (s *Set) firstSource(condition string) float64 {
 		first = min(first, x.at)
 	}
 	return first
+}
+
+// epicardium is when the first node of the right and the last node of the whole
+// epicardium is depolarised in the normal beat, and when the right apex is, ms
+// after the QRS onset.
+func (s *Set) epicardium() (firstRight, last, rightApex float64) {
+	onset := int32(s.beat("normal").On-tissue.LeadIn) * 1000
+	first, end := tissue.Far, int32(0)
+	at := s.v.Activation(s.Seeds("normal"))
+	for n, k := range s.Ventricles.Kind {
+		switch k {
+		case tissue.RightOuter:
+			first, end = min(first, at[n]), max(end, at[n])
+		case tissue.LeftOuter:
+			end = max(end, at[n])
+		}
+	}
+	apex := at[s.Ventricles.Entry("rv_apex").Ports[0].Node]
+	return float64(first-onset) / 1000, float64(end-onset) / 1000, float64(apex-onset) / 1000
 }
 
 // pr is from the sinus exit to the QRS onset.

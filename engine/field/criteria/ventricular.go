@@ -56,6 +56,10 @@ func (j *judge) normal() {
 	}
 	j.say("T upright in I, II, V2-V6", "textbook", upright...)
 	j.say("T inverted in aVR", "textbook", atMost("T", b.t(lead.AVR), 0, 0.2))
+	first, last, apex := j.set.epicardium()
+	j.say("RV apex 5-30 ms after QRS onset", "Josephson, by a secondary page", within("apex", apex, 5, 30, 10))
+	j.say("first RV epicardium 7-25 ms after QRS onset", "Wyndham et al., Circulation 1979;59:161, abstract", within("first", first, 7, 25, 10))
+	j.say("last epicardium 63-96 ms after QRS onset", "Wyndham et al., Circulation 1979;59:161, abstract", within("last", last, 63, 96, 10))
 	j.say("PR 120-200 ms", "textbook", within("PR", j.set.pr("normal"), 120, 200, 10))
 }
 

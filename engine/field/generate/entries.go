@@ -133,7 +133,9 @@ func (a *atria) entries() []tissue.Entry {
 
 // links turns the generator's edges into the model's, in order. Edges that are
 // slower than a way round are left out: they can never carry an impulse first.
-func links(n int, edges map[[2]int]float64) []tissue.Link {
+func links(n int, edges map[[2]int]float64) []tissue.Link { return used(n, allLinks(edges)) }
+
+func allLinks(edges map[[2]int]float64) []tissue.Link {
 	out := make([]tissue.Link, 0, len(edges))
 	for e, ms := range edges {
 		us := min(microseconds(ms), math.MaxUint16)
@@ -145,8 +147,12 @@ func links(n int, edges map[[2]int]float64) []tissue.Link {
 		}
 		return out[i].B < out[j].B
 	})
+	return out
+}
+
+func used(n int, out []tissue.Link) []tissue.Link {
 	g, s := tissue.NewGraph(n, out), tissue.Solver{}
-	used := out[:0]
+	kept := out[:0]
 	for i := 0; i < len(out); {
 		from := out[i].A
 		at := s.Arrivals(&g, []tissue.Seed{{Node: from}})
@@ -156,9 +162,9 @@ func links(n int, edges map[[2]int]float64) []tissue.Link {
 			case out[i].Time == math.MaxUint16:
 				panic(fmt.Sprintf("edge %v takes longer than the model can hold", out[i]))
 			default:
-				used = append(used, out[i])
+				kept = append(kept, out[i])
 			}
 		}
 	}
-	return used
+	return kept
 }

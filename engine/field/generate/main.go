@@ -23,9 +23,10 @@ import (
 
 func main() {
 	root := flag.String("root", ".", "the repository's root")
-	fit := flag.String("fit", "", "search for better parameters, print them and write nothing: atria")
+	fit := flag.String("fit", "", "search for better parameters, print them and write nothing: atria, ventricles")
 	seed := flag.Uint64("seed", 1, "of the search")
 	tries := flag.Int("tries", 2000, "of the search")
+	extra := flag.Bool("extra", false, "give the search for ventricles more terminals")
 	flag.Parse()
 	var err error
 	switch *fit {
@@ -33,8 +34,10 @@ func main() {
 		err = run(*root)
 	case "atria":
 		_, err = fitAtria(fitted(), *seed, *tries)
+	case "ventricles":
+		err = fitVentricles(fitted(), *seed, *tries, *extra)
 	default:
-		err = fmt.Errorf("there is no search for %q; there is one for atria", *fit)
+		err = fmt.Errorf("there is no search for %q; there are atria and ventricles", *fit)
 	}
 	if err != nil {
 		fmt.Fprintln(os.Stderr, "generate:", err)

@@ -35,8 +35,12 @@ func build(p *Parameters) (*model, error) {
 		X: points(m.v.x), Shape: tissue.Shape{Rise: float32(p.Recovery.Rise), Fall: float32(p.Recovery.Fall), Fall2: float32(p.Recovery.Fall2)},
 		Tri: triangles(m.v.tri, len(m.v.x)),
 	}
-	for _, l := range m.v.layer {
-		m.ventricles.Kind = append(m.ventricles.Kind, uint8(l))
+	for n, l := range m.v.layer {
+		kind := tissue.Kind(l) // the layers are numbered alike
+		if l == LeftOuter && m.v.septal(n) {
+			kind = tissue.RightSeptum
+		}
+		m.ventricles.Kind = append(m.ventricles.Kind, kind)
 	}
 	m.recoveryV = m.v.recovery(m.ventricles)
 	m.atria = atrialPart(p, m.a, c)
@@ -59,7 +63,7 @@ func atrialPart(p *Parameters, a *atria, c *conductor) *tissue.Part {
 		Tri: triangles(a.tri, len(a.x)),
 	}
 	for _, c := range a.chamber {
-		out.Kind = append(out.Kind, uint8(c))
+		out.Kind = append(out.Kind, tissue.RightAtrium+tissue.Kind(c))
 		out.APD = append(out.APD, microseconds(p.Atria.Duration))
 	}
 	setWeights(out, atrialLeads(p, a, c))

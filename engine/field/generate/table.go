@@ -20,9 +20,10 @@ type delay struct {
 }
 
 // prune leaves out, longest first, every path for which the remaining ones have
-// an equal way round: the network stays small and its shortest times are the
-// field's to within [redundant].
-func prune(all []delay) []delay {
+// an equal way round over muscle: the network stays small and its shortest times
+// are the field's to within [redundant]. A way round through a fascicle does not
+// count, because the fascicle may be blocked where muscle is not.
+func prune(all []delay, muscle map[string]bool) []delay {
 	order := append([]delay(nil), all...)
 	sort.SliceStable(order, func(i, j int) bool { return order[i].Time > order[j].Time })
 	gone := map[delay]bool{}
@@ -33,7 +34,7 @@ func prune(all []delay) []delay {
 				rest = append(rest, o)
 			}
 		}
-		if shortest(rest, d.From, d.To) <= d.Time+redundant {
+		if shortest(rest, d.From, d.To, muscle) <= d.Time+redundant {
 			gone[d] = true
 		}
 	}
@@ -46,16 +47,19 @@ func prune(all []delay) []delay {
 	return kept
 }
 
-// shortest is the least time between two sites over the given paths
-// (Bellman-Ford; the tables are small).
-func shortest(paths []delay, from, to string) int32 {
+// shortest is the least time between two sites over the given paths, passing
+// through no other sites than those named (Bellman-Ford; the tables are small).
+func shortest(paths []delay, from, to string, through map[string]bool) int32 {
 	at := map[string]int32{from: 0}
 	for changed := true; changed; {
 		changed = false
 		for _, d := range paths {
 			for _, e := range [2][2]string{{d.From, d.To}, {d.To, d.From}} {
 				t, ok := at[e[0]]
-				if old, seen := at[e[1]]; ok && (!seen || t+d.Time < old) {
+				if !ok || e[0] != from && !through[e[0]] {
+					continue
+				}
+				if old, seen := at[e[1]]; !seen || t+d.Time < old {
 					at[e[1]], changed = t+d.Time, true
 				}
 			}
@@ -65,6 +69,15 @@ func shortest(paths []delay, from, to string) int32 {
 		return t
 	}
 	return tissue.Far
+}
+
+// regions are the ventricular sites in muscle.
+func (p *Parameters) regions() map[string]bool {
+	out := map[string]bool{}
+	for _, r := range p.Regions {
+		out[r.Name] = true
+	}
+	return out
 }
 
 // travels lists the times between all pairs of a part's first entries, fascicles
@@ -85,16 +98,12 @@ func travels(p *tissue.Part, sites, fascicles int) []delay {
 // anatomyTable is the Go source of the network's delays.
 func anatomyTable(p *Parameters, ventricles, atria *tissue.Part) []byte {
 	fascicles := p.fascicles()
-	isFascicle := map[string]bool{}
-	for _, f := range fascicles {
-		isFascicle[f] = true
-	}
 	var purkinje, muscle []delay
-	for _, d := range prune(travels(ventricles, len(ventricles.Entries), len(fascicles))) {
-		if isFascicle[d.From] {
-			purkinje = append(purkinje, d)
-		} else {
+	for _, d := range prune(travels(ventricles, len(ventricles.Entries), len(fascicles)), p.regions()) {
+		if p.regions()[d.From] {
 			muscle = append(muscle, d)
+		} else {
+			purkinje = append(purkinje, d)
 		}
 	}
 	var b bytes.Buffer

@@ -6,7 +6,8 @@ import (
 	"gonum.org/v1/gonum/spatial/r3"
 )
 
-// Layer is one sheet of ventricular nodes. The zero value is invalid.
+// Layer is one sheet of ventricular nodes, numbered like [tissue.Kind]. The zero
+// value is invalid.
 type Layer int
 
 const (

@@ -39,7 +39,7 @@ func (p *Part) encode(b []byte) []byte {
 		for _, c := range x {
 			u16(int(math.Round(float64(c) * 100)))
 		}
-		b = append(b, p.Kind[i])
+		b = append(b, byte(p.Kind[i]))
 		u16(int(p.APD[i]+5) / 10)
 	}
 	for n := range p.X {
@@ -144,7 +144,7 @@ func (r *reader) part() *Part {
 	n := r.u16()
 	for i := 0; i < n && r.err == nil; i++ {
 		p.X = append(p.X, [3]float32{float32(r.i16()) / 100, float32(r.i16()) / 100, float32(r.i16()) / 100})
-		p.Kind = append(p.Kind, uint8(r.u8()))
+		p.Kind = append(p.Kind, Kind(r.u8()))
 		p.APD = append(p.APD, int32(r.u16())*10)
 	}
 	var links []Link

@@ -23,7 +23,7 @@ type Part struct {
 	Name    string
 	Graph   Graph
 	X       [][3]float32   // position of each node, mm: left, back, up
-	Kind    []uint8        // layer or chamber of each node, as the generator numbers them
+	Kind    []Kind         // layer or chamber of each node
 	APD     []int32        // duration of each node's action potential at the reference cycle, microseconds
 	Tri     [][3]uint16    // closed surface
 	Weights [Leads][]int16 // per triangle, in steps; each lead's sum to zero
@@ -31,6 +31,21 @@ type Part struct {
 	Shape   Shape
 	Entries []Entry
 }
+
+// Kind is where in a part a node lies. The zero value is invalid.
+type Kind uint8
+
+const (
+	_           Kind = iota
+	LeftInner        // left endocardium
+	LeftMiddle       // middle of the left wall and septum
+	LeftOuter        // left epicardium
+	RightInner       // right free wall, endocardium
+	RightOuter       // right free wall, epicardium
+	RightSeptum      // right side of the septum
+	RightAtrium
+	LeftAtrium
+)
 
 // Shape is the transmembrane potential of a node: a logistic upstroke and a
 // repolarisation that is the product of two logistic falls, rates in 1/ms.
