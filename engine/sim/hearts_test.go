@@ -122,6 +122,9 @@ func (d dice) conduct(grain float64) heart.Conduct {
 	}
 	if d.chance(0.6) {
 		c.Inner = d.either(0.1, 0, d.between(0.2, 1.2))
+		if grain > 0 {
+			c.Inner = float64(d.int(0, 4)) / 4
+		}
 	}
 	if d.chance(0.6) {
 		c.Reach = uint16(d.int(0, 1000))
