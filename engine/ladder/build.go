@@ -95,7 +95,7 @@ func (b *builder) block(e *event.Event) {
 	}
 	p := &b.l.Paths[e.Path]
 	y0, y1 := b.leaves(from), b.lay.y[p.Exit(e.Dir)]
-	bar.Y = y0 + (y1-y0)*float64(e.Depth)/1000
+	bar.Y = y0 + float64((y1-y0)*float64(e.Depth))/1000
 	bar.Tissue, bar.Branch, bar.Label, bar.Up = p.Tissue, b.lay.side(p), b.part(p), y1 < y0
 	s := Stroke{Event: e.ID, T0: from.T, Y0: y0, T1: e.T, Y1: bar.Y, Tissue: p.Tissue, Branch: bar.Branch, End: Blocked}
 	if e.Rule == event.Collision {

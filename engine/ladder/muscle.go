@@ -21,7 +21,7 @@ func (s *spread) at(t tick.Time) float64 {
 	case t >= s.t1:
 		return s.y1
 	}
-	return s.y0 + (s.y1-s.y0)*float64(t-s.t0)/float64(s.t1-s.t0)
+	return s.y0 + float64((s.y1-s.y0)*float64(t-s.t0))/float64(s.t1-s.t0)
 }
 
 // spread of the part that came from above (top) or from below. Two parts meet at

@@ -146,24 +146,27 @@ func (s *sheet) trace(c Class, n lead.Name, zero float64, from, to tick.Time, id
 	if first > last {
 		return
 	}
+	const slack = 1e-9 // a sample on the edge of a column belongs to the column it begins
 	perSample := s.o.MMPerS * lead.Step.MS() / 1000 / s.o.ColumnMM
 	point := func(k int) Point {
 		x := s.Axis.X(tick.Time(k) * tick.Time(lead.Step))
-		return Point{float32(x), float32(zero - float64(mv[k])*s.o.MMPerMV)}
+		return Point{float32(x), float32(zero - float64(float64(mv[k])*s.o.MMPerMV))}
 	}
 	points := make([]Point, 0, min(last-first+1, 2*int(perSample*float64(last-first+1))+8))
 	points = append(points, point(first))
 	for k := first + 1; k < last; {
-		column := math.Floor(float64(k) * perSample)
+		column := math.Floor(float64(k)*perSample + slack)
+		end := min(max(int(math.Ceil((column+1)/perSample-slack)), k+1), last)
 		low, high := k, k
-		for k++; k < last && math.Floor(float64(k)*perSample) == column; k++ {
-			if mv[k] < mv[low] {
-				low = k
+		for j, v := range mv[k:end] {
+			if v < mv[low] {
+				low = k + j
 			}
-			if mv[k] > mv[high] {
-				high = k
+			if v > mv[high] {
+				high = k + j
 			}
 		}
+		k = end
 		points = append(points, point(min(low, high)))
 		if low != high {
 			points = append(points, point(max(low, high)))

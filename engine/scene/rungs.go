@@ -86,7 +86,7 @@ func (r *rungs) open(row int, measures ...ladder.Measure) {
 	}
 }
 
-func (r *rungs) y(units float64) float64 { return r.top + units*r.per }
+func (r *rungs) y(units float64) float64 { return r.top + float64(units*r.per) }
 
 func (r *rungs) tiers(foot float64) {
 	step := r.step(5)

@@ -100,7 +100,7 @@ type Axis struct {
 }
 
 // X is the place of an instant.
-func (a Axis) X(t tick.Time) float64 { return a.X0 + float64(t-a.T0)/1e6*a.MMPerS }
+func (a Axis) X(t tick.Time) float64 { return a.X0 + float64(float64(t-a.T0)/1e6*a.MMPerS) }
 
 // Scene is a finished drawing.
 type Scene struct {

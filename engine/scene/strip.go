@@ -149,7 +149,7 @@ func Page12(in Input, o Options) *Scene {
 
 func begin(in *Input, o Options) *sheet {
 	o.fill(in)
-	s := &sheet{Scene: &Scene{FontMM: o.FontMM, Axis: Axis{T0: o.From, X0: o.Margin, MMPerS: o.MMPerS}}, in: in, o: o, y: pad}
+	s := &sheet{Scene: &Scene{Marks: make([]Mark, 0, 2048), FontMM: o.FontMM, Axis: Axis{T0: o.From, X0: o.Margin, MMPerS: o.MMPerS}}, in: in, o: o, y: pad}
 	s.right = s.Axis.X(o.To)
 	s.Width = max(s.right+pad, 24*o.FontMM)
 	s.room = newRoom(s.Width)
