@@ -10,6 +10,9 @@ import (
 	"escapement/engine/tick"
 )
 
+// step is the quantum of most random hearts.
+const step = 100 * tick.Microsecond
+
 // dice makes random hearts.
 type dice struct{ *rand.Rand }
 

@@ -8,6 +8,8 @@ import (
 
 	"escapement/engine/event"
 	"escapement/engine/plan"
+	"escapement/engine/tick"
+	"escapement/presets"
 )
 
 // TestAgreesWithReferenceOnRandomNetworks has the queue and the fixed-step
@@ -20,6 +22,47 @@ func TestAgreesWithReferenceOnRandomNetworks(t *testing.T) {
 // clinical numbers; those that heart.New refuses are passed over.
 func TestAgreesWithReferenceOnClinicalHearts(t *testing.T) {
 	agree(t, 1000, func(d dice) *plan.Program { return d.clinical() })
+}
+
+// TestAgreesWithReferenceInMicroseconds has the reference step by single
+// microseconds, as the queue does in use.
+func TestAgreesWithReferenceInMicroseconds(t *testing.T) {
+	agree(t, 100, func(d dice) *plan.Program {
+		prog := d.network()
+		prog.Span = 400 * tick.Time(tick.Millisecond)
+		fine(prog)
+		return prog
+	})
+}
+
+// TestAgreesWithReferenceOnPresets compares the two on the heart of every preset,
+// its times rounded to steps.
+func TestAgreesWithReferenceOnPresets(t *testing.T) {
+	for _, e := range presets.List() {
+		b, _ := presets.Read(e.Name)
+		p, err := plan.Decode(b)
+		if err != nil {
+			t.Fatalf("%s: %v", e.Name, err)
+		}
+		prog, err := p.Compile()
+		if err != nil {
+			t.Fatalf("%s: %v", e.Name, err)
+		}
+		for _, h := range hearts(prog) {
+			h.Quantum = step
+		}
+		whole := func(at *tick.Time) { *at -= *at % tick.Time(step) }
+		for i := range prog.Stimuli {
+			whole(&prog.Stimuli[i].T)
+		}
+		for i := range prog.Changes {
+			whole(&prog.Changes[i].T)
+		}
+		prog.Span = min(prog.Span, 30*tick.Time(tick.Second))
+		if d := difference(playProgram(t, prog).Text(), referenceLog(prog).Text()); d != "" {
+			t.Errorf("%s: %s", e.Name, d)
+		}
+	}
 }
 
 func agree(t *testing.T, hearts int, make func(dice) *plan.Program) {
@@ -44,8 +87,7 @@ func agree(t *testing.T, hearts int, make func(dice) *plan.Program) {
 		for _, e := range event.Validate(got) {
 			t.Errorf("seed %d: %v", seed, e)
 		}
-		want := referenceLog(prog)
-		if d := difference(got.Text(), want.Text()); d != "" {
+		if d := difference(got.Text(), referenceLog(prog).Text()); d != "" {
 			t.Fatalf("seed %d: %s%s", seed, d, describe(prog))
 		}
 		events += len(got.Events)

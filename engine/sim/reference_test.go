@@ -11,11 +11,10 @@ import (
 )
 
 // The reference is a slow second implementation of the rules at the top of the
-// package. Time moves by a fixed step; at each step it looks at everything there
+// package. Time moves by a fixed step, the heart's quantum; at each step it looks at everything there
 // is, in the order of the class table, and asks whether it is due. There is no
 // queue. It is meant to be checked against the text by eye: the number of a rule
 // stands beside what follows it.
-const step = 100 * tick.Microsecond
 
 type reference struct {
 	prog  *plan.Program
@@ -88,7 +87,7 @@ func referenceLog(prog *plan.Program) *event.Log {
 		r.foci[i].random = rand.New(rand.NewPCG(prog.Seed, uint64(2*i+1)))
 		r.first(i)
 	}
-	for ; r.now <= prog.Span; r.now = r.now.Add(step) {
+	for ; r.now <= prog.Span; r.now = r.now.Add(prog.Heart.Quantum) {
 		for r.one() {
 		}
 	}
