@@ -108,8 +108,15 @@ async function explain() {
 function build(catalogue) {
   const keys = keysDialog();
   const presets = presetsDialog(store, catalogue);
-  const open = { presets: presets.open, keys: () => keys.showModal() };
   const settings = settingsView(part("settings"), store, catalogue);
+  const open = {
+    presets: presets.open,
+    keys: () => keys.showModal(),
+    wrong: () => {
+      store.set({ drawer: "settings" });
+      settings.focusWrong();
+    },
+  };
   const views = [
     headView(part("head"), store, open),
     settings,

@@ -28,7 +28,8 @@
  * @property {Lane[]} lanes
  * @property {Mark[]} marks
  * @property {Float32Array} points x, y pairs
- * @property {[number, number][]} times id and milliseconds of every event that has a mark
+ * @property {[number, number, number][]} times of every event that has a mark: id, milliseconds,
+ *   and the place, from 1, of the intervention that made it, 0 for none
  */
 
 export const LINE = 1;
@@ -122,4 +123,21 @@ export function nearest(s, x, y, reach) {
     }
   }
   return best ?? area;
+}
+
+/**
+ * The intervention whose ring lies at a place, as its place in the plan's list, or -1.
+ * @param {Scene} s
+ * @param {number} x
+ * @param {number} y
+ * @param {number} reach mm
+ */
+export function handleAt(s, x, y, reach) {
+  for (const [id, , made] of s.times) {
+    if (made === 0) continue;
+    for (const m of s.marks) {
+      if (m.event === id && m.shape === RING && distance(m, x, y) <= reach) return made - 1;
+    }
+  }
+  return -1;
 }

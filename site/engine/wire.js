@@ -50,6 +50,7 @@
  * @property {Preset[]} presets
  * @property {SiteName[]} sites
  * @property {{light: Styles, dark: Styles}} styles
+ * @property {{plain: number, full: number}} margins_mm what a scene needs beside its time axis
  */
 
 /** @typedef {{path: string, found: string, allowed: string, note: string, text: string}} Diagnosis */
@@ -88,7 +89,9 @@
  * @property {number} t_ms
  * @property {string} title
  * @property {string[]} sentences
- * @property {Line[]} chain nearest cause first
+ * @property {string} margin how close it came to going the other way, or ""
+ * @property {Line[]} chain the event, then its causes, to the focus or stimulus
+ * @property {Line[]} led what it caused directly
  */
 
 export {};

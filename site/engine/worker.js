@@ -18,10 +18,11 @@ function listen() {
 }
 
 async function load() {
+  const fetched = fetch("escapement.wasm"); // on its way while the script below loads
   scope.importScripts("wasm_exec.js");
   listen();
   const go = new scope.Go();
-  const response = await fetch("escapement.wasm");
+  const response = await fetched;
   if (!response.ok) throw new Error(`escapement.wasm: the server answered ${response.status}`);
   const { instance } = await instantiate(response, go.importObject);
   const ended = go.run(instance).then(() => {

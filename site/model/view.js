@@ -6,6 +6,7 @@ import { clamp } from "../base/scale.js";
  * @typedef {object} View
  * @property {number} t0_ms instant at the left edge
  * @property {number} width_mm room for the time axis, without the gutter
+ * @property {number} height_mm room from top to bottom
  * @property {number} mm_per_s paper speed
  * @property {number} mm_per_mv gain
  * @property {string[]} leads shown, in the usual order
@@ -21,7 +22,7 @@ const MIN_SPEED = 1;
 const MAX_SPEED = 800;
 
 /** @type {View} */
-export const FIRST_VIEW = { t0_ms: 0, width_mm: 200, mm_per_s: 25, mm_per_mv: 10, leads: ["II", "V1"], ladder: "plain" };
+export const FIRST_VIEW = { t0_ms: 0, width_mm: 200, height_mm: 140, mm_per_s: 25, mm_per_mv: 10, leads: ["I", "II", "V1", "V6"], ladder: "plain" };
 
 /**
  * How much of the strip the view shows, in milliseconds.

@@ -11,9 +11,12 @@ import { rangeBar, verdict } from "./range.js";
  * @typedef {import("../model/store.js").State} State
  * @typedef {import("../engine/wire.js").Account} Account
  * @typedef {import("../engine/wire.js").Answer} Answer
+ * @typedef {import("../engine/wire.js").Line} Line
  * @typedef {import("../engine/wire.js").Measured} Measured
  * @typedef {import("../engine/wire.js").Finding} Finding
  */
+
+const MOST_LED = 12; // consequences listed
 
 /**
  * @param {HTMLElement} root
@@ -36,13 +39,22 @@ export function accountView(root, store) {
   function event(a) {
     title.textContent = a.title;
     back.hidden = false;
+    const [own, ...causes] = a.chain;
     fill(body,
       el("p", { class: "when" }, seconds(a.t_ms)),
       el("div", { class: "sentences" }, a.sentences.map((s) => el("p", null, s))),
-      a.chain.length > 0 && el("h3", null, "How it came about"),
-      a.chain.length > 0 && el("ol", { class: "chain" }, a.chain.map((step) => el("li", null,
-        el("span", { class: "at" }, seconds(step.t_ms)),
-        el("button", { type: "button", class: "link", "data-event": String(step.id), onclick: () => go(step.id, step.t_ms) }, step.text)))));
+      a.margin && !a.sentences.some((s) => s.includes(a.margin)) && el("p", { class: "margin" }, a.margin),
+      causes.length > 0 && el("h3", null, "How it came about"),
+      causes.length > 0 && el("ol", { class: "chain" }, el("li", { class: "own" }, el("span", { class: "at" }, seconds(own.t_ms)), el("span", null, own.text)), causes.map(step)),
+      a.led.length > 0 && el("h3", null, "What it led to"),
+      a.led.length > 0 && el("ol", { class: "led" }, a.led.slice(0, MOST_LED).map(step)));
+  }
+
+  /** @param {Line} s */
+  function step(s) {
+    return el("li", null,
+      el("span", { class: "at" }, seconds(s.t_ms)),
+      el("button", { type: "button", class: "link", "data-event": String(s.id), onclick: () => go(s.id, s.t_ms) }, s.text));
   }
 
   /** @param {Answer} answer @param {State} state */

@@ -2,6 +2,7 @@
 // point at their evidence.
 
 import { el, fill, say } from "../base/dom.js";
+import { count } from "../base/format.js";
 import { reveal } from "../model/view.js";
 
 /**
@@ -13,7 +14,7 @@ import { reveal } from "../model/view.js";
 /**
  * @param {HTMLElement} root
  * @param {Store} store
- * @param {{presets: () => void, keys: () => void}} open
+ * @param {{presets: () => void, keys: () => void, wrong: () => void}} open
  */
 export function headView(root, store, open) {
   const title = el("span", { class: "title" }, "Opening");
@@ -72,8 +73,15 @@ export function headView(root, store, open) {
       }
       if (changed.has("dark")) say(sheet, state.dark ? "Light" : "Dark");
       if (changed.has("answer") && state.answer) {
-        fill(says, state.answer.statement.map((c) => [clause(c), " "]).flat());
-        fill(warnings, state.answer.warnings.map((w) => el("li", null, w)));
+        fill(says, state.answer.statement.map(clause));
+      }
+      if (changed.has("answer") || changed.has("diagnoses")) {
+        const wrong = state.diagnoses.length;
+        fill(warnings,
+          wrong > 0 && el("li", null,
+            state.answer ? "The sheet shows the last values that could be computed: " : "Nothing can be computed: ",
+            el("button", { type: "button", class: "link", id: "show-wrong", onclick: open.wrong }, `${count(wrong, "value")} ${wrong === 1 ? "is" : "are"} wrong`), "."),
+          (state.answer?.warnings ?? []).map((w) => el("li", null, w)));
       }
     },
     destroy() {

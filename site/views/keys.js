@@ -51,7 +51,7 @@ export function timelineKeys(e, store) {
     End: () => store.set({ view: pan({ ...view, t0_ms: span }, 0, span) }),
     ",": () => step(store, -1),
     ".": () => step(store, 1),
-    c: () => account && account.chain.length > 0 && store.set({ selected: account.chain[0].id }),
+    c: () => account && account.chain.length > 1 && store.set({ selected: account.chain[1].id }),
     Escape: () => store.set({ selected: 0 }),
     "+": () => store.set({ view: zoomTo(view, view.mm_per_s * 1.25, centre, span) }),
     "=": () => store.set({ view: zoomTo(view, view.mm_per_s * 1.25, centre, span) }),

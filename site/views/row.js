@@ -21,7 +21,8 @@ import { rangeBar, valueAt } from "./range.js";
  * @property {string} path in the plan, with list places filled in
  * @property {(state: State) => void} update
  * @property {(state: State) => boolean} changed from the default
- * @property {() => void} focus
+ * @property {(state: State) => boolean} absent: a part of the heart that is switched off
+ * @property {() => boolean} wrong
  */
 
 /** How far one press of an arrow key goes, by unit. @type {Record<string, number>} */
@@ -127,6 +128,8 @@ export function makeRow(store, field, path = field.path) {
   /** @param {KeyboardEvent} e */
   function keys(e) {
     if (e.key === "Escape") {
+      const now = get(store.get().plan, path);
+      if (JSON.stringify(now) === JSON.stringify(before)) return; // nothing to put back: the key is for others
       e.stopPropagation();
       write(before);
       show(store.get(), true);
@@ -203,9 +206,8 @@ export function makeRow(store, field, path = field.path) {
       node.classList.toggle("wrong", own.length > 0);
       if (control instanceof HTMLInputElement || control instanceof HTMLSelectElement) control.setAttribute("aria-invalid", String(own.length > 0));
     },
-    focus() {
-      control.focus();
-    },
+    absent: (state) => field.kind === "group" && value(state) === null,
+    wrong: () => node.classList.contains("wrong"),
   };
 }
 

@@ -38,8 +38,8 @@ const PLACES = [
  * @typedef {object} Section
  * @property {HTMLElement} node
  * @property {Row[]} rows
- * @property {Row[]} folded
- * @property {HTMLDetailsElement} more
+ * @property {HTMLButtonElement} more shows the rows that few people need
+ * @property {boolean} open
  * @property {string} title
  */
 
@@ -54,7 +54,7 @@ export function settingsView(root, store, catalogue) {
   const onlyCount = el("span", null, "changed only");
   const loose = el("ul", { class: "loose", role: "alert" });
   const body = el("div", { class: "settings-body" });
-  const foot = el("p", { class: "settings-help" });
+  const foot = el("p", { class: "settings-help" }, "Point at a name to read what it means and what is normal.");
   root.append(
     el("div", { class: "part" }, el("h2", null, "Settings"),
       el("label", { class: "only" }, only, onlyCount),
@@ -70,11 +70,9 @@ export function settingsView(root, store, catalogue) {
     const [, group, title] = PLACES.find(([at]) => at === "" || field.path === at || field.path.startsWith(`${at}.`)) ?? PLACES[PLACES.length - 1];
     const section = sections.find((s) => s.title === title && groups.get(group)?.contains(s.node)) ?? open(group, title);
     const row = makeRow(store, field);
-    (field.advanced ? section.folded : section.rows).push(row);
-    if (field.advanced) section.more.append(row.node);
-    else section.node.insertBefore(row.node, section.more);
+    section.rows.push(row);
+    section.node.insertBefore(row.node, section.more);
   }
-  for (const s of sections) s.more.hidden = s.folded.length === 0;
   const foci = fociView(store, catalogue);
   groups.get("Heart")?.append(foci.node);
   const interventions = interventionsView(store, catalogue);
@@ -97,46 +95,56 @@ export function settingsView(root, store, catalogue) {
 
   /** @param {string} group @param {string} title @returns {Section} */
   function open(group, title) {
-    const more = el("details", { class: "more" }, el("summary", null, "more"));
+    const more = el("button", {
+      type: "button", class: "more", "aria-expanded": "false",
+      onclick: () => {
+        s.open = !s.open;
+        sift();
+      },
+    }, "more");
     const node = el("section", null, title && el("h4", null, title), more);
     fold(group).append(node);
-    const s = { node, rows: [], folded: [], more, title };
+    /** @type {Section} */
+    const s = { node, rows: [], more, title, open: false };
     sections.push(s);
     return s;
   }
 
-  /** Shows the rows that the search and the filter let through. */
+  /**
+   * Shows the rows that the search, the filter and the folds let through. A row
+   * that is changed or wrong is never folded away.
+   */
   function sift() {
     const wanted = search.value.trim().toLowerCase();
     const state = store.get();
     const filtered = wanted !== "" || only.checked;
+    const absent = sections.flatMap((s) => s.rows).filter((r) => r.absent(state)).map((r) => `${r.path}.`);
     let found = 0;
     for (const s of sections) {
       let any = 0;
-      let anyFolded = 0;
-      for (const row of [...s.rows, ...s.folded]) {
+      let away = 0;
+      for (const row of s.rows) {
         const words = `${s.title} ${row.field.label} ${row.field.path} ${row.field.help ?? ""}`.toLowerCase();
-        const wrong = row.node.classList.contains("wrong");
-        const shown = (wanted === "" || words.includes(wanted)) && (!only.checked || row.changed(state) || wrong);
-        row.node.hidden = !shown;
-        if (shown) {
-          any++;
-          if (row.field.advanced) anyFolded++;
-        }
+        const telling = row.changed(state) || row.wrong();
+        const fits = (wanted === "" || words.includes(wanted)) && (!only.checked || telling) && !absent.some((a) => row.path.startsWith(a));
+        const folded = row.field.advanced === true && !telling && !s.open && !filtered;
+        row.node.hidden = !fits || folded;
+        if (fits) any++;
+        if (fits && row.field.advanced && !telling) away++;
       }
       found += any;
       s.node.hidden = any === 0;
-      s.more.hidden = anyFolded === 0;
-      if (filtered && anyFolded > 0) s.more.open = true;
+      s.more.hidden = away === 0 || filtered;
+      say(s.more, s.open ? "less" : "more");
+      s.more.setAttribute("aria-expanded", String(s.open));
     }
-    if (!filtered) for (const s of sections) s.more.open = s.folded.some((r) => r.changed(state) || r.node.classList.contains("wrong"));
-    foci.node.hidden = wanted !== "" && !"foci focus rate site escape".includes(wanted) || only.checked && foci.count() === 0;
-    last.hidden = wanted !== "" && !"interventions premature beat train change stimulate set".includes(wanted) || only.checked && interventions.count() === 0;
+    foci.node.hidden = (wanted !== "" && !"foci focus rate site escape".includes(wanted)) || (only.checked && foci.count() === 0);
+    last.hidden = (wanted !== "" && !"interventions premature beat train change stimulate set".includes(wanted)) || (only.checked && interventions.count() === 0);
     for (const [name, g] of groups) {
-      if (name !== "Interventions") g.hidden = filtered && ![...g.children].some((c) => c.tagName === "SECTION" && !(/** @type {HTMLElement} */ (c).hidden));
+      if (name !== "Interventions") g.hidden = filtered && !g.querySelector(":scope > section:not([hidden])");
+      if (filtered) g.open = true;
     }
-    if (filtered) for (const g of groups.values()) g.open = true;
-    if (wanted !== "") say(foot, found === 0 ? `Nothing is called “${search.value.trim()}”.` : count(found, "setting"));
+    if (wanted !== "") say(foot, found === 0 ? `No setting is called “${search.value.trim()}”.` : count(found, "setting"));
   }
 
   /** Says what the row under the pointer or the focus means. @param {Event} e */
@@ -157,37 +165,25 @@ export function settingsView(root, store, catalogue) {
       if (!["plan", "diagnoses", "catalogue"].some((k) => changed.has(k)) && !first) return;
       foci.update(state);
       interventions.update(state);
-      const rows = sections.flatMap((s) => [...s.rows, ...s.folded]);
+      const rows = sections.flatMap((s) => s.rows);
       for (const row of rows) row.update(state);
-      hideInsideAbsent(rows, state);
       const differ = rows.filter((r) => r.changed(state)).length;
       say(onlyCount, differ === 0 ? "changed only" : `changed only (${differ})`);
       const known = new Set([...root.querySelectorAll(".row.wrong")].map((n) => n.getAttribute("data-path")));
       const elsewhere = state.diagnoses.filter((d) => ![...known].some((p) => p !== null && (d.path === p || d.path.startsWith(`${p}[`))));
       fill(loose, elsewhere.map((d) => el("li", null, d.text)));
-      if (first || changed.has("preset") || only.checked) sift();
-      else for (const s of sections) if (s.folded.some((r) => r.node.classList.contains("wrong"))) s.more.open = true;
+      sift();
       first = false;
     },
     focusSearch() {
       search.focus();
       search.select();
     },
+    focusWrong() {
+      /** @type {HTMLElement | null} */ (root.querySelector(".row.wrong input, .row.wrong select"))?.focus();
+    },
     destroy() {
       fill(root);
     },
   };
-}
-
-/**
- * A part that is absent has no values to set: its rows are not offered.
- * @param {Row[]} rows
- * @param {State} state
- */
-function hideInsideAbsent(rows, state) {
-  const absent = rows.filter((r) => r.field.kind === "group" && /** @type {HTMLInputElement | null} */ (r.node.querySelector(".off input"))?.checked);
-  for (const row of rows) {
-    row.node.classList.toggle("absent", absent.some((a) => row.path.startsWith(`${a.path}.`)));
-  }
-  void state;
 }

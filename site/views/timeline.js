@@ -4,8 +4,9 @@ import { el, say } from "../base/dom.js";
 import { nextFrame } from "../base/frame.js";
 import { seconds } from "../base/format.js";
 import { PX_PER_MM } from "../base/scale.js";
-import { nearest, placeOf, timeAt } from "../engine/scene.js";
+import { handleAt, nearest, placeOf, timeAt } from "../engine/scene.js";
 import { pan, zoomTo } from "../model/view.js";
+import { grip } from "./grip.js";
 import { paint } from "./paint.js";
 import { timelineKeys } from "./keys.js";
 
@@ -18,7 +19,6 @@ import { timelineKeys } from "./keys.js";
 
 const REACH_PX = 9; // how near a press must be to a mark
 const SNAP_PX = 7; // how near the hair line must be to an event to jump to it
-const FAMILY = 'system-ui, -apple-system, "Segoe UI", Roboto, "Noto Sans", "Liberation Sans", Arial, sans-serif';
 
 /**
  * @param {HTMLElement} root
@@ -30,7 +30,8 @@ export function timelineView(root, store, _engine, catalogue) {
   const canvas = el("canvas", { role: "img" });
   const hairTime = el("span", { class: "hair-time" });
   const hair = el("div", { class: "hair", hidden: true, "aria-hidden": "true" }, hairTime);
-  const paper = el("div", { class: "paper" }, canvas, hair);
+  const pin = el("div", { class: "pin", hidden: true, "aria-hidden": "true" });
+  const paper = el("div", { class: "paper" }, canvas, pin, hair);
   const pane = el("div", {
     id: "timeline", class: "timeline", tabIndex: 0, role: "group",
     "aria-label": "Timeline. Arrow keys pan, comma and full stop walk the events, question mark lists all keys.",
@@ -60,8 +61,17 @@ export function timelineView(root, store, _engine, catalogue) {
     g.setTransform(k, 0, 0, k, 0, 0);
     g.fillStyle = styles.paper;
     g.fillRect(0, 0, scene.width, scene.height);
-    paint(g, scene, styles, FAMILY, { hairMM: 1 / k });
+    paint(g, scene, styles, getComputedStyle(pane).fontFamily, { hairMM: 1 / k });
     canvas.dataset.marks = String(scene.marks.length);
+    stick();
+  }
+
+  /** Puts the pin at the selected event, through every lane. */
+  function stick() {
+    const { scene, selected } = store.get();
+    const at = scene?.times.find((s) => s[0] === selected);
+    pin.hidden = selected === 0 || !at || !scene;
+    if (at && scene) pin.style.transform = `translateX(${placeOf(scene, at[1]) * PX_PER_MM}px)`;
   }
 
   function hideHair() {
@@ -105,6 +115,19 @@ export function timelineView(root, store, _engine, catalogue) {
     hairTime.classList.toggle("left", px > width - 80);
     say(hairTime, seconds(t));
     pane.classList.toggle("over-mark", hit !== null);
+    pane.classList.toggle("over-handle", handleAt(scene, x, y, REACH_PX / PX_PER_MM) >= 0);
+  }
+
+  /** The value at the pointer while something is moved. @param {number} ms */
+  function showMoved(ms) {
+    const { scene } = store.get();
+    if (!scene) return;
+    const px = placeOf(scene, ms) * PX_PER_MM;
+    hair.hidden = false;
+    hair.classList.add("snapped");
+    hair.style.transform = `translateX(${px}px)`;
+    hairTime.classList.toggle("left", px > width - 80);
+    say(hairTime, `at ${Math.round(ms)} ms`);
   }
 
   /** @param {PointerEvent} e */
@@ -116,7 +139,7 @@ export function timelineView(root, store, _engine, catalogue) {
     store.set({ selected: hit?.event ?? 0, drawer: hit && narrow() ? "account" : store.get().drawer });
   }
 
-  const hand = grip(canvas, store, { moveHair, hideHair, pick, place });
+  const hand = grip(canvas, store, { moveHair, hideHair, pick, place, showMoved }, REACH_PX);
 
   pane.addEventListener("wheel", (e) => {
     const { scene, answer, view } = store.get();
@@ -135,21 +158,31 @@ export function timelineView(root, store, _engine, catalogue) {
     store.set({ view: pan(view, (px / PX_PER_MM / view.mm_per_s) * 1000, answer.span_ms) });
   }, { passive: false });
 
-  const watch = new ResizeObserver(() => {
-    if (pane.clientWidth === width || pane.clientWidth === 0) return;
+  /** Tells the view how much room there is. */
+  function fit() {
+    if (pane.clientWidth === 0) return;
     width = pane.clientWidth;
-    store.set({ view: { ...store.get().view, width_mm: width / PX_PER_MM } });
+    const width_mm = Math.max(20, width / PX_PER_MM - catalogue.margins_mm[store.get().view.ladder]);
+    const height_mm = Math.floor(pane.clientHeight / PX_PER_MM);
+    const { view } = store.get();
+    if (view.width_mm === width_mm && view.height_mm === height_mm) return;
+    store.set({ view: { ...view, width_mm, height_mm } });
     nextFrame(draw);
-  });
+  }
+  const watch = new ResizeObserver(fit);
   watch.observe(pane);
 
   return {
     /** @param {State} state @param {Set<string>} changed */
     update(state, changed) {
       if (changed.has("scene") || changed.has("dark")) draw();
-      if (changed.has("view")) hideHair();
+      else if (changed.has("selected")) stick();
+      if (changed.has("view")) {
+        hideHair();
+        fit();
+      }
       if (changed.has("answer") && state.answer) {
-        canvas.setAttribute("aria-label", `Leads and ladder diagram. ${state.answer.statement.map((c) => c.text).join(" ")}`);
+        canvas.setAttribute("aria-label", `Leads and ladder diagram. ${state.answer.statement.map((c) => c.text).join("")}`);
         document.body.dataset.fingerprint = state.answer.fingerprint;
       }
       if (changed.has("tab")) pane.hidden = state.tab !== "timeline";
@@ -165,80 +198,4 @@ export function timelineView(root, store, _engine, catalogue) {
 /** Whether Settings and Account are drawers. */
 function narrow() {
   return matchMedia("(max-width: 1100px)").matches;
-}
-
-/**
- * Pointers on the canvas: one that moves pans, one that does not picks, two pinch.
- * @param {HTMLCanvasElement} canvas
- * @param {Store} store
- * @param {{moveHair: (e: PointerEvent) => void, hideHair: () => void, pick: (e: PointerEvent) => void, place: (e: PointerEvent) => {x: number, y: number}}} on
- */
-function grip(canvas, store, on) {
-  /** @type {Map<number, {x: number, y: number}>} */
-  const down = new Map();
-  let moved = false;
-  let from = { x: 0, t0: 0 };
-  let pinch = { gap: 0, speed: 0, t: 0 };
-
-  const gap = () => {
-    const [a, b] = [...down.values()];
-    return Math.max(20, Math.abs(a.x - b.x));
-  };
-
-  /** @param {PointerEvent} e */
-  function press(e) {
-    if (e.button !== 0) return;
-    canvas.setPointerCapture(e.pointerId);
-    down.set(e.pointerId, { x: e.clientX, y: e.clientY });
-    const { view, scene } = store.get();
-    if (down.size === 1) {
-      moved = false;
-      from = { x: e.clientX, t0: view.t0_ms };
-    } else if (down.size === 2 && scene) {
-      moved = true;
-      pinch = { gap: gap(), speed: view.mm_per_s, t: timeAt(scene, on.place(e).x) };
-    }
-  }
-
-  /** @param {PointerEvent} e */
-  function move(e) {
-    const at = down.get(e.pointerId);
-    const { view, answer } = store.get();
-    if (!at || !answer) {
-      if (e.pointerType !== "touch") on.moveHair(e);
-      return;
-    }
-    at.x = e.clientX;
-    at.y = e.clientY;
-    if (down.size === 2) {
-      store.set({ view: zoomTo(view, (pinch.speed * gap()) / pinch.gap, pinch.t, answer.span_ms) });
-      return;
-    }
-    const dx = e.clientX - from.x;
-    if (!moved && Math.abs(dx) < 4) return;
-    moved = true;
-    canvas.classList.add("grabbed");
-    on.hideHair();
-    const t0_ms = from.t0 - (dx / PX_PER_MM / view.mm_per_s) * 1000;
-    store.set({ view: pan({ ...view, t0_ms }, 0, answer.span_ms) });
-  }
-
-  /** @param {PointerEvent} e */
-  function lift(e) {
-    const was = down.delete(e.pointerId);
-    canvas.classList.remove("grabbed");
-    if (was && !moved && e.type === "pointerup") on.pick(e);
-    if (down.size === 1) from = { x: [...down.values()][0].x, t0: store.get().view.t0_ms };
-  }
-
-  canvas.addEventListener("pointerdown", press);
-  canvas.addEventListener("pointermove", move);
-  canvas.addEventListener("pointerup", lift);
-  canvas.addEventListener("pointercancel", lift);
-  canvas.addEventListener("pointerleave", on.hideHair);
-  return {
-    destroy() {
-      down.clear();
-    },
-  };
 }

@@ -11,7 +11,8 @@ import { fitSpeed, GAINS, LEADS, shown, SPEEDS, zoomTo } from "../model/view.js"
 
 /** @type {[string, string[]][]} */
 const SETS = [
-  ["II, V1", ["II", "V1"]],
+  ["usual", ["I", "II", "V1", "V6"]],
+  ["II", ["II"]],
   ["limb", LEADS.slice(0, 6)],
   ["chest", LEADS.slice(6)],
   ["all twelve", LEADS],
@@ -71,24 +72,29 @@ export function toolbarView(root, store) {
     leads,
     group("Speed", speeds, fit, el("button", { type: "button", onclick: () => speed(view().mm_per_s / 1.25), "aria-label": "Squeeze time" }, "−"),
       el("button", { type: "button", onclick: () => speed(view().mm_per_s * 1.25), "aria-label": "Stretch time" }, "+"), current),
-    group("Gain", gains, el("span", { class: "reading" }, "mm/mV")),
+    group("Gain", gains),
     group("Ladder", ladders),
     el("button", { type: "button", class: "drawer-open last", id: "open-account", onclick: () => store.set({ drawer: "account" }) }, "Account"));
   root.append(bar);
+  const drawing = [leads, ...bar.querySelectorAll(".group")]; // of no use to the listing
 
   return {
     /** @param {State} state @param {Set<string>} changed */
     update(state, changed) {
-      if (changed.has("tab")) tabs.forEach((b) => b.setAttribute("aria-selected", String(b.id === `tab-${state.tab}`)));
+      if (changed.has("tab")) {
+        tabs.forEach((b) => b.setAttribute("aria-selected", String(b.id === `tab-${state.tab}`)));
+        for (const d of drawing) d.toggleAttribute("hidden", state.tab !== "timeline");
+      }
       if (!changed.has("view") && !changed.has("answer")) return;
       const v = state.view;
       boxes.forEach((b) => {
         b.checked = v.leads.includes(b.value);
       });
-      say(leadsName, v.leads.length === 12 ? "all" : v.leads.length === 0 ? "none" : v.leads.length > 3 ? `${v.leads.length} of 12` : v.leads.join(", "));
+      say(leadsName, v.leads.length === 12 ? "all" : v.leads.length === 0 ? "none" : v.leads.length > 4 ? `${v.leads.length} of 12` : v.leads.join(", "));
       speeds.forEach((b, i) => mark(b, Math.abs(v.mm_per_s - SPEEDS[i]) < 0.01));
       mark(fit, state.answer !== null && Math.abs(v.mm_per_s - fitSpeed(v, state.answer.span_ms)) < 0.01);
-      say(current, `${num(v.mm_per_s, v.mm_per_s < 10 ? 1 : 0)} mm/s`);
+      const named = [...speeds, fit].some((b) => b.getAttribute("aria-pressed") === "true");
+      say(current, named ? "" : num(v.mm_per_s, v.mm_per_s < 10 ? 1 : 0));
       gains.forEach((b, i) => mark(b, v.mm_per_mv === GAINS[i]));
       ladders.forEach((b) => mark(b, b.textContent === v.ladder));
     },

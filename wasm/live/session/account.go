@@ -1,5 +1,77 @@
 package session
 
-func (s *Session) account(args []byte) []byte { return none }
+import (
+	"strings"
 
-func (s *Session) listing(args []byte) []byte { return none }
+	"escapement/engine/account"
+	"escapement/engine/event"
+	"escapement/engine/tick"
+)
+
+// line is an event in one sentence.
+type line struct {
+	ID   event.ID `json:"id"`
+	T    float64  `json:"t_ms"`
+	Text string   `json:"text"`
+}
+
+type accountReply struct {
+	Event     event.ID `json:"event"`
+	T         float64  `json:"t_ms"`
+	Title     string   `json:"title"`
+	Sentences []string `json:"sentences"`
+	Margin    string   `json:"margin"` // how close it came to going the other way; may be empty
+	Chain     []line   `json:"chain"`  // the event, then its causes
+	Led       []line   `json:"led"`    // what it caused directly
+}
+
+func (s *Session) account(args []byte) []byte {
+	var q struct {
+		Event event.ID `json:"event"`
+	}
+	decode(args, &q)
+	if s.current == nil {
+		return none
+	}
+	a := account.Of(s.current.log, q.Event)
+	if a == nil {
+		return none
+	}
+	r := accountReply{Event: a.ID, T: a.T.MS(), Title: a.Title, Sentences: a.Sentences, Chain: steps(a.Chain), Led: steps(a.Led)}
+	if a.Margin != nil {
+		r.Margin = a.Margin.Text
+	}
+	return encode(r)
+}
+
+func steps(from []account.Step) []line {
+	out := make([]line, len(from))
+	for i, s := range from {
+		out[i] = line{s.ID, s.T.MS(), s.Text}
+	}
+	return out
+}
+
+type listingReply struct {
+	Lines []line `json:"lines"`
+}
+
+func (s *Session) listing(args []byte) []byte {
+	var q struct {
+		From float64 `json:"from_ms"`
+		To   float64 `json:"to_ms"`
+	}
+	decode(args, &q)
+	if s.current == nil {
+		return none
+	}
+	r := listingReply{Lines: []line{}}
+	for _, l := range account.Listing(s.current.log, tick.Time(tick.MS(q.From)), tick.Time(tick.MS(q.To))) {
+		text := l.Text
+		if _, rest, ok := strings.Cut(text, " s: "); ok { // the page has a column for the time
+			text = rest
+		}
+		r.Lines = append(r.Lines, line{l.ID, l.T.MS(), text})
+	}
+	return encode(r)
+}

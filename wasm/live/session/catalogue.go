@@ -17,7 +17,10 @@ type catalogueReply struct {
 		Light json.RawMessage `json:"light"`
 		Dark  json.RawMessage `json:"dark"`
 	} `json:"styles"`
-	Margin float64 `json:"margin_mm"` // what a scene needs beside its time axis
+	Margins struct { // what a scene needs beside its time axis
+		Plain float64 `json:"plain"`
+		Full  float64 `json:"full"`
+	} `json:"margins_mm"`
 }
 
 type preset struct {
@@ -31,7 +34,8 @@ type site struct {
 }
 
 func catalogue() *catalogueReply {
-	r := &catalogueReply{Fields: plan.Catalogue(), Margin: margin + edge}
+	r := &catalogueReply{Fields: plan.Catalogue()}
+	r.Margins.Plain, r.Margins.Full = marginPlain+edge, marginFull+edge
 	for _, e := range presets.List() {
 		file, ok := presets.Read(e.Name)
 		if !ok {

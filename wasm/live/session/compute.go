@@ -4,6 +4,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"strings"
 	"time"
 
 	"escapement/engine/event"
@@ -100,16 +101,10 @@ func diagnose(err error) []diagnosis {
 func (t *timeline) answer() *answer {
 	a := &answer{
 		Title: t.plan.Title, Note: t.plan.Note,
-		Statement: []clause{}, Warnings: []string{}, Findings: []finding{},
+		Statement: sentence(t.report.Statement, t.report.Clauses), Warnings: []string{}, Findings: []finding{},
 		Measured: numbers(&t.report.Summary), Events: len(t.log.Events), Span: t.log.Span.MS(),
 		Fingerprint: fmt.Sprintf("%016x", t.log.Fingerprint()),
 		Overview:    t.overview(),
-	}
-	for _, c := range t.report.Clauses {
-		a.Statement = append(a.Statement, clause{c.Text, list(c.Evidence)})
-	}
-	if len(a.Statement) == 0 && t.report.Statement != "" {
-		a.Statement = append(a.Statement, clause{t.report.Statement, []event.ID{}})
 	}
 	for i := range t.report.Findings {
 		f := &t.report.Findings[i]
@@ -134,4 +129,26 @@ func list(ids []event.ID) []event.ID {
 		return []event.ID{}
 	}
 	return ids[:min(len(ids), evidenceLimit)]
+}
+
+// sentence cuts the statement at its clauses: text with the events it rests on,
+// and what stands between as text that rests on none.
+func sentence(text string, clauses []measure.Clause) []clause {
+	out := []clause{}
+	plain := func(s string) {
+		if s != "" {
+			out = append(out, clause{s, []event.ID{}})
+		}
+	}
+	for _, c := range clauses {
+		at := strings.Index(strings.ToLower(text), strings.ToLower(c.Text))
+		if at < 0 || at+len(c.Text) > len(text) {
+			continue
+		}
+		plain(text[:at])
+		out = append(out, clause{text[at : at+len(c.Text)], list(c.Evidence)})
+		text = text[at+len(c.Text):]
+	}
+	plain(text)
+	return out
 }

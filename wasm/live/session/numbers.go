@@ -30,7 +30,7 @@ func numbers(s *measure.Summary) []number {
 		{"p_ms", "P", s.P, "ms", between(60, 120), "Duration in all leads together.", "Upper limit: consensus on interatrial block, Bayes de Luna et al., 2012; lower end common practice."},
 		{"qrs_ms", "QRS", s.QRS, "ms", between(70, 110), "Duration in all leads together.", aha3},
 		{"qt_ms", "QT", s.QT, "ms", nil, "Start of QRS to end of T in all leads together.", ""},
-		{"qtc_fridericia_ms", "QTc Fridericia", s.Fridericia, "ms", between(350, 450), "QT divided by the cube root of RR in seconds.", aha4},
+		{"qtc_fridericia_ms", "QTcF", s.Fridericia, "ms", between(350, 450), "QT corrected by Fridericia: divided by the cube root of RR in seconds.", aha4},
 		{"qrs_axis_deg", "QRS axis", s.QRSAxis, "°", between(-30, 90), "In the frontal plane, by area.", aha3},
 		{"p_axis_deg", "P axis", s.PAxis, "°", between(0, 75), "In the frontal plane, by area.", "Common practice."},
 		{"ah_ms", "AH", s.AH, "ms", between(55, 125), "Low atrial septum to His bundle.", alboni},

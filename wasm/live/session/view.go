@@ -11,11 +11,12 @@ import (
 )
 
 // Sizes of the page's scenes in millimetres: the font is 12 CSS pixels for the
-// usual text, the margin holds the longest name of a tier.
+// usual text, the margins hold the longest name of a tier.
 const (
-	fontMM = 3.4
-	margin = 25
-	edge   = 2
+	fontMM      = 3.4
+	marginPlain = 16
+	marginFull  = 25
+	edge        = 2
 )
 
 // view is what the page wants to see.
@@ -44,14 +45,33 @@ func (s *Session) layout(args []byte) ([]byte, []float32) {
 // scene lays out the part of the timeline that the view asks for and adds the
 // times of the events in it.
 func (t *timeline) scene(q *view) ([]byte, []float32) {
-	form := ladder.Plain
+	form, margin := ladder.Plain, float64(marginPlain)
 	if q.View.Ladder == "full" {
-		form = ladder.Full
+		form, margin = ladder.Full, marginFull
 	}
+	in := scene.Input{Log: t.log, Record: t.record, Diagram: t.diagram(form)}
 	o := t.options(q)
-	drawn := scene.Strip(scene.Input{Log: t.log, Record: t.record, Diagram: t.diagram(form)}, o)
+	o.Margin = margin
+	o.LadderMM = ladderHeight(in, o, q.View.Height)
+	drawn := scene.Strip(in, o)
 	meta, points := scene.Encode(drawn)
 	return append(meta[:len(meta)-1], append(append([]byte(`,"times":`), encode(t.times(drawn))...), '}')...), points
+}
+
+// A tier is between so many millimetres high: readable, and not stretched beyond
+// what the eye takes in as one ladder.
+const (
+	leastTier = 9.5
+	mostTier  = 26
+)
+
+// ladderHeight lets the ladder take what room the page has left below the leads.
+// A strip of no length tells how much the rest takes.
+func ladderHeight(in scene.Input, o scene.Options, room float64) float64 {
+	units := in.Diagram.Height()
+	o.LadderMM, o.To = leastTier*units, o.From+1
+	rest := scene.Strip(in, o).Height - o.LadderMM
+	return math.Min(math.Max(room-rest, leastTier*units), mostTier*units)
 }
 
 func (t *timeline) options(q *view) scene.Options {
@@ -66,7 +86,7 @@ func (t *timeline) options(q *view) scene.Options {
 	}
 	room := math.Max(v.Width, 20)
 	to := min(from.Add(tick.MS(math.Min(room/speed*1000, 1e9))), t.log.Span)
-	o := scene.Options{From: from, To: to, MMPerS: speed, MMPerMV: v.MMPerMV, Margin: margin, FontMM: fontMM, ColumnMM: 0.13, Grid: true}
+	o := scene.Options{From: from, To: to, MMPerS: speed, MMPerMV: v.MMPerMV, FontMM: fontMM, ColumnMM: 0.13, Grid: true}
 	for _, name := range v.Leads {
 		if l, ok := lead.Parse(name); ok {
 			o.Leads = append(o.Leads, l)
@@ -87,17 +107,37 @@ func (t *timeline) diagram(f ladder.Form) *ladder.Diagram {
 	return d
 }
 
-// times gives id and milliseconds of every event that has a mark.
-func (t *timeline) times(s *scene.Scene) [][2]float64 {
+// times gives, for every event that has a mark, its id, its milliseconds and the
+// place, from 1, of the intervention that made it; 0 for none.
+func (t *timeline) times(s *scene.Scene) [][3]float64 {
 	seen := map[event.ID]bool{}
-	out := [][2]float64{}
+	out := [][3]float64{}
 	for i := range s.Marks {
 		id := s.Marks[i].Event
 		if id == 0 || seen[id] {
 			continue
 		}
 		seen[id] = true
-		out = append(out, [2]float64{float64(id), t.log.At(id).T.MS()})
+		e := t.log.At(id)
+		out = append(out, [3]float64{float64(id), e.T.MS(), float64(t.intervention(e))})
 	}
 	return out
+}
+
+// intervention is the place, from 1, of the planned stimulus or the train that
+// begins with this one; moving it moves the event.
+func (t *timeline) intervention(e *event.Event) int {
+	if e.Kind != event.Stimulus {
+		return 0
+	}
+	do := "stimulate"
+	if e.Rule == event.Train {
+		do = "train"
+	}
+	for i, it := range t.plan.Interventions {
+		if it["do"].Text == do && tick.Time(tick.MS(it["at_ms"].Number)) == e.T && it["site"].Text == t.log.Sites[e.Site].Name {
+			return i + 1
+		}
+	}
+	return 0
 }

@@ -1,0 +1,161 @@
+// The modules that know no document.
+
+import assert from "node:assert/strict";
+import { test } from "node:test";
+import { num, typed } from "../base/format.js";
+import { timeScale, tOf, xOf } from "../base/scale.js";
+import { nearest, placeOf, readScene, timeAt } from "../engine/scene.js";
+import { covers, drop, get, put, steps } from "../model/path.js";
+import { createStore } from "../model/store.js";
+import { FIRST_VIEW, fitSpeed, onStrip, pan, reveal, shown, zoomTo } from "../model/view.js";
+import { fraction, valueAt, verdict } from "../views/range.js";
+
+test("a path is read into steps", () => {
+  assert.deepEqual(steps("heart.foci[2].rate_bpm"), ["heart", "foci", 2, "rate_bpm"]);
+});
+
+test("putting a value leaves the old plan as it was and shares what stayed", () => {
+  const plan = { format: "f", heart: { sinus: { rate_bpm: 60 }, atria: { erp_ms: 200 } } };
+  const next = put(plan, "heart.sinus.rate_bpm", 90);
+  assert.equal(plan.heart.sinus.rate_bpm, 60);
+  assert.equal(get(next, "heart.sinus.rate_bpm"), 90);
+  assert.equal(next.heart.atria, plan.heart.atria);
+});
+
+test("putting below null or nothing makes the objects on the way", () => {
+  assert.deepEqual(put({ heart: { right_bundle: null } }, "heart.right_bundle.erp_ms", 400), { heart: { right_bundle: { erp_ms: 400 } } });
+  assert.deepEqual(put({}, "interventions[0]", { at_ms: 1 }), { interventions: [{ at_ms: 1 }] });
+});
+
+test("dropping the last value drops the objects that held it", () => {
+  assert.deepEqual(drop({ format: "f", heart: { sinus: { rate_bpm: 60 } } }, "heart.sinus.rate_bpm"), { format: "f" });
+});
+
+test("dropping a list's member moves the others up, and the last takes the list along", () => {
+  assert.deepEqual(drop({ l: [{ a: 1 }, { a: 2 }] }, "l[0]"), { l: [{ a: 2 }] });
+  assert.deepEqual(drop({ f: 1, l: [{ a: 1 }] }, "l[0]"), { f: 1 });
+});
+
+test("put and get agree, and drop undoes put on a plan that lacked the place", () => {
+  for (const path of ["a", "a.b.c", "heart.av_node.fast.ah_ms"]) {
+    assert.equal(get(put({}, path, 7), path), 7);
+    assert.deepEqual(drop(put({}, path, 7), path), {});
+  }
+});
+
+test("a diagnosis below a row's place belongs to the row", () => {
+  assert.equal(covers("interventions[0].extras_ms", "interventions[0].extras_ms[1]"), true);
+  assert.equal(covers("heart.sinus", "heart.sinusoid"), false);
+});
+
+test("typed text is a number where it reads as one", () => {
+  for (const [text, want] of /** @type {[string, any][]} */ ([["80", 80], [" 80,5 ", 80.5], ["−3", -3], ["", undefined], ["  ", undefined], ["3:2", "3:2"], ["8o", "8o"], ["1e3", 1000]])) {
+    assert.equal(typed(text), want, JSON.stringify(text));
+  }
+});
+
+test("numbers lose empty digits", () => {
+  assert.equal(num(80), "80");
+  assert.equal(num(0.27), "0.27");
+  assert.equal(num(-30), "−30");
+  assert.equal(num(-0.001), "0");
+  assert.equal(num(NaN), "–");
+});
+
+test("time and pixels are each other's inverse", () => {
+  const s = timeScale(1000, 50, 25, 3.78);
+  assert.ok(Math.abs(tOf(s, xOf(s, 4321)) - 4321) < 1e-9);
+});
+
+/** @param {any} patch */
+const state = (patch = {}) => /** @type {any} */ ({ plan: {}, selected: 0, view: FIRST_VIEW, ...patch });
+
+test("edits of one name are one step of undo, another name begins the next", () => {
+  const store = createStore(state({ plan: { n: 0 } }));
+  store.edit({ n: 1 }, "type a");
+  store.edit({ n: 12 }, "type a");
+  store.edit({ n: 12, m: 1 }, "type b");
+  assert.equal(store.undo(), true);
+  assert.deepEqual(store.get().plan, { n: 12 });
+  assert.equal(store.undo(), true);
+  assert.deepEqual(store.get().plan, { n: 0 });
+  assert.equal(store.undo(), false);
+  store.redo();
+  assert.deepEqual(store.get().plan, { n: 12 });
+});
+
+test("a settled edit of the same name is another step", () => {
+  const store = createStore(state({ plan: { n: 0 } }));
+  store.edit({ n: 1 }, "type a");
+  store.settle();
+  store.edit({ n: 2 }, "type a");
+  store.undo();
+  assert.deepEqual(store.get().plan, { n: 1 });
+});
+
+test("listeners hear only of what changed", () => {
+  const store = createStore(state());
+  /** @type {string[][]} */
+  const heard = [];
+  store.subscribe((_s, changed) => heard.push([...changed]));
+  store.set({ selected: 0 });
+  store.set({ selected: 3 });
+  assert.deepEqual(heard, [["selected"]]);
+});
+
+const view = { ...FIRST_VIEW, width_mm: 100, mm_per_s: 25 }; // 4 s
+
+test("a view stays on the strip", () => {
+  assert.equal(shown(view), 4000);
+  assert.equal(pan(view, -500, 12000).t0_ms, 0);
+  assert.equal(pan(view, 1e6, 12000).t0_ms, 8000);
+  assert.equal(onStrip({ ...view, t0_ms: 500 }, 3000).t0_ms, 0);
+});
+
+test("zooming keeps the instant under the hand where it is", () => {
+  const v = { ...view, t0_ms: 2000 };
+  const z = zoomTo(v, 50, 3000, 12000);
+  const at = (/** @type {typeof v} */ w) => (3000 - w.t0_ms) * w.mm_per_s;
+  assert.ok(Math.abs(at(z) - at(v)) < 1e-9);
+});
+
+test("the whole strip fits at the speed said to fit", () => {
+  assert.equal(shown({ ...view, mm_per_s: fitSpeed(view, 12000) }), 12000);
+  assert.equal(zoomTo(view, 0.001, 0, 12000).mm_per_s, fitSpeed(view, 12000));
+});
+
+test("revealing moves only what is needed", () => {
+  assert.equal(reveal(view, 2000, 12000), view);
+  const far = reveal(view, 9000, 12000);
+  assert.ok(far.t0_ms < 9000 && far.t0_ms + shown(far) > 9000);
+});
+
+const scene = readScene({
+  width: 100, height: 50, font_mm: 3, axis: { t0_us: 1000000, x0: 10, mm_per_s: 25 }, lanes: [],
+  marks: [[3, "wave", 10, 0, 30, 20, 0, "", 0, 5], [1, "atrium", 20, 10, 22, 20, 0, "", 0, 7], [4, "sinus", 20, 10, 0, 0, 1, "", 0, 6], [1, "grid-minor", 0, 1]],
+}, null);
+
+test("a scene's missing values are zeros and its axis is one map", () => {
+  assert.equal(scene.marks[3].event, 0);
+  assert.equal(scene.marks[3].y2, 0);
+  assert.equal(timeAt(scene, 35), 2000);
+  assert.equal(placeOf(scene, 2000), 35);
+});
+
+test("the nearest mark wins, the later of equals, an area only where nothing else is", () => {
+  assert.equal(nearest(scene, 20, 10, 2)?.event, 6);
+  assert.equal(nearest(scene, 21.5, 18, 2)?.event, 7);
+  assert.equal(nearest(scene, 12, 3, 2)?.event, 5);
+  assert.equal(nearest(scene, 80, 40, 2), null);
+});
+
+test("the bar puts the normal range in its middle third", () => {
+  /** @type {[number, number]} */
+  const normal = [60, 100];
+  assert.ok(Math.abs(fraction(60, normal) - 1 / 3) < 1e-12);
+  assert.ok(Math.abs(fraction(100, normal) - 2 / 3) < 1e-12);
+  assert.equal(fraction(1000, normal), 1);
+  assert.ok(Math.abs(valueAt(fraction(75, normal), normal) - 75) < 1e-9);
+  assert.equal(verdict(100, normal), "normal");
+  assert.equal(verdict(101, normal), "high");
+});
