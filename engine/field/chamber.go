@@ -90,23 +90,26 @@ func (c *chamber) complex(g group, cycle tick.Dur) *lead.Complex {
 	return w
 }
 
-// lay adds a wave to the strip. It starts between two samples as a rule; the
-// strip's samples are then read off the wave by linear interpolation.
+// lay adds a wave to the strip's eight independent leads. It starts between two
+// samples as a rule; the strip's samples are then read off the wave by linear
+// interpolation.
 func lay(r *lead.Record, w *lead.Wave) {
 	start := w.T - tissue.LeadIn*tickStep
 	first := int(floor(start))
-	part := float32(start-tick.Time(first)*tickStep) / float32(tickStep)
-	for l := range r.MV {
+	late := float32(start-tick.Time(first)*tickStep) / float32(tickStep)
+	for _, l := range tissue.Independent {
 		out, in := r.MV[l], w.Complex.MV[l]
+		from, to := max(-first, 0), min(len(in), len(out)-first)
+		if from >= to {
+			continue
+		}
+		out = out[first+from : first+to]
 		last := float32(0)
-		for k := 0; k <= len(in); k++ {
-			now := float32(0)
-			if k < len(in) {
-				now = in[k]
-			}
-			if i := first + k; i >= 0 && i < len(out) {
-				out[i] += now + float32(part*(last-now))
-			}
+		if from > 0 {
+			last = in[from-1]
+		}
+		for k, now := range in[from:to] {
+			out[k] += now + float32(late*(last-now))
 			last = now
 		}
 	}

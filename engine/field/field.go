@@ -66,16 +66,15 @@ func Record(log *event.Log) *lead.Record { return New().Record(log) }
 //  1. finds the sources in the log and groups them into waves,
 //  2. computes, or remembers, each wave by itself, with its action potentials
 //     adapted to the cycles before it,
-//  3. adds the waves up on the 1 kHz grid, and
-//  4. lists them in order of onset.
+//  3. adds the waves up on the 1 kHz grid and derives the other four leads, and
+//  4. lists the waves in order of onset.
 //
 // A wave that reaches beyond the strip is cut off; its marks may lie past the end.
 func (f *Field) Record(log *event.Log) *lead.Record {
 	r := &lead.Record{}
 	n := int(log.Span / tickStep)
-	all := make([]float32, lead.Count*n)
-	for l := range r.MV {
-		r.MV[l] = all[l*n : (l+1)*n : (l+1)*n]
+	for _, l := range tissue.Independent {
+		r.MV[l] = make([]float32, n)
 	}
 	for _, c := range []*chamber{f.atria, f.ventricles} {
 		for _, w := range c.waves(log) {
@@ -83,6 +82,7 @@ func (f *Field) Record(log *event.Log) *lead.Record {
 			r.Waves = append(r.Waves, w)
 		}
 	}
+	tissue.LimbLeads(&r.MV)
 	sortWaves(r.Waves)
 	return r
 }

@@ -178,6 +178,22 @@ func (s *Set) firstSource(condition string) float64 {
 	return first
 }
 
+// rightAfterLeft is by how much the right endocardium is later than the left one
+// in the normal beat, ms.
+func (s *Set) rightAfterLeft() float64 {
+	left, right := tissue.Far, tissue.Far
+	at := s.v.Activation(s.Seeds("normal"))
+	for n, k := range s.Ventricles.Kind {
+		switch k {
+		case tissue.LeftInner:
+			left = min(left, at[n])
+		case tissue.RightInner, tissue.RightSeptum:
+			right = min(right, at[n])
+		}
+	}
+	return float64(right-left) / 1000
+}
+
 // epicardium is when the first node of the right and the last node of the whole
 // epicardium is depolarised in the normal beat, and when the right apex is, ms
 // after the QRS onset.

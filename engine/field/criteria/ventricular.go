@@ -56,6 +56,7 @@ func (j *judge) normal() {
 	}
 	j.say("T upright in I, II, V2-V6", "textbook", upright...)
 	j.say("T inverted in aVR", "textbook", atMost("T", b.t(lead.AVR), 0, 0.2))
+	j.say("RV endocardium begins 5-10 ms after the LV's", "Durrer et al., Circulation 1970;41:899", within("after", j.set.rightAfterLeft(), 5, 10, 4))
 	first, last, apex := j.set.epicardium()
 	j.say("RV apex 5-30 ms after QRS onset", "Josephson, by a secondary page", within("apex", apex, 5, 30, 10))
 	j.say("first RV epicardium 7-25 ms after QRS onset", "Wyndham et al., Circulation 1979;59:161, abstract", within("first", first, 7, 25, 10))

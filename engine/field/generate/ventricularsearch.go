@@ -66,13 +66,13 @@ func fitVentricles(p *Parameters, seed uint64, tries int, extra bool) error {
 		}
 		return criteria.NewSet(&part, m.atria, limits).Verdicts()
 	}
-	best := math.Inf(1)
+	best, most := math.Inf(1), 0
 	objective := func(x []float64) float64 {
 		set(knobs, x)
 		verdicts := judge()
 		s := criteria.Score(verdicts) + criteria.Score(common(verdicts))
-		if s < best {
-			best = s
+		if n := passed(verdicts); s < best || n > most {
+			best, most = min(s, best), max(n, most)
 			report(s, verdicts, knobs)
 		}
 		return s
@@ -81,7 +81,7 @@ func fitVentricles(p *Parameters, seed uint64, tries int, extra bool) error {
 	for i, k := range knobs {
 		start[i] = (*k.value - k.low) / (k.high - k.low)
 	}
-	evolve(objective, start, 0.08, tries, seed)
+	evolve(objective, start, 0.05, tries, seed)
 	return nil
 }
 
@@ -90,7 +90,7 @@ func common(verdicts []criteria.Verdict) []criteria.Verdict {
 	var out []criteria.Verdict
 	for _, v := range verdicts {
 		switch v.Condition {
-		case "normal", "LBBB", "RBBB", "LAFB":
+		case "normal", "LBBB", "RBBB", "LAFB", "LPFB":
 			out = append(out, v)
 		}
 	}
@@ -126,13 +126,7 @@ func set(knobs []knob, x []float64) {
 }
 
 func report(score float64, verdicts []criteria.Verdict, knobs []knob) {
-	passed := 0
-	for i := range verdicts {
-		if verdicts[i].Passed() {
-			passed++
-		}
-	}
-	fmt.Printf("score %.3f: %d of %d criteria\n", score, passed, len(verdicts))
+	fmt.Printf("score %.3f: %d of %d criteria\n", score, passed(verdicts), len(verdicts))
 	for i := range verdicts {
 		if !verdicts[i].Passed() {
 			fmt.Printf("  missed %s: %s\n", verdicts[i].Name(), verdicts[i].Reached())
@@ -141,4 +135,14 @@ func report(score float64, verdicts []criteria.Verdict, knobs []knob) {
 	for _, k := range knobs {
 		fmt.Printf("  %s = %v\n", k.name, *k.value)
 	}
+}
+
+func passed(verdicts []criteria.Verdict) int {
+	n := 0
+	for i := range verdicts {
+		if verdicts[i].Passed() {
+			n++
+		}
+	}
+	return n
 }
