@@ -140,7 +140,7 @@ func (b *builder) escapes() {
 			continue
 		}
 		from := b.l.At(e.Cause)
-		if from == nil || from.Kind != event.Activate || from.Rule == event.Fired || e.T.Sub(from.T) < b.cycleBefore(from.T) {
+		if from == nil || from.Kind != event.Activate || e.T.Sub(from.T) < b.cycleBefore(from.T) {
 			continue
 		}
 		y := b.origin(e)
