@@ -102,27 +102,24 @@ type transit struct {
 	delay      tick.Dur
 	leftBefore tick.Time // the path's state before it entered
 	usedBefore bool
-	cause      event.ID
-	recovery   tick.Dur
-	needed     tick.Dur
+	attempt
 }
 
 // New prepares a run of a program.
 func New(prog *plan.Program) *Machine {
 	h := prog.Heart
 	m := &Machine{prog: prog, sites: make([]siteState, len(h.Sites)), paths: make([]pathState, len(h.Paths)),
-		foci: make([]focusState, len(h.Foci)), exits: make([][]exit, len(h.Sites))}
-	m.log.Span = prog.Span
+		foci: make([]focusState, len(h.Foci)), ways: make([]way, 0, 2*len(h.Paths))}
+	m.log = event.Log{Span: prog.Span, Sites: make([]event.Site, len(h.Sites)), Paths: make([]event.Path, len(h.Paths)), Events: make([]event.Event, 0, 256)}
+	m.queue.items = make([]item, 0, 2*len(h.Paths)+len(prog.Stimuli)+len(prog.Changes))
 	for i := range h.Sites {
-		m.log.Sites = append(m.log.Sites, h.Sites[i].Site)
+		m.log.Sites[i] = h.Sites[i].Site
 	}
 	for i := range h.Paths {
-		p := &h.Paths[i]
-		m.paths[i].drops.seen = p.Drop.Phase
-		m.log.Paths = append(m.log.Paths, p.Path)
-		m.exits[p.From] = append(m.exits[p.From], exit{event.PathID(i), event.Down})
-		m.exits[p.To] = append(m.exits[p.To], exit{event.PathID(i), event.Up})
+		m.log.Paths[i] = h.Paths[i].Path
+		m.paths[i].drops.seen = h.Paths[i].Drop.Phase
 	}
+	m.lay(h)
 	m.use(h)
 	for i := range h.Foci {
 		m.foci[i].init(m, i)
@@ -136,12 +133,31 @@ func New(prog *plan.Program) *Machine {
 	return m
 }
 
+// lay lists the paths that leave each site, in order of their numbers.
+func (m *Machine) lay(h *heart.Heart) {
+	count := make([]int, len(h.Sites))
+	for i := range h.Paths {
+		count[h.Paths[i].From]++
+		count[h.Paths[i].To]++
+	}
+	all := make([]exit, 2*len(h.Paths))
+	m.exits = make([][]exit, len(h.Sites))
+	for i, n := range count {
+		m.exits[i], all = all[:0:n], all[n:]
+	}
+	for i := range h.Paths {
+		p := &h.Paths[i]
+		m.exits[p.From] = append(m.exits[p.From], exit{event.PathID(i), event.Down})
+		m.exits[p.To] = append(m.exits[p.To], exit{event.PathID(i), event.Up})
+	}
+}
+
 // use takes over the parameters of a heart with the same sites and paths.
 func (m *Machine) use(h *heart.Heart) {
 	m.h = h
 	m.ways = m.ways[:0]
 	for i := range h.Paths {
-		m.ways = append(m.ways, compile(h, &h.Paths[i], event.Down), compile(h, &h.Paths[i], event.Up))
+		m.ways = append(m.ways, m.compile(&h.Paths[i], event.Down), m.compile(&h.Paths[i], event.Up))
 	}
 }
 

@@ -15,18 +15,21 @@ type way struct {
 	theta    tick.Dur // likewise
 	fixed    bool     // theta is constant
 	decrease bool     // the delay depends on recovery
+	open     bool
 	silent   bool
+	drops    bool  // a drop pattern stands in it
 	class    class // of arrivals
 	exit     event.SiteID
 }
 
-func compile(h *heart.Heart, p *heart.Path, d event.Dir) way {
+func (m *Machine) compile(p *heart.Path, d event.Dir) way {
 	c := p.Dir(d)
-	w := way{c: c, min: tick.MS(c.MinMS), silent: p.Silent, fixed: c.Theta.PerCycle == 0, decrease: c.AlphaMS != 0, exit: p.Exit(d)}
+	w := way{c: c, min: m.quantise(tick.MS(c.MinMS)), open: c.Open, silent: p.Silent, fixed: c.Theta.PerCycle == 0, decrease: c.AlphaMS != 0, exit: p.Exit(d)}
 	if w.fixed {
-		w.theta = c.Refractory(0)
+		w.theta = m.quantise(c.Refractory(0))
 	}
-	switch h.Sites[w.exit].Tissue {
+	w.drops = d == event.Down && (p.Drop.Of > 0 || p.Drop.Chance > 0)
+	switch m.h.Sites[w.exit].Tissue {
 	case event.Sinus:
 		w.class = classArriveSinus
 	case event.Atrium:
@@ -47,10 +50,20 @@ func (m *Machine) way(p event.PathID, d event.Dir) *way { return &m.ways[2*int(p
 
 func other(d event.Dir) event.Dir { return event.Down + event.Up - d }
 
+// attempt is an impulse at the entrance of a path.
+type attempt struct {
+	path     event.PathID
+	dir      event.Dir
+	from     event.SiteID
+	cause    event.ID
+	recovery tick.Dur // event.Unknown where nothing has left the path yet
+	needed   tick.Dur
+}
+
 // theta is the recovery a path needs now.
 func (m *Machine) theta(w *way, st *pathState) tick.Dur {
 	if w.fixed {
-		return m.quantise(w.theta)
+		return w.theta
 	}
 	cycle := m.h.Basic
 	if st.entries == 2 {
@@ -62,7 +75,7 @@ func (m *Machine) theta(w *way, st *pathState) tick.Dur {
 func (m *Machine) delay(w *way, recovery tick.Dur) tick.Dur {
 	switch {
 	case !w.decrease:
-		return m.quantise(w.min)
+		return w.min
 	case recovery == event.Unknown:
 		return m.quantise(w.c.First())
 	}
@@ -77,27 +90,24 @@ func (m *Machine) enter(p event.PathID, d event.Dir, cause event.ID, from event.
 	if against.active {
 		left, used = against.leftBefore, against.usedBefore
 	}
-	e := event.Event{Kind: event.Block, Dir: d, Site: from, Path: p, Cause: cause, Recovery: event.Unknown, Needed: m.theta(w, st)}
+	a := attempt{path: p, dir: d, from: from, cause: cause, recovery: event.Unknown, needed: m.theta(w, st)}
 	if used {
-		e.Recovery = m.now.Sub(left)
+		a.recovery = m.now.Sub(left)
 	}
-	recovery, recovered := e.Recovery, !used || e.Recovery >= e.Needed
+	recovered := !used || a.recovery >= a.needed
 	switch {
-	case !w.c.Open && (w.c.Reach == 0 || !recovered):
-		e.Rule, e.Recovery, e.Needed = event.OneWay, 0, 0
-		m.blocked(w, m.now, e)
+	case !w.open && (w.c.Reach == 0 || !recovered):
+		m.block(w, m.now, &a, event.OneWay, 0)
 	case !recovered:
-		m.refuse(w, st, e, against.active)
-	case w.c.Open && d == event.Down && st.drops.stops(&m.h.Paths[p].Drop, m.prog.Seed, p):
-		e.Rule, e.Recovery, e.Needed = event.Dropped, 0, 0
-		m.blocked(w, m.now, e)
+		m.refuse(w, st, &a, against.active)
+	case w.open && w.drops && st.drops.stops(&m.h.Paths[p].Drop, m.prog.Seed, p):
+		m.block(w, m.now, &a, event.Dropped, 0)
 	case against.active:
-		m.collide(w, st, e, against)
-	case !w.c.Open:
-		e.Rule, e.Recovery, e.Needed, e.Depth = event.OneWay, 0, 0, w.c.Reach
-		m.stopInside(w, st, m.reach(w, m.delay(w, recovery)), e)
+		m.collide(w, st, &a, against)
+	case !w.open:
+		m.stopInside(w, st, m.reach(w, m.delay(w, a.recovery)), &a, event.OneWay, w.c.Reach)
 	default:
-		m.conduct(p, w, st, e)
+		m.conduct(w, st, &a)
 	}
 }
 
@@ -107,42 +117,47 @@ func (m *Machine) reach(w *way, delay tick.Dur) tick.Dur {
 	return m.quantise(delay * tick.Dur(w.c.Reach) / 1000)
 }
 
-func (m *Machine) blocked(w *way, t tick.Time, e event.Event) {
-	if !w.silent {
-		m.later(t, e)
+// block records that an impulse stops at a time, now or to come.
+func (m *Machine) block(w *way, t tick.Time, a *attempt, r event.Rule, depth uint16) {
+	if w.silent {
+		return
 	}
+	e := event.Event{Kind: event.Block, Rule: r, Dir: a.dir, Site: a.from, Path: a.path, Cause: a.cause, Depth: depth}
+	if r == event.PathRefractory || r == event.Collision {
+		e.Recovery, e.Needed = a.recovery, a.needed
+	}
+	m.later(t, e)
 }
 
 // stopInside lets an impulse come a part of the way; the path counts as left there.
-func (m *Machine) stopInside(w *way, st *pathState, after tick.Dur, e event.Event) {
+func (m *Machine) stopInside(w *way, st *pathState, after tick.Dur, a *attempt, r event.Rule, depth uint16) {
 	st.left, st.used = m.now.Add(after), true
-	m.blocked(w, st.left, e)
+	m.block(w, st.left, a, r, depth)
 }
 
 // refuse blocks an impulse that the path has not recovered for, perhaps after a
 // part of the way.
-func (m *Machine) refuse(w *way, st *pathState, e event.Event, against bool) {
-	e.Rule = event.PathRefractory
-	inner := tick.Dur(float64(e.Needed) * w.c.Inner)
-	if against || w.c.Inner >= 1 || e.Recovery <= inner {
-		m.blocked(w, m.now, e)
+func (m *Machine) refuse(w *way, st *pathState, a *attempt, against bool) {
+	inner := tick.Dur(float64(a.needed) * w.c.Inner)
+	if against || w.c.Inner >= 1 || a.recovery <= inner {
+		m.block(w, m.now, a, event.PathRefractory, 0)
 		return
 	}
-	part, whole := e.Recovery-inner, e.Needed-inner
-	e.Depth = uint16(min(max(part*1000/whole, 1), 999))
-	m.stopInside(w, st, m.quantise(m.delay(w, e.Needed)*part/whole), e)
+	part, whole := a.recovery-inner, a.needed-inner
+	after := m.quantise(m.delay(w, a.needed) * part / whole)
+	m.stopInside(w, st, after, a, event.PathRefractory, uint16(min(max(part*1000/whole, 1), 999)))
 }
 
-func (m *Machine) conduct(p event.PathID, w *way, st *pathState, e event.Event) {
-	in := &st.transit[e.Dir]
+func (m *Machine) conduct(w *way, st *pathState, a *attempt) {
+	in := &st.transit[a.dir]
 	in.active = true
 	in.gen++
-	in.start, in.delay, in.cause = m.now, m.delay(w, e.Recovery), e.Cause
+	in.start, in.delay = m.now, m.delay(w, a.recovery)
 	in.leftBefore, in.usedBefore = st.left, st.used
-	in.recovery, in.needed = e.Recovery, e.Needed
+	in.attempt = *a
 	st.enter(m.now)
 	st.left, st.used = m.now.Add(in.delay), true
-	m.push(st.left, w.class, int(p), uint8(e.Dir), in.gen)
+	m.push(st.left, w.class, int(a.path), uint8(a.dir), in.gen)
 }
 
 // enter notes a conducted entry, for the cycle that sets refractoriness.
@@ -157,8 +172,8 @@ func (st *pathState) enter(t tick.Time) {
 }
 
 // collide stops an entering impulse and the opposite one where they meet.
-func (m *Machine) collide(w *way, st *pathState, e event.Event, against *transit) {
-	mine := max(m.delay(w, e.Recovery), 1)
+func (m *Machine) collide(w *way, st *pathState, a *attempt, against *transit) {
+	mine := max(m.delay(w, a.recovery), 1)
 	theirs := max(against.delay, 1)
 	rest := against.start.Add(against.delay).Sub(m.now) // what the other one had still to go
 	x := m.quantise(tick.Dur(float64(rest) * float64(mine) / float64(mine+theirs)))
@@ -166,23 +181,18 @@ func (m *Machine) collide(w *way, st *pathState, e event.Event, against *transit
 	against.active = false
 	against.gen++
 	gone := m.now.Add(x).Sub(against.start)
-	e.Rule, e.Depth = event.Collision, uint16(min(x*1000/mine, 1000))
-	if w.c.Open {
+	rule, depth := event.Collision, uint16(min(x*1000/mine, 1000))
+	if w.open {
 		st.enter(m.now)
-	} else {
-		e.Recovery, e.Needed = 0, 0
-		if reach := m.reach(w, mine); reach < x {
-			// It stops before they meet, and the other one where it finds that tissue
-			// depolarised.
-			x, gone = reach, m.quantise(theirs*tick.Dur(1000-w.c.Reach)/1000)
-			e.Rule, e.Depth = event.OneWay, w.c.Reach
-		}
+	} else if reach := m.reach(w, mine); reach < x {
+		// It stops before they meet, and the other one where it finds that tissue
+		// depolarised.
+		x, gone = reach, m.quantise(theirs*tick.Dur(1000-w.c.Reach)/1000)
+		rule, depth = event.OneWay, w.c.Reach
 	}
 	st.left, st.used = against.start.Add(gone), true
-	they := event.Event{Kind: event.Block, Rule: event.Collision, Dir: other(e.Dir), Path: e.Path, Site: w.exit, Cause: against.cause,
-		Recovery: against.recovery, Needed: against.needed, Depth: uint16(min(gone*1000/theirs, 1000))}
-	m.blocked(w, st.left, they)
-	m.blocked(w, m.now.Add(x), e)
+	m.block(w, st.left, &against.attempt, event.Collision, uint16(min(gone*1000/theirs, 1000)))
+	m.block(w, m.now.Add(x), a, rule, depth)
 }
 
 // arrive brings an impulse to the far end of its path.
@@ -197,8 +207,10 @@ func (m *Machine) arrive(p event.PathID, d event.Dir, gen uint32) {
 		m.activate(event.Event{Rule: event.Conducted, Site: w.exit, Path: p, Dir: d, Cause: in.cause, Recovery: in.recovery, Needed: in.needed})
 		return
 	}
-	m.blocked(w, m.now, event.Event{Kind: event.Block, Rule: event.SiteRefractory, Dir: d, Path: p, Site: m.log.Paths[p].Entry(d), Cause: in.cause,
-		Depth: 1000, Recovery: m.now.Sub(st.last), Needed: st.until.Sub(st.last)})
+	if !w.silent {
+		m.record(event.Event{Kind: event.Block, Rule: event.SiteRefractory, Dir: d, Path: p, Site: in.from, Cause: in.cause,
+			Depth: 1000, Recovery: m.now.Sub(st.last), Needed: st.until.Sub(st.last)})
+	}
 }
 
 // dropState counts the impulses of a drop pattern.

@@ -39,6 +39,7 @@ func (r *reference) enter(id event.PathID, d event.Dir, cause event.ID) {
 		e.Rule = event.OneWay
 		r.stopAt(r.now, e)
 	case !c.Open && other.inside:
+		e.Recovery, e.Needed = recovery, theta
 		r.meet(p, other, delay, c, e)
 	case !c.Open:
 		e.Rule, e.Depth = event.OneWay, c.Reach
@@ -79,7 +80,7 @@ func (r *reference) meet(p *refPath, other *refImpulse, delay tick.Dur, c *heart
 	e.Rule, e.Depth = event.Collision, uint16(1000*after/delay)
 	if reach := r.now.Add(r.up(delay * tick.Dur(c.Reach) / 1000)); !c.Open && reach < at { // rule 4
 		at, theirs = reach, other.entered.Add(r.up(their*tick.Dur(1000-c.Reach)/1000))
-		e.Rule, e.Depth = event.OneWay, c.Reach
+		e.Rule, e.Depth, e.Recovery, e.Needed = event.OneWay, c.Reach, 0, 0
 	}
 	o := other.e
 	o.Kind, o.Rule, o.Site = event.Block, event.Collision, r.log.Paths[o.Path].Entry(o.Dir)
