@@ -128,7 +128,7 @@ const (
 	PP             // between the starts of two P waves
 	RR             // between the starts of two QRS complexes
 	PR             // start of P to start of the QRS it conducted to
-	RP             // start of QRS to start of the P it conducted to, backwards
+	VA             // start of QRS to the right atrium, which it reached backwards
 	AH             // low septal right atrium to His bundle
 	HV             // His bundle to first ventricular activation
 	HA             // His bundle back to low septal right atrium

@@ -7,7 +7,7 @@ import (
 
 // priorities of the measures. A number that differs from the one before it of
 // its kind says more than one that does not, and is kept longer.
-var priorities = [...]int{PP: 65, RR: 70, PR: 80, RP: 75, AH: 50, HV: 40, HA: 45, NodeUp: 38, NodeIn: 38, Escape: 90}
+var priorities = [...]int{PP: 65, RR: 70, PR: 80, VA: 75, AH: 50, HV: 40, HA: 45, NodeUp: 38, NodeIn: 38, Escape: 90}
 
 const changedBonus = 15
 
@@ -89,7 +89,9 @@ func (b *builder) retrograde(v *wave) {
 		e := b.l.At(id)
 		if q := b.ancestor(e, event.Ventricle); q != nil && b.ws.of[q.ID] >= 0 {
 			from := b.ws.all[b.ws.of[q.ID]].first(b.l)
-			b.dim(RP, from, v.first(b.l), b.lay.vTop, b.lay.aFoot, event.Node)
+			if a := b.top(v); a != nil && b.ancestor(a, event.Ventricle) == q {
+				b.dim(VA, from, a, b.lay.vTop, b.lay.aTop, event.Node)
+			}
 		}
 		if v.entries[i] == beside {
 			return
@@ -101,6 +103,17 @@ func (b *builder) retrograde(v *wave) {
 		}
 		return
 	}
+}
+
+// top is the activation of a wave at the top of the atria, the right atrium, to
+// which VA runs, or nil where the wave did not come so far.
+func (b *builder) top(v *wave) *event.Event {
+	for _, id := range v.members {
+		if e := b.l.At(id); b.lay.y[e.Site] == b.lay.aTop {
+			return e
+		}
+	}
+	return nil
 }
 
 // node measures the crossings of the AV node downwards.

@@ -16,7 +16,7 @@ var (
 	branchNames  = [...]string{Left: " left", Right: " right", Slow: " slow"}
 	endNames     = [...]string{Arrived: "arrived", Blocked: "blocked", Collided: "collided"}
 	signNames    = [...]string{Focus: "focus", Stimulus: "stimulus", Capture: "capture", Bar: "bar", Tail: "tail"}
-	measureNames = [...]string{PP: "PP", RR: "RR", PR: "PR", RP: "VA", AH: "AH", HV: "HV", HA: "HA", NodeUp: "node up", NodeIn: "node", Escape: "escape"}
+	measureNames = [...]string{PP: "PP", RR: "RR", PR: "PR", VA: "VA", AH: "AH", HV: "HV", HA: "HA", NodeUp: "node up", NodeIn: "node", Escape: "escape"}
 )
 
 // String is the short name of the measure, as it stands on drawings.

@@ -21,7 +21,7 @@ func (r *rungs) dim(d *ladder.Dim) bool {
 		return r.row(rowCycle, d, text, value)
 	case ladder.PR:
 		return r.row(rowConduction, d, text, value)
-	case ladder.RP:
+	case ladder.VA:
 		return r.row(rowConduction, d, text)
 	case ladder.Escape:
 		return r.along(d, text)

@@ -50,7 +50,7 @@ func (s *sheet) ladder() {
 	r.per = s.o.LadderMM / r.d.Height()
 	foot := r.y(r.d.Height())
 	s.y = foot + max(0.35*s.o.FontMM, stimulusR+0.5)
-	r.open(rowConduction, ladder.PR, ladder.RP)
+	r.open(rowConduction, ladder.PR, ladder.VA)
 	r.open(rowCycle, ladder.RR)
 	s.lane("ladder", "ladder", start, s.y)
 	r.tiers(foot)
