@@ -43,8 +43,10 @@ check: need-go need-node ## the gate: format, vet, staticcheck, types of the pag
 
 .PHONY: golden
 golden: need-go ## rewrite the goldens and show what changed
-	$(GO) test ./... -update || true
-	@git --no-pager diff --stat -- '*testdata*' && git --no-pager diff -- '*testdata*'
+	@for dir in $$(grep -rl --include='*_test.go' 'flag.Bool("update"' . | xargs -n1 dirname | sort -u); do \
+		$(GO) test $$dir -update || exit 1; done
+	@git --no-pager diff --stat -- '*testdata*'
+	@git --no-pager diff -- '*testdata*.txt' '*testdata*.json' '*testdata*.svg'
 
 .PHONY: bench
 bench: need-go ## benchmarks: work per second and ratios taken in one run

@@ -118,7 +118,7 @@ function build(catalogue) {
     },
   };
   const views = [
-    headView(part("head"), store, open),
+    headView(part("head"), store, catalogue.presets, open),
     settings,
     toolbarView(part("centre"), store),
     timelineView(part("centre"), store, engine, catalogue),
@@ -161,7 +161,7 @@ function showFault(fault) {
   const box = part("fault");
   box.hidden = fault === "";
   if (fault === "") return;
-  fill(box, el("strong", null, "The engine failed. "), "Your values are kept; the drawing shows the last plan that worked. Change a value or ",
+  fill(box, el("strong", null, "The engine failed. "), store.get().answer ? "Your values are kept; the sheet shows the last that could be computed. Change a value or " : "Change a value or ",
     el("button", { type: "button", class: "link", onclick: compute }, "try again"), ".", el("pre", null, fault));
 }
 

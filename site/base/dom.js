@@ -29,7 +29,7 @@ export function el(tag, props, ...children) {
  * @param {(Child | Child[])[]} children
  */
 export function append(node, children) {
-  for (const child of children.flat()) {
+  for (const child of /** @type {Child[]} */ (children.flat(Infinity))) {
     if (child !== null && child !== undefined && child !== false) node.append(child);
   }
 }

@@ -14,10 +14,12 @@ import { reveal } from "../model/view.js";
 /**
  * @param {HTMLElement} root
  * @param {Store} store
+ * @param {import("../engine/wire.js").Preset[]} presets
  * @param {{presets: () => void, keys: () => void, wrong: () => void}} open
  */
-export function headView(root, store, open) {
+export function headView(root, store, presets, open) {
   const title = el("span", { class: "title" }, "Opening");
+  const pick = el("span", { class: "pick" });
   const says = el("p", { class: "says", id: "statement" });
   const warnings = el("ul", { class: "warnings", "aria-label": "Warnings" });
   const undo = el("button", { type: "button", onclick: () => store.undo(), title: "Ctrl Z" }, "Undo");
@@ -26,7 +28,7 @@ export function headView(root, store, open) {
   root.append(
     el("h1", null,
       el("button", { type: "button", id: "presets", onclick: open.presets, title: "P", "aria-haspopup": "dialog" },
-        title, el("span", { class: "pick" }, "choose a preset ▾"))),
+        title, pick)),
     says,
     el("div", { class: "tools" },
       el("span", { class: "name" }, "escapement"),
@@ -68,6 +70,8 @@ export function headView(root, store, open) {
     update(state, changed) {
       if (changed.has("plan") || changed.has("answer")) {
         say(title, String(state.plan.title || state.answer?.title || "A heart of your own"));
+        const preset = presets.find((p) => p.name === state.preset);
+        say(pick, `${preset && preset.plan !== state.plan ? "changed; " : ""}choose a preset ▾`);
         undo.disabled = !store.canUndo();
         redo.disabled = !store.canRedo();
       }

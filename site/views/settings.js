@@ -67,9 +67,10 @@ export function settingsView(root, store, catalogue) {
   const sections = [];
   for (const field of catalogue.fields) {
     if (field.path.includes("[]")) continue;
-    const [, group, title] = PLACES.find(([at]) => at === "" || field.path === at || field.path.startsWith(`${at}.`)) ?? PLACES[PLACES.length - 1];
+    const [place, group, title] = PLACES.find(([at]) => at === "" || field.path === at || field.path.startsWith(`${at}.`)) ?? PLACES[PLACES.length - 1];
     const section = sections.find((s) => s.title === title && groups.get(group)?.contains(s.node)) ?? open(group, title);
-    const row = makeRow(store, field);
+    // Whether a part is there at all is never folded away.
+    const row = makeRow(store, field.path === place ? { ...field, advanced: false } : field);
     section.rows.push(row);
     section.node.insertBefore(row.node, section.more);
   }

@@ -1,0 +1,57 @@
+package main
+
+import (
+	"net/http"
+	"net/http/httptest"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+)
+
+func TestServeHandsOutFilesAsABrowserWantsThem(t *testing.T) {
+	dir := t.TempDir()
+	for name, text := range map[string]string{"index.html": "<!doctype html>", "a.wasm": "\x00asm", "a.js": "1", "css/a.css": "a{}", "icon.svg": "<svg/>"} {
+		path := filepath.Join(dir, name)
+		if err := os.MkdirAll(filepath.Dir(path), 0o755); err != nil {
+			t.Fatal(err)
+		}
+		if err := os.WriteFile(path, []byte(text), 0o644); err != nil {
+			t.Fatal(err)
+		}
+	}
+	host := files(dir)
+	for _, c := range []struct {
+		name, method, path string
+		status             int
+		kind               string
+	}{
+		{"the page", "GET", "/", 200, "text/html"},
+		{"WebAssembly streams only under its own type", "GET", "/a.wasm", 200, "application/wasm"},
+		{"a module", "GET", "/a.js", 200, "text/javascript"},
+		{"a style", "GET", "/css/a.css", 200, "text/css"},
+		{"an image", "GET", "/icon.svg", 200, "image/svg+xml"},
+		{"no list of a folder", "GET", "/css/", 404, ""},
+		{"nothing outside", "GET", "/../serve.go", 404, ""},
+		{"what is not there", "GET", "/b.js", 404, ""},
+		{"nothing is taken", "POST", "/", 405, ""},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			w := httptest.NewRecorder()
+			host.ServeHTTP(w, httptest.NewRequest(c.method, "http://127.0.0.1"+c.path, nil))
+			if w.Code != c.status && (w.Code < 300 || w.Code >= 400 || c.status != 404) {
+				t.Errorf("status %d, want %d", w.Code, c.status)
+			}
+			if got := w.Header().Get("Content-Type"); w.Code == http.StatusOK && !strings.HasPrefix(got, c.kind) {
+				t.Errorf("type %q, want %q", got, c.kind)
+			}
+		})
+	}
+}
+
+func TestServeSaysWhatToDoWithoutASite(t *testing.T) {
+	err := serve([]string{"-port", "0", "-dir", t.TempDir()})
+	if err == nil || !strings.Contains(err.Error(), "make site") {
+		t.Errorf("got %v, want a word about make site", err)
+	}
+}
