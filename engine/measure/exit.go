@@ -152,7 +152,7 @@ func (f *finder) silences() []silence {
 	broken := false
 	end := func(at tick.Time, id event.ID, ends bool) {
 		s.until, s.last, s.ends = at, id, ends
-		if !broken && at.Sub(s.from) > 3*tick.Second {
+		if d := at.Sub(s.from); !broken && d > 3*tick.Second && 2*d > 3*f.cycle0 {
 			out = append(out, s)
 		}
 	}

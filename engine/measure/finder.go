@@ -128,14 +128,6 @@ func plural(n int, one, many string) string {
 	return strconv.Itoa(n) + " " + many
 }
 
-func (f *finder) pIDs(ps []int) []event.ID {
-	var ids []event.ID
-	for _, i := range ps {
-		ids = append(ids, f.p[i].id)
-	}
-	return ids
-}
-
 // blocked is the evidence for blocked P waves: the P and the blocks that stopped it.
 func (f *finder) blocked(ps []int) []event.ID {
 	var ids []event.ID

@@ -245,8 +245,8 @@ func (s *strip) prematureP(i int, sinus tick.Dur) bool {
 	if i >= 2 && s.sameSource(i, i-1) && i+1 < len(s.p) && s.sameSource(i, i+1) && !early(s.pp(i), s.pp(i+1)) {
 		return false // second of a run of three or more
 	}
-	if i+1 < len(s.p) && s.sameSource(i, i+1) {
-		return early(s.pp(i), sinus) // a run begins
+	if i+2 < len(s.p) && s.sameSource(i, i+1) && s.sameSource(i, i+2) {
+		return early(s.pp(i), sinus) && early(s.pp(i), s.pp(i+1)) // a run begins
 	}
 	return sinus > 0 && s.pp(i) < sinus-max(pauseTolerance, s.noise)
 }
@@ -258,8 +258,8 @@ func (s *strip) sameSource(i, j int) bool {
 // prematureV: a beat that began below the atria before the next one from above
 // was due. A focus that fires no faster than escape rhythms do is not premature
 // even so: the beat from above is late. Where nothing conducts, early is against
-// the usual RR. In a run of three or more only the first is called premature; the
-// run has its own name.
+// the usual RR. A run of three or more has its own name; its first beat is premature
+// only if it comes early for the run itself.
 func (s *strip) prematureV(i int, expected, usual tick.Dur) bool {
 	if i == 0 || !s.own(i) {
 		return false
@@ -276,7 +276,13 @@ func (s *strip) prematureV(i int, expected, usual tick.Dur) bool {
 	case expected == 0 && !early(s.rr(i), usual):
 		return false
 	}
-	return !(s.linked(i-1, i) && (s.linked(i-2, i-1) || s.linked(i, i+1)))
+	switch {
+	case s.linked(i-1, i):
+		return !s.linked(i-2, i-1) && !s.linked(i, i+1)
+	case s.linked(i, i+1) && s.linked(i+1, i+2):
+		return early(s.rr(i), s.rr(i+1))
+	}
+	return true
 }
 
 // linked tells whether beats i and j are neighbours of one run below the atria.
@@ -291,6 +297,9 @@ func (s *strip) interference(i int) bool {
 	w := &s.p[i]
 	if w.to >= 0 {
 		return false
+	}
+	if len(w.blocks) == 0 && (w.met || w.septum == 0 && s.septum != event.None) {
+		return true // its wave ended inside the atria
 	}
 	for _, id := range s.deepest(i) {
 		e := s.log.At(id)

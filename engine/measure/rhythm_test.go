@@ -136,6 +136,25 @@ func TestInterferenceIsNotBlock(t *testing.T) {
 	}
 }
 
+// A sinus P whose wave meets one from the junction inside the atria never comes
+// to the node: nothing is blocked there.
+func TestWaveMetInTheAtriaIsNotBlock(t *testing.T) {
+	h := newHeart(4500)
+	for _, at := range []float64{500, 2000, 3500} {
+		p := h.along(h.fire(at-60, "sinus"), "sinoatrial", 60)
+		if at != 2000 {
+			h.conduct(h.along(p, "internodal", 30), 160)
+			continue
+		}
+		j := h.fire(at-60, "av_junction")
+		h.ventricles(h.along(j, "lower_node", 10))
+		h.along(j, "av_fast", 65)
+	}
+	if got, want := slugs(Of(h.log(t), nil)), []string{"sinus_bradycardia", "junctional_escape"}; !slices.Equal(got, want) {
+		t.Errorf("got %v, want %v", got, want)
+	}
+}
+
 // Pauses after premature beats (arithmetic of two teaching pages read for the facts).
 func TestPrematureBeats(t *testing.T) {
 	sinus := func(h *heart, at ...float64) {

@@ -50,6 +50,7 @@ type pwave struct {
 	from       int32 // ventricular beat it came from, else -1
 	to         int32 // ventricular beat it led to, else -1
 
+	met        bool // met a wave from below inside the atria
 	premature  bool
 	interfered bool // blocked in what a beat from elsewhere had left refractory
 }
@@ -238,6 +239,7 @@ func (t *tracer) atrial(e *event.Event, m *mark) {
 	w := &t.p[g]
 	if t.causeWave(e) != g {
 		w.roots = append(w.roots, e.ID)
+		w.met = w.met || t.fromBelow(e) != w.retrograde
 	}
 	switch e.Site {
 	case t.rightAtrium:
