@@ -216,6 +216,34 @@ func TestTimeShiftMovesTheRecord(t *testing.T) {
 	})
 }
 
+// A wave that starts between two samples is read off by linear interpolation: a
+// quarter of a millisecond later, a sample is three quarters of the old one and
+// a quarter of the one before it.
+func TestSamplesBetweenMilliseconds(t *testing.T) {
+	make := func(at tick.Time) []float32 {
+		s := newStrip(1500000)
+		s.fascicles(at)
+		return Record(s.log(t)).MV[lead.V4]
+	}
+	whole, late := make(500000-tick.Time(earliest())), make(500250-tick.Time(earliest()))
+	for i := 1; i < len(whole); i++ {
+		if want := 0.75*float64(whole[i]) + 0.25*float64(whole[i-1]); math.Abs(float64(late[i])-want) > 1e-6 {
+			t.Fatalf("sample %d is %v mV, want %v", i, late[i], want)
+		}
+	}
+}
+
+// earliest is when the first fascicle fires after the His bundle, microseconds.
+func earliest() int32 {
+	first := int32(math.MaxInt32)
+	for _, e := range parts()[0].Entries {
+		if e.After > 0 {
+			first = min(first, e.After)
+		}
+	}
+	return first
+}
+
 // What was computed before, in which order and how much of it was forgotten
 // never shows.
 func TestRememberedWavesChangeNothing(t *testing.T) {
@@ -225,8 +253,9 @@ func TestRememberedWavesChangeNothing(t *testing.T) {
 		at := tick.Time(300000)
 		for range rapid.IntRange(1, 6).Draw(rt, "beats") {
 			if rapid.Bool().Draw(rt, "paced") {
-				s.capture(at, "rv_apex")
-				s.capture(at+tick.Time(rapid.Int64Range(1, 90000).Draw(rt, "delay")), "lv_lateral")
+				two := rapid.Permutation([]string{"rv_apex", "lv_lateral"}).Draw(rt, "order")
+				s.capture(at, two[0])
+				s.capture(at+1000*tick.Time(rapid.Int64Range(0, 4).Draw(rt, "delay")), two[1])
 			} else {
 				s.sinus(at)
 			}

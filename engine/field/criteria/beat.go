@@ -20,7 +20,7 @@ func (b Beat) qrs(l lead.Name) []float32 { return b.MV[l][b.On : b.Off+1] }
 // Duration from onset to offset.
 func (b Beat) Duration() float64 { return float64(b.Off - b.On) }
 
-// Areas' axis in the frontal plane over the first ms milliseconds (0: all).
+// axis in the frontal plane of the areas over the first ms milliseconds (0: all).
 func (b Beat) axis(ms int) float64 {
 	one, foot := sumOf(head(b.qrs(lead.I), ms)), sumOf(head(b.qrs(lead.AVF), ms))
 	return degrees(foot, one)

@@ -8,7 +8,7 @@ import (
 	"escapement/engine/lead"
 )
 
-// Thresholds under which waves are marked for the criteria.
+// Limits are the thresholds by which waves are marked for the criteria.
 type Limits struct {
 	Ventricles, Atria tissue.Thresholds
 }

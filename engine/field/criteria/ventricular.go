@@ -56,6 +56,14 @@ func (j *judge) normal() {
 	}
 	j.say("T upright in I, II, V2-V6", "textbook", upright...)
 	j.say("T inverted in aVR", "textbook", atMost("T", b.t(lead.AVR), 0, 0.2))
+	j.say("R of 0.5 mV in II, 0.7-2.5 mV in V5, 0.5 mV in V6", "realism", atLeast("II", b.r(lead.II), 0.5, 0.2),
+		within("V5", b.r(lead.V5), 0.7, 2.5, 0.3), atLeast("V6", b.r(lead.V6), 0.5, 0.2))
+	var low []Bound
+	for _, l := range []lead.Name{lead.II, lead.V4, lead.V5, lead.V6} {
+		low = append(low, atMost(l.String(), b.t(l)/(b.r(l)+small), 0.8, 0.3))
+	}
+	j.say("T under 0.8 of R in II, V4-V6, under 0.8 mV in V2-V4", "realism", append(low,
+		atMost("V2", b.t(lead.V2), 0.8, 0.2), atMost("V3", b.t(lead.V3), 0.8, 0.2), atMost("V4 mV", b.t(lead.V4), 0.8, 0.2))...)
 	j.say("RV endocardium begins 5-10 ms after the LV's", "Durrer et al., Circulation 1970;41:899", within("after", j.set.rightAfterLeft(), 5, 10, 4))
 	first, last, apex := j.set.epicardium()
 	j.say("RV apex 5-30 ms after QRS onset", "Josephson, by a secondary page", within("apex", apex, 5, 30, 10))

@@ -15,9 +15,9 @@ func ventricularKnobs(p *Parameters) []knob {
 	c, r := &p.Speeds, &p.Recovery
 	k := []knob{
 		{"Along", &c.Along, 0.5, 0.75}, {"Across", &c.Across, 0.28, 0.45}, {"Through", &c.Through, 0.28, 0.5},
-		{"Inner", &c.Inner, 0.7, 2}, {"InnerAround", &c.InnerAround, 0.5, 1}, {"InnerRight", &c.InnerRight, 0.7, 2},
+		{"Inner", &c.Inner, 0.7, 1.6}, {"InnerAround", &c.InnerAround, 0.5, 1}, {"InnerRight", &c.InnerRight, 0.7, 2},
 		{"InnerBase", &c.InnerBase, 0.6, 1.5}, {"BaseFrom", &c.BaseFrom, 0.55, 0.88},
-		{"Outer", &r.Outer, -40, -8}, {"Base", &r.Base, -35, 35}, {"PerMS", &r.PerMS, -1, 0}, {"Right", &r.Right, -35, 15},
+		{"Outer", &r.Outer, -40, -8}, {"Base", &r.Base, -35, 35}, {"PerMS", &r.PerMS, -0.4, 0}, {"Right", &r.Right, -35, 15},
 		{"Amplitude", &p.Conductor.Amplitude, 0.2, 0.45},
 	}
 	for i := range p.Terminals {
@@ -25,15 +25,13 @@ func ventricularKnobs(p *Parameters) []knob {
 		k = append(k,
 			knob{t.Name + ".Theta", &t.Theta, t.Theta - 30, t.Theta + 30},
 			knob{t.Name + ".Height", &t.Height, max(t.Height-0.3, 0.05), min(t.Height+0.3, 0.98)},
-			knob{t.Name + ".At", &t.At, 39, 62})
+			knob{t.Name + ".At", &t.At, 40, 62})
 	}
 	return k
 }
 
 // extraTerminals are added by the search to those of [fitted].
 var extraTerminals = []Terminal{
-	{"LAF3", "left_anterior", LeftInner, 115, 0.4, 47},
-	{"LPF3", "left_posterior", LeftInner, -125, 0.6, 48},
 	{"RB4", "right_bundle", RightInner, 0, 0.35, 50},
 	{"RB5", "right_bundle", RightInner, 0, 0.75, 58},
 }
