@@ -33,9 +33,11 @@ func main() {
 	case "":
 		err = run(*root)
 	case "atria":
-		_, err = fitAtria(fitted(), *seed, *tries)
+		_, err = fitAtria(first(), *seed, *tries)
 	case "ventricles":
-		err = fitVentricles(fitted(), *seed, *tries, *extra)
+		p := first()
+		p.Atria = fitted().Atria
+		err = fitVentricles(p, *seed, *tries, *extra)
 	default:
 		err = fmt.Errorf("there is no search for %q; there are atria and ventricles", *fit)
 	}

@@ -51,13 +51,6 @@ func loadReference(t *testing.T) *reference {
 	return &r
 }
 
-// firstModel has the parameters of the reference: those the searches began with.
-func firstModel() *Parameters {
-	p := fitted()
-	p.Atria = firstAtria()
-	return p
-}
-
 func compareChamber(t *testing.T, r *referenceChamber, x []r3.Vec, tri [][3]int, edges map[[2]int]float64, leads *mat.Dense) {
 	t.Helper()
 	if len(x) != len(r.Nodes) || len(tri) != len(r.Tri) || len(edges) != len(r.Edge) {
@@ -102,7 +95,7 @@ func compareChamber(t *testing.T, r *referenceChamber, x []r3.Vec, tri [][3]int,
 
 func TestModelEqualsTheReference(t *testing.T) {
 	r := loadReference(t)
-	m, err := build(firstModel())
+	m, err := build(first())
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -60,7 +60,6 @@ func (a *atria) overlap() float64 {
 // comes down to the AV node in 40 to 48 ms: random steps of shrinking size from
 // the best so far, always the same for a seed.
 func fitAtria(p *Parameters, seed uint64, tries int) (*Parameters, error) {
-	p.Atria = firstAtria()
 	v := buildVentricles(p)
 	c, err := newConductor(append([]shell{p.torso()}, v.bloodShells()...), p.electrodes())
 	if err != nil {

@@ -98,7 +98,7 @@ func TestModelEqualsTheDigest(t *testing.T) {
 	if err := json.Unmarshal(data, &d); err != nil {
 		t.Fatal(err)
 	}
-	m, err := build(firstModel())
+	m, err := build(first())
 	if err != nil {
 		t.Fatal(err)
 	}
