@@ -34,6 +34,9 @@ const (
 	Block          // an impulse stopped
 	Stimulus       // an artificial stimulus was delivered
 	Change         // the plan changed a number of the heart at this time
+	Sense          // the device noticed a signal on one of its channels
+	Window         // a window or timer of the device began
+	Mode           // the device went over to another mode
 )
 
 // Rule names why an event came when it did. The zero Rule is invalid.
@@ -53,6 +56,10 @@ const (
 	Premature           // a single planned stimulus (Stimulus)
 	Train               // a stimulus of a planned train (Stimulus)
 	Planned             // a planned change of a number (Change)
+	Timed               // a timer of the device ended (Stimulus)
+	Signal              // a signal above sensitivity arrived (Sense)
+	Opened              // the device began to wait for something, or to be deaf (Window)
+	Switched            // the device changed its mode (Mode)
 )
 
 // Dir is the direction along a path. Down is from [Path.From] to [Path.To],
@@ -95,9 +102,38 @@ type Event struct {
 	// Until is the end of the refractory period that an Activate began.
 	Until tick.Time
 
-	// Field and To are what a Change set, as they stand in the plan file.
-	Field, To string
+	// Field and To are what a Change set, as they stand in the plan file. Field is the
+	// name of a Window, and of the timer that ended for a Stimulus by Timed; Field and
+	// To are the modes that a Mode left and entered, and Why the reason.
+	Field, To, Why string
+
+	// Channel is A or V for a Sense, and for what a Stimulus by Timed meant to pace.
+	Channel byte
+
+	// Use is what the device did with a Sense.
+	Use Use
+
+	// By is, for a Sense, the window that decided its use; for a Window, the event
+	// that ended it before its time, at Until. 0 is none: the window ran out.
+	By ID
 }
+
+// Use is what a device does with a signal it sensed. The zero Use is invalid for a
+// Sense.
+type Use uint8
+
+const (
+	_          Use = iota
+	Tracked        // an atrial signal that began an AV delay
+	Resets         // began the device's timing anew
+	Inhibits       // kept back a stimulus that was due
+	Refractory     // in a refractory period: noted, nothing more
+	Blanked        // not seen at all
+	Noise          // in the noise window: taken for interference
+	Safety         // in the crosstalk window: answered by a safety stimulus
+	Triggers       // answered by a stimulus at once
+	Observed       // a mode that only looks on
+)
 
 // Unknown is the Recovery of a path that no impulse has passed yet.
 const Unknown tick.Dur = -1 << 50

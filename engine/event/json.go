@@ -27,6 +27,15 @@ type record struct {
 	Until    *int64   `json:"refractory_until_us,omitempty"`
 	Field    string   `json:"field,omitempty"`
 	To       string   `json:"to,omitempty"`
+	Timer    string   `json:"timer,omitempty"`
+	Channel  string   `json:"channel,omitempty"`
+	Use      string   `json:"use,omitempty"`
+	Because  ID       `json:"because,omitempty"` // the window that decided a sense
+	Name     string   `json:"name,omitempty"`
+	Ends     *int64   `json:"until_us,omitempty"`
+	EndedBy  *ID      `json:"ended_by,omitempty"` // 0: it ran out
+	From     string   `json:"from,omitempty"`
+	Why      string   `json:"why,omitempty"`
 }
 
 // WriteJSON writes one event a line.
@@ -42,7 +51,7 @@ func (l *Log) WriteJSON(w io.Writer) error {
 }
 
 func (l *Log) record(e *Event) record {
-	r := record{ID: e.ID, T: int64(e.T), Kind: e.Kind.String(), Cause: e.Cause, Rule: e.Rule.String(), Field: e.Field, To: e.To}
+	r := record{ID: e.ID, T: int64(e.T), Kind: e.Kind.String(), Cause: e.Cause, Rule: e.Rule.String()}
 	if e.Site >= 0 {
 		r.Site = l.Sites[e.Site].Name
 	}
@@ -66,9 +75,18 @@ func (l *Log) record(e *Event) record {
 		if m := e.MissedBy(); m > 0 {
 			r.MissedBy = micro(int64(m))
 		}
+	case Change:
+		r.Field, r.To = e.Field, e.To
+	case Sense:
+		r.Channel, r.Use, r.Because = string(e.Channel), e.Use.String(), e.By
+	case Window:
+		by := e.By
+		r.Name, r.Ends, r.EndedBy = e.Field, micro(int64(e.Until)), &by
+	case Mode:
+		r.From, r.To, r.Why = e.Field, e.To, e.Why
 	case Stimulus:
 		captured := e.Captured
-		r.Captured = &captured
+		r.Captured, r.Timer = &captured, e.Field
 		if c := l.Sites[e.Site].Chamber(); c != 0 {
 			r.Chamber = string(c)
 		}

@@ -5,12 +5,14 @@ import "strings"
 // The names below are part of the command line's contract and of the text form:
 // lower case, stable, one word a value.
 
-var kindNames = [...]string{Discharge: "discharge", Activate: "activate", Block: "block", Stimulus: "stimulus", Change: "change"}
+var kindNames = [...]string{Discharge: "discharge", Activate: "activate", Block: "block", Stimulus: "stimulus", Change: "change",
+	Sense: "sense", Window: "window", Mode: "mode"}
 
 var ruleNames = [...]string{
 	Phase4: "phase4", Fired: "fired", Captured: "captured", Conducted: "conducted",
 	PathRefractory: "path_refractory", SiteRefractory: "site_refractory", Collision: "collision",
 	OneWay: "one_way", Dropped: "dropped", Premature: "premature", Train: "train", Planned: "planned",
+	Timed: "timed", Signal: "signal", Opened: "opened", Switched: "switched",
 }
 
 var dirNames = [...]string{Down: "down", Up: "up"}
@@ -18,6 +20,11 @@ var dirNames = [...]string{Down: "down", Up: "up"}
 var tissueNames = [...]string{
 	Sinus: "sinus", Atrium: "atrium", Node: "av_node", His: "his", Purkinje: "purkinje",
 	Ventricle: "ventricle", Accessory: "accessory",
+}
+
+var useNames = [...]string{
+	Tracked: "tracked", Resets: "resets", Inhibits: "inhibits", Refractory: "refractory", Blanked: "blanked",
+	Noise: "noise", Safety: "safety", Triggers: "triggers", Observed: "observed",
 }
 
 func name(names []string, i int) string {
@@ -38,6 +45,7 @@ func index(names []string, s string) int {
 
 func (k Kind) String() string   { return name(kindNames[:], int(k)) }
 func (r Rule) String() string   { return name(ruleNames[:], int(r)) }
+func (u Use) String() string    { return name(useNames[:], int(u)) }
 func (d Dir) String() string    { return name(dirNames[:], int(d)) }
 func (t Tissue) String() string { return name(tissueNames[:], int(t)) }
 

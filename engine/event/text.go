@@ -59,8 +59,19 @@ func (l *Log) line(b *strings.Builder, e *Event) {
 	if e.Captured {
 		b.WriteString(" captured=1")
 	}
-	if e.Field != "" {
-		fmt.Fprintf(b, " field=%q to=%q", e.Field, e.To)
+	if e.Channel != 0 {
+		fmt.Fprintf(b, " channel=%c", e.Channel)
+	}
+	if e.Use != 0 {
+		fmt.Fprintf(b, " use=%s", e.Use)
+	}
+	if e.By != 0 {
+		fmt.Fprintf(b, " by=%d", e.By)
+	}
+	for _, f := range [...]struct{ name, value string }{{"field", e.Field}, {"to", e.To}, {"why", e.Why}} {
+		if f.value != "" {
+			fmt.Fprintf(b, " %s=%q", f.name, f.value)
+		}
 	}
 	b.WriteByte('\n')
 }
@@ -161,7 +172,16 @@ func (l *Log) setField(e *Event, k, v string) bool {
 		return v != ""
 	case "to":
 		e.To = v
-		return true
+		return v != ""
+	case "why":
+		e.Why = v
+		return v != ""
+	case "use":
+		e.Use = Use(index(useNames[:], v))
+		return e.Use != 0
+	case "channel":
+		e.Channel = v[0]
+		return v == "A" || v == "V"
 	}
 	n, err := strconv.ParseInt(v, 10, 64)
 	if err != nil {
@@ -180,6 +200,9 @@ func (l *Log) setField(e *Event, k, v string) bool {
 		e.Needed = tick.Dur(n)
 	case "until":
 		e.Until = tick.Time(n)
+	case "by":
+		e.By = ID(n)
+		return n > 0 && n < 1<<31
 	case "captured":
 		e.Captured = n == 1
 		return n == 1

@@ -69,9 +69,15 @@ func (v *validator) event(i int) {
 	case Block:
 		v.block(e)
 	case Stimulus:
-		v.want(e, (e.Rule == Premature || e.Rule == Train) && v.site(e.Site) && e.Path == None)
+		v.want(e, (e.Rule == Premature || e.Rule == Train || e.Rule == Timed && e.Field != "") && v.site(e.Site) && e.Path == None)
 	case Change:
 		v.want(e, e.Rule == Planned && e.Field != "")
+	case Sense:
+		v.want(e, e.Rule == Signal && v.site(e.Site) && e.Use != 0 && e.Channel != 0 && e.By < e.ID)
+	case Window:
+		v.window(e)
+	case Mode:
+		v.want(e, e.Rule == Switched && e.Field != "" && e.To != "")
 	default:
 		v.fault(e.ID, "kind %d is not known", e.Kind)
 	}
@@ -111,6 +117,19 @@ func (v *validator) activate(e *Event) {
 		v.fault(e.ID, "refractory period ends at %v ms, before it begins", e.Until)
 	}
 	*last = *e
+}
+
+// window checks that a window ends, and by an event at the time it ends.
+func (v *validator) window(e *Event) {
+	if !v.want(e, e.Rule == Opened && e.Field != "") {
+		return
+	}
+	if e.Until < e.T {
+		v.fault(e.ID, "%s ends at %v ms, before it begins", e.Field, e.Until)
+	}
+	if by := v.l.At(e.By); e.By != 0 && (by == nil || by.T != e.Until) {
+		v.fault(e.ID, "%s is ended by event %d, which is not at %v ms", e.Field, e.By, e.Until)
+	}
 }
 
 func (v *validator) block(e *Event) {
