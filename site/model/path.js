@@ -9,10 +9,17 @@
  * @returns {(string | number)[]}
  */
 export function steps(path) {
-  const out = [];
-  for (const m of path.matchAll(/([^.[\]]+)|\[(\d+)\]/g)) out.push(m[2] === undefined ? m[1] : Number(m[2]));
+  let out = known.get(path);
+  if (!out) {
+    out = [];
+    for (const m of path.matchAll(/([^.[\]]+)|\[(\d+)\]/g)) out.push(m[2] === undefined ? m[1] : Number(m[2]));
+    known.set(path, out);
+  }
   return out;
 }
+
+/** Every row asks for its own path at every change. @type {Map<string, (string | number)[]>} */
+const known = new Map();
 
 /**
  * The value at a path; undefined where the plan does not say.

@@ -92,6 +92,18 @@ describe("the page", () => {
     assert.ok(drawn.share > 20 && drawn.colours > 8, JSON.stringify(drawn));
     assert.ok(drawn.marks > 100, `${drawn.marks} marks`);
     assert.match(await page.innerText("#statement"), /sinus/i);
+    const overview = await page.evaluate(() => {
+      const from = /** @type {HTMLCanvasElement} */ (document.querySelector("#overview canvas"));
+      const g = /** @type {OffscreenCanvasRenderingContext2D} */ (new OffscreenCanvas(from.width, from.height).getContext("2d"));
+      g.drawImage(from, 0, 0);
+      const d = g.getImageData(0, 0, from.width, from.height).data;
+      const seen = new Set();
+      for (let i = 0; i < d.length; i += 4) if (d[i + 3] === 255) seen.add(`${d[i]},${d[i + 1]},${d[i + 2]}`);
+      return [...seen];
+    });
+    for (const [what, colour] of [["atria", "11,107,114"], ["ventricles", "30,42,48"], ["the part shown", "233,239,239"]]) {
+      assert.ok(overview.includes(colour), `${what} are missing from the overview`);
+    }
     assert.match(await page.innerText("footer"), /^Planning and teaching aid\. .* licensed clinician\.$/);
   }));
 

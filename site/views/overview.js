@@ -27,10 +27,19 @@ export function overviewView(root, store) {
   const g = /** @type {CanvasRenderingContext2D} */ (canvas.getContext("2d"));
   let held = false;
   let offset = 0;
+  let width = 0;
+  // Read once a sheet and a size: asking in every frame would lay the page out twice.
+  let look = { family: "", ink: /** @type {Record<string, string>} */ ({}) };
+
+  function readLook() {
+    const style = getComputedStyle(root);
+    const ink = Object.fromEntries(["wash", "device", "atrium", "ventricle", "alarm", "ink-soft", "rule-strong"].map((n) => [n, style.getPropertyValue(`--${n}`).trim()]));
+    look = { family: style.fontFamily, ink };
+  }
 
   function scale() {
     const span = store.get().answer?.span_ms ?? 1;
-    return { t0: 0, x0: GUTTER, pxPerMs: (canvas.clientWidth - GUTTER - 8) / span };
+    return { t0: 0, x0: GUTTER, pxPerMs: (width - GUTTER - 8) / span };
   }
 
   /** @param {PointerEvent} e */
@@ -77,35 +86,35 @@ export function overviewView(root, store) {
 
   function draw() {
     const { answer, view } = store.get();
-    const width = canvas.clientWidth;
     if (!answer || width === 0) return;
     const dpr = window.devicePixelRatio || 1;
-    canvas.width = Math.round(width * dpr);
-    canvas.height = HEIGHT * dpr;
+    if (canvas.width !== Math.round(width * dpr)) {
+      canvas.width = Math.round(width * dpr);
+      canvas.height = HEIGHT * dpr;
+    }
     g.setTransform(dpr, 0, 0, dpr, 0, 0);
     g.clearRect(0, 0, width, HEIGHT);
-    const look = getComputedStyle(root);
-    const colour = (/** @type {string} */ name) => look.getPropertyValue(name).trim();
+    const colour = (/** @type {string} */ name) => look.ink[name];
     const s = scale();
     const right = width - 8;
 
     const x0 = xOf(s, view.t0_ms);
     const x1 = Math.min(right, xOf(s, view.t0_ms + shown(view)));
-    g.fillStyle = colour("--wash");
+    g.fillStyle = colour("wash");
     g.fillRect(x0, 1, x1 - x0, HEIGHT - 15);
-    g.fillStyle = colour("--device");
+    g.fillStyle = colour("device");
     g.fillRect(x0, 1, 1.5, HEIGHT - 15);
     g.fillRect(x1 - 1.5, 1, 1.5, HEIGHT - 15);
 
-    g.font = `12px ${look.fontFamily}`;
+    g.font = `12px ${look.family}`;
     g.textBaseline = "middle";
-    line("atria", ROWS.atrium, colour("--atrium"), answer.overview.atrium);
-    line("ventricles", ROWS.ventricle, colour("--ventricle"), answer.overview.ventricle);
-    g.fillStyle = colour("--alarm");
+    line("atria", ROWS.atrium, colour("atrium"), answer.overview.atrium);
+    line("ventricles", ROWS.ventricle, colour("ventricle"), answer.overview.ventricle);
+    g.fillStyle = colour("alarm");
     for (const t of answer.overview.blocks) flag(xOf(s, t), 19);
-    g.strokeStyle = colour("--device");
+    g.strokeStyle = colour("device");
     for (const t of answer.overview.stimuli) ring(xOf(s, t), 19);
-    ticks(colour("--ink-soft"), colour("--rule-strong"));
+    ticks(colour("ink-soft"), colour("rule-strong"));
 
     /**
      * @param {string} name
@@ -115,9 +124,9 @@ export function overviewView(root, store) {
      */
     function line(name, y, ink, times) {
       g.textAlign = "right";
-      g.fillStyle = colour("--ink-soft");
+      g.fillStyle = colour("ink-soft");
       g.fillText(name, GUTTER - 10, y);
-      g.fillStyle = colour("--rule-strong");
+      g.fillStyle = colour("rule-strong");
       g.fillRect(s.x0, y, right - s.x0, 1);
       g.fillStyle = ink;
       let last = -10;
@@ -159,12 +168,16 @@ export function overviewView(root, store) {
     }
   }
 
-  const watch = new ResizeObserver(draw);
+  const watch = new ResizeObserver(() => {
+    width = canvas.clientWidth;
+    draw();
+  });
   watch.observe(root);
 
   return {
     /** @param {State} state @param {Set<string>} changed */
     update(state, changed) {
+      if (changed.has("dark")) readLook();
       if (!["answer", "view", "dark"].some((k) => changed.has(k)) || !state.answer) return;
       draw();
       canvas.setAttribute("aria-valuemax", String(Math.round(state.answer.span_ms)));

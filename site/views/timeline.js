@@ -42,6 +42,7 @@ export function timelineView(root, store, _engine, catalogue) {
 
   const g = /** @type {CanvasRenderingContext2D} */ (canvas.getContext("2d"));
   let width = 0;
+  const family = getComputedStyle(pane).fontFamily;
 
   function draw() {
     const { scene, dark } = store.get();
@@ -61,7 +62,7 @@ export function timelineView(root, store, _engine, catalogue) {
     g.setTransform(k, 0, 0, k, 0, 0);
     g.fillStyle = styles.paper;
     g.fillRect(0, 0, scene.width, scene.height);
-    paint(g, scene, styles, getComputedStyle(pane).fontFamily, { hairMM: 1 / k });
+    paint(g, scene, styles, family, { hairMM: 1 / k });
     canvas.dataset.marks = String(scene.marks.length);
     stick();
   }
