@@ -23,7 +23,6 @@ var allowed = map[string][]string{
 	"engine/lead":           {"engine/tick", "engine/event"},
 	"engine/heart":          {"engine/tick", "engine/portmath", "engine/event"},
 	"engine/pacer":          {"engine/tick", "engine/event"},
-	"engine/pacer":          {"engine/tick", "engine/event"},
 	"engine/plan":           {"engine/tick", "engine/event", "engine/heart", "engine/pacer"},
 	"engine/sim":            {"engine/tick", "engine/portmath", "engine/event", "engine/heart", "engine/pacer", "engine/plan"},
 	"engine/ladder":         {"engine/tick", "engine/event"},
