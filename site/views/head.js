@@ -31,6 +31,7 @@ export function headView(root, store, presets, open) {
         title, pick)),
     says,
     el("div", { class: "tools" },
+      el("span", { class: "busy", "aria-hidden": "true" }, "computing"),
       el("span", { class: "name" }, "escapement"),
       undo, redo, sheet,
       el("button", { type: "button", id: "keys", onclick: open.keys, title: "?", "aria-haspopup": "dialog" }, "Keys")),

@@ -9,9 +9,11 @@ import (
 
 	"escapement/engine/event"
 	"escapement/engine/ladder"
+	"escapement/engine/lead"
 	"escapement/engine/measure"
 	"escapement/engine/plan"
 	"escapement/engine/sim"
+	"escapement/engine/tick"
 )
 
 type computeReply struct {
@@ -81,9 +83,16 @@ func (s *Session) run(file []byte) (*timeline, error) {
 	if err != nil {
 		return nil, err
 	}
-	rec := s.field.Record(log)
+	var rec *lead.Record
+	if log.Span <= leadsUpTo {
+		rec = s.field.Record(log)
+	}
 	return &timeline{plan: p, log: log, record: rec, report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{}}, nil
 }
+
+// leadsUpTo is the longest strip that has leads: 12 of them at 1000 samples a
+// second take 43 MB.
+const leadsUpTo = tick.Time(15 * tick.Minute)
 
 // diagnose puts any refusal in the form of a diagnosis.
 func diagnose(err error) []diagnosis {
@@ -105,6 +114,9 @@ func (t *timeline) answer() *answer {
 		Measured: numbers(&t.report.Summary), Events: len(t.log.Events), Span: t.log.Span.MS(),
 		Fingerprint: fmt.Sprintf("%016x", t.log.Fingerprint()),
 		Overview:    t.overview(),
+	}
+	if t.record == nil {
+		a.Warnings = append(a.Warnings, fmt.Sprintf("Leads are computed for strips of up to %.0f min; this one has its ladder alone.", leadsUpTo.Seconds()/60))
 	}
 	for i := range t.report.Findings {
 		f := &t.report.Findings[i]

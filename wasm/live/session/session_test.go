@@ -151,6 +151,18 @@ func TestTheLadderFillsTheRoomAndTheViewIsKept(t *testing.T) {
 	}
 }
 
+func TestALongStripHasItsLadderAndSaysWhyItHasNoLeads(t *testing.T) {
+	s := New()
+	r, _ := reply[computeReply](t, s, "compute", asked{Plan: []byte(`{"format":"escapement-plan/1","span_ms":1800000}`), View: usual()})
+	if !r.OK || len(r.Answer.Warnings) != 1 || !strings.Contains(r.Answer.Warnings[0], "15 min") {
+		t.Fatalf("got %+v, want one warning", r.Diagnoses)
+	}
+	r, _ = reply[computeReply](t, s, "compute", asked{Plan: []byte(`{"format":"escapement-plan/1","span_ms":86400000}`), View: usual()})
+	if r.OK || len(r.Diagnoses) != 1 || !strings.Contains(r.Diagnoses[0].Text, "shorten span_ms") {
+		t.Errorf("got %+v, want the limit on events with its numbers", r.Diagnoses)
+	}
+}
+
 func TestSentenceKeepsEveryLetter(t *testing.T) {
 	ids := []event.ID{4}
 	for _, c := range []struct {
