@@ -7,6 +7,7 @@ import (
 
 	"escapement/engine/event"
 	"escapement/engine/heart"
+	"escapement/engine/pacer"
 	"escapement/engine/tick"
 )
 
@@ -31,7 +32,9 @@ func (p *Plan) Compile() (*Program, error) {
 	if c.prog.Heart = c.heart(p); c.prog.Heart == nil {
 		return nil, c.ds
 	}
+	c.prog.Device = p.device(c.prog.Heart)
 	c.stimuli()
+	c.faults()
 	c.changes()
 	if err := c.ds.err(); err != nil {
 		return nil, err
@@ -102,6 +105,35 @@ func (c *compiler) stimuli() {
 			}
 		}
 	}
+}
+
+// faults lays out what is wrong with the device, and signals that come from no heart.
+func (c *compiler) faults() {
+	for _, it := range c.plan.Interventions {
+		f := Fault{T: it.at(), Channel: pacer.Ventricular}
+		if it["channel"].Text == "A" {
+			f.Channel = pacer.Atrial
+		}
+		end := f
+		end.T = f.T.Add(tick.MS(it["for_ms"].Number))
+		switch it["do"].Text {
+		case "lose_capture":
+			f.Lost, end.Lost = 1, -1
+		case "undersense":
+			f.Deaf, end.Deaf = 1, -1
+		case "signal":
+			f.Signal = true
+			for range max(int(it["count"].Number), 1) {
+				c.prog.Faults = append(c.prog.Faults, f)
+				f.T = f.T.Add(tick.MS(it["cycle_ms"].Number))
+			}
+			continue
+		default:
+			continue
+		}
+		c.prog.Faults = append(c.prog.Faults, f, end)
+	}
+	sort.SliceStable(c.prog.Faults, func(i, j int) bool { return c.prog.Faults[i].T < c.prog.Faults[j].T })
 }
 
 // changes prepares a heart for every moment at which a number changes.

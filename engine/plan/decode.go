@@ -12,6 +12,8 @@ import (
 	"strconv"
 	"strings"
 	"unicode/utf8"
+
+	"escapement/engine/pacer"
 )
 
 // MaxBytes is the largest plan file that is read.
@@ -229,7 +231,7 @@ func judge(f *Field, v any) (value Value, allowed string) {
 	switch f.Kind {
 	case Number:
 		x, ok := number(v)
-		if !ok || x < f.Min || x > f.Max || (f.Path == "seed" || strings.HasSuffix(f.Path, ".count")) && x != math.Trunc(x) {
+		if !ok || x < f.Min || x > f.Max || f.Whole && x != math.Trunc(x) {
 			return value, f.allowed()
 		}
 		return Value{Number: x}, ""
@@ -249,6 +251,15 @@ func judge(f *Field, v any) (value Value, allowed string) {
 		s, ok := v.(string)
 		if _, good := parseDrop(s); !ok || !good {
 			return value, f.allowed()
+		}
+		return Value{Text: s}, ""
+	case ModeCode:
+		s, ok := v.(string)
+		if !ok {
+			return value, f.allowed()
+		}
+		if _, err := pacer.ParseMode(s); err != nil {
+			return value, strings.TrimPrefix(err.Error(), fmt.Sprintf("mode %q: ", s))
 		}
 		return Value{Text: s}, ""
 	case List:
@@ -296,6 +307,9 @@ func (f *Field) allowed() string {
 	switch f.Kind {
 	case Number:
 		s = fmt.Sprintf("a number from %s to %s", plainNumber(f.Min), plainNumber(f.Max))
+		if f.Whole {
+			s = "a whole" + s[1:]
+		}
 		if f.Unit != "" {
 			s += " " + f.Unit
 		}
@@ -306,6 +320,8 @@ func (f *Field) allowed() string {
 		if f.Choices == nil {
 			s = "the path of a number in the plan, such as heart.sinus.rate_bpm"
 		}
+	case ModeCode:
+		s = "a pacing mode: " + strings.Join(pacer.Modes, ", ") + ", with R and V where they apply"
 	case Pattern:
 		s = `"3:2" (two of three conducted), "3:2+1" or "10%"`
 	case List:

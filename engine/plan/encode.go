@@ -53,7 +53,7 @@ func (v Value) json(f *Field) any {
 		return v.On
 	case f.Kind == List:
 		return v.List
-	case f.Kind == Choice, f.Kind == Pattern, f.Kind == Any && v.Text != "":
+	case f.Kind == Choice, f.Kind == Pattern, f.Kind == ModeCode, f.Kind == Any && v.Text != "":
 		return v.Text
 	}
 	return v.Number

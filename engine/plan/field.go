@@ -6,13 +6,14 @@ import "escapement/engine/heart"
 type Kind string
 
 const (
-	Number  Kind = "number"
-	Switch  Kind = "switch"  // true or false
-	Choice  Kind = "choice"  // one of Choices
-	Pattern Kind = "pattern" // a drop pattern: "3:2" conducts 2 of 3; "3:2+1" starts after the first; "10%" drops at random
-	List    Kind = "list"    // numbers in ms
-	Any     Kind = "any"     // a number, a text or null, judged with the field it is for
-	Group   Kind = "group"   // an object; listed only where it may be null
+	Number   Kind = "number"
+	Switch   Kind = "switch"  // true or false
+	Choice   Kind = "choice"  // one of Choices
+	Pattern  Kind = "pattern" // a drop pattern: "3:2" conducts 2 of 3; "3:2+1" starts after the first; "10%" drops at random
+	List     Kind = "list"    // numbers
+	ModeCode Kind = "mode"    // a pacing mode of the NBG code
+	Any      Kind = "any"     // a number, a text or null, judged with the field it is for
+	Group    Kind = "group"   // an object; listed only where it may be null
 )
 
 // Field describes one value of the plan file: the single place where its range,
@@ -24,7 +25,10 @@ type Field struct {
 	Kind     Kind     `json:"kind"`
 	Min      float64  `json:"min"`
 	Max      float64  `json:"max"`
-	Default  *float64 `json:"default"` // nil: absent, see Help
+	Default  *float64 `json:"default"`         // nil: absent, see Help
+	Word     string   `json:"word,omitempty"`  // default of a Choice or ModeCode
+	On       bool     `json:"on,omitempty"`    // default of a Switch
+	Whole    bool     `json:"whole,omitempty"` // whole numbers only
 	Nullable bool     `json:"nullable,omitempty"`
 	Null     string   `json:"null,omitempty"`    // what null means, for people
 	IsNull   bool     `json:"is_null,omitempty"` // null is the default
@@ -66,6 +70,8 @@ func (f *Field) help(text string) *Field { f.Help = text; return f }
 
 func (f *Field) null(means string) *Field { f.Nullable, f.Null = true, means; return f }
 
+func (f *Field) whole() *Field { f.Whole = true; return f }
+
 func (f *Field) advanced() *Field { f.Advanced = true; return f }
 
 func pattern(path, label string) *Field {
@@ -92,11 +98,12 @@ func ptr(v float64) *float64 { return &v }
 func fields() []*Field {
 	fs := []*Field{
 		num("span_ms", "length of the strip", "ms", 12000, 100, 86400000).help("Up to 24 hours."),
-		num("seed", "random seed", "", 1, 0, 1<<53).help("The same seed gives the same strip.").advanced(),
+		num("seed", "random seed", "", 1, 0, 1<<53).help("The same seed gives the same strip.").advanced().whole(),
 	}
 	fs = append(fs, sinusFields()...)
 	fs = append(fs, nodeFields()...)
 	fs = append(fs, purkinjeFields()...)
+	fs = append(fs, deviceFields()...)
 	fs = append(fs, itemFields()...)
 	return fs
 }

@@ -25,10 +25,12 @@ func itemFields() []*Field {
 		num(f+".overdrive", "overdrive suppression", "", 0, 0, 1),
 		num(f+".overdrive_tau_s", "suppression fades over", "s", 10, 0.1, 600),
 		num(i+".at_ms", "at", "ms", 0, 0, 86400000),
-		{Path: i + ".do", Label: "what", Kind: Choice, Choices: []string{"stimulate", "train", "set"}},
+		{Path: i + ".do", Label: "what", Kind: Choice, Choices: []string{"stimulate", "train", "set", "lose_capture", "undersense", "signal"}},
 		site(i + ".site"),
-		opt(i+".cycle_ms", "cycle", "ms", 20, 10000, "Interval between the stimuli of a train."),
-		opt(i+".count", "stimuli", "", 1, MaxStimuli, "Stimuli of a train, without extrastimuli."),
+		{Path: i + ".channel", Label: "channel", Kind: Choice, Choices: []string{"A", "V"}, Help: "Of the device: atrial or ventricular."},
+		opt(i+".for_ms", "for", "ms", 1, 86400000, "How long the fault lasts."),
+		opt(i+".cycle_ms", "cycle", "ms", 20, 10000, "Interval between the stimuli of a train or the signals of a burst."),
+		opt(i+".count", "stimuli", "", 1, MaxStimuli, "Stimuli of a train, without extrastimuli; signals of a burst.").whole(),
 		{Path: i + ".extras_ms", Label: "extrastimuli", Unit: "ms", Kind: List, Min: 20, Max: 10000, Help: "Coupling intervals after the last of the train."},
 		{Path: i + ".field", Label: "number", Kind: Choice, Help: "The number to change, as it stands in the plan file."},
 		{Path: i + ".to", Label: "to", Kind: Any, Nullable: true},
@@ -38,7 +40,10 @@ func itemFields() []*Field {
 
 // needs lists what each kind of intervention must and may have besides at_ms and do.
 var needs = map[string]struct{ must, may []string }{
-	"stimulate": {must: []string{"site"}},
-	"train":     {must: []string{"site", "cycle_ms", "count"}, may: []string{"extras_ms"}},
-	"set":       {must: []string{"field", "to"}, may: []string{"over_ms"}},
+	"stimulate":    {must: []string{"site"}},
+	"train":        {must: []string{"site", "cycle_ms", "count"}, may: []string{"extras_ms"}},
+	"set":          {must: []string{"field", "to"}, may: []string{"over_ms"}},
+	"lose_capture": {must: []string{"channel", "for_ms"}},
+	"undersense":   {must: []string{"channel", "for_ms"}},
+	"signal":       {must: []string{"channel"}, may: []string{"cycle_ms", "count"}},
 }

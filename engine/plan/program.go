@@ -3,6 +3,7 @@ package plan
 import (
 	"escapement/engine/event"
 	"escapement/engine/heart"
+	"escapement/engine/pacer"
 	"escapement/engine/tick"
 )
 
@@ -14,6 +15,8 @@ type Program struct {
 	Seed    uint64
 	Stimuli []Stimulus
 	Changes []Change
+	Device  *Device // nil: none
+	Faults  []Fault // of the device, in order of time
 }
 
 // Stimulus is one artificial stimulus.
@@ -31,4 +34,21 @@ type Change struct {
 	T         tick.Time
 	Field, To string
 	Heart     *heart.Heart
+}
+
+// Fault is the beginning (1) or the end (-1) of a fault of the device, or one signal
+// that comes from no heart.
+type Fault struct {
+	T          tick.Time
+	Channel    pacer.Channel
+	Deaf, Lost int
+	Signal     bool
+}
+
+// Lead is the lead of the fault's channel.
+func (f *Fault) Lead() pacer.Lead {
+	if f.Channel == pacer.Atrial {
+		return pacer.RA
+	}
+	return pacer.RV
 }

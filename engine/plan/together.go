@@ -27,6 +27,7 @@ func (d *decoder) together() {
 			d.whole(at)
 		}
 	}
+	d.activity()
 	for i, it := range d.p.Foci {
 		at := fmt.Sprintf("heart.foci[%d]", i)
 		d.has(at, it, "site")
@@ -41,6 +42,18 @@ func (d *decoder) together() {
 	}
 	if total > MaxStimuli {
 		d.ds.add("interventions", fmt.Sprintf("%d stimuli in all", total), fmt.Sprintf("up to %d", MaxStimuli), "")
+	}
+}
+
+// activity asks for as many levels as times, the times ascending.
+func (d *decoder) activity() {
+	const at = device + ".sensor.activity_at_ms"
+	times, levels := d.p.values[at].List, d.p.values[device+".sensor.activity_level"].List
+	if len(times) != len(levels) {
+		d.ds.add(at, fmt.Sprintf("%d times for %d levels", len(times), len(levels)), "one time for each level", "")
+	}
+	if !slices.IsSorted(times) {
+		d.ds.add(at, show(times), "times that ascend", "")
 	}
 }
 

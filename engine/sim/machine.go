@@ -50,6 +50,7 @@ package sim
 import (
 	"escapement/engine/event"
 	"escapement/engine/heart"
+	"escapement/engine/pacer"
 	"escapement/engine/plan"
 	"escapement/engine/tick"
 )
@@ -62,6 +63,7 @@ type Machine struct {
 	queue queue
 	now   tick.Time
 	base  event.ID // events already taken away by Drain
+	dev   *device  // nil: none
 
 	ways  []way // paths by 2*id + direction, compiled
 	exits [][]exit
@@ -130,6 +132,7 @@ func New(prog *plan.Program) *Machine {
 	for i := range prog.Changes {
 		m.push(prog.Changes[i].T, classChange, i, 0, 0)
 	}
+	m.connect(prog)
 	return m
 }
 
@@ -178,15 +181,27 @@ func (m *Machine) Drain() {
 // recorded. It tells whether the end was reached.
 func (m *Machine) Run(budget int) bool {
 	stop := len(m.log.Events) + budget
-	for m.queue.next() <= m.prog.Span {
+	for {
+		next, due := m.queue.next(), m.dev.due()
+		if min(next, due) > m.prog.Span {
+			break
+		}
 		if len(m.log.Events) >= stop {
 			return false
+		}
+		if due < next {
+			m.dev.expire(due)
+			continue
 		}
 		it := m.queue.pop()
 		m.now = it.t
 		switch it.class() {
 		case classChange:
 			m.change(&m.prog.Changes[it.index])
+		case classFault:
+			m.dev.fault(&m.prog.Faults[it.index])
+		case classSense:
+			m.dev.sense(event.SiteID(it.index), pacer.Channel(it.dir), event.ID(it.gen))
 		case classStop:
 			m.record(m.stops[it.index])
 			m.free = append(m.free, it.index)
@@ -275,6 +290,9 @@ func (m *Machine) activate(e event.Event) {
 	id := m.record(e)
 	st.last, st.until, st.id = m.now, e.Until, id
 	m.reset(&e, id)
+	if m.dev != nil {
+		m.dev.depolarised(&e, id)
+	}
 	for _, x := range m.exits[e.Site] {
 		if x.path != e.Path {
 			m.enter(x.path, x.dir, id, e.Site)

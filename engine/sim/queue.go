@@ -4,12 +4,13 @@ import "escapement/engine/tick"
 
 // class orders what happens at one instant. The table is written once, here:
 // numbers change first, then impulses that stopped are recorded, impulses arrive
-// (atrium before ventricle), foci discharge, and stimuli come last, so that a
+// (atrium before ventricle), the device takes notice, foci discharge, and stimuli come last, so that a
 // tissue that is reached at the very instant of a stimulus counts as reached.
 type class uint8
 
 const (
 	classChange class = iota
+	classFault
 	classStop
 	classArriveSinus
 	classArriveAtrium
@@ -17,6 +18,7 @@ const (
 	classArriveHis
 	classArrivePurkinje
 	classArriveVentricle
+	classSense
 	classDischarge
 	classStimulate
 )

@@ -1,0 +1,152 @@
+package sim
+
+import (
+	"escapement/engine/event"
+	"escapement/engine/pacer"
+	"escapement/engine/plan"
+	"escapement/engine/tick"
+)
+
+// device joins a pacemaker to the heart: it turns depolarisations at the leads into
+// signals, and stimuli into depolarisations where they capture.
+//
+// A depolarisation is sensed when the site of the lead is reached: late, where the
+// tissue there is reached late. What a lead's own stimulus depolarises is no signal
+// to that lead. A signal is judged after everything else of its instant but before
+// the device's timers.
+type device struct {
+	m          *Machine
+	p          *plan.Device
+	d          *pacer.Device
+	deaf, lost [pacer.Ventricular + 1]int // faults in force, by channel
+}
+
+func letter(ch pacer.Channel) byte {
+	if ch == pacer.Atrial {
+		return 'A'
+	}
+	return 'V'
+}
+
+func (m *Machine) connect(prog *plan.Program) {
+	if prog.Device == nil {
+		return
+	}
+	m.dev = &device{m: m, p: prog.Device}
+	m.dev.d = pacer.New(prog.Device.Settings, m.dev)
+	m.dev.d.Start(0)
+	for i := range prog.Faults {
+		m.push(prog.Faults[i].T, classFault, i, 0, 0)
+	}
+}
+
+// due is when the device next acts by itself.
+func (v *device) due() tick.Time {
+	if v == nil {
+		return tick.Never
+	}
+	return v.d.Due()
+}
+
+func (v *device) expire(t tick.Time) {
+	v.m.now = t
+	v.d.Expire(t)
+}
+
+// fault begins or ends a fault, or puts a signal of no heart on a channel.
+func (v *device) fault(f *plan.Fault) {
+	v.deaf[f.Channel] += f.Deaf
+	v.lost[f.Channel] += f.Lost
+	if f.Signal {
+		v.signal(0, f.Channel, v.p.Leads[f.Lead()].Sensing, 0)
+	}
+}
+
+// depolarised looks whether a lead senses the depolarisation of a site.
+func (v *device) depolarised(e *event.Event, id event.ID) {
+	a, r := &v.p.Leads[pacer.RA], &v.p.Leads[pacer.RV]
+	own := false
+	if e.Rule == event.Captured {
+		own = v.m.at(e.Cause).Rule == event.Timed
+	}
+	if e.Site == a.Sensing && !own && a.Senses && v.deaf[pacer.Atrial] == 0 {
+		v.signal(0, pacer.Atrial, e.Site, id)
+	}
+	if e.Site != r.Sensing {
+		return
+	}
+	if !own && r.Senses && v.deaf[pacer.Ventricular] == 0 {
+		v.signal(0, pacer.Ventricular, e.Site, id)
+	}
+	if v.p.FarField > 0 {
+		v.signal(v.p.FarField, pacer.Atrial, e.Site, id)
+	}
+	if v.p.TWave > 0 {
+		v.signal(v.p.TWave, pacer.Ventricular, e.Site, id)
+	}
+}
+
+func (v *device) signal(after tick.Dur, ch pacer.Channel, site event.SiteID, cause event.ID) {
+	if v.d.Senses(ch) {
+		v.m.push(v.m.now.Add(after), classSense, int(site), uint8(ch), uint32(cause))
+	}
+}
+
+// sense gives a signal to the device and records what it did with it.
+func (v *device) sense(site event.SiteID, ch pacer.Channel, cause event.ID) {
+	id := v.m.record(event.Event{Kind: event.Sense, Rule: event.Signal, Site: site, Path: event.None, Channel: letter(ch), Cause: cause})
+	done := v.d.Sense(v.m.now, ch, id)
+	e := v.m.at(id)
+	e.Use, e.By = done.Use, done.Because
+}
+
+// at finds an event that is still kept.
+func (m *Machine) at(id event.ID) *event.Event { return &m.log.Events[id-m.base-1] }
+
+// Stimulate delivers a stimulus of the device (pacer.Recorder).
+func (v *device) Stimulate(p pacer.Pulse) event.ID {
+	m := v.m
+	lead := &v.p.Leads[p.Lead]
+	ch := pacer.Ventricular
+	if p.Lead == pacer.RA {
+		ch = pacer.Atrial
+	}
+	st := &m.sites[lead.Site]
+	excitable := st.id == 0 || m.now >= st.until
+	enough := lead.Captures() && v.lost[ch] == 0
+	e := event.Event{Kind: event.Stimulus, Rule: event.Timed, Site: lead.Site, Path: event.None, Cause: p.Cause, Field: p.Timer.String(), Why: p.Why,
+		Channel: letter(ch), Captured: excitable && enough}
+	if st.id != 0 {
+		e.Recovery, e.Needed = m.now.Sub(st.last), st.until.Sub(st.last)
+	}
+	if excitable && !enough {
+		e.Why = "below threshold"
+		if lead.Captures() {
+			e.Why = "loss of capture"
+		}
+	}
+	id := m.record(e)
+	if e.Captured {
+		m.activate(event.Event{Rule: event.Captured, Site: lead.Site, Path: event.None, Cause: id})
+	}
+	return id
+}
+
+// Open records a window (pacer.Recorder).
+func (v *device) Open(w pacer.Window) event.ID {
+	return v.m.record(event.Event{Kind: event.Window, Rule: event.Opened, Site: event.None, Path: event.None, Cause: w.Cause,
+		Field: w.Name.String(), Until: w.Until, Why: w.Why, Channel: letter(w.Name.Channel())})
+}
+
+// Close ends a window before its time (pacer.Recorder).
+func (v *device) Close(window, by event.ID) {
+	if window > v.m.base {
+		e := v.m.at(window)
+		e.Until, e.By = v.m.now, by
+	}
+}
+
+// Mode records a change of mode (pacer.Recorder).
+func (v *device) Mode(from, to, why string, cause event.ID) event.ID {
+	return v.m.record(event.Event{Kind: event.Mode, Rule: event.Switched, Site: event.None, Path: event.None, Cause: cause, Field: from, To: to, Why: why})
+}
