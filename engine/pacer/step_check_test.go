@@ -159,14 +159,14 @@ func crosstalk(s *stepSettings) { s.paced, s.pavb, s.crosstalk = 180, 40, 110 }
 // common are the settings of the table above where a row does not say.
 func common() stepSettings {
 	return stepSettings{mode: stepModes[0], lower: 1000, upper: 500, paced: 200, sensed: 120,
-		pvarp: 250, pvab: 100, vrp: 250, arp: 250, blanking: 50}
+		pvarp: 250, pvab: 100, vrp: 250, arp: 250, blanking: 50, safety: true, past: true}
 }
 
 // devices are the two ways to live through a world.
 var devices = []struct {
 	name string
 	run  func(stepSettings, *world) []record
-}{{"fixed step", runSteps}}
+}{{"fixed step", runSteps}, {"events", runEvents}}
 
 func TestPublishedRhythms(t *testing.T) {
 	for _, c := range published {
@@ -176,7 +176,7 @@ func TestPublishedRhythms(t *testing.T) {
 				c.settings(&s)
 				var rs []record
 				for _, r := range d.run(s, c.world.copy()) {
-					if r.ms >= c.from {
+					if r.ms >= float64(c.from) {
 						rs = append(rs, r)
 					}
 				}

@@ -54,6 +54,10 @@ type stepSettings struct {
 	crosstalk   int // end of the crosstalk window, after an atrial stimulus
 	vrp, arp    int // arp in AAI
 	blanking    int // atrial blanking after an atrial event
+
+	safety bool // a signal in the crosstalk window is answered by a stimulus
+	counts bool // after a refractory P a ventricular event does not lengthen PVARP
+	past   bool // VDD: the AV delay may run past the lower rate interval
 }
 
 // counter is an interval that runs down. It is open from the step that starts it to
@@ -79,11 +83,12 @@ type stepDevice struct {
 
 	pvarp, pvab, blanking, arp, vrp, pavb, crosstalk counter
 
-	afterPaced bool // the AV delay followed a stimulus
-	inAV       bool // an AV delay runs, or waits for the upper rate interval
-	safety     bool // a signal came in the crosstalk window
-	atrium     bool // an atrial event came since the last ventricular event
-	sinceA     int  // steps since that event
+	afterPaced  bool // the AV delay followed a stimulus
+	inAV        bool // an AV delay runs, or waits for the upper rate interval
+	safety      bool // a signal came in the crosstalk window
+	atrium      bool // an atrial event came since the last ventricular event
+	refractoryP bool // and so did a P in a refractory period
+	sinceA      int  // steps since that event
 }
 
 func newStepDevice(s stepSettings) *stepDevice {
@@ -122,6 +127,7 @@ func (d *stepDevice) senseA() string {
 	case d.blanking.open() || d.pvab.open():
 		return "blanked"
 	case d.pvarp.open() || d.arp.open() || d.inAV:
+		d.refractoryP = true
 		return "refractory"
 	}
 	d.atrialEvent()
@@ -153,7 +159,9 @@ func (d *stepDevice) atrialEvent() {
 func (d *stepDevice) startAV(ms int, paced bool) {
 	d.av.start(ms)
 	d.inAV, d.afterPaced = true, paced
-	d.escapeV.stop()
+	if d.s.mode.name != "VDD" || d.s.past {
+		d.escapeV.stop()
+	}
 }
 
 // senseV is a signal in the ventricle.
@@ -163,7 +171,7 @@ func (d *stepDevice) senseV() string {
 		return "blanked"
 	case d.vrp.open():
 		return "refractory"
-	case d.crosstalk.open():
+	case d.crosstalk.open() && d.s.safety:
 		d.safety = true
 		return "safety"
 	}
@@ -179,7 +187,8 @@ func (d *stepDevice) senseV() string {
 func (d *stepDevice) ventricularEvent(sensed bool) {
 	premature := sensed && !d.atrium
 	conducted := sensed && d.atrium
-	d.inAV, d.safety, d.atrium = false, false, false
+	lengthen := premature && !(d.s.counts && d.refractoryP) && d.s.afterPVC > d.s.pvarp
+	d.inAV, d.safety, d.atrium, d.refractoryP = false, false, false, false
 	d.av.stop()
 	d.crosstalk.stop()
 
@@ -188,7 +197,7 @@ func (d *stepDevice) ventricularEvent(sensed bool) {
 	if d.s.mode.sensesA {
 		d.pvab.start(d.s.pvab)
 		d.pvarp.start(d.s.pvarp)
-		if premature && d.s.afterPVC > d.s.pvarp {
+		if lengthen {
 			d.pvarp.start(d.s.afterPVC)
 		}
 	}
@@ -227,7 +236,7 @@ func (d *stepDevice) pace() (a, v bool) {
 // ventricleDue: the AV delay is up (after a P, the upper rate interval too); or the
 // crosstalk window with a signal in it; or the lower rate interval.
 func (d *stepDevice) ventricleDue() bool {
-	if !d.inAV {
+	if !d.inAV || d.escapeV.up() {
 		return d.escapeV.up()
 	}
 	if d.afterPaced {

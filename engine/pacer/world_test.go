@@ -96,7 +96,7 @@ func (w *world) stimulus(c byte, ms int) {
 
 // record is a stimulus ("AP", "VP") or a signal with its use ("A tracked").
 type record struct {
-	ms   int
+	ms   float64
 	what string
 }
 
@@ -106,7 +106,7 @@ func format(rs []record) string {
 		if i > 0 {
 			b.WriteString(", ")
 		}
-		fmt.Fprintf(&b, "%d %s", r.ms, r.what)
+		fmt.Fprintf(&b, "%v %s", r.ms, r.what)
 	}
 	return b.String()
 }
@@ -118,18 +118,18 @@ func runSteps(s stepSettings, w *world) []record {
 	for t := 1; t < len(w.a); t++ {
 		d.tick()
 		if w.a[t] && s.mode.sensesA {
-			out = append(out, record{t, "A " + d.senseA()})
+			out = append(out, record{float64(t), "A " + d.senseA()})
 		}
 		if w.v[t] && s.mode.pacesV {
-			out = append(out, record{t, "V " + d.senseV()})
+			out = append(out, record{float64(t), "V " + d.senseV()})
 		}
 		a, v := d.pace()
 		if a {
-			out = append(out, record{t, "AP"})
+			out = append(out, record{float64(t), "AP"})
 			w.stimulus('A', t)
 		}
 		if v {
-			out = append(out, record{t, "VP"})
+			out = append(out, record{float64(t), "VP"})
 			w.stimulus('V', t)
 		}
 	}
@@ -167,14 +167,17 @@ func (d dice) settings() stepSettings {
 		s.mode = stepModes[0]
 	}
 	s.lower = d.between(400, 1800)
-	s.upper = d.between(300, min(800, s.lower))
+	if d.chance(90) {
+		s.upper = d.between(300, min(750, s.lower))
+	}
 	s.paced = d.between(60, min(350, s.lower-150))
 	s.sensed = d.between(30, s.paced)
-	s.pvarp = d.between(120, 500)
+	s.pvarp = d.between(150, 500)
 	s.pvab = d.orOff(20, min(250, s.pvarp))
-	s.afterPVC = d.orOff(200, 550)
+	s.afterPVC, s.counts = d.orOff(200, 550), d.chance(50)
+	s.past = d.chance(50)
 	s.pavb = d.orOff(10, min(100, s.paced-1))
-	s.crosstalk = d.orOff(60, 140)
+	s.crosstalk, s.safety = d.orOff(60, 140), d.chance(75)
 	s.vrp = d.between(100, min(500, s.lower-100))
 	s.arp = d.between(120, min(500, s.lower-100))
 	s.blanking = d.orOff(20, min(150, s.arp))
