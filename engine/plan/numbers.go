@@ -43,9 +43,9 @@ func (p *Plan) numbers(rate func(path string, bpm float64) heart.Rate) *heart.Nu
 }
 
 // cycled is a refractory period typed at the usual drive. It does not fall below
-// half of what was typed: the slopes were measured between 400 and 1000 ms.
+// three quarters of what was typed: the slopes were measured between 400 and 1000 ms.
 func cycled(ms, perCycle float64) heart.Cycled {
-	return heart.Cycled{BaseMS: ms, PerCycle: perCycle, CycleMS: heart.DriveMS, FloorMS: ms / 2, CapMS: heart.MuscleCapMS}
+	return heart.Cycled{BaseMS: ms, PerCycle: perCycle, CycleMS: heart.DriveMS, FloorMS: 0.75 * ms, CapMS: heart.MuscleCapMS}
 }
 
 func (p *Plan) direct(at string) heart.Direct {
