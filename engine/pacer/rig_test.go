@@ -20,6 +20,7 @@ type rig struct {
 	record  []entry
 	windows []recorded
 	byID    map[event.ID]int
+	when    []tick.Time // of every event, by id
 	modes   []string
 	// paced, if set, answers a stimulus.
 	paced func(p Pulse)
@@ -57,7 +58,7 @@ func newRig(t testing.TB, s Settings) *rig {
 	return r
 }
 
-func (r *rig) next() event.ID { r.ids++; return r.ids }
+func (r *rig) next() event.ID { r.ids++; r.when = append(r.when, r.now); return r.ids }
 
 func (r *rig) Stimulate(p Pulse) event.ID {
 	id := r.next()
@@ -99,8 +100,8 @@ func (r *rig) Close(window, by event.ID) {
 		r.t.Errorf("%v: window %d cannot be closed", r.now, window)
 		return
 	}
-	if by == 0 {
-		r.t.Errorf("%v: %v closed by nothing", r.now, r.windows[i].Name)
+	if by == 0 || r.when[by-1] != r.now {
+		r.t.Errorf("%v: %v closed by %d, which is not an event of now", r.now, r.windows[i].Name, by)
 	}
 	r.windows[i].ended, r.windows[i].by, r.windows[i].Until = true, by, r.now
 }
