@@ -51,7 +51,7 @@ function wantsDark() {
 }
 
 /** What the drawing of the present state is asked with. @param {State} s */
-const drawing = (s) => ({ view: s.view, marked: [...new Set([...(s.selected ? [s.selected] : []), ...s.lit])] });
+const drawing = (s) => ({ view: s.view, selected: s.selected });
 
 /**
  * Asks the engine; a failure is told on the page and the values stay.
@@ -136,14 +136,18 @@ function build(catalogue) {
     p: open.presets,
   });
 
+  /** Asks the engine at once; the answer is painted in the frame after it comes. @param {Set<string>} changed */
+  function request(changed) {
+    if (changed.has("plan")) compute();
+    else if (changed.has("view") || changed.has("selected")) layout();
+    if (changed.has("selected")) explain();
+  }
+
   const pending = new Set(Object.keys(store.get())); // the first time everything is new
   function refresh() {
     const changed = new Set(pending);
     pending.clear();
     const state = store.get();
-    if (changed.has("plan")) compute();
-    else if (changed.has("view") || changed.has("selected") || changed.has("lit")) layout();
-    if (changed.has("selected")) explain();
     if (changed.has("dark")) document.documentElement.dataset.sheet = state.dark ? "dark" : "light";
     if (changed.has("fault")) showFault(state.fault);
     for (const v of views) v.update(state, changed);
@@ -151,9 +155,11 @@ function build(catalogue) {
   store.subscribe((state, changed) => {
     for (const k of changed) pending.add(k);
     if (changed.has("dark")) localStorage.setItem(SHEET, state.dark ? "dark" : "light");
+    request(changed);
     nextFrame(refresh);
   });
   nextFrame(refresh);
+  compute();
 }
 
 /** @param {string} fault */

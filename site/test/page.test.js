@@ -408,16 +408,15 @@ describe("the page", () => {
   test("on a tablet settings and account are drawers", () => onPage(async (page) => {
     assert.equal(await page.isVisible("#search"), false);
     await page.click("#open-settings");
-    assert.equal(await page.isVisible("#search"), true);
+    await page.waitForSelector("#search", { state: "visible" });
     const first = await settled(page);
     await page.fill(RATE, "88");
     assert.notEqual(await settled(page), first);
     await page.keyboard.press("Escape");
     await page.keyboard.press("Escape");
-    await settled(page);
-    assert.equal(await page.isVisible("#search"), false);
+    await page.waitForSelector("#search", { state: "hidden" });
     await page.click("#open-account");
-    assert.equal(await page.isVisible("#account h2"), true);
+    await page.waitForSelector("#account h2", { state: "visible" });
   }, { width: 820, height: 1180 }));
 
   for (const [name, size] of /** @type {[string, {width: number, height: number}][]} */ ([["desk", { width: 1280, height: 800 }], ["tablet", { width: 820, height: 1180 }]])) {

@@ -35,6 +35,40 @@ export function paint(g, scene, styles, family, device) {
 }
 
 /**
+ * Puts a halo behind the marks of events, in the look of a selected one. It comes
+ * before the marks themselves.
+ * @param {CanvasRenderingContext2D} g
+ * @param {Scene} scene
+ * @param {Styles} styles
+ * @param {Set<number>} events
+ */
+export function halo(g, scene, styles, events) {
+  const { stroke, width } = styles.classes.selected ?? {};
+  if (!stroke || events.size === 0) return;
+  g.strokeStyle = g.fillStyle = stroke;
+  g.lineWidth = width ?? 2;
+  g.lineCap = "round";
+  g.setLineDash([]);
+  for (const m of scene.marks) {
+    if (!events.has(m.event)) continue;
+    if (m.shape === RECT) {
+      g.globalAlpha = 0.5;
+      g.fillRect(m.x, m.y, m.x2 - m.x, m.y2 - m.y);
+      g.globalAlpha = 1;
+    } else if (m.shape === LINE) {
+      g.beginPath();
+      g.moveTo(m.x, m.y);
+      g.lineTo(m.x2, m.y2);
+      g.stroke();
+    } else if (m.shape === DISC || m.shape === RING) {
+      g.beginPath();
+      g.arc(m.x, m.y, m.r + 0.9, 0, 2 * Math.PI);
+      g.fill();
+    }
+  }
+}
+
+/**
  * @param {CanvasRenderingContext2D} g
  * @param {Style} style
  * @param {Scene} scene

@@ -7,7 +7,7 @@ import { PX_PER_MM } from "../base/scale.js";
 import { handleAt, nearest, placeOf, timeAt } from "../engine/scene.js";
 import { pan, zoomTo } from "../model/view.js";
 import { grip } from "./grip.js";
-import { paint } from "./paint.js";
+import { halo, paint } from "./paint.js";
 import { timelineKeys } from "./keys.js";
 
 /**
@@ -45,7 +45,7 @@ export function timelineView(root, store, _engine, catalogue) {
   const family = getComputedStyle(pane).fontFamily;
 
   function draw() {
-    const { scene, dark } = store.get();
+    const { scene, dark, lit } = store.get();
     if (!scene || width === 0) return;
     const dpr = window.devicePixelRatio || 1;
     const styles = dark ? catalogue.styles.dark : catalogue.styles.light;
@@ -62,6 +62,7 @@ export function timelineView(root, store, _engine, catalogue) {
     g.setTransform(k, 0, 0, k, 0, 0);
     g.fillStyle = styles.paper;
     g.fillRect(0, 0, scene.width, scene.height);
+    halo(g, scene, styles, new Set(lit));
     paint(g, scene, styles, family, { hairMM: 1 / k });
     canvas.dataset.marks = String(scene.marks.length);
     stick();
@@ -176,7 +177,7 @@ export function timelineView(root, store, _engine, catalogue) {
   return {
     /** @param {State} state @param {Set<string>} changed */
     update(state, changed) {
-      if (changed.has("scene") || changed.has("dark")) draw();
+      if (["scene", "dark", "lit"].some((k) => changed.has(k))) draw();
       else if (changed.has("selected")) stick();
       if (changed.has("view")) {
         hideHair();

@@ -2,11 +2,11 @@
 // in, JSON and drawn points out. It remembers the last plan that could be
 // computed, so that another view of it needs no new computation.
 //
-//	catalogue  {}                    fields of a plan, presets, sites, styles
-//	compute    {plan, view, marked}  a plan's timeline: measures, statement, scene; or its diagnoses
-//	layout     {view, marked}        another scene of the same timeline
-//	account    {event}               why an event came
-//	listing    {from_ms, to_ms}      events as text
+//	catalogue  {}                      fields of a plan, presets, sites, styles
+//	compute    {plan, view, selected}  a plan's timeline: measures, statement, scene; or its diagnoses
+//	layout     {view, selected}        another scene of the same timeline
+//	account    {event}                 why an event came
+//	listing    {from_ms, to_ms}        events as text
 //
 // Every answer but compute's is null while nothing has been computed. An operation
 // that does not exist and arguments that are not JSON are bugs of the page and

@@ -33,9 +33,8 @@ func reply[T any](t *testing.T, s *Session, op string, args any) (out T, points 
 }
 
 type asked struct {
-	Plan   json.RawMessage `json:"plan,omitempty"`
-	View   map[string]any  `json:"view"`
-	Marked []int           `json:"marked,omitempty"`
+	Plan json.RawMessage `json:"plan,omitempty"`
+	View map[string]any  `json:"view"`
 }
 
 func usual() map[string]any {

@@ -30,7 +30,7 @@ type view struct {
 		Leads   []string `json:"leads"`
 		Ladder  string   `json:"ladder"`
 	} `json:"view"`
-	Marked []event.ID `json:"marked"` // the first is selected
+	Selected event.ID `json:"selected"`
 }
 
 func (s *Session) layout(args []byte) ([]byte, []float32) {
@@ -92,8 +92,8 @@ func (t *timeline) options(q *view) scene.Options {
 			o.Leads = append(o.Leads, l)
 		}
 	}
-	if len(q.Marked) > 0 && t.log.At(q.Marked[0]) != nil {
-		o.Selected = q.Marked[0]
+	if t.log.At(q.Selected) != nil {
+		o.Selected = q.Selected
 	}
 	return o
 }
