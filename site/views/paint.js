@@ -50,7 +50,7 @@ export function halo(g, scene, styles, events) {
   g.lineCap = "round";
   g.setLineDash([]);
   for (const m of scene.marks) {
-    if (!events.has(m.event)) continue;
+    if (!events.has(m.event) || m.cls.startsWith("dim")) continue;
     if (m.shape === RECT) {
       g.globalAlpha = 0.5;
       g.fillRect(m.x, m.y, m.x2 - m.x, m.y2 - m.y);
