@@ -23,6 +23,9 @@ func (d *Device) startAV(id event.ID, paced bool) {
 			return
 		}
 	}
+	if d.mode.Paced == 'V' && d.s.PastLowerRate {
+		d.close(LowerRate, id) // nothing comes of its end now
+	}
 	d.avRunning = true
 	d.open(AVDelay, av, id, why)
 	d.set(slotVentricle, due, deadline{timer: timer, cause: id, why: why})

@@ -13,10 +13,19 @@ type backupState struct {
 	alone   bool
 	seen    bool // a ventricular event since the last atrial one
 	recent  uint32
-	testing bool      // the present cycle is a test of conduction
+	testing stage     // of conduction
 	testAt  tick.Time // the next one
 	step    tick.Dur
 }
+
+// stage is how far a test of conduction has come.
+type stage uint8
+
+const (
+	noTest  stage = iota
+	testDue       // the next atrial event begins it
+	testOn        // its cycle runs
+)
 
 func (b *backupState) start(d *Device) {
 	if d.s.Backup.Misses <= 0 || !d.s.Mode.dual() || !d.s.Mode.Tracks() {
@@ -24,9 +33,6 @@ func (b *backupState) start(d *Device) {
 	}
 	*b = backupState{alone: true, seen: true, step: d.s.Backup.Retest}
 }
-
-// atrialMode is how the record names the behaviour.
-func (m Mode) atrialMode() string { return m.like(Mode{'A', 'A', 'I', 'O', 'O'}).String() }
 
 // cycleAlone begins an atrial cycle, and gives a stimulus soon if the one before
 // passed without a ventricular event.
@@ -39,11 +45,14 @@ func (d *Device) cycleAlone(id event.ID, paced bool) {
 		b.recent |= 1
 	}
 	of := min(max(s.Of, s.Misses), 32)
-	if missed && (b.testing || bits.OnesCount32(b.recent<<(32-of)) >= s.Misses) {
+	if missed && (b.testing == testOn || bits.OnesCount32(b.recent<<(32-of)) >= s.Misses) {
 		d.leaveAlone(id)
 	} else {
-		if b.testing {
-			b.testing, b.step = false, s.Retest
+		switch b.testing {
+		case testDue:
+			b.testing = testOn
+		case testOn:
+			b.testing, b.step = noTest, s.Retest
 		}
 		d.single(slotAtrium, id, paced)
 	}
@@ -57,7 +66,7 @@ func (d *Device) cycleAlone(id event.ID, paced bool) {
 // leaveAlone goes over to pacing both chambers until the next test.
 func (d *Device) leaveAlone(id event.ID) {
 	b := &d.backup
-	if b.testing {
+	if b.testing != noTest {
 		b.step = min(2*b.step, max(d.s.Backup.RetestMax, d.s.Backup.Retest))
 	}
 	*b = backupState{step: b.step}
@@ -66,7 +75,7 @@ func (d *Device) leaveAlone(id event.ID) {
 	}
 	d.clear(slotAtrium)
 	d.close(LowerRate, id)
-	d.r.Mode(d.s.Mode.atrialMode(), d.mode.String(), "no conduction", id)
+	d.recordMode("no conduction", id)
 }
 
 // retest begins a test of conduction at a ventricular event when one is due.
@@ -75,8 +84,8 @@ func (d *Device) retest(id event.ID) bool {
 	if b.alone || b.testAt == 0 || d.now < b.testAt || d.magnet || d.sw.away {
 		return false
 	}
-	*b = backupState{alone: true, seen: true, testing: true, step: b.step}
-	cause := d.r.Mode(d.mode.String(), d.s.Mode.atrialMode(), "test of conduction", id)
+	*b = backupState{alone: true, seen: true, testing: testDue, step: b.step}
+	cause := d.recordMode("test of conduction", id)
 	d.close(PVARP, cause)
 	d.close(UpperRate, cause)
 	d.rearm(cause)

@@ -96,6 +96,8 @@ type Device struct {
 	now  tick.Time
 	mode Mode // in force; s.Mode is what was set
 
+	named string // how the record last named the mode
+
 	spans  [windowCount]span
 	timers [slotCount]deadline
 
@@ -135,7 +137,10 @@ func (d *Device) Start(now tick.Time) {
 	d.now = now
 	d.a.at, d.v.at = now, now
 	d.sensor.start(&d.s, now)
-	d.backup.start(d)
+	d.named = d.mode.String()
+	if d.backup.start(d); d.backup.alone {
+		d.recordMode("ventricular backup", 0)
+	}
 	if d.s.Magnet.Mode != (Mode{}) {
 		d.set(slotMagnet, d.s.Magnet.From, deadline{})
 	}

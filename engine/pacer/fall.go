@@ -19,10 +19,11 @@ func (d *Device) findFall(paced bool, vv tick.Dur) {
 	if s.From <= 0 {
 		return
 	}
-	if f.fast++; vv == 0 || vv > interval(s.From) {
+	responding := f.until > 0 && d.now <= f.until.Add(interval(s.Rate))
+	if f.fast++; vv == 0 || vv > interval(s.From) || responding {
 		f.fast = 0
 	}
-	if f.fast >= fastBeats && d.now >= f.until {
+	if f.fast >= fastBeats {
 		f.seen, f.known = d.now, true
 	}
 	if !paced && !d.mode.SensesA() {

@@ -14,6 +14,9 @@ func (d *Device) hysteresis(sensed bool) tick.Dur {
 	if h.Rate <= 0 {
 		return 0
 	}
+	if !d.a.known && !d.v.known { // the strip begins
+		return 0
+	}
 	if sensed {
 		d.hyst = hysteresisState{}
 		return tick.PerMinute(h.Rate)

@@ -52,7 +52,7 @@ func (d *Device) senseA(id event.ID) Sensed {
 
 // atriumRefractory tells whether an atrial signal is refractory now, and by what.
 func (d *Device) atriumRefractory() (event.ID, bool) {
-	for _, n := range [...]WindowName{PVARP, AtrialRefractory, AVDelay} {
+	for _, n := range [...]WindowName{PVARP, AtrialRefractory, AVDelay, Crosstalk} {
 		if d.within(n) {
 			return d.spans[n].id, true
 		}
@@ -80,8 +80,13 @@ func (d *Device) senseV(id event.ID) Sensed {
 		return d.triggerV(id)
 	}
 	use, because := event.Resets, max(d.because(AtrialEscape), d.because(LowerRate))
-	if d.avRunning {
+	switch {
+	case d.avRunning && d.within(BackupDelay):
+		use, because = event.Inhibits, d.spans[BackupDelay].id
+	case d.avRunning:
 		use, because = event.Inhibits, max(d.because(AVDelay), d.because(UpperRate))
+	case d.backup.alone: // the atrium's timer goes on; no backup stimulus will be due
+		use, because = event.Inhibits, d.because(BackupDelay)
 	}
 	d.beatV(id, false)
 	return Sensed{use, because}

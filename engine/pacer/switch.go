@@ -89,16 +89,22 @@ func (d *Device) rampInterval() tick.Dur {
 // event stays due; other timers are set as the new mode would have set them at the
 // last ventricular event.
 func (d *Device) change(to Mode, why string, cause event.ID) {
-	from := d.mode
 	d.mode = to
-	id := d.r.Mode(from.String(), to.String(), why, cause)
-	if cause == 0 {
-		cause = id
+	id := d.recordMode(why, cause)
+	if !d.avRunning {
+		d.rearm(id)
 	}
-	if d.avRunning {
-		return
+}
+
+// recordMode records how the device behaves from now on.
+func (d *Device) recordMode(why string, cause event.ID) event.ID {
+	to := d.mode.String()
+	if d.backup.alone {
+		to = d.mode.like(Mode{'A', 'A', 'I', 'O', 'O'}).String()
 	}
-	d.rearm(id)
+	from := d.named
+	d.named = to
+	return d.r.Mode(from, to, why, cause)
 }
 
 // rearm sets the timers for the mode in force in the middle of a cycle.
