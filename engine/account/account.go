@@ -3,8 +3,11 @@
 // back, step by step, to the focus or stimulus that began it.
 //
 // [Of] accounts for one event; [Listing] is the text equivalent of the timeline.
-// Both read a log and nothing else: every sentence rests on what is recorded
-// there, on the cause each event carries and the rule that applied. Words are
+// [WhyNotTracked] and [WhyGap] say why a device did not follow a P, or gave no
+// stimulus for so long. All read a log and nothing else: every sentence rests on what is recorded
+// there, on the cause each event carries and the rule that applied. A record keeps
+// how long a device's window was meant to last only if it ran out; for one that an
+// event ended, sentences go by the last of its kind that did, and say so. Words are
 // plain trade English; times are milliseconds, or seconds from the start of the
 // strip.
 package account
@@ -54,7 +57,8 @@ func Of(log *event.Log, id event.ID) *Account {
 	if e == nil {
 		return nil
 	}
-	w := writer{log: log, a: &Account{ID: id, T: e.T, Sentences: []string{}, Numbers: []Number{}, Chain: []Step{}, Led: []Step{}}}
+	w := newWriter(log)
+	w.a.ID, w.a.T = id, e.T
 	switch e.Kind {
 	case event.Discharge:
 		w.discharge(e)
@@ -63,9 +67,19 @@ func Of(log *event.Log, id event.ID) *Account {
 	case event.Block:
 		w.block(e)
 	case event.Stimulus:
-		w.stimulus(e)
+		if e.Rule == event.Timed {
+			w.pacing(e)
+		} else {
+			w.stimulus(e)
+		}
 	case event.Change:
 		w.change(e)
+	case event.Sense:
+		w.sense(e)
+	case event.Window:
+		w.window(e)
+	case event.Mode:
+		w.mode(e)
 	}
 	w.chain(e)
 	w.led(e)
@@ -73,8 +87,9 @@ func Of(log *event.Log, id event.ID) *Account {
 }
 
 type writer struct {
-	log *event.Log
-	a   *Account
+	log   *event.Log
+	a     *Account
+	modes modes
 }
 
 func (w *writer) say(sentence string) { w.a.Sentences = append(w.a.Sentences, sentence) }
@@ -87,16 +102,17 @@ func (w *writer) margin(d tick.Dur, text string) {
 	w.a.Margin = &Margin{max(d, -d).MS(), text}
 }
 
-// chain walks back to the focus or stimulus that began the impulse, and says
-// what began the cycle of a focus.
+// chain walks back to the focus or planned stimulus that began the impulse, and
+// says what began the cycle of a focus. A stimulus of a device does not end it: its
+// timer began with an earlier event, and so on to a focus or the start of the strip.
 func (w *writer) chain(e *event.Event) {
 	for ; e != nil; e = w.log.At(e.Cause) {
 		if len(w.a.Chain) == longest {
-			w.a.Chain = append(w.a.Chain, Step{e.ID, e.T, "And so on: the impulse has been on its way since before this."})
+			w.a.Chain = append(w.a.Chain, Step{e.ID, e.T, "And so on: it goes back further than this."})
 			return
 		}
 		w.a.Chain = append(w.a.Chain, Step{e.ID, e.T, w.short(e)})
-		if e.Kind == event.Discharge || e.Kind == event.Stimulus || e.Kind == event.Change {
+		if e.Kind == event.Discharge || e.Kind == event.Stimulus && e.Rule != event.Timed || e.Kind == event.Change {
 			break
 		}
 	}

@@ -2,6 +2,7 @@ package account
 
 import (
 	"fmt"
+	"strings"
 
 	"escapement/engine/event"
 	"escapement/engine/tick"
@@ -30,7 +31,8 @@ const spread = 220 * tick.Millisecond
 // Listing is the text equivalent of the timeline from one time to another, both
 // included: every event in order in a short sentence with its time, except that
 // the spread through the muscle of a chamber is one line, and blocks inside
-// muscle and at its edges, where a wave only ends, are left out.
+// muscle and at its edges, where a wave only ends, are left out. Windows of a device
+// that one event begins share a line.
 func Listing(log *event.Log, from, to tick.Time) []Line {
 	l := &lister{writer: writer{log: log}, out: []Line{}}
 	l.chamber['A'].line, l.chamber['V'].line = -1, -1
@@ -53,6 +55,15 @@ type lister struct {
 	writer
 	out     []Line
 	chamber ['V' + 1]muscle
+	windows opening
+}
+
+// opening is the line that gathers the windows begun by one event at one instant.
+type opening struct {
+	cause event.ID
+	at    tick.Time
+	line  int // index of its line
+	any   bool
 }
 
 func (l *lister) event(e *event.Event) {
@@ -68,7 +79,23 @@ func (l *lister) event(e *event.Event) {
 	if e.Kind == event.Block && l.edge(e) {
 		return
 	}
+	if e.Kind == event.Window {
+		l.window(e)
+		return
+	}
 	l.out = append(l.out, Line{e.ID, e.T, clock(e.T) + ": " + l.short(e)})
+}
+
+// window adds a window to the line of the event that began it.
+func (l *lister) window(e *event.Event) {
+	text := fmt.Sprintf("%s to %s", windowLabel(e.Field), clock(e.Until))
+	if o := &l.windows; o.any && o.cause == e.Cause && o.at == e.T {
+		line := &l.out[o.line]
+		line.Text = strings.TrimSuffix(line.Text, ".") + ", " + text + "."
+		return
+	}
+	l.windows = opening{e.Cause, e.T, len(l.out), true}
+	l.out = append(l.out, Line{e.ID, e.T, fmt.Sprintf("%s: With %s began: %s.", clock(e.T), l.openedBy(e), text)})
 }
 
 // edge tells whether a block is only a wave of muscle ending where another has

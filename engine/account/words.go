@@ -92,6 +92,8 @@ func (w *writer) began(id event.ID) string {
 		return "an impulse of unknown origin"
 	case o.Kind == event.Discharge:
 		return fmt.Sprintf("the impulse of %s (%s)", w.site(o.Site), clock(o.T))
+	case o.Kind == event.Stimulus && o.Rule == event.Timed:
+		return fmt.Sprintf("the impulse of the %s stimulus (%s)", chamber(o.Channel), clock(o.T))
 	case o.Kind == event.Stimulus:
 		return fmt.Sprintf("the impulse of the stimulus at %s (%s)", w.site(o.Site), clock(o.T))
 	}
@@ -115,12 +117,15 @@ func (w *writer) short(e *event.Event) string {
 	case event.Block:
 		return w.shortBlock(e)
 	case event.Stimulus:
+		if e.Rule == event.Timed {
+			return w.shortPacing(e)
+		}
 		if e.Captured {
 			return fmt.Sprintf("A stimulus at %s captured.", w.site(e.Site))
 		}
 		return fmt.Sprintf("A stimulus at %s did not capture.", w.site(e.Site))
 	}
-	return fmt.Sprintf("From here on %s was %s.", e.Field, e.To)
+	return w.shortDevice(e)
 }
 
 func (w *writer) shortBlock(e *event.Event) string {
