@@ -3,6 +3,7 @@ package pacer_test
 import (
 	"fmt"
 	"math/rand/v2"
+	"slices"
 	"strings"
 	"testing"
 )
@@ -18,11 +19,11 @@ func TestAgreement(t *testing.T) {
 	seen := map[string]int{}
 	for n := range cases {
 		s, w := randomCase(n)
-		want := runSteps(s, w.copy())
-		if got := runEvents(s, w.copy()); difference(got, want) >= 0 {
+		got, want := runEvents(s, w.copy()), runSteps(s, w.copy())
+		if !slices.Equal(got.records, want.records) || !slices.Equal(got.windows, want.windows) {
 			t.Fatalf("case %d\n%s", n, explain(s, w))
 		}
-		for _, r := range want {
+		for _, r := range want.records {
 			seen[s.mode.name+" "+r.what]++
 		}
 	}
@@ -45,26 +46,29 @@ func randomCase(n int) (stepSettings, *world) {
 	return d.settings(), d.rhythm(10000 + d.IntN(10000))
 }
 
-// difference is the first place where two records differ, or -1.
+// differ tells whether the devices live differently through a world.
+func differ(s stepSettings, w *world) bool {
+	a, b := runEvents(s, w.copy()), runSteps(s, w.copy())
+	return !slices.Equal(a.records, b.records) || !slices.Equal(a.windows, b.windows)
+}
+
+// difference is the first place where two lists differ.
 func difference(a, b []record) int {
 	for i := range max(len(a), len(b)) {
 		if i >= len(a) || i >= len(b) || a[i] != b[i] {
 			return i
 		}
 	}
-	return -1
+	return len(a)
 }
 
 // explain makes the rhythm as simple as it can be while the devices differ, and
 // says where they do.
 func explain(s stepSettings, w *world) string {
-	differ := func(w *world) bool {
-		return difference(runEvents(s, w.copy()), runSteps(s, w.copy())) >= 0
-	}
 	for i := 0; i < len(w.answers); {
 		c := w.copy()
 		c.answers = append(c.answers[:i], c.answers[i+1:]...)
-		if differ(c) {
+		if differ(s, c) {
 			w = c
 		} else {
 			i++
@@ -75,17 +79,22 @@ func explain(s stepSettings, w *world) string {
 			if !there {
 				continue
 			}
-			if w.chamber(chamber)[t] = false; !differ(w) {
+			if w.chamber(chamber)[t] = false; !differ(s, w) {
 				w.chamber(chamber)[t] = true
 			}
 		}
 	}
-	got, want := runEvents(s, w.copy()), runSteps(s, w.copy())
+	a, b := runEvents(s, w.copy()), runSteps(s, w.copy())
+	got, want := a.records, b.records
+	if slices.Equal(got, want) {
+		got, want = a.windows, b.windows
+	}
 	i := difference(got, want)
-	var b strings.Builder
-	fmt.Fprintf(&b, "settings %+v\nanswers %+v\n", s, w.answers)
-	fmt.Fprintf(&b, "both:  %s\n", format(want[:i]))
-	fmt.Fprintf(&b, "event: %s\n", format(got[i:min(i+6, len(got))]))
-	fmt.Fprintf(&b, "step:  %s", format(want[i:min(i+6, len(want))]))
-	return b.String()
+	var out strings.Builder
+	fmt.Fprintf(&out, "settings %+v\nanswers %+v\n", s, w.answers)
+	fmt.Fprintf(&out, "record: %s\n", format(b.records))
+	fmt.Fprintf(&out, "both:   %s\n", format(want[max(0, i-20):i]))
+	fmt.Fprintf(&out, "events: %s\n", format(got[i:min(i+6, len(got))]))
+	fmt.Fprintf(&out, "steps:  %s", format(want[i:min(i+6, len(want))]))
+	return out.String()
 }

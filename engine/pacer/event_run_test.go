@@ -1,6 +1,8 @@
 package pacer_test
 
 import (
+	"fmt"
+
 	"escapement/engine/event"
 	"escapement/engine/pacer"
 	"escapement/engine/tick"
@@ -9,8 +11,8 @@ import (
 // runEvents lives through the world with the event-driven device. It looks every
 // millisecond for signals, so that a timer that ends between two is a stimulus at
 // a time that the fixed-step device cannot give.
-func runEvents(s stepSettings, w *world) []record {
-	k := &kernel{world: w}
+func runEvents(s stepSettings, w *world) life {
+	k := &kernel{world: w, hideEscape: s.mode.name == "DDD" && s.base == fromAtrium}
 	d := pacer.New(s.settings(), k)
 	d.Start(0)
 	expire := func(upTo tick.Time) {
@@ -35,7 +37,7 @@ func runEvents(s stepSettings, w *world) []record {
 		}
 		expire(now)
 	}
-	return k.out
+	return life{k.out, k.ended(tick.Time(len(w.a)-1) * tick.Time(tick.Millisecond))}
 }
 
 // settings are the same settings for the event-driven device.
@@ -65,6 +67,15 @@ type kernel struct {
 	now   tick.Time
 	last  event.ID
 	out   []record
+	spans []recorded
+
+	hideEscape bool // see stepDevice.windows
+}
+
+type recorded struct {
+	pacer.Window
+	id   event.ID
+	from tick.Time
 }
 
 func (k *kernel) next() event.ID {
@@ -82,6 +93,37 @@ func (k *kernel) Stimulate(p pacer.Pulse) event.ID {
 	return k.next()
 }
 
-func (k *kernel) Open(pacer.Window) event.ID               { return k.next() }
-func (k *kernel) Close(_, _ event.ID)                      {}
+func (k *kernel) Open(w pacer.Window) event.ID {
+	k.spans = append(k.spans, recorded{w, k.next(), k.now})
+	return k.last
+}
+
+func (k *kernel) Close(id, _ event.ID) {
+	for i := len(k.spans) - 1; i >= 0; i-- {
+		if s := &k.spans[i]; s.id == id {
+			if s.Until < k.now {
+				panic(fmt.Sprintf("%v closed at %v", *s, k.now))
+			}
+			s.Until = k.now
+			return
+		}
+	}
+	panic(fmt.Sprintf("window %d closed but never opened", id))
+}
+
 func (k *kernel) Mode(_, _, _ string, _ event.ID) event.ID { return k.next() }
+
+// ended are the windows that ended up to an instant.
+func (k *kernel) ended(upTo tick.Time) []record {
+	var rs []record
+	for _, s := range k.spans {
+		if k.hideEscape && s.Name == pacer.AtrialEscape {
+			continue
+		}
+		if s.from < s.Until && s.Until <= upTo {
+			rs = append(rs, record{s.from.MS(), fmt.Sprintf("%v, %v", s.Name, s.Until.MS())})
+		}
+	}
+	inOrder(rs)
+	return rs
+}

@@ -165,7 +165,7 @@ func common() stepSettings {
 // devices are the two ways to live through a world.
 var devices = []struct {
 	name string
-	run  func(stepSettings, *world) []record
+	run  func(stepSettings, *world) life
 }{{"fixed step", runSteps}, {"events", runEvents}}
 
 func TestPublishedRhythms(t *testing.T) {
@@ -175,7 +175,7 @@ func TestPublishedRhythms(t *testing.T) {
 				s := common()
 				c.settings(&s)
 				var rs []record
-				for _, r := range d.run(s, c.world.copy()) {
+				for _, r := range d.run(s, c.world.copy()).records {
 					if r.ms >= float64(c.from) {
 						rs = append(rs, r)
 					}

@@ -65,9 +65,10 @@ type stepSettings struct {
 type counter struct {
 	left    int
 	started bool
+	starts  int // how often it was started
 }
 
-func (c *counter) start(ms int) { c.left, c.started = ms, true }
+func (c *counter) start(ms int) { c.left, c.started, c.starts = ms, true, c.starts+1 }
 func (c *counter) stop()        { c.left, c.started = 0, false }
 func (c *counter) open() bool   { return c.started && c.left > 0 }
 func (c *counter) up() bool     { return c.started && c.left <= 0 }
@@ -79,13 +80,13 @@ type stepDevice struct {
 	escapeA counter // to the next atrial stimulus
 	escapeV counter // to the next ventricular stimulus, where no AV delay gives it
 	av      counter // the AV delay
+	safety  counter // takes its place after a signal in the crosstalk window
 	upper   counter // since a ventricular event
 
 	pvarp, pvab, blanking, arp, vrp, pavb, crosstalk counter
 
 	afterPaced  bool // the AV delay followed a stimulus
 	inAV        bool // an AV delay runs, or waits for the upper rate interval
-	safety      bool // a signal came in the crosstalk window
 	atrium      bool // an atrial event came since the last ventricular event
 	refractoryP bool // and so did a P in a refractory period
 	sinceA      int  // steps since that event
@@ -114,11 +115,24 @@ func (d *stepDevice) escapes() {
 
 // tick lets a millisecond pass.
 func (d *stepDevice) tick() {
-	for _, c := range []*counter{&d.escapeA, &d.escapeV, &d.av, &d.upper, &d.pvarp,
+	for _, c := range []*counter{&d.escapeA, &d.escapeV, &d.av, &d.safety, &d.upper, &d.pvarp,
 		&d.pvab, &d.blanking, &d.arp, &d.vrp, &d.pavb, &d.crosstalk} {
 		c.left--
 	}
 	d.sinceA++
+	d.endBlanking()
+}
+
+// endBlanking begins the crosstalk window, what is left of it, when the ventricle is
+// no longer blind.
+func (d *stepDevice) endBlanking() {
+	if !d.pavb.up() {
+		return
+	}
+	d.pavb.stop()
+	if d.s.safety {
+		d.crosstalk.start(d.s.crosstalk - d.s.pavb)
+	}
 }
 
 // senseA is a signal in the atrium.
@@ -159,7 +173,7 @@ func (d *stepDevice) atrialEvent() {
 func (d *stepDevice) startAV(ms int, paced bool) {
 	d.av.start(ms)
 	d.inAV, d.afterPaced = true, paced
-	if d.s.mode.name != "VDD" || d.s.past {
+	if d.s.mode.name == "VDD" && d.s.past {
 		d.escapeV.stop()
 	}
 }
@@ -171,8 +185,11 @@ func (d *stepDevice) senseV() string {
 		return "blanked"
 	case d.vrp.open():
 		return "refractory"
-	case d.crosstalk.open() && d.s.safety:
-		d.safety = true
+	case d.crosstalk.open():
+		if d.av.started { // the first signal in this window
+			d.safety.start(min(d.av.left, d.crosstalk.left))
+			d.av.stop()
+		}
 		return "safety"
 	}
 	use := "resets"
@@ -188,12 +205,15 @@ func (d *stepDevice) ventricularEvent(sensed bool) {
 	premature := sensed && !d.atrium
 	conducted := sensed && d.atrium
 	lengthen := premature && !(d.s.counts && d.refractoryP) && d.s.afterPVC > d.s.pvarp
-	d.inAV, d.safety, d.atrium, d.refractoryP = false, false, false, false
+	d.inAV, d.atrium, d.refractoryP = false, false, false
 	d.av.stop()
+	d.safety.stop()
 	d.crosstalk.stop()
 
 	d.vrp.start(d.s.vrp)
-	d.upper.start(d.s.upper)
+	if d.s.mode.tracks {
+		d.upper.start(d.s.upper)
+	}
 	if d.s.mode.sensesA {
 		d.pvab.start(d.s.pvab)
 		d.pvarp.start(d.s.pvarp)
@@ -223,7 +243,7 @@ func (d *stepDevice) pace() (a, v bool) {
 		if d.s.mode.pacesV {
 			d.startAV(d.s.paced, true)
 			d.pavb.start(d.s.pavb)
-			d.crosstalk.start(d.s.crosstalk)
+			d.endBlanking()
 		}
 	}
 	if d.ventricleDue() {
@@ -240,7 +260,28 @@ func (d *stepDevice) ventricleDue() bool {
 		return d.escapeV.up()
 	}
 	if d.afterPaced {
-		return d.av.up() || d.safety && !d.crosstalk.open()
+		return d.av.up() || d.safety.up()
 	}
 	return d.av.up() && !d.upper.open()
+}
+
+// windows are the counters that a record of windows shows, by name.
+func (d *stepDevice) windows() []namedCounter {
+	shown := []namedCounter{
+		{"pvarp", &d.pvarp}, {"pvab", &d.pvab}, {"atrial_blanking", &d.blanking}, {"atrial_refractory", &d.arp},
+		{"pavb", &d.pavb}, {"crosstalk", &d.crosstalk}, {"ventricular_refractory", &d.vrp},
+		{"av_delay", &d.av}, {"upper_rate", &d.upper},
+	}
+	switch {
+	case d.s.mode.name == "AAI":
+		return append(shown, namedCounter{"lower_rate", &d.escapeA})
+	case d.s.mode.name == "DDD" && d.s.base == fromAtrium:
+		return shown // counted from the atrium here, shown from the ventricle there
+	}
+	return append(shown, namedCounter{"atrial_escape", &d.escapeA}, namedCounter{"lower_rate", &d.escapeV})
+}
+
+type namedCounter struct {
+	name string
+	*counter
 }

@@ -1,8 +1,10 @@
 package pacer_test
 
 import (
+	"cmp"
 	"fmt"
 	"math/rand/v2"
+	"slices"
 	"strings"
 )
 
@@ -111,29 +113,76 @@ func format(rs []record) string {
 	return b.String()
 }
 
+// life is what a device did: stimuli and signals in order, and the windows that ended
+// within the strip, as "400 pvarp, 650" by beginning and name.
+type life struct{ records, windows []record }
+
 // runSteps lives through the world with the fixed-step device.
-func runSteps(s stepSettings, w *world) []record {
-	var out []record
+func runSteps(s stepSettings, w *world) life {
+	var l life
 	d := newStepDevice(s)
+	watch := newWatch(d)
 	for t := 1; t < len(w.a); t++ {
+		say := func(what string) { l.records = append(l.records, record{float64(t), what}) }
 		d.tick()
 		if w.a[t] && s.mode.sensesA {
-			out = append(out, record{float64(t), "A " + d.senseA()})
+			say("A " + d.senseA())
 		}
 		if w.v[t] && s.mode.pacesV {
-			out = append(out, record{float64(t), "V " + d.senseV()})
+			say("V " + d.senseV())
 		}
 		a, v := d.pace()
 		if a {
-			out = append(out, record{float64(t), "AP"})
+			say("AP")
 			w.stimulus('A', t)
 		}
 		if v {
-			out = append(out, record{float64(t), "VP"})
+			say("VP")
 			w.stimulus('V', t)
 		}
+		l.windows = append(l.windows, watch.look(t)...)
 	}
-	return out
+	inOrder(l.windows)
+	return l
+}
+
+// watch looks at the counters of a device after each step and tells the windows that
+// have ended. One that begins and ends within a step is none.
+type watch struct {
+	counters []namedCounter
+	from     []int // where the window began; -1: none is open
+	starts   []int
+}
+
+func newWatch(d *stepDevice) *watch {
+	w := &watch{counters: d.windows()}
+	w.from, w.starts = make([]int, len(w.counters)), make([]int, len(w.counters))
+	for i := range w.from {
+		w.from[i] = -1
+	}
+	w.look(0)
+	return w
+}
+
+func (w *watch) look(now int) (ended []record) {
+	for i, c := range w.counters {
+		anew := c.starts != w.starts[i]
+		w.starts[i] = c.starts
+		if w.from[i] >= 0 && (anew || !c.open()) {
+			ended = append(ended, record{float64(w.from[i]), fmt.Sprintf("%s, %d", c.name, now)})
+			w.from[i] = -1
+		}
+		if anew && c.open() {
+			w.from[i] = now
+		}
+	}
+	return ended
+}
+
+func inOrder(rs []record) {
+	slices.SortFunc(rs, func(a, b record) int {
+		return cmp.Or(cmp.Compare(a.ms, b.ms), cmp.Compare(a.what, b.what))
+	})
 }
 
 // dice draws settings and worlds. Where grain is above 1 every number is a multiple
@@ -177,7 +226,8 @@ func (d dice) settings() stepSettings {
 	s.afterPVC, s.counts = d.orOff(200, 550), d.chance(50)
 	s.past = d.chance(50)
 	s.pavb = d.orOff(10, min(100, s.paced-1))
-	s.crosstalk, s.safety = d.orOff(60, 140), d.chance(75)
+	s.crosstalk = d.orOff(60, 140)
+	s.safety = s.crosstalk > s.pavb && d.chance(75)
 	s.vrp = d.between(100, min(500, s.lower-100))
 	s.arp = d.between(120, min(500, s.lower-100))
 	s.blanking = d.orOff(20, min(150, s.arp))
