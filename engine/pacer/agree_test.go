@@ -34,6 +34,7 @@ func TestAgreement(t *testing.T) {
 		"VDD VP", "VDD A tracked", "VDD A refractory", "VDD A blanked", "VDD V inhibits", "VDD V resets",
 		"DDI AP", "DDI VP", "DDI A inhibits", "DDI A refractory", "DDI V safety", "DDI V inhibits", "DDI V resets",
 		"VVI VP", "VVI V resets", "VVI V refractory", "AAI AP", "AAI A resets", "AAI A refractory", "AAI A blanked",
+		"DDD V noise", "DDI V noise", "VDD V noise", "VVI V noise", "AAI A noise",
 	} {
 		if seen[what] < 100 {
 			t.Errorf("%s came only %d times", what, seen[what])

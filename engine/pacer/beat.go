@@ -41,9 +41,7 @@ func (d *Device) beatA(id event.ID, paced bool) {
 	if d.watchesA() {
 		d.open(AtrialBlanking, d.s.AtrialBlanking, id, "")
 	}
-	if paced {
-		d.countAtrial(id)
-	} else {
+	if !paced {
 		d.fall.slow = 0
 	}
 	switch {
@@ -63,6 +61,9 @@ func (d *Device) beatA(id event.ID, paced bool) {
 			d.set(slotCrosstalk, d.now.Add(d.s.PAVB), deadline{cause: id})
 		}
 	}
+	if paced { // a P was counted before its use was known
+		d.countAtrial(id)
+	}
 }
 
 func (d *Device) atrialRefractory(id event.ID) {
@@ -71,6 +72,7 @@ func (d *Device) atrialRefractory(id event.ID) {
 	}
 	d.open(AtrialRefractory, d.s.AtrialRefractory, id, "")
 	d.clear(slotNoiseA)
+	d.close(AtrialNoise, id)
 	if w := d.s.Noise.Window; w > 0 && d.s.AtrialRefractory > 0 {
 		d.set(slotNoiseA, d.now.Add(max(0, d.s.AtrialRefractory-w)), deadline{cause: id})
 	}

@@ -54,6 +54,7 @@ func (s stepSettings) settings() pacer.Settings {
 		AtrialBlanking: ms(s.blanking), AtrialRefractory: ms(s.arp), PAVB: ms(s.pavb),
 		Crosstalk: ms(s.crosstalk), SafetyStimulus: s.safety, VentricularRefractory: ms(s.vrp),
 		PostPVC: ms(s.afterPVC), RefractoryCounts: s.counts, PastLowerRate: s.past,
+		Noise: pacer.Noise{Window: ms(s.noise)},
 	}
 	if s.upper > 0 {
 		p.UpperRate = 60000 / float64(s.upper)

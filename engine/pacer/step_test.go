@@ -54,6 +54,7 @@ type stepSettings struct {
 	crosstalk   int // end of the crosstalk window, after an atrial stimulus
 	vrp, arp    int // arp in AAI
 	blanking    int // atrial blanking after an atrial event
+	noise       int // so much of the end of vrp and arp: a signal there begins it anew
 
 	safety bool // a signal in the crosstalk window is answered by a stimulus
 	counts bool // after a refractory P a ventricular event does not lengthen PVARP
@@ -84,6 +85,7 @@ type stepDevice struct {
 	upper   counter // since a ventricular event
 
 	pvarp, pvab, blanking, arp, vrp, pavb, crosstalk counter
+	noiseA, noiseV                                   counter
 
 	afterPaced  bool // the AV delay followed a stimulus
 	inAV        bool // an AV delay runs, or waits for the upper rate interval
@@ -116,11 +118,31 @@ func (d *stepDevice) escapes() {
 // tick lets a millisecond pass.
 func (d *stepDevice) tick() {
 	for _, c := range []*counter{&d.escapeA, &d.escapeV, &d.av, &d.safety, &d.upper, &d.pvarp,
-		&d.pvab, &d.blanking, &d.arp, &d.vrp, &d.pavb, &d.crosstalk} {
+		&d.pvab, &d.blanking, &d.arp, &d.vrp, &d.pavb, &d.crosstalk, &d.noiseA, &d.noiseV} {
 		c.left--
 	}
 	d.sinceA++
 	d.endBlanking()
+	d.beginNoise(&d.noiseA, &d.arp)
+	d.beginNoise(&d.noiseV, &d.vrp)
+}
+
+// beginNoise begins the noise window when no more than it is left of the refractory
+// period.
+func (d *stepDevice) beginNoise(noise, refractory *counter) {
+	if d.s.noise > 0 && refractory.open() && refractory.left <= d.s.noise && !noise.open() {
+		noise.start(refractory.left)
+	}
+}
+
+// interference lengthens the refractory period by a new noise window. It inhibits
+// nothing: while it lasts the device paces regardless.
+func (d *stepDevice) interference(noise, refractory *counter) string {
+	noise.start(d.s.noise)
+	if refractory.left < d.s.noise {
+		refractory.start(d.s.noise)
+	}
+	return "noise"
 }
 
 // endBlanking begins the crosstalk window, what is left of it, when the ventricle is
@@ -140,6 +162,8 @@ func (d *stepDevice) senseA() string {
 	switch {
 	case d.blanking.open() || d.pvab.open():
 		return "blanked"
+	case d.noiseA.open():
+		return d.interference(&d.noiseA, &d.arp)
 	case d.pvarp.open() || d.arp.open() || d.inAV:
 		d.refractoryP = true
 		return "refractory"
@@ -164,6 +188,8 @@ func (d *stepDevice) atrialEvent() {
 	switch {
 	case d.s.mode.name == "AAI":
 		d.arp.start(d.s.arp)
+		d.noiseA.stop()
+		d.beginNoise(&d.noiseA, &d.arp)
 		d.escapeA.start(d.s.lower)
 	case d.s.mode.name == "DDD" && d.s.base == fromAtrium:
 		d.escapeA.start(d.s.lower)
@@ -183,6 +209,8 @@ func (d *stepDevice) senseV() string {
 	switch {
 	case d.pavb.open():
 		return "blanked"
+	case d.noiseV.open():
+		return d.interference(&d.noiseV, &d.vrp)
 	case d.vrp.open():
 		return "refractory"
 	case d.crosstalk.open():
@@ -211,6 +239,8 @@ func (d *stepDevice) ventricularEvent(sensed bool) {
 	d.crosstalk.stop()
 
 	d.vrp.start(d.s.vrp)
+	d.noiseV.stop()
+	d.beginNoise(&d.noiseV, &d.vrp)
 	if d.s.mode.tracks {
 		d.upper.start(d.s.upper)
 	}
@@ -270,7 +300,7 @@ func (d *stepDevice) windows() []namedCounter {
 	shown := []namedCounter{
 		{"pvarp", &d.pvarp}, {"pvab", &d.pvab}, {"atrial_blanking", &d.blanking}, {"atrial_refractory", &d.arp},
 		{"pavb", &d.pavb}, {"crosstalk", &d.crosstalk}, {"ventricular_refractory", &d.vrp},
-		{"av_delay", &d.av}, {"upper_rate", &d.upper},
+		{"noise", &d.noiseV}, {"atrial_noise", &d.noiseA}, {"av_delay", &d.av}, {"upper_rate", &d.upper},
 	}
 	switch {
 	case d.s.mode.name == "AAI":

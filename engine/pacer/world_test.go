@@ -231,6 +231,9 @@ func (d dice) settings() stepSettings {
 	s.vrp = d.between(100, min(500, s.lower-100))
 	s.arp = d.between(120, min(500, s.lower-100))
 	s.blanking = d.orOff(20, min(150, s.arp))
+	if d.chance(30) {
+		s.noise = d.between(60, 200)
+	}
 	return s
 }
 
