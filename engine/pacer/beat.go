@@ -106,8 +106,11 @@ func (d *Device) beatV(id event.ID, paced bool) {
 		d.close(n, id)
 	}
 	d.refractoryAfterV(id, pvc, looped)
-	if d.backup.alone {
+	if d.backup.alone || d.mode.atrialOnly() {
 		d.backup.seen = true
+		if d.timers[slotAtrium].at == tick.Never { // the mode changed in the AV delay
+			d.rearm(id)
+		}
 		return
 	}
 	d.clear(slotAtrium)

@@ -33,6 +33,7 @@ func (s *Settings) Faults() []string {
 	if s.Switch.Rate > 0 {
 		to := s.Switch.Mode.String()
 		say(s.Switch.Mode != (Mode{}) && to[:3] != "DDI" && to[:3] != "VVI", "the mode switch goes to DDI or VVI, not %s", to)
+		say(s.Switch.Mode.PacesA() && !m.PacesA(), "the mode switch from %v goes to VVI, as it does not pace the atrium", m)
 		say(!m.Tracks(), "the mode switch leaves a tracking mode, which %v is not", m)
 		say(s.Switch.Of > 32 || s.Switch.Short > 32, "the mode switch counts at most 32 intervals")
 	}
@@ -42,6 +43,7 @@ func (s *Settings) Faults() []string {
 	}
 	if s.Magnet.Mode != (Mode{}) {
 		say(s.Magnet.Mode.Response != 'O' || s.Magnet.Mode.Sensed != 'O', "a magnet makes the pacing asynchronous: AOO, VOO or DOO, not %v", s.Magnet.Mode)
+		say(s.Magnet.Mode.PacesA() && !m.PacesA() || s.Magnet.Mode.PacesV() && !m.PacesV(), "the magnet's %v paces a chamber that %v does not", s.Magnet.Mode, m)
 		say(s.Magnet.To < s.Magnet.From, "the magnet goes before it comes")
 	}
 	say(s.Sites.Only && !s.Sites.Left, "left-only pacing needs a left lead")

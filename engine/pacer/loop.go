@@ -33,13 +33,18 @@ func (d *Device) findLoop(paced bool, vv tick.Dur) bool {
 	return !s.Withhold
 }
 
-// withhold leaves out a ventricular stimulus to end a loop. The escape begins anew.
+// withhold leaves out a ventricular stimulus to end a loop. In DDD the escape begins
+// anew.
 func (d *Device) withhold(dl deadline) bool {
 	if !d.loop.withhold || !d.avRunning {
 		return false
 	}
 	d.loop.withhold, d.avRunning = false, false
-	d.restart(dl.cause)
+	if d.within(LowerRate) { // VDD: the lower rate still stands
+		d.set(slotVentricle, d.spans[LowerRate].until, deadline{timer: LowerTimer, cause: d.v.id, why: ByLoop})
+	} else {
+		d.restart(dl.cause)
+	}
 	next := min(d.timers[slotAtrium].at, d.timers[slotVentricle].at)
 	d.open(Withheld, next.Sub(d.now), dl.cause, ByLoop)
 	return true

@@ -3,7 +3,6 @@ package pacer
 import (
 	"fmt"
 	"strings"
-	"testing"
 
 	"escapement/engine/event"
 	"escapement/engine/tick"
@@ -12,7 +11,7 @@ import (
 // rig runs a device against signals planned by hand and a heart that may answer its
 // stimuli. It keeps a record and faults the device for windows that do not fit.
 type rig struct {
-	t       testing.TB
+	t       faulter
 	d       *Device
 	now     tick.Time
 	ids     event.ID
@@ -20,7 +19,8 @@ type rig struct {
 	record  []entry
 	windows []recorded
 	byID    map[event.ID]int
-	when    []tick.Time // of every event, by id
+	when    []tick.Time      // of every event, by id
+	newest  [windowCount]int // 1 + index of the last window of a name
 	modes   []string
 	// paced, if set, answers a stimulus.
 	paced func(p Pulse)
@@ -52,7 +52,13 @@ type recorded struct {
 	ended bool
 }
 
-func newRig(t testing.TB, s Settings) *rig {
+// faulter is a test or a property.
+type faulter interface {
+	Errorf(format string, args ...any)
+	Fatalf(format string, args ...any)
+}
+
+func newRig(t faulter, s Settings) *rig {
 	r := &rig{t: t, byID: map[event.ID]int{}}
 	r.d = New(s, r)
 	return r
@@ -84,11 +90,10 @@ func (r *rig) Open(w Window) event.ID {
 	if w.Until <= r.now || w.Name == 0 || w.Name >= windowCount || w.Cause >= id {
 		r.t.Errorf("%v: window %+v", r.now, w)
 	}
-	for _, o := range r.windows {
-		if o.Name == w.Name && !o.ended && o.Until > r.now {
-			r.t.Errorf("%v: a second %v while one runs until %v", r.now, w.Name, o.Until)
-		}
+	if i := r.newest[w.Name]; i > 0 && r.windows[i-1].Until > r.now {
+		r.t.Errorf("%v: a second %v while one runs until %v", r.now, w.Name, r.windows[i-1].Until)
 	}
+	r.newest[w.Name] = len(r.windows) + 1
 	r.byID[id] = len(r.windows)
 	r.windows = append(r.windows, recorded{Window: w, from: r.now})
 	return id
@@ -101,7 +106,7 @@ func (r *rig) Close(window, by event.ID) {
 		return
 	}
 	if by == 0 || r.when[by-1] != r.now {
-		r.t.Errorf("%v: %v closed by %d, which is not an event of now", r.now, r.windows[i].Name, by)
+		r.t.Errorf("%v: %v closed by %d, which is not an event of now\n%s\n%q", r.now, r.windows[i].Name, by, r.text(r.now.MS()-3000), r.modes)
 	}
 	r.windows[i].ended, r.windows[i].by, r.windows[i].Until = true, by, r.now
 }
@@ -244,11 +249,3 @@ func intervals(ts []float64) []float64 {
 
 // ms is a length by milliseconds.
 func ms(n float64) tick.Dur { return tick.MS(n) }
-
-func mode(t testing.TB, code string) Mode {
-	m, err := ParseMode(code)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return m
-}

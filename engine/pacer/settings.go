@@ -131,7 +131,7 @@ type Switch struct {
 	Rate   float64  // atrial rate above which an interval counts as short; 0: off
 	Short  int      // so many short intervals ...
 	Of     int      // ... of the last so many, at most 32
-	Mode   Mode     // DDI or VVI (zero: DDI)
+	Mode   Mode     // DDI or VVI; zero: DDI if the atrium is paced, else VVI
 	Return int      // go back after so many long intervals in a row; 0 is 1
 	Ramp   tick.Dur // on the way down each ventricular interval is longer by this; 0: at once
 }

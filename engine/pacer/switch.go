@@ -62,7 +62,10 @@ func (d *Device) decideSwitch(id event.ID) {
 		d.backup.alone = false
 		to := s.Mode
 		if to == (Mode{}) {
-			to = Mode{'D', 'D', 'I', 'O', 'O'}
+			to = Mode{'V', 'V', 'I', 'O', 'O'}
+			if d.s.Mode.PacesA() {
+				to = Mode{'D', 'D', 'I', 'O', 'O'}
+			}
 		}
 		d.change(d.s.Mode.like(to), "fast atrium", id)
 	case w.away && w.long >= max(1, s.Return):
