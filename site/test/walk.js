@@ -1,0 +1,89 @@
+// What the walks through the page have in common: one server and one browser a
+// file, a fresh page a walk.
+
+import assert from "node:assert/strict";
+import { after, before } from "node:test";
+import { openBrowser, openPage, serveSite, settled } from "./host.js";
+
+/** @typedef {import("playwright-core").Page} Page */
+
+export const AH = '[data-field="heart.av_node.fast.ah_ms"]';
+export const RATE = '[data-field="heart.sinus.rate_bpm"]';
+
+/** @type {Awaited<ReturnType<typeof serveSite>>} */
+let site;
+/** @type {Awaited<ReturnType<typeof openBrowser>>} */
+let browser;
+
+/** Starts server and browser before the tests of a file and ends them after. */
+export function stage() {
+  before(async () => {
+    site = await serveSite();
+    browser = await openBrowser();
+  });
+  after(async () => {
+    await browser?.stop();
+    site?.stop();
+  });
+}
+
+/** A page of its own, for a walk that expects faults. */
+export const barePage = () => openPage(browser.context, site.url);
+
+/**
+ * Runs a walk on a fresh page and demands that the console stayed empty and that
+ * nothing was asked of another place.
+ * @param {(page: Page) => Promise<void>} walk
+ * @param {{width: number, height: number}} [size]
+ */
+export async function onPage(walk, size) {
+  const { page, faults } = await openPage(browser.context, site.url, size);
+  try {
+    await settled(page);
+    await walk(page);
+    assert.deepEqual(faults, []);
+  } finally {
+    await page.close();
+  }
+}
+
+/** @param {Page} page @param {string} name */
+export async function openPreset(page, name) {
+  await page.click("#presets");
+  await page.click(`[data-preset="${name}"]`);
+  return settled(page);
+}
+
+/**
+ * How much of the timeline's canvas is not paper, in thousandths, and how many
+ * colours it has.
+ * @param {Page} page
+ */
+export const ink = (page) => page.evaluate(() => {
+  const canvas = /** @type {HTMLCanvasElement} */ (document.querySelector("#timeline canvas"));
+  const copy = new OffscreenCanvas(canvas.width, canvas.height);
+  const g = /** @type {OffscreenCanvasRenderingContext2D} */ (copy.getContext("2d", { willReadFrequently: true }));
+  g.drawImage(canvas, 0, 0);
+  const d = new Uint32Array(g.getImageData(0, 0, canvas.width, canvas.height).data.buffer);
+  const colours = new Set();
+  let other = 0;
+  for (const c of d) {
+    if (c !== d[0]) other++;
+    if (colours.size < 50) colours.add(c);
+  }
+  return { share: (1000 * other) / d.length, colours: colours.size, marks: Number(canvas.dataset.marks) };
+});
+
+/**
+ * Walks the events by key until one whose account speaks of something.
+ * @param {Page} page @param {string} words that the account's title must have
+ */
+export async function walkTo(page, words) {
+  await page.focus("#timeline");
+  for (let i = 0; i < 80; i++) {
+    await page.keyboard.press(".");
+    await settled(page);
+    if ((await page.textContent("#account h2"))?.toLowerCase().includes(words)) return;
+  }
+  assert.fail(`no event whose account speaks of ${words}`);
+}
