@@ -19,6 +19,9 @@ func TestAgreement(t *testing.T) {
 	seen := map[string]int{}
 	for n := range cases {
 		s, w := randomCase(n)
+		if p := s.settings(); len(p.Faults()) > 0 {
+			t.Fatalf("case %d: settings that cannot run together: %q", n, p.Faults())
+		}
 		got, want := runEvents(s, w.copy()), runSteps(s, w.copy())
 		if !slices.Equal(got.records, want.records) || !slices.Equal(got.windows, want.windows) {
 			t.Fatalf("case %d\n%s", n, explain(s, w))

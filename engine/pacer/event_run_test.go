@@ -2,6 +2,7 @@ package pacer_test
 
 import (
 	"fmt"
+	"slices"
 
 	"escapement/engine/event"
 	"escapement/engine/pacer"
@@ -31,8 +32,8 @@ func runEvents(s stepSettings, w *world) life {
 			name    string
 		}{{w.a[t], pacer.Atrial, "A "}, {w.v[t], pacer.Ventricular, "V "}} {
 			if c.there && d.Senses(c.channel) {
-				use := d.Sense(now, c.channel, k.next()).Use
-				k.out = append(k.out, record{now.MS(), c.name + use.String()})
+				sensed := d.Sense(now, c.channel, k.next())
+				k.out = append(k.out, record{now.MS(), c.name + sensed.Use.String() + k.misnamed(c.name, sensed)})
 			}
 		}
 		expire(now)
@@ -110,6 +111,37 @@ func (k *kernel) Close(id, _ event.ID) {
 		}
 	}
 	panic(fmt.Sprintf("window %d closed but never opened", id))
+}
+
+// because says which windows may decide a use of a signal; "" for none.
+var because = map[string][]string{
+	"A blanked":    {"pvab", "atrial_blanking"},
+	"A refractory": {"pvarp", "atrial_refractory", "av_delay", "upper_rate", "crosstalk"},
+	"A noise":      {"atrial_noise"},
+	"A tracked":    {""},
+	"A inhibits":   {"atrial_escape", ""},
+	"A resets":     {"lower_rate", ""}, // none: the timer ends at this instant
+	"V blanked":    {"pavb"},
+	"V refractory": {"ventricular_refractory"},
+	"V noise":      {"noise"},
+	"V safety":     {"crosstalk"},
+	"V inhibits":   {"av_delay", "upper_rate", "crosstalk"}, // crosstalk: a safety stimulus, at its very instant
+	"V resets":     {"atrial_escape", "lower_rate", ""},
+}
+
+// misnamed is a complaint if the window that decided did not run just before the
+// signal, or is none that could decide; else nothing.
+func (k *kernel) misnamed(channel string, s pacer.Sensed) string {
+	name := ""
+	for _, w := range k.spans {
+		if w.id == s.Because && w.from <= k.now && k.now <= w.Until {
+			name = w.Name.String()
+		}
+	}
+	if slices.Contains(because[channel+s.Use.String()], name) && (name != "") == (s.Because != 0) {
+		return ""
+	}
+	return fmt.Sprintf(" because of %q (%d)", name, s.Because)
 }
 
 func (k *kernel) Mode(_, _, _ string, _ event.ID) event.ID { return k.next() }

@@ -52,13 +52,33 @@ func (d *Device) senseA(id event.ID) Sensed {
 
 // atriumRefractory tells whether an atrial signal is refractory now, and by what.
 func (d *Device) atriumRefractory() (event.ID, bool) {
-	for _, n := range [...]WindowName{PVARP, AtrialRefractory, AVDelay, Crosstalk} {
+	for _, n := range [...]WindowName{PVARP, AtrialRefractory} {
 		if d.within(n) {
 			return d.spans[n].id, true
 		}
 	}
-	// The AV delay is over but the stimulus is held back.
-	return d.because(UpperRate), d.avRunning
+	if d.avRunning {
+		return d.awaited(), true
+	}
+	return 0, false
+}
+
+// awaited is the window at whose end a ventricular stimulus is due for an atrial event,
+// also at the very instant at which it has ended. An AV delay that still runs comes
+// before what may hold the stimulus back after it.
+func (d *Device) awaited() event.ID {
+	n := AVDelay
+	if !d.within(AVDelay) {
+		switch d.timers[slotVentricle].timer {
+		case UpperTimer:
+			n = UpperRate
+		case SafetyTimer:
+			n = Crosstalk
+		case BackupTimer:
+			n = BackupDelay
+		}
+	}
+	return d.spans[n].id
 }
 
 func (d *Device) senseV(id event.ID) Sensed {
@@ -81,10 +101,8 @@ func (d *Device) senseV(id event.ID) Sensed {
 	}
 	use, because := event.Resets, max(d.because(AtrialEscape), d.because(LowerRate))
 	switch {
-	case d.avRunning && d.within(BackupDelay):
-		use, because = event.Inhibits, d.spans[BackupDelay].id
 	case d.avRunning:
-		use, because = event.Inhibits, max(d.because(AVDelay), d.because(UpperRate))
+		use, because = event.Inhibits, d.awaited()
 	case d.backup.alone: // the atrium's timer goes on; no backup stimulus will be due
 		use, because = event.Inhibits, d.because(BackupDelay)
 	}
