@@ -41,7 +41,7 @@ func (b *builder) pathway(part string, n *NodeNumbers) (down, up Conduct, err er
 	curve := Curve{MinMS: n.AHMS, TauMS: DefaultTauMS, Inner: n.Inner,
 		Theta: Cycled{BaseMS: max(n.ERPMS-n.AHMS, 1), PerCycle: SlopeNode, CycleMS: b.n.ERPCycleMS, FloorMS: 20}}
 	if n.NoDown {
-		down = Conduct{Curve: curve}
+		down = Conduct{Curve: curve, Reach: thousandths(n.DownReach)}
 		if n.NoUp {
 			return down, Conduct{Curve: curve, Reach: thousandths(n.UpReach)}, nil
 		}

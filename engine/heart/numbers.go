@@ -67,7 +67,9 @@ type NodeNumbers struct {
 
 	Inner   float64 // share of theta from which a blocked impulse is concealed; 1 for none
 	UpReach float64 // where nothing is conducted upwards, depth 0 to 1 to which impulses come
-	Drop    Drop
+
+	DownReach float64 // likewise downwards
+	Drop      Drop
 }
 
 // Direct is a curve given outright, and the same for the other direction.

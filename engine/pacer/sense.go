@@ -21,7 +21,8 @@ func (d *Device) senseA(id event.ID) Sensed {
 			return Sensed{event.Blanked, d.spans[n].id}
 		}
 	}
-	d.countAtrial(id) // may change the mode
+	escape := d.because(AtrialEscape)
+	d.countAtrial(id) // may change the mode, and begin the escape anew
 	if !d.mode.SensesA() || d.mode.Response == 'O' {
 		return Sensed{Use: event.Observed}
 	}
@@ -45,9 +46,8 @@ func (d *Device) senseA(id event.ID) Sensed {
 		d.beatA(id, false)
 		return Sensed{Use: event.Tracked}
 	}
-	because := d.because(AtrialEscape)
 	d.beatA(id, false)
-	return Sensed{event.Inhibits, because}
+	return Sensed{event.Inhibits, escape}
 }
 
 // atriumRefractory tells whether an atrial signal is refractory now, and by what.
@@ -76,6 +76,8 @@ func (d *Device) awaited() event.ID {
 			n = Crosstalk
 		case BackupTimer:
 			n = BackupDelay
+		case LowerTimer: // a P so late, without tracking past the lower rate, that it has no AV delay
+			n = LowerRate
 		}
 	}
 	return d.spans[n].id

@@ -142,6 +142,7 @@ func nodeFields() []*Field {
 		opt(f+".va_wenckebach_cl_ms", "VA Wenckebach cycle length", "ms", 100, 599, "1:1 conduction to the atria ends below it. Left out: the same recovery as downwards.").advanced(),
 		num(f+".concealed_from", "concealed from", "of theta", 0.7, 0, 1).help("A blocked impulse that comes after this share of the needed recovery still enters the node and leaves it refractory. For a curve given outright the default is 1, none.").advanced(),
 		num(f+".concealed_up", "depth from below", "", 0.5, 0, 1).help("Where nothing is conducted to the atria: how deep an impulse from below enters the node.").advanced(),
+		num(f+".concealed_down", "depth from above", "", 0.5, 0, 1).help("Where nothing is conducted to the ventricles: how deep an impulse from above enters the node. It then keeps the beat that a device paces for it from being conducted back.").advanced(),
 		pattern(f+".drop", "dropped beats"),
 		num(n+".ah_at_cycle_ms", "AH measured at cycle", "ms", 800, 300, 3000).advanced(),
 		num(n+".erp_at_cycle_ms", "ERP measured at drive", "ms", 600, 300, 3000).advanced(),

@@ -74,7 +74,7 @@ func (p *Plan) pathway(at string) heart.NodeNumbers {
 	if p.null(at) {
 		return heart.NodeNumbers{Absent: true}
 	}
-	n := heart.NodeNumbers{UpReach: p.number("heart.av_node.fast.concealed_up")}
+	n := heart.NodeNumbers{UpReach: p.number("heart.av_node.fast.concealed_up"), DownReach: p.number("heart.av_node.fast.concealed_down")}
 	n.Drop, _ = parseDrop(p.text(at + ".drop"))
 	if p.byCurve(at) || at != "heart.av_node.fast" {
 		n.ByCurve, n.Direct = true, p.direct(at)
