@@ -33,6 +33,11 @@ func (p *Plan) Compile() (*Program, error) {
 		return nil, c.ds
 	}
 	c.prog.Device = p.device(c.prog.Heart)
+	if c.prog.Device != nil {
+		for _, f := range c.prog.Device.Settings.Faults() {
+			c.ds.add(device, f, "", "")
+		}
+	}
 	c.stimuli()
 	c.faults()
 	c.changes()

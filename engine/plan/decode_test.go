@@ -196,3 +196,17 @@ func FuzzDecode(f *testing.F) {
 		}
 	})
 }
+
+// Settings of the device that cannot run together are diagnoses, as numbers of the
+// heart that cannot hold together are.
+func TestSettingsThatCannotRunTogetherAreDiagnosed(t *testing.T) {
+	p, err := Decode([]byte(`{"format":"escapement-plan/1","pacemaker":{"mode":"DDD","pvarp_ms":80,"pvab_ms":100,"lower_rate_bpm":130}}`))
+	if err != nil {
+		t.Fatal(err)
+	}
+	_, err = p.Compile()
+	want := "pacemaker: the upper tracking rate of 120 is below the lower rate of 130\npacemaker: PVAB of 100 ms is longer than PVARP of 80 ms"
+	if err == nil || err.Error() != want {
+		t.Errorf("got %v, want %s", err, want)
+	}
+}
