@@ -131,6 +131,22 @@ func TestPresetsAreListed(t *testing.T) {
 	}
 }
 
+func TestSettingsAreWrittenAndReadAsATable(t *testing.T) {
+	const with = `{"format":"escapement-plan/1","pacemaker":{"mode":"VVI","lower_rate_bpm":70}}`
+	table, err := call(t, with, "settings", "-")
+	if err != nil {
+		t.Fatal(err)
+	}
+	name := filepath.Join(t.TempDir(), "table.csv")
+	if err := os.WriteFile(name, []byte(table), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	got, err := call(t, `{"format":"escapement-plan/1"}`, "settings", "-", "-read", name)
+	if err != nil || !strings.Contains(got, `"mode": "VVI"`) || strings.Contains(got, "pvarp") {
+		t.Errorf("read back: %s (%v)", got, err)
+	}
+}
+
 func TestBadUseIsExplained(t *testing.T) {
 	for _, c := range []struct {
 		name string

@@ -1,0 +1,52 @@
+package plan
+
+import (
+	"strconv"
+)
+
+// Stated gives what the plan itself says at the path of a single value, as text, and
+// whether it says anything. Defaults are not statements.
+func (p *Plan) Stated(path string) (text string, ok bool) {
+	v, ok := p.values[path]
+	f := byPath[path]
+	if !ok || f == nil || f.Kind == Group || f.Kind == List {
+		return "", false
+	}
+	switch {
+	case v.Null:
+		return "null", true
+	case f.Kind == Switch:
+		return strconv.FormatBool(v.On), true
+	case f.Kind == Number:
+		return plainNumber(v.Number), true
+	}
+	return v.Text, true
+}
+
+// State puts a value given as text at the path of a single value. The error, a
+// [Diagnoses], names the path, the text and what is allowed.
+func (p *Plan) State(path, text string) error {
+	f := byPath[path]
+	if f == nil || f.Kind == Group || f.Kind == List {
+		return Diagnoses{{Path: path, Found: "a field that is not known", Note: meant(path, settable())}}
+	}
+	var raw any = text
+	switch {
+	case text == "null":
+		raw = nil
+	case f.Kind == Number:
+		if x, err := strconv.ParseFloat(text, 64); err == nil {
+			raw = x
+		}
+	case f.Kind == Switch:
+		if on, err := strconv.ParseBool(text); err == nil {
+			raw = on
+		}
+	}
+	v, allowed := judge(f, raw)
+	if allowed != "" {
+		return Diagnoses{{Path: path, Found: clip(show(text)), Allowed: allowed}}
+	}
+	p.values[path] = v
+	return nil
+}
