@@ -116,7 +116,7 @@ func (k *kernel) Close(id, _ event.ID) {
 // because says which windows may decide a use of a signal; "" for none.
 var because = map[string][]string{
 	"A blanked":    {"pvab", "atrial_blanking"},
-	"A refractory": {"pvarp", "atrial_refractory", "av_delay", "upper_rate", "crosstalk"},
+	"A refractory": {"pvarp", "atrial_refractory", "av_delay", "upper_rate", "lower_rate", "crosstalk"},
 	"A noise":      {"atrial_noise"},
 	"A tracked":    {""},
 	"A inhibits":   {"atrial_escape", ""},
@@ -125,7 +125,7 @@ var because = map[string][]string{
 	"V refractory": {"ventricular_refractory"},
 	"V noise":      {"noise"},
 	"V safety":     {"crosstalk"},
-	"V inhibits":   {"av_delay", "upper_rate", "crosstalk"}, // crosstalk: a safety stimulus, at its very instant
+	"V inhibits":   {"av_delay", "upper_rate", "lower_rate", "crosstalk"}, // crosstalk: a safety stimulus, at its very instant
 	"V resets":     {"atrial_escape", "lower_rate", ""},
 }
 
