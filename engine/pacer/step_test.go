@@ -14,8 +14,9 @@ package pacer_test
 //     ventricular signal, the atrial stimulus and the ventricular stimulus.
 //   - The strip begins as if a ventricular event had come at 0, for the escape
 //     timers only: it opens no window and sets no upper rate.
-//   - What is blanked or refractory starts, stops and lengthens nothing. It does not
-//     count as an atrial or ventricular event for what comes later.
+//   - What is blanked or refractory starts, stops and lengthens nothing, but for the
+//     refractory period itself in a noise window. It does not count as an atrial or
+//     ventricular event for what comes later.
 //   - A premature ventricular event is one with no stimulus and no non-refractory
 //     signal in the atrium since the last ventricular event or the beginning.
 
