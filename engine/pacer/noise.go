@@ -13,11 +13,14 @@ func (d *Device) silenced(n WindowName) bool {
 	return true
 }
 
-// prolongNoise begins the noise window and the refractory period around it anew.
-func (d *Device) prolongNoise(n, refractory WindowName, id event.ID) {
+// prolongNoise begins the noise window and the refractory period around it anew. It
+// gives the window that ran before.
+func (d *Device) prolongNoise(n, refractory WindowName, id event.ID) event.ID {
+	before := d.spans[n].id
 	w := d.s.Noise.Window
 	if d.spans[refractory].until < d.now.Add(w) {
 		d.open(refractory, w, id, ByNoise)
 	}
 	d.open(n, w, id, "")
+	return before
 }

@@ -21,14 +21,13 @@ func (d *Device) senseA(id event.ID) Sensed {
 			return Sensed{event.Blanked, d.spans[n].id}
 		}
 	}
-	escape := d.because(AtrialEscape)
-	d.countAtrial(id) // may change the mode, and begin the escape anew
+	escape, lower := d.because(AtrialEscape), d.because(LowerRate)
+	d.countAtrial(id) // may change the mode, and begin these anew
 	if !d.mode.SensesA() || d.mode.Response == 'O' {
 		return Sensed{Use: event.Observed}
 	}
 	if d.within(AtrialNoise) {
-		d.prolongNoise(AtrialNoise, AtrialRefractory, id)
-		return Sensed{event.Noise, d.spans[AtrialNoise].id}
+		return Sensed{event.Noise, d.prolongNoise(AtrialNoise, AtrialRefractory, id)}
 	}
 	if because, refractory := d.atriumRefractory(); refractory {
 		d.refA = beat{at: d.now, id: id, known: true}
@@ -39,9 +38,8 @@ func (d *Device) senseA(id event.ID) Sensed {
 	case d.mode.Triggers():
 		return d.triggerA(id)
 	case d.backup.alone || d.mode.atrialOnly():
-		because := d.because(LowerRate)
 		d.beatA(id, false)
-		return Sensed{event.Resets, because}
+		return Sensed{event.Resets, lower}
 	case d.mode.Tracks():
 		d.beatA(id, false)
 		return Sensed{Use: event.Tracked}
@@ -90,8 +88,7 @@ func (d *Device) senseV(id event.ID) Sensed {
 	case !d.mode.SensesV() || d.mode.Response == 'O':
 		return Sensed{Use: event.Observed}
 	case d.within(VentricularNoise):
-		d.prolongNoise(VentricularNoise, VentricularRefractory, id)
-		return Sensed{event.Noise, d.spans[VentricularNoise].id}
+		return Sensed{event.Noise, d.prolongNoise(VentricularNoise, VentricularRefractory, id)}
 	case d.within(VentricularRefractory):
 		return Sensed{event.Refractory, d.spans[VentricularRefractory].id}
 	case d.within(Crosstalk):
