@@ -88,7 +88,7 @@ func (d *Device) afterV(id event.ID, c cycle) {
 // baseAtrial is when the atrial stimulus is due after a ventricular event now.
 func (d *Device) baseAtrial(interval tick.Dur, c cycle) tick.Time {
 	at := d.now.Add(interval - d.plannedAV)
-	if !d.mode.Tracks() || c.pvc || !c.usedA {
+	if !d.mode.Tracks() || !c.usedA { // such as a PVC
 		return at
 	}
 	fromA := d.a.at.Add(interval)

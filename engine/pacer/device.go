@@ -156,13 +156,6 @@ func (d *Device) Senses(ch Channel) bool {
 	return d.s.Mode.SensesV()
 }
 
-// Mode is the mode in force now: the one set, or the one that replaced it.
-func (d *Device) Mode() Mode { return d.mode }
-
-// PacesAlone tells whether the device now paces the atrium alone with ventricular
-// backup.
-func (d *Device) PacesAlone() bool { return d.backup.alone }
-
 // Due is the next instant at which a timer ends, or tick.Never.
 func (d *Device) Due() tick.Time {
 	due := tick.Never

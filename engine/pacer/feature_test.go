@@ -51,6 +51,25 @@ func TestFeatures(t *testing.T) {
 			func(r *rig) { r.at(Ventricular, 2700) }, 1900, "2000 VP, 2666.667 VP, 2700 VS observed, 3333.334 VP, 4000.001 VP, 4800.001 AP, 5000.001 VP"},
 		{"magnet: DOO at 100 with AV 100", func(s *Settings) { s.Magnet = Magnet{fixed("DOO"), 100, ms(100), 2100000, 4000000} },
 			func(r *rig) { r.at(Atrial, 2400).at(Ventricular, 2650) }, 1900, "2000 VP, 2400 AS observed, 2500 AP, 2600 VP, 2650 VS observed, 3100 AP, 3200 VP"},
+		{"magnet: AOO that comes in an AV delay", func(s *Settings) { s.Magnet = Magnet{fixed("AOO"), 90, 0, 900000, 4000000} },
+			plainHeart, 0, "800 AP, 1000 VP, 1466.667 AP, 2133.334 AP"},
+		{"an atrial stimulus put off leaves the ventricular one in its place", func(s *Settings) {
+			s.LowerRate, s.PacedAV, s.PVARP, s.AtrialDelay = 80, ms(300), ms(300), ms(300)
+		}, func(r *rig) { r.at(Atrial, 1000) }, 0, "450 AP, 750 VP, 1000 AS refractory, 1300 AP, 1500 VP, 1950 AP"},
+		{"atrial base, sensor above the upper tracking rate: no V-V below both", func(s *Settings) {
+			s.Mode.Rate, s.Base, s.UpperRate, s.PVARP = 'R', AtrialBase, 100, ms(150)
+			s.Sensor = Sensor{Slope: 90, Limit: 150, Activity: []Activity{{0, 1}}}
+		}, func(r *rig) { r.at(Atrial, 560) }, 0, "200 AP, 400 VP, 560 AS tracked, 1000 VP, 1200 AP, 1400 VP"},
+		{"P waves that come and go are no loop", func(s *Settings) { s.Loop = Loop{Beats: 3, Margin: ms(16), PVARP: ms(400)} },
+			func(r *rig) {
+				n := 0.0
+				r.paced = func(p Pulse) {
+					if p.Lead != RA {
+						n = 50 - n
+						r.soonSignal(Atrial, 350-n)
+					}
+				}
+			}, 900, "1000 VP, 1300 AS tracked, 1500 VP, 1850 AS tracked, 2000 VP, 2300 AS tracked, 2500 VP, 2850 AS tracked, 3000 VP, 3300 AS tracked, 3500 VP"},
 		{"noise: pacing regardless", func(s *Settings) { s.Mode, s.Noise = fixed("VVI"), Noise{Window: ms(100)} },
 			func(r *rig) { r.every(Ventricular, 1160, 50, 1390).at(Ventricular, 1485) }, 900,
 			"1000 VP, 1160 VS noise, 1210 VS noise, 1260 VS noise, 1310 VS noise, 1360 VS noise, 1485 VS resets, 2485 VP"},
@@ -169,6 +188,18 @@ func TestFallbackRamp(t *testing.T) {
 	}
 	if !all(tail(vv, 4), 800) {
 		t.Errorf("tracking again at 800: %v", tail(vv, 4))
+	}
+}
+
+// A fallback that does not pace the atrium must not wait for it for ever.
+func TestASilentAtriumEndsTheModeSwitch(t *testing.T) {
+	s := Default()
+	s.SensedAV, s.AtrialBlanking, s.PVAB = ms(107), ms(50), ms(105)
+	s.Switch = Switch{Rate: 170, Short: 4, Of: 7, Mode: fixed("VVI"), Return: 3}
+	r := newRig(t, s).every(Atrial, 500, 240, 4000)
+	r.run(12000)
+	if len(r.modes) != 2 || !strings.Contains(r.modes[1], "VVI-DDD") || len(r.times("AP")) == 0 {
+		t.Errorf("modes %q\n%s", r.modes, r.text(0))
 	}
 }
 

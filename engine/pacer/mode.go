@@ -77,14 +77,6 @@ func (m Mode) String() string {
 	return string([]byte{m.Paced, m.Sensed, m.Response})
 }
 
-// UnmarshalText and MarshalText make a Mode a string in text formats.
-func (m *Mode) UnmarshalText(text []byte) (err error) {
-	*m, err = ParseMode(string(text))
-	return err
-}
-
-func (m Mode) MarshalText() ([]byte, error) { return []byte(m.String()), nil }
-
 func has(letter, chamber byte) bool { return letter == chamber || letter == 'D' }
 
 // PacesA to Tracks are what the letters mean for the timing.
