@@ -29,17 +29,16 @@ site: need-go ## build site/dist, ready for any static host
 		"$$(find $(SITE) -type f ! -name '*.wasm' -exec gzip -9 -c {} \; | wc -c)"
 
 .PHONY: test
-test: need-go need-browser site ## all tests: Go, WebAssembly, page (installs what it needs)
+test: need-go need-browser lint site ## everything a contributor must pass (installs what it needs)
 	@bash .ci/tests
 
-.PHONY: check
-check: need-go need-node ## the gate: format, vet, staticcheck, types of the page, all tests
+.PHONY: lint
+lint: need-go need-node ## format, vet, staticcheck, types of the page
 	@bad="$$(gofmt -l $$(git ls-files -co --exclude-standard '*.go'))"; if [ -n "$$bad" ]; then echo "gofmt would change:"; echo "$$bad"; exit 1; fi
 	$(GO) vet ./...
 	GOOS=js GOARCH=wasm $(GO) vet ./wasm/...
 	$(GO) run $(STATICCHECK) ./...
 	cd site/test && npx tsc -p .
-	$(MAKE) test
 
 .PHONY: golden
 golden: need-go ## rewrite the goldens and show what changed

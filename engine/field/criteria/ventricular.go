@@ -33,8 +33,6 @@ func (j *judge) say(criterion, source string, bounds ...Bound) {
 	j.out = append(j.out, Verdict{j.condition, criterion, source, bounds})
 }
 
-var chest = []lead.Name{lead.V1, lead.V2, lead.V3, lead.V4, lead.V5, lead.V6}
-
 func (j *judge) normal() {
 	b := j.on("normal")
 	j.say("QRS 70-110 ms", "AHA", within("QRS", b.Duration(), 70, 110, 10))
