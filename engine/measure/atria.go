@@ -138,6 +138,8 @@ func (f *finder) atrialRun(all []gathered, i, j int) []gathered {
 	cycle := medianDur(d)
 	slug, name := "ectopic_atrial_rhythm", "ectopic atrial rhythm"
 	switch {
+	case f.byDevice(f.p[i].id):
+		return all // the device's rhythm has a name of its own
 	case f.pOrigin(i) == fromStimulus:
 		slug, name = "atrial_stimulation", "atrial stimulation"
 	case f.pOrigin(i) == fromJunction:

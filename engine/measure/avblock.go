@@ -290,7 +290,7 @@ func (f *finder) anyBlockFinding() bool {
 // functional names block at a P rate to which the definitions of AV block do not
 // apply: it may be what a healthy node does.
 func (f *finder) functional(groups []avGroup) {
-	if len(groups) == 0 {
+	if len(groups) == 0 || f.dev != nil && !f.conducts { // paced, a P or two say nothing
 		return
 	}
 	ids, ps := f.evidence(groups)

@@ -54,7 +54,9 @@ func (s *strip) pBeat(i int, surf *surface) Beat {
 	}
 	if w.to >= 0 {
 		b.To = s.v[w.to].id
-		b.PR = ms(s.pr(i))
+		if !s.begunByDevice(int(w.to)) { // else its QRS began before it arrived
+			b.PR = ms(s.pr(i))
+		}
 	} else if w.his != 0 || len(w.blocks) > 0 {
 		b.Level = s.level(i)
 	}
@@ -63,8 +65,22 @@ func (s *strip) pBeat(i int, surf *surface) Beat {
 		b.AH = s.since(w.septum, w.his)
 	}
 	b.VA = s.va(i)
+	if s.dev != nil {
+		b.Paced, b.DeviceID = s.dev.seen(s.dev.ap[i], s.dev.as[i])
+	}
 	surf.p(i, &b)
 	return b
+}
+
+// seen is how the device had a wave: by a stimulus of its own or by a signal.
+func (d *device) seen(stimulus, signal int32) (paced bool, id event.ID) {
+	if m := d.at(stimulus); m != nil {
+		return true, m.e.ID
+	}
+	if m := d.at(signal); m != nil {
+		return false, m.e.ID
+	}
+	return false, 0
 }
 
 // va is the time from the first ventricular activation to the right atrium
@@ -129,6 +145,9 @@ func (s *strip) vBeat(j int, surf *surface, first []event.ID) Beat {
 	if w.his != 0 {
 		b.HV = s.since(w.his, w.id)
 		b.H = s.since(w.his, first[w.his])
+	}
+	if s.dev != nil {
+		b.Paced, b.DeviceID = s.dev.seen(s.dev.vp[j], s.dev.vs[j])
 	}
 	surf.v(j, s.rr(j), &b)
 	return b

@@ -41,7 +41,7 @@ func (f *finder) complete(ps []int, part bool) {
 	from, to := f.p[ps[0]].t, f.p[ps[len(ps)-1]].t
 	escapes := 0
 	for j := range f.v {
-		if f.own(j) && f.v[j].t >= from && f.v[j].t <= to.Add(tick.Second) {
+		if f.own(j) && !f.begunByDevice(j) && f.v[j].t >= from && f.v[j].t <= to.Add(tick.Second) {
 			ids = append(ids, f.v[j].id)
 			escapes++
 		}
@@ -51,6 +51,9 @@ func (f *finder) complete(ps []int, part bool) {
 		stretch = fmt.Sprintf(" from %.1f to %.1f s", from.Seconds(), to.Seconds())
 	}
 	surface, note := "undetermined", "Without a QRS the surface does not tell the level."
+	if f.dev != nil {
+		note = "Without an escape beat the surface does not tell the level."
+	}
 	if escapes > 0 {
 		note = "A narrow escape near 40-60/min speaks for block at the AV node, a wide and slower one for block below it."
 		surface = f.escapeLevel(ids)

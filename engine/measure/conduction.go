@@ -88,6 +88,9 @@ func (f *finder) concealed() {
 		if r := e.Recovery; e.Kind == event.Activate && r != event.Unknown && f.log.At(e.Cause).T.Sub(b.T) < r-tick.Millisecond {
 			continue // the path counts its recovery from something earlier
 		}
+		if f.byDevice(b.ID) {
+			continue // what every paced beat does
+		}
 		if b.Dir == event.Down && f.ordinary(b) {
 			continue // a dropped beat of the rhythm itself, not concealment
 		}

@@ -92,6 +92,9 @@ func (f *finder) escapes() {
 	var all []gathered
 	for _, r := range f.runs() {
 		n := r.to - r.from
+		if f.begunByDevice(r.from) {
+			continue // the device's rhythm has a name of its own
+		}
 		if n < 3 && f.v[r.from].premature {
 			continue
 		}
@@ -143,7 +146,7 @@ func (f *finder) dissociation() {
 	beats, waves := 0, 0
 	var from, to tick.Time
 	for j := range f.v {
-		if f.own(j) && !f.v[j].premature && f.v[j].retro < 0 {
+		if f.own(j) && !f.v[j].premature && f.v[j].retro < 0 && !f.followsAtrium(j) {
 			if beats == 0 {
 				from = f.v[j].t
 			}
@@ -158,7 +161,7 @@ func (f *finder) dissociation() {
 	var cycles []tick.Dur
 	for i := range f.p {
 		w := &f.p[i]
-		if !w.retrograde && w.to < 0 && !w.premature && w.t >= from.Add(-tick.Second) && w.t <= to.Add(tick.Second) {
+		if !w.retrograde && w.to < 0 && !w.premature && !f.tracked(i) && w.t >= from.Add(-tick.Second) && w.t <= to.Add(tick.Second) {
 			waves++
 			ids = append(ids, w.id)
 			if i > 0 {

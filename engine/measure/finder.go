@@ -20,7 +20,8 @@ type finder struct {
 
 // Order of the families in the list and in the sentence.
 const (
-	orderAtria = 10 * (iota + 1)
+	orderDevice = 10 * (iota + 1)
+	orderAtria
 	orderExit
 	orderBlock
 	orderVentricles
@@ -28,6 +29,8 @@ const (
 	orderPremature
 	orderShape
 	orderConduction
+	orderMode
+	orderFault
 	orderQT
 )
 
@@ -46,6 +49,7 @@ func (f *finder) all() {
 	f.concealed()
 	f.fusion()
 	f.qt()
+	f.devices()
 	slices.SortStableFunc(f.found, func(a, b Finding) int { return a.order - b.order })
 }
 

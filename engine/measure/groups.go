@@ -20,9 +20,11 @@ func (s *strip) token(i int) token {
 	switch {
 	case w.retrograde || w.premature:
 		return apart
+	case w.to >= 0 && s.begunByDevice(int(w.to)):
+		return apart // it met a beat that the device had begun
 	case w.to >= 0:
 		return conducted
-	case w.interfered:
+	case w.interfered || s.pacedOver(i):
 		return apart
 	case len(w.blocks) == 0 && s.log.Span.Sub(w.t) < unsettled:
 		return apart

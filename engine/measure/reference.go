@@ -128,7 +128,7 @@ func (s *strip) findCrossed() {
 	j := 0
 	for i := range s.p {
 		for ; j < len(s.v) && s.v[j].t < s.p[i].t; j++ {
-			s.crossed[i] = s.crossed[i] || s.own(j)
+			s.crossed[i] = s.crossed[i] || s.own(j) && !(s.begunByDevice(j) && s.v[j].retro < 0)
 		}
 		if s.plain(i) {
 			free++
@@ -206,7 +206,7 @@ func (s *strip) judge() {
 			i++
 		}
 		expected := conducted
-		if l := s.local[i]; s.conducts && l > 0 {
+		if l := s.local[i]; l > 0 && (s.conducts || j > 0 && s.followsAtrium(j-1)) {
 			expected = l
 		}
 		s.v[j].premature = s.prematureV(j, expected, usual)
@@ -236,7 +236,7 @@ func (s *strip) anyConducted() bool {
 // prematureP: a P that is not the sinus node's own and comes early, against the
 // run it belongs to where there is one, else against the sinus cycle.
 func (s *strip) prematureP(i int, sinus tick.Dur) bool {
-	if i == 0 || !s.descending(i) || s.pOrigin(i) == fromSinus {
+	if i == 0 || !s.descending(i) || s.pOrigin(i) == fromSinus || s.byDevice(s.p[i].id) {
 		return false
 	}
 	if i >= 2 && s.sameSource(i, i-1) && s.sameSource(i, i-2) {
@@ -261,7 +261,7 @@ func (s *strip) sameSource(i, j int) bool {
 // the usual RR. A run of three or more has its own name; its first beat is premature
 // only if it comes early for the run itself.
 func (s *strip) prematureV(i int, expected, usual tick.Dur) bool {
-	if i == 0 || !s.own(i) {
+	if i == 0 || !s.own(i) || s.begunByDevice(i) {
 		return false
 	}
 	limit := tick.PerMinute(50) // escape limits as in rhythmName
@@ -287,7 +287,7 @@ func (s *strip) prematureV(i int, expected, usual tick.Dur) bool {
 
 // linked tells whether beats i and j are neighbours of one run below the atria.
 func (s *strip) linked(i, j int) bool {
-	return i >= 0 && j < len(s.v) && s.own(i) && s.own(j) && s.sourceSite(s.v[i].id) == s.sourceSite(s.v[j].id)
+	return i >= 0 && j < len(s.v) && s.own(i) && s.own(j) && s.begunByDevice(i) == s.begunByDevice(j) && s.sourceSite(s.v[i].id) == s.sourceSite(s.v[j].id)
 }
 
 // interference: the P was blocked, at the deepest level it reached, in tissue

@@ -17,6 +17,9 @@
 // The package also has the arithmetic that the trade does by hand, each piece
 // usable alone: [Correct], [Group], [InferExit], [Compensatory], [AtrialReset],
 // [StraussSACT], [NarulaSACT], [RecoveryTime].
+//
+// With a pacemaker the report has a [Device], and AV conduction is judged only from
+// P waves with an opportunity: not from those that the device paced over.
 package measure
 
 import (
@@ -35,6 +38,7 @@ type Report struct {
 	Statement  string       `json:"statement"` // one sentence made of the clauses
 	Clauses    []Clause     `json:"clauses"`
 	Morphology []Morphology `json:"morphologies"` // distinct QRS shapes, Beat.Shape points here
+	Device     *Device      `json:"device"`       // null without a pacemaker
 }
 
 // Beat is one P or one QRS.
@@ -55,6 +59,9 @@ type Beat struct {
 	Level      string     `json:"block_level"` // P that was blocked: av_node, his, bundles, or empty
 	Interfered bool       `json:"interfered"`  // P blocked by what a beat from elsewhere left behind
 	Blocks     []event.ID `json:"blocks"`
+
+	Paced    bool     `json:"paced,omitempty"`     // a stimulus of the device has a part in it
+	DeviceID event.ID `json:"device_id,omitempty"` // that stimulus, or the signal by which the device had it
 
 	PP *float64 `json:"pp_ms"`
 	PR *float64 `json:"pr_ms"`
@@ -131,11 +138,13 @@ type Clause struct {
 // Of measures a log that [event.Validate] accepts. The record may be nil.
 func Of(log *event.Log, rec *lead.Record) *Report {
 	s := read(log)
+	s.dev = s.readDevice()
 	s.judge()
 	r := &Report{Beats: []Beat{}, Findings: []Finding{}, Clauses: []Clause{}, Morphology: []Morphology{}}
 	surf := s.surface(rec, r)
 	r.Beats = s.beats(surf)
 	r.Summary = s.summarise(r.Beats)
+	r.Device = s.deviceReport()
 	f := &finder{strip: s, surf: surf, report: r}
 	f.all()
 	r.Statement, r.Clauses = statement(f.found)

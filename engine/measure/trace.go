@@ -22,6 +22,7 @@ type strip struct {
 	crossed                  []bool     // by P: a beat from below came since the P before
 	noise                    tick.Dur   // how finely the sinus node keeps time
 	conducts                 bool       // any P from above reached the ventricles
+	dev                      *device    // nil without a device
 }
 
 // mark is what one event descends from, and what stood in its way.
@@ -64,9 +65,10 @@ type vwave struct {
 	p     int32    // atrial wave it was conducted from, else -1
 	retro int32    // atrial wave it led to, else -1
 
-	circling  bool // came from the ventricular beat before it without the atria between
-	fusion    bool // depolarised from two origins
-	accessory bool // entered by an accessory pathway
+	end       tick.Time // last activation of ventricular muscle
+	circling  bool      // came from the ventricular beat before it without the atria between
+	fusion    bool      // depolarised from two origins
+	accessory bool      // entered by an accessory pathway
 	premature bool
 }
 
@@ -275,7 +277,7 @@ func (t *tracer) ventricular(e *event.Event, m *mark) {
 	w := &t.v[g]
 	if t.causeWave(e) != g && m.v != g {
 		w.roots = append(w.roots, e.ID)
-		w.fusion = w.fusion || m.origin != t.mark[w.id].origin
+		w.fusion = w.fusion || m.origin != t.mark[w.id].origin && !(t.byDevice(e.ID) && t.byDevice(w.id))
 		if e.Path >= 0 && t.log.Paths[e.Path].Tissue == event.Accessory {
 			w.accessory = true
 		}
@@ -286,6 +288,7 @@ func (t *tracer) ventricular(e *event.Event, m *mark) {
 	if c := &t.mark[e.Cause]; c.wave < 0 && c.led < 0 {
 		c.led = g
 	}
+	w.end = max(w.end, e.T)
 	t.in[e.Site] = g
 	m.wave, m.v, m.p = g, g, -1
 }

@@ -48,7 +48,7 @@ func grow(l *event.Log, n func(int, int, string) int, at tick.Time, until []tick
 	}
 	earlier := event.ID(n(0, len(l.Events), "cause"))
 	site := event.SiteID(n(0, len(l.Sites)-1, "site"))
-	switch n(0, 6, "kind") {
+	switch n(0, 10, "kind") {
 	case 0, 1:
 		id := put(event.Event{Kind: event.Discharge, Rule: event.Phase4, Cause: earlier, Site: site, Path: event.None})
 		activate(event.Event{Rule: event.Fired, Cause: id, Site: site, Path: event.None})
@@ -75,10 +75,26 @@ func grow(l *event.Log, n func(int, int, string) int, at tick.Time, until []tick
 		e.Kind, e.Site, e.Depth = event.Block, c.Site, uint16(n(0, 1000, "depth"))
 		e.Rule = []event.Rule{event.PathRefractory, event.SiteRefractory, event.Collision, event.OneWay, event.Dropped}[n(0, 4, "rule")]
 		put(e)
+	case 7:
+		ch := channelOf(n)
+		id := put(event.Event{Kind: event.Stimulus, Rule: event.Timed, Captured: n(0, 1, "captured") == 1 && until[site] <= at, Cause: earlier, Site: site, Path: event.None, Channel: ch,
+			Field: []string{"av_delay", "upper_rate", "atrial_escape", "lower_rate", "safety", "offset", "backup"}[n(0, 6, "timer")], Recovery: 100000, Needed: tick.Dur(n(0, 1, "needed")) * 200000, Why: []string{"", "hysteresis", "loss of capture"}[n(0, 2, "why")]})
+		if l.At(id).Captured {
+			activate(event.Event{Rule: event.Captured, Cause: id, Site: site, Path: event.None})
+		}
+	case 8:
+		put(event.Event{Kind: event.Sense, Rule: event.Signal, Cause: earlier, Site: site, Path: event.None, Channel: channelOf(n), Use: event.Use(n(1, 9, "use")), By: event.ID(n(0, len(l.Events), "by"))})
+	case 9:
+		put(event.Event{Kind: event.Window, Rule: event.Opened, Cause: earlier, Site: event.None, Path: event.None, Channel: channelOf(n), Until: at.Add(tick.MS(float64(n(0, 900, "long")))),
+			Field: []string{"av_delay", "pvarp", "upper_rate", "atrial_escape", "lower_rate", "ventricular_refractory", "crosstalk", "withheld"}[n(0, 7, "name")], Why: []string{"", "hysteresis"}[n(0, 1, "why")]})
+	case 10:
+		put(event.Event{Kind: event.Mode, Rule: event.Switched, Cause: earlier, Site: event.None, Path: event.None, Field: "DDD", To: "DDI", Why: "x"})
 	case 6:
 		put(event.Event{Kind: event.Change, Rule: event.Planned, Site: event.None, Path: event.None, Field: "x", To: "1"})
 	}
 }
+
+func channelOf(n func(int, int, string) int) byte { return "AV"[n(0, 1, "channel")] }
 
 func TestAnyValidLogIsMeasured(t *testing.T) {
 	rapid.Check(t, func(rt *rapid.T) {
