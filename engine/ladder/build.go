@@ -24,6 +24,7 @@ func Build(l *event.Log, o Options) *Diagram {
 		b.wave(&b.ws.all[i])
 	}
 	b.measure()
+	b.d.Device = device(l)
 	return b.d
 }
 

@@ -17,6 +17,9 @@
 // fascicles only the first way down to the muscle is drawn on each side, and
 // every other one that was blocked.
 //
+// Where the log has a device, [Diagram.Device] holds what it sensed, gave and waited
+// for, on the same axis of time.
+//
 // Heights are in units from the top of the diagram, times are [tick.Time]. The
 // package knows no millimetres and no fonts: see package scene.
 package ladder
@@ -46,6 +49,7 @@ type Diagram struct {
 	Strokes []Stroke
 	Marks   []Mark
 	Dims    []Dim
+	Device  *Device // nil where the log has none
 }
 
 // Height is the height of the whole diagram.

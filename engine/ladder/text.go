@@ -11,6 +11,8 @@ import (
 //	stroke 660 0.75 -> 718 1.65 atrium arrived e4
 //	bar 1420 1.95 av_node missed=16 e17
 //	PR 660-860 80 e12
+//	window pvarp 510-760 250 row0 ignores p30 e15
+//	marker 360 AS e5
 
 var (
 	branchNames  = [...]string{Left: " left", Right: " right", Slow: " slow"}
@@ -47,5 +49,38 @@ func (d *Diagram) Text() string {
 		m := &d.Dims[i]
 		fmt.Fprintf(&b, "%s %v-%v %v p%d e%d\n", m.Measure, m.T0, m.T1, m.T1.Sub(m.T0), m.Priority, m.Event)
 	}
+	if d.Device != nil {
+		d.Device.text(&b)
+	}
 	return b.String()
+}
+
+var hearingNames = [hearings]string{Deaf: "deaf", Ignores: "ignores", Watches: "watches", Timer: "timer"}
+
+func (d *Device) text(b *strings.Builder) {
+	for i := range d.Windows {
+		w := &d.Windows[i]
+		fmt.Fprintf(b, "window %s %v-%v %v row%d %s p%d", w.Name, w.T0, w.T1, w.T1.Sub(w.T0), w.Row, hearingNames[w.Hearing], w.Priority)
+		switch {
+		case w.Ended:
+			b.WriteString(" ended")
+		case w.Cut:
+			b.WriteString(" cut")
+		}
+		if w.Held != 0 {
+			fmt.Fprintf(b, " held=%v", w.Held)
+		}
+		for _, h := range w.Hits {
+			fmt.Fprintf(b, " hit=e%d", h.Event)
+		}
+		fmt.Fprintf(b, " e%d\n", w.Event)
+	}
+	for i := range d.Markers {
+		m := &d.Markers[i]
+		label := m.Label
+		if m.Unheard {
+			label = "unheard"
+		}
+		fmt.Fprintf(b, "marker %v %s e%d\n", m.T, label, m.Event)
+	}
 }

@@ -92,7 +92,7 @@ func parse(t *testing.T, svg []byte) (attrs map[string]string, texts string, pat
 // The SVG holds every painted mark of the scene once, in order, with its class
 // and event, and its lines begin where the scene's lines begin.
 func TestSVGHoldsTheMarksOfTheScene(t *testing.T) {
-	for _, name := range []string{"normal.log", "node_block.log", "pvc.log", "escape.log", "bundle_block.log", "fusion.log"} {
+	for _, name := range []string{"normal.log", "node_block.log", "pvc.log", "escape.log", "bundle_block.log", "fusion.log", "device_upper_rate.log", "device_odd.log"} {
 		s := drawing(t, name, scene.Options{Caution: true, Grid: true, Legend: true, Title: "A < B & C", Selected: 3})
 		var b bytes.Buffer
 		if err := SVG(&b, s); err != nil {
@@ -110,7 +110,7 @@ func TestSVGHoldsTheMarksOfTheScene(t *testing.T) {
 		}
 		i := 1
 		for _, m := range s.Marks {
-			if m.Class == scene.Wave {
+			if m.Class == scene.Wave || m.Class == scene.WindowArea {
 				continue // never painted
 			}
 			class := m.Class.String()

@@ -32,6 +32,17 @@ const (
 	BlockLabel // where it was blocked
 	Tail       // what a concealed impulse left refractory
 	Stimulus   // ring; a disc of this class inside it marks capture
+	Spike      // a stimulus on a lead
+	Signal     // a signal that the device sensed
+	Window     // a bar: the device hears but does not react
+	WindowArea // the area of another bar: not painted, for hit testing
+	WindowEdge // the outline of a bar, open where it ran out
+	WindowEnd  // where an event ended it; a stimulus among the markers
+	Hatch      // in a bar: the device is deaf
+	Timer      // a timer of the device
+	Held       // after it: the stimulus was held back
+	WindowText // name or length of a window
+	MarkerText // what the device marked: AS, VP
 	Dim        // dimension line with its end ticks
 	DimText    // the number on it
 	Selected   // halo beneath the marks of the selected event
@@ -50,6 +61,8 @@ var classNames = [classEnd]string{
 	Sinus: "sinus", Atrium: "atrium", Node: "node", NodeSlow: "node-slow", His: "his",
 	BundleLeft: "bundle-left", BundleRight: "bundle-right", Ventricle: "ventricle", Accessory: "accessory",
 	Block: "block", BlockLabel: "block-label", Tail: "tail", Stimulus: "stimulus",
+	Spike: "spike", Signal: "signal", Window: "window", WindowArea: "window-area", WindowEdge: "window-edge", WindowEnd: "window-end",
+	Hatch: "hatch", Timer: "timer", Held: "held", WindowText: "window-text", MarkerText: "marker-text",
 	Dim: "dim", DimText: "dim-text", Selected: "selected",
 	Title: "title", Statement: "statement", Caution: "caution", Note: "note",
 }

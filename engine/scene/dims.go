@@ -32,8 +32,8 @@ func (r *rungs) dim(d *ladder.Dim) bool {
 // row puts a dimension line into a row outside the tiers, the number in a break
 // of the line or, where the line is too short, beside it.
 func (r *rungs) row(row int, d *ladder.Dim, texts ...string) bool {
-	if r.named[row] {
-		texts = texts[len(texts)-1:]
+	if r.named[row] == d.Measure {
+		texts = []string{ms(d.T1.Sub(d.T0))}
 	}
 	y := r.rows[row] + 0.55*r.rowH
 	x0, x1 := r.Axis.X(max(d.T0, r.o.From)), r.Axis.X(min(d.T1, r.o.To))
@@ -149,10 +149,10 @@ func (r *rungs) beside(d *ladder.Dim, texts ...string) bool {
 }
 
 // clear tells whether a text would stand free with some room left and right.
-func (r *rungs) clear(m *Mark, mm float64) bool {
-	b := r.TextBox(m)
-	b.X0, b.X1 = max(b.X0-mm, 0), min(b.X1+mm, r.Width)
-	return r.room.free(b)
+func (s *sheet) clear(m *Mark, mm float64) bool {
+	b := s.TextBox(m)
+	b.X0, b.X1 = max(b.X0-mm, 0), min(b.X1+mm, s.Width)
+	return s.room.free(b)
 }
 
 func (r *rungs) inWindow(m *Mark) bool {

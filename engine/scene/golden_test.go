@@ -11,24 +11,32 @@ import (
 
 var update = flag.Bool("update", false, "rewrite the golden")
 
-// One small sheet in its wire form, a mark a line.
+// Two small sheets in their wire form, a mark a line.
 func TestGolden(t *testing.T) {
-	l := logs(t)["node_block.log"]
-	s := Strip(Input{Log: l, Diagram: ladder.Build(l, ladder.Options{Form: ladder.Plain})},
-		Options{Title: "Blocked P", Caution: true, Selected: 31})
-	meta, _ := Encode(s)
-	got := bytes.ReplaceAll(meta, []byte("],["), []byte("],\n["))
-	const golden = "testdata/node_block.golden"
-	if *update {
-		if err := os.WriteFile(golden, got, 0o644); err != nil {
+	all := logs(t)
+	for _, c := range []struct {
+		name string
+		form ladder.Form
+		o    Options
+	}{
+		{"node_block", ladder.Plain, Options{Title: "Blocked P", Caution: true, Selected: 31}},
+		{"device_upper_rate", ladder.Plain, Options{Caution: true, Legend: true, Selected: 35}},
+	} {
+		l := all[c.name+".log"]
+		meta, _ := Encode(Strip(Input{Log: l, Diagram: ladder.Build(l, ladder.Options{Form: c.form})}, c.o))
+		got := bytes.ReplaceAll(meta, []byte("],["), []byte("],\n["))
+		golden := "testdata/" + c.name + ".golden"
+		if *update {
+			if err := os.WriteFile(golden, got, 0o644); err != nil {
+				t.Fatal(err)
+			}
+		}
+		want, err := os.ReadFile(golden)
+		if err != nil {
 			t.Fatal(err)
 		}
-	}
-	want, err := os.ReadFile(golden)
-	if err != nil {
-		t.Fatal(err)
-	}
-	if !bytes.Equal(got, want) {
-		t.Errorf("got\n%s\nwant\n%s", got, want)
+		if !bytes.Equal(got, want) {
+			t.Errorf("%s: got\n%s\nwant\n%s", c.name, got, want)
+		}
 	}
 }

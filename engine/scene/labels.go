@@ -78,7 +78,7 @@ func (r *rungs) thin(all []label) {
 // unname takes away the names of rows in which no number had room.
 func (r *rungs) unname() {
 	for row, y := range r.rows {
-		if !r.named[row] {
+		if r.named[row] == 0 {
 			continue
 		}
 		name, used := -1, false

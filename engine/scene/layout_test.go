@@ -37,7 +37,9 @@ func anyLog(r *rapid.T) *event.Log {
 		t = t.Add(tick.Dur(rapid.Int64Range(0, 200000).Draw(r, "later")))
 		e := event.Event{ID: event.ID(len(l.Events) + 1), T: t, Site: event.SiteID(rapid.IntRange(0, len(testSites)-1).Draw(r, "site")), Path: event.None}
 		e.Cause = event.ID(rapid.IntRange(0, len(l.Events)).Draw(r, "cause"))
-		switch rapid.IntRange(0, 9).Draw(r, "kind") {
+		switch rapid.IntRange(0, 15).Draw(r, "kind") {
+		case 10, 11, 12, 13, 14, 15:
+			anyDevice(r, &e)
 		case 0:
 			e.Kind, e.Rule = event.Discharge, event.Phase4
 		case 1:
@@ -58,6 +60,29 @@ func anyLog(r *rapid.T) *event.Log {
 	}
 	l.Span = t.Add(tick.Dur(rapid.Int64Range(0, 500000).Draw(r, "rest")))
 	return l
+}
+
+// anyDevice makes the event one of a device.
+func anyDevice(r *rapid.T, e *event.Event) {
+	e.Channel = rapid.SampledFrom([]byte("AV")).Draw(r, "channel")
+	switch rapid.IntRange(0, 5).Draw(r, "of the device") {
+	case 0:
+		e.Kind, e.Rule, e.Field, e.Captured = event.Stimulus, event.Timed, rapid.SampledFrom([]string{"av_delay", "upper_rate", "safety"}).Draw(r, "timer"), true
+	case 1:
+		e.Kind, e.Rule, e.By = event.Sense, event.Signal, e.Cause
+		e.Use = event.Use(rapid.IntRange(int(event.Tracked), int(event.Observed)).Draw(r, "use"))
+	case 2:
+		e.Kind, e.Rule, e.Field, e.To = event.Mode, event.Switched, "DDD", "DDI"
+	default:
+		e.Kind, e.Rule = event.Window, event.Opened
+		e.Field = rapid.SampledFrom([]string{"av_delay", "atrial_escape", "lower_rate", "upper_rate", "pvarp", "pvab", "atrial_blanking", "pavb",
+			"crosstalk", "ventricular_refractory", "noise", "of another name"}).Draw(r, "window")
+		e.Until = e.T.Add(tick.Dur(rapid.Int64Range(0, 900000).Draw(r, "length")))
+		e.Why = rapid.SampledFrom([]string{"", "hysteresis"}).Draw(r, "why")
+		if rapid.Bool().Draw(r, "ended") {
+			e.By = e.Cause
+		}
+	}
 }
 
 func anyRecord(r *rapid.T, span tick.Time) *lead.Record {

@@ -64,6 +64,7 @@ func (s *sheet) leads(rows []row) {
 	for i := range rows {
 		r := &rows[i]
 		for j, p := range r.parts {
+			s.spikes(r, p)
 			s.trace(Trace, p.lead, r.zero, p.from, p.to, 0)
 			if len(r.parts) > 1 {
 				s.heading12(r, p, j > 0)

@@ -22,9 +22,9 @@ const (
 type rungs struct {
 	*sheet
 	d        *ladder.Diagram
-	top, per float64    // mm, mm per unit
-	rows     [3]float64 // top of each row of dimension lines
-	named    [3]bool    // the row has its name in the margin
+	top, per float64           // mm, mm per unit
+	rows     [3]float64        // top of each row of dimension lines
+	named    [3]ladder.Measure // the measure that gave the row its name in the margin, or 0
 	rowH     float64
 	foci     map[place]bool
 }
@@ -66,24 +66,35 @@ func (s *sheet) ladder() {
 		r.sign(&r.d.Marks[i])
 	}
 	s.Marks = append(append(s.Marks, s.halo...), s.over...)
+	s.halo, s.over = nil, nil
 	r.labels()
 }
 
 // open makes room for a row of dimension lines if the diagram, not only the
-// window, has any of its measures, and names it in the margin.
+// window, has any of its measures, and names it in the margin by the first it has.
 func (r *rungs) open(row int, measures ...ladder.Measure) {
 	r.rows[row] = r.sheet.y
-	for i := range r.d.Dims {
-		if m := r.d.Dims[i].Measure; m != measures[0] && m != measures[len(measures)-1] {
+	for _, m := range measures {
+		if !r.has(m) {
 			continue
 		}
-		h, name := TierLabel.height(r.o.FontMM), measures[0].String()
-		if TierLabel.Width(name, r.o.FontMM) <= r.Axis.X0-2*pad {
-			r.named[row] = r.place(Mark{Shape: Text, Class: TierLabel, X: pad, Y: r.sheet.y + 0.55*r.rowH + 0.35*h, Text: name})
+		h, name := TierLabel.height(r.o.FontMM), m.String()
+		if TierLabel.Width(name, r.o.FontMM) <= r.Axis.X0-2*pad &&
+			r.place(Mark{Shape: Text, Class: TierLabel, X: pad, Y: r.sheet.y + 0.55*r.rowH + 0.35*h, Text: name}) {
+			r.named[row] = m
 		}
 		r.sheet.y += r.rowH
 		return
 	}
+}
+
+func (r *rungs) has(m ladder.Measure) bool {
+	for i := range r.d.Dims {
+		if r.d.Dims[i].Measure == m {
+			return true
+		}
+	}
+	return false
 }
 
 func (r *rungs) y(units float64) float64 { return r.top + float64(units*r.per) }

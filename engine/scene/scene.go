@@ -17,8 +17,8 @@
 //	 "lanes":[{"name":"lead:II","label":"II","y0":10,"y1":35},...],
 //	 "marks":[[1,"grid-minor",12,10,12,35],...]}
 //
-// All lengths are millimetres. Lanes are named "lead:II" (several leads side by side: "lead:I,aVR,V1,V4"), "axis" and
-// "ladder". An instant t_us stands at x0 + (t_us - t0_us)/1e6*mm_per_s. A mark is
+// All lengths are millimetres. Lanes are named "lead:II" (several leads side by side:
+// "lead:I,aVR,V1,V4"), "axis", "ladder" and, where there is a device, "device". An instant t_us stands at x0 + (t_us - t0_us)/1e6*mm_per_s. A mark is
 // an array, of which trailing zero or empty values may be missing:
 //
 //	[shape, "class", x, y, x2, y2, r, "text", anchor, event, pointOffset, pointCount]
@@ -87,7 +87,7 @@ type Mark struct {
 // Lane is a horizontal band of the scene, top to bottom: a lead, the ladder, the
 // time axis.
 type Lane struct {
-	Name   string // stable: "lead:II", "ladder", "axis"
+	Name   string // stable: "lead:II", "axis", "ladder", "device"
 	Label  string
 	Y0, Y1 float64
 }

@@ -39,6 +39,7 @@ type Options struct {
 	Legend    bool // what the signs of the ladder mean
 	Caution   bool // the scales and CautionText at the foot
 	Selected  event.ID
+	NoDevice  bool // leave the device's lane out
 }
 
 // Limits on sizes, so that no option can make an endless drawing.
@@ -82,6 +83,11 @@ func defaultMargin(in *Input, o *Options) float64 {
 	if in.Diagram != nil {
 		for i := range in.Diagram.Tiers {
 			w = max(w, TierLabel.Width(in.Diagram.Tiers[i].Label, o.FontMM))
+		}
+		if d := in.Diagram.Device; d != nil && !o.NoDevice {
+			for i := range d.Rows {
+				w = max(w, TierLabel.Width(d.Rows[i].Label, o.FontMM))
+			}
 		}
 	}
 	return w + 2*pad
@@ -164,6 +170,9 @@ func (s *sheet) finish(rows []row) *Scene {
 	s.axis()
 	if s.in.Diagram != nil {
 		s.ladder()
+		if s.in.Diagram.Device != nil && !s.o.NoDevice {
+			s.device()
+		}
 		if s.o.Legend {
 			s.legend()
 		}

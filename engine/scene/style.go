@@ -20,7 +20,7 @@ type Style struct {
 type Palette struct {
 	Paper, Ink, Quiet, GridMinor, GridMajor string
 	Atrium, Node, Purkinje, Accessory       string
-	Device, Warning, Halo                   string
+	Device, Tint, Warning, Halo             string
 }
 
 // Light is the colours on paper, Dark those of the dark sheet.
@@ -28,12 +28,12 @@ var (
 	Light = Palette{
 		Paper: "#FBFAF6", Ink: "#1E2A30", Quiet: "#56666F", GridMinor: "#DCE4E7", GridMajor: "#BFCDD3",
 		Atrium: "#0B6B72", Node: "#8A6100", Purkinje: "#7B2D5E", Accessory: "#2F6B3A",
-		Device: "#3447B5", Warning: "#B5361B", Halo: "#D3D9F6",
+		Device: "#3447B5", Tint: "#E3E7F5", Warning: "#B5361B", Halo: "#D3D9F6",
 	}
 	Dark = Palette{
 		Paper: "#141C20", Ink: "#E4EAEC", Quiet: "#9BABB3", GridMinor: "#1F2A30", GridMajor: "#31414A",
 		Atrium: "#4EBFC6", Node: "#DBA63C", Purkinje: "#DD8CC0", Accessory: "#7CC78B",
-		Device: "#9BA8FF", Warning: "#FF8365", Halo: "#2D3770",
+		Device: "#9BA8FF", Tint: "#222B4A", Warning: "#FF8365", Halo: "#2D3770",
 	}
 )
 
@@ -97,6 +97,24 @@ func (p *Palette) Style(c Class) Style {
 		return line(p.Warning, 0.3, 0.3, 0.6)
 	case Stimulus:
 		return line(p.Device, 0.4)
+	case Spike:
+		return line(p.Ink, thin)
+	case Signal, Timer:
+		return line(p.Device, 0.3)
+	case Window:
+		return Style{Fill: p.Tint}
+	case WindowEdge:
+		return line(p.Device, hair)
+	case WindowEnd:
+		return line(p.Device, endMM)
+	case Hatch:
+		return line(p.Device, 0.16)
+	case Held:
+		return line(p.Device, 0.5, 0.3, 0.3)
+	case WindowText:
+		return text(p.Ink, 0.82, 400)
+	case MarkerText:
+		return text(p.Device, 0.85, 700)
 	case Dim:
 		return line(p.Quiet, 0.18)
 	case Selected:

@@ -1,0 +1,127 @@
+package scene
+
+import (
+	"math"
+
+	"escapement/engine/ladder"
+)
+
+// window draws a bar, cut to the sheet's window.
+func (v *watch) window(w *ladder.Window) {
+	x0, x1, ok := v.visible(w.T0, max(w.T1, w.Held))
+	if !ok {
+		return
+	}
+	row := v.rows[w.Row]
+	if texts := words(w); len(texts) > 0 {
+		v.texts = append(v.texts, caption{w: w, texts: texts})
+	}
+	if w.Hearing == ladder.Timer {
+		v.timer(w, row)
+		return
+	}
+	b := Box{x0, row.Y0, x1, row.Y1}
+	class := Window
+	if w.Hearing != ladder.Ignores {
+		class = WindowArea // told by its hatching or its outline; there to be found
+	}
+	v.add(Mark{Shape: Rect, Class: class, X: b.X0, Y: b.Y0, X2: b.X1, Y2: b.Y1, Event: w.Event})
+	v.edges(w, b)
+	for i := range w.Hits {
+		if h := &w.Hits[i]; v.o.From <= h.T && h.T <= v.o.To {
+			x := v.Axis.X(h.T)
+			v.room.box(Box{x - 0.3, b.Y0, x + 0.3, b.Y1})
+			v.upright(Signal, x, b.Y0-0.3, b.Y1+0.3, h.Event)
+		}
+	}
+	if w.Hearing == ladder.Deaf {
+		v.room.box(Box{b.X0, b.Y0 + 0.1, b.X1, b.Y1 - 0.1})
+		v.hatch(w, b)
+	}
+}
+
+// edges draws the outline of a bar: open at the right where it ran out, closed by a
+// solid edge where an event ended it.
+func (v *watch) edges(w *ladder.Window, b Box) {
+	points := []Point{{float32(b.X1), float32(b.Y0)}, {float32(b.X0), float32(b.Y0)}, {float32(b.X0), float32(b.Y1)}, {float32(b.X1), float32(b.Y1)}}
+	if w.T0 >= v.o.From {
+		v.add(Mark{Shape: Poly, Class: WindowEdge, Points: points, Event: w.Event})
+	} else {
+		v.add(Mark{Shape: Line, Class: WindowEdge, X: b.X0, Y: b.Y0, X2: b.X1, Y2: b.Y0, Event: w.Event})
+		v.add(Mark{Shape: Line, Class: WindowEdge, X: b.X0, Y: b.Y1, X2: b.X1, Y2: b.Y1, Event: w.Event})
+	}
+	if w.Ended && w.T1 <= v.o.To && b.X1-b.X0 > 2*endMM { // a row of short ones would be one solid block
+		x := b.X1 - endMM/2
+		v.upright(WindowEnd, x, b.Y0, b.Y1, w.Event)
+	}
+}
+
+// hatch fills a bar with slanted lines, cut to it. They are tied to the bar's start,
+// so that they move with it.
+func (v *watch) hatch(w *ladder.Window, b Box) {
+	if b.X1-b.X0 < leastMM {
+		return
+	}
+	start, tall := v.Axis.X(w.T0), b.Y1-b.Y0
+	for k := math.Ceil((b.X0 - start) / hatchMM); start+k*hatchMM < b.X1+tall; k++ {
+		x := start + k*hatchMM
+		if l, ok := clip(Box{x, b.Y0, x - tall, b.Y1}, b); ok && l.X0-l.X1 > 0.05 {
+			v.add(Mark{Shape: Line, Class: Hatch, X: l.X0, Y: l.Y0, X2: l.X1, Y2: l.Y1, Event: w.Event})
+		}
+	}
+}
+
+// timer draws a timer as a line along the foot of its row: a tick where it began,
+// a solid edge where an event ended it, dashes where the stimulus was held back.
+func (v *watch) timer(w *ladder.Window, row Box) {
+	y, up := row.Y1-0.4, row.Y1-1.5
+	if x0, x1, ok := v.visible(w.T0, w.T1); ok {
+		v.add(Mark{Shape: Line, Class: Timer, X: x0, Y: y, X2: x1, Y2: y, Event: w.Event})
+	}
+	if w.T0 >= v.o.From {
+		v.upright(WindowEdge, v.Axis.X(w.T0), up, row.Y1, w.Event)
+	}
+	if w.Ended && w.T1 <= v.o.To {
+		v.upright(WindowEnd, v.Axis.X(w.T1)-endMM/2, up, row.Y1, w.Event)
+	}
+	if w.Held == 0 {
+		return
+	}
+	if x0, x1, ok := v.visible(w.T1, w.Held); ok {
+		v.add(Mark{Shape: Line, Class: Held, X: x0, Y: y, X2: x1, Y2: y, Event: w.HeldBy})
+	}
+}
+
+// caption writes the text of a bar: inside it; over a timer it may stand out at both
+// ends where its neighbours leave room.
+func (v *watch) caption(w *ladder.Window, texts []string) {
+	x0, x1, _ := v.visible(w.T0, max(w.T1, w.Held))
+	row, h := v.rows[w.Row], WindowText.height(v.o.FontMM)
+	whole := w.T0 >= v.o.From && max(w.T1, w.Held) <= v.o.To
+	for _, text := range texts {
+		m := Mark{Shape: Text, Class: WindowText, Text: text, Anchor: Middle, Event: w.Event, Y: (row.Y0+row.Y1)/2 + 0.34*h}
+		width := WindowText.Width(text, v.o.FontMM)
+		least, parts := width+1.2, []float64{0.5, 0.6, 0.7, 0.8}
+		if w.Hearing == ladder.Timer {
+			m.Y, parts = row.Y1-1.6, parts[:1]
+			if whole {
+				least = 0.4 * width
+			}
+		}
+		if x1-x0 < least {
+			continue
+		}
+		for _, part := range parts {
+			m.X = x0 + part*(x1-x0)
+			b := v.TextBox(&m)
+			if w.Hearing != ladder.Timer && (b.X0 < x0+0.4 || b.X1 > x1-0.4) || b.X0 < v.Axis.X0 || b.X1 > v.right+pad {
+				continue
+			}
+			if v.room.free(b) {
+				v.room.box(b)
+				v.over = append(v.over, m)
+				return
+			}
+		}
+	}
+}
