@@ -62,7 +62,7 @@ func (w *waiter) window(e *event.Event) {
 	w.rank(&b)
 	w.add(b, k.group)
 	if e.Field == "av_delay" && w.hears {
-		b.Hearing, b.Priority = Ignores, kindOf("pvarp").priority
+		b.Hearing, b.Priority, b.Differs = Ignores, kindOf("pvarp").priority, false
 		if b.Held != 0 {
 			b.T1, b.Ended, b.Held = b.Held, w.l.At(b.HeldBy).Kind == event.Sense, 0
 		}

@@ -55,6 +55,9 @@ func (s *sheet) device() {
 	for _, over := range [...]bool{false, true} { // what is deaf or watches lies over what ignores
 		for i := range v.d.Windows {
 			w := &v.d.Windows[i]
+			if w.T0 > v.o.To {
+				break // they are in order of time
+			}
 			if over == (w.Hearing == ladder.Deaf || w.Hearing == ladder.Watches) {
 				v.window(w)
 			}
