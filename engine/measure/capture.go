@@ -105,13 +105,20 @@ func (f *finder) modeChanges() {
 	}
 	var ids []event.ID
 	var words []string
-	for k, m := range f.dev.changes {
+	changes := f.dev.changes
+	if changes[0].T == 0 {
+		changes = changes[1:] // the mode it began with
+	}
+	if len(changes) == 0 {
+		return
+	}
+	for k, m := range changes {
 		ids = append(ids, m.ID, m.Cause)
 		if k < 4 {
 			words = append(words, fmt.Sprintf("%s to %s at %.1f s (%s)", m.Field, m.To, m.T.Seconds(), m.Why))
 		}
 	}
-	if n := len(f.dev.changes); n > 4 {
+	if n := len(changes); n > 4 {
 		words = append(words, fmt.Sprintf("and %d more", n-4))
 	}
 	far := 0
@@ -121,16 +128,17 @@ func (f *finder) modeChanges() {
 			ids = append(ids, e.ID)
 		}
 	}
-	doubt := ""
+	doubt, heard := "", ""
 	var rivals []string
 	if far > 0 {
 		doubt = fmt.Sprintf("; %s the far field of the QRS, which counts as fast atrium", plural(far, "atrial signal was", "atrial signals were"))
+		heard = " with far-field signals counted"
 		rivals = []string{"double counting of far-field signals (spurious mode switch)"}
 	}
 	f.add(orderMode, Finding{
-		Slug: "mode_switch", Evidence: ids, Count: len(f.dev.changes), Rivals: rivals,
+		Slug: "mode_switch", Evidence: ids, Count: len(changes), Rivals: rivals,
 		Text:   fmt.Sprintf("The mode changed: %s%s: consistent with a change of mode by the device.", strings.Join(words, ", "), doubt),
-		clause: "mode change " + words[0],
+		clause: "mode change " + words[0] + heard,
 	})
 }
 

@@ -10,9 +10,9 @@ import (
 // Device is what the strip shows of a pacemaker. Percentages are null where nothing
 // was counted.
 type Device struct {
-	// Mode is the mode at the beginning as its windows show it, without the letters
-	// for rate modulation and multisite pacing; a mode that the strip does not tell
-	// from another, as VVT that has sensed nothing, gets the commoner name.
+	// Mode is the mode at the beginning as its windows show it. A mode that the strip
+	// does not tell from another, as VVT that has sensed nothing, gets the commoner
+	// name, and rate modulation that never changed an interval no letter.
 	Mode string `json:"mode"`
 
 	AtrialPaced      *float64 `json:"atrial_paced_percent"`      // AP of AS + AP
@@ -245,13 +245,36 @@ func (s *strip) marker(m *marker) Marker {
 }
 
 // mode is the mode at the beginning of the strip: as the first change names it, else
-// as the windows show it. A mode is known by what it waits for: an atrial escape
+// as the windows show it. Of three letters, a mode is known by what it waits for: an atrial escape
 // interval is for two chambers, an upper-rate interval for tracking, a refractory
 // period for sensing.
 func (d *device) mode() string {
-	if len(d.changes) > 0 {
+	switch {
+	case len(d.changes) > 0 && d.changes[0].T == 0:
+		return d.changes[0].To
+	case len(d.changes) > 0:
 		return d.changes[0].Field
 	}
+	base := d.base()
+	rate, sites := "", ""
+	for _, w := range d.windows {
+		if w.Why == "sensor" {
+			rate = "R"
+		}
+	}
+	for i := range d.markers {
+		if d.markers[i].e.Field == "offset" {
+			rate, sites = max(rate, "O"), "V"
+		}
+	}
+	if base == "" {
+		return ""
+	}
+	return base + rate + sites
+}
+
+// base is the mode's first three letters as the windows show them.
+func (d *device) base() string {
 	has := map[string]bool{} // looked up only
 	for _, w := range d.windows {
 		has[w.Field] = true

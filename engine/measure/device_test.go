@@ -85,7 +85,7 @@ func TestPublishedStrips(t *testing.T) {
 			"17: VA 250, PVARP 300, lower rate 80, AV 300, atrial ERP 230, one lost capture: synchrony (Heart Rhythm 2016;13:1739 and Atar 2022, read; stepped)",
 			`"span_ms":12000,"heart":{"sinus":{"rate_bpm":30},"atria":{"erp_ms":230},` + up("117.1") + `},"pacemaker":{"mode":"DDD","lower_rate_bpm":80,"paced_av_ms":300,"pvarp_ms":300},
 			 "interventions":[{"at_ms":3000,"do":"lose_capture","channel":"A","for_ms":700}]`,
-			[]string{"repetitive_nonreentrant_va_synchrony", "p_synchronous_pacing", "av_sequential_pacing", "retrograde_conduction", "loss_of_capture"},
+			[]string{"repetitive_nonreentrant_va_synchrony", "av_sequential_pacing", "retrograde_conduction", "loss_of_capture"},
 			[]string{"repetitive non-reentrant VA synchrony 80/min"},
 			[]string{"endless_loop_tachycardia", "functional_non_capture", "functional_av_block"},
 		},
@@ -250,6 +250,33 @@ func TestConductionNeedsOpportunity(t *testing.T) {
 		}
 		if c.want != "" && r.finding(c.want) == nil {
 			t.Errorf("%s: got %v, want %s", c.name, slugs(r), c.want)
+		}
+	}
+}
+
+// A stimulus of the device that comes before the next beat of the heart was due is no
+// premature beat, and its rhythm is no ectopic one.
+func TestPacedBeatsAreNotPremature(t *testing.T) {
+	for _, body := range []string{
+		`"span_ms":20000,"heart":{"sinus":{"rate_bpm":75},"av_node":{"fast":{"ah_ms":80,"va_ms":null}}},"pacemaker":{"mode":"VVI","lower_rate_bpm":80}`,
+		`"span_ms":20000,"heart":{"sinus":{"rate_bpm":55}},"pacemaker":{"mode":"AAI","lower_rate_bpm":80,"hysteresis":{"rate_bpm":50}},"interventions":[{"at_ms":5000,"do":"stimulate","site":"left_atrium"},{"at_ms":12000,"do":"set","field":"heart.sinus.rate_bpm","to":90}]`,
+		`"span_ms":20000,"heart":{"sinus":{"rate_bpm":75}},"pacemaker":{"mode":"DOO","lower_rate_bpm":100}`,
+		`"span_ms":20000,"heart":{"sinus":{"rate_bpm":60}},"pacemaker":{"mode":"AOO","lower_rate_bpm":63}`,
+		`"span_ms":20000,"heart":{"sinus":{"rate_bpm":60}},"pacemaker":{"mode":"VOO","lower_rate_bpm":53}`,
+	} {
+		l, r := paced(t, body)
+		for _, b := range r.Beats {
+			if b.Premature && b.Paced && l.At(b.Begun).Rule == event.Timed && b.Kind == "P" {
+				t.Errorf("%s: the paced beat at %v is called premature", body, b.T)
+			}
+			if b.Premature && b.Kind == "QRS" && !b.Conducted && l.At(b.Begun).Rule == event.Timed {
+				t.Errorf("%s: the paced beat at %v is called premature", body, b.T)
+			}
+		}
+		for _, s := range []string{"ventricular_stimulation", "atrial_stimulation", "ectopic_atrial_rhythm", "junctional_escape", "ventricular_escape"} {
+			if r.finding(s) != nil {
+				t.Errorf("%s: %s: %s", body, s, r.Statement)
+			}
 		}
 	}
 }

@@ -105,7 +105,11 @@ func (f *finder) escapes() {
 			continue
 		}
 		pace := f.pace(r)
-		slug, words := rhythmName(f.vOrigin(r.from), pace, n)
+		origin := f.vOrigin(r.from)
+		if n >= 3 && f.v[r.from+1].circling {
+			origin = fromVentricle // one stimulus began it, and it goes on by itself
+		}
+		slug, words := rhythmName(origin, pace, n)
 		if slug == "" {
 			continue
 		}

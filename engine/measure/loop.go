@@ -25,7 +25,7 @@ func (f *finder) turns() []turn {
 			continue
 		}
 		s := f.dev.marker(m.e.Cause)
-		if s == nil || s.e.Use != event.Tracked || s.wave < 0 {
+		if s == nil || s.e.Channel != 'A' || s.e.Use != event.Tracked || s.wave < 0 {
 			continue
 		}
 		if p := int(s.wave); f.p[p].retrograde && f.p[p].from >= 0 {
@@ -214,7 +214,7 @@ func (f *finder) synchronyBefore(ap *marker) (j, p int, s *marker, ok bool) {
 		if m.e.Channel == 'V' && m.beat {
 			break
 		}
-		if m.e.Use != event.Refractory || m.wave < 0 {
+		if m.e.Channel != 'A' || m.e.Use != event.Refractory || m.wave < 0 {
 			continue
 		}
 		w := &f.p[m.wave]

@@ -98,9 +98,9 @@ func (s *strip) sensedWave(e *event.Event) int32 {
 // madeWave is the wave that a stimulus has a part in, else -1. From a site of the
 // conduction system that is the QRS its impulse comes to.
 func (s *strip) madeWave(e *event.Event) int32 {
-	switch s.log.Sites[e.Site].Chamber() {
-	case e.Channel:
-	case 0:
+	switch c := s.log.Sites[e.Site].Chamber(); {
+	case c == e.Channel:
+	case c == 0 && e.Channel == 'V':
 		return s.cameOf(e)
 	default:
 		return -1

@@ -30,7 +30,7 @@ func (f *finder) devices() {
 	f.headline()
 }
 
-// pairs are the beats of one kind of pacing.
+// pairs are the beats of one kind of pacing. An AV interval below 0 is none.
 type pairs struct {
 	ids    []event.ID
 	n      int
@@ -40,7 +40,7 @@ type pairs struct {
 func (p *pairs) add(av, cycle tick.Dur, ids ...event.ID) {
 	p.ids = append(p.ids, ids...)
 	p.n++
-	if av > 0 {
+	if av >= 0 {
 		p.av = append(p.av, av)
 	}
 	if cycle > 0 {
@@ -56,28 +56,27 @@ func (p *pairs) rate() string {
 }
 
 // kinds of pacing by what a cycle of the device was made of.
-type kinds struct{ tracked, sequential, atrial, ventricular pairs }
+type kinds struct{ tracked, sequential, atrial, ventricular, own pairs }
 
 // pacedRhythm names the kinds of pacing on the strip. Beats that a loop or a
 // synchrony explains are left to those.
 func (f *finder) pacedRhythm() {
 	k := f.kinds()
-	all := k.tracked.n + k.sequential.n + k.atrial.n + k.ventricular.n + len(f.dev.looped)
-	clause := func(n int, text string) string {
-		if n == 1 && all > 1 {
-			return "" // a single beat among others is not the rhythm
-		}
-		return text
+	least := 1
+	if max(k.tracked.n, k.sequential.n, k.atrial.n, k.ventricular.n, len(f.dev.looped)) > 1 {
+		least = 2 // a single beat among others is not the rhythm
 	}
-	f.tracking(&k.tracked, all-k.tracked.n)
-	if n := k.sequential.n; n > 0 {
+	if k.tracked.n >= least {
+		f.tracking(&k.tracked, &k.own)
+	}
+	if n := k.sequential.n; n >= least {
 		f.add(orderDevice, Finding{
 			Slug: "av_sequential_pacing", Evidence: k.sequential.ids, Count: n,
 			Text:   fmt.Sprintf("%s by a ventricular one after %s ms: consistent with AV sequential pacing.", plural(n, "atrial stimulus is followed", "atrial stimuli are followed"), whole(medianDur(k.sequential.av))),
-			clause: clause(n, fmt.Sprintf("AV sequential pacing%s (AV %s ms)", k.sequential.rate(), whole(medianDur(k.sequential.av)))),
+			clause: fmt.Sprintf("AV sequential pacing%s (AV %s ms)", k.sequential.rate(), whole(medianDur(k.sequential.av))),
 		})
 	}
-	if n := k.atrial.n; n > 0 {
+	if n := k.atrial.n; n >= least {
 		ar := ""
 		if d := medianDur(k.atrial.av); d > 0 {
 			ar = fmt.Sprintf(" conducted (AR %s ms)", whole(d))
@@ -85,14 +84,14 @@ func (f *finder) pacedRhythm() {
 		f.add(orderDevice, Finding{
 			Slug: "atrial_pacing", Evidence: k.atrial.ids, Count: n,
 			Text:   fmt.Sprintf("%s without a ventricular stimulus after it%s: consistent with atrial pacing.", plural(n, "atrial stimulus", "atrial stimuli"), ar),
-			clause: clause(n, fmt.Sprintf("atrial pacing%s%s", k.atrial.rate(), ar)),
+			clause: fmt.Sprintf("atrial pacing%s%s", k.atrial.rate(), ar),
 		})
 	}
-	if n := k.ventricular.n; n > 0 {
+	if n := k.ventricular.n; n >= least {
 		f.add(orderDevice, Finding{
 			Slug: "ventricular_pacing", Evidence: k.ventricular.ids, Count: n,
 			Text:   fmt.Sprintf("%s that no atrial event of the device began: consistent with ventricular pacing.", plural(n, "ventricular stimulus", "ventricular stimuli")),
-			clause: clause(n, "ventricular pacing"+k.ventricular.rate()),
+			clause: "ventricular pacing" + k.ventricular.rate(),
 		})
 	}
 }
@@ -102,7 +101,7 @@ func (f *finder) kinds() kinds {
 	var a *marker // the atrial beat of the present cycle, if the device counts it
 	lone := func() {
 		if a != nil && a.paced() && !f.dev.looped[a.e.ID] {
-			k.atrial.add(0, f.since(a), a.e.ID)
+			k.atrial.add(-1, f.since(a), a.e.ID)
 		}
 	}
 	for i := range f.dev.markers {
@@ -121,7 +120,7 @@ func (f *finder) kinds() kinds {
 		case f.dev.looped[m.e.ID]:
 		case before == nil || m.e.Field == "lower_rate" && !before.paced():
 			if m.paced() {
-				k.ventricular.add(0, f.since(m), m.e.ID)
+				k.ventricular.add(-1, f.since(m), m.e.ID)
 			}
 		case m.paced() && before.paced():
 			k.sequential.add(m.e.T.Sub(before.e.T), f.since(m), before.e.ID, m.e.ID)
@@ -129,14 +128,23 @@ func (f *finder) kinds() kinds {
 			k.tracked.add(m.e.T.Sub(before.e.T), f.since(before), before.e.ID, m.e.ID)
 		case before.paced() && natureOf(f.log, m.e) == ofBeat:
 			k.atrial.add(m.e.T.Sub(before.e.T), f.since(before), before.e.ID, m.e.ID)
+		case !before.paced() && before.wave >= 0 && m.wave >= 0:
+			k.own.add(m.e.T.Sub(before.e.T), f.since(before), before.e.ID, m.e.ID)
 		}
 	}
 	lone()
 	return k
 }
 
-// since is the interval to the beat of the same channel before, 0 for the first.
+// since is the interval to the P or QRS before the one it made or sensed, or to the
+// beat of the device before where there is none; 0 for the first.
 func (f *finder) since(m *marker) tick.Dur {
+	switch {
+	case m.wave > 0 && m.e.Channel == 'A':
+		return f.pp(int(m.wave))
+	case m.wave > 0:
+		return f.rr(int(m.wave))
+	}
 	if b := f.dev.at(m.prev); b != nil {
 		return m.e.T.Sub(b.e.T)
 	}
@@ -147,19 +155,19 @@ func (f *finder) since(m *marker) tick.Dur {
 const judged = "Whether the heart conducts cannot be told from beats that the device paces before it could."
 
 // tracking names P-synchronous pacing. Where the upper rate changes its pattern the
-// finding about that has the clause; a single beat among others has none.
-func (f *finder) tracking(k *pairs, others int) {
-	if k.n == 0 {
-		return
-	}
+// finding about that has the clause.
+func (f *finder) tracking(k, own *pairs) {
 	low, high := slices.Min(k.av), slices.Max(k.av)
 	av := "AV " + whole(medianDur(k.av)) + " ms"
 	if high-low > steady {
 		av = fmt.Sprintf("AV %s to %s ms", whole(low), whole(high))
 	}
 	clause := ""
-	if !f.has("upper_rate_wenckebach") && !f.has("upper_rate_two_to_one") && (k.n > 1 || others == 0) {
+	if !f.has("upper_rate_wenckebach") && !f.has("upper_rate_two_to_one") {
 		clause = fmt.Sprintf("%s tracked 1:1 (%s)", f.atrialName(k), av)
+		if own.n > 1 {
+			clause += fmt.Sprintf(" and conducted in %d beats (AV %s ms)", own.n, whole(medianDur(own.av)))
+		}
 	}
 	f.add(orderDevice, Finding{
 		Slug: "p_synchronous_pacing", Evidence: k.ids, Count: k.n, Note: judged,
@@ -224,6 +232,9 @@ func (f *finder) headline() {
 	}
 	ids := []event.ID{}
 	for i := range f.dev.markers {
+		if f.dev.markers[i].paced() {
+			return
+		}
 		ids = append(ids, f.dev.markers[i].e.ID)
 	}
 	f.add(orderDevice, Finding{

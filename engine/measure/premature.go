@@ -22,9 +22,11 @@ func (f *finder) prematureAtrial() {
 		}
 		n++
 		ids = append(ids, w.id)
-		if w.to >= 0 {
+		switch {
+		case w.to >= 0:
 			ids = append(ids, f.v[w.to].id)
-		} else {
+		case f.pacedOver(i) || f.tracked(i): // no opportunity to conduct
+		default:
 			stopped++
 			ids = append(ids, f.deepest(i)...)
 			if firstBlocked == "" {

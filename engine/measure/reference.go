@@ -128,7 +128,7 @@ func (s *strip) findCrossed() {
 	j := 0
 	for i := range s.p {
 		for ; j < len(s.v) && s.v[j].t < s.p[i].t; j++ {
-			s.crossed[i] = s.crossed[i] || s.own(j) && !(s.begunByDevice(j) && s.v[j].retro < 0)
+			s.crossed[i] = s.crossed[i] || s.own(j)
 		}
 		if s.plain(i) {
 			free++

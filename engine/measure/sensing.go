@@ -2,6 +2,7 @@ package measure
 
 import (
 	"fmt"
+	"sort"
 
 	"escapement/engine/event"
 	"escapement/engine/tick"
@@ -232,15 +233,13 @@ func (f *finder) safety() {
 func (f *finder) noiseReversion() {
 	var ids []event.ID
 	n, paced := 0, 0
-	last := tick.Time(-1 << 60)
 	for i := range f.dev.markers {
 		m := &f.dev.markers[i]
 		switch {
 		case m.e.Use == event.Noise:
 			n++
-			last = m.e.T
 			ids = append(ids, m.e.ID)
-		case m.paced() && m.beat && m.e.T.Sub(last) < 300*tick.Millisecond:
+		case m.paced() && m.beat && f.inNoise(m.e):
 			paced++
 			ids = append(ids, m.e.ID)
 		}
@@ -257,4 +256,15 @@ func (f *finder) noiseReversion() {
 		Text:   fmt.Sprintf("%s close upon each other fell in the noise window, and %s: consistent with the device's response to noise.", plural(n, "signal", "signals"), what),
 		clause: fmt.Sprintf("noise, %s", what),
 	})
+}
+
+// inNoise tells whether a noise window runs at a stimulus, or ends with it.
+func (f *finder) inNoise(e *event.Event) bool {
+	i := sort.Search(len(f.dev.windows), func(i int) bool { return f.dev.windows[i].T > e.T })
+	for i--; i >= 0 && e.T.Sub(f.dev.windows[i].T) < tick.Second; i-- {
+		if w := f.dev.windows[i]; w.Until >= e.T && w.T < e.T && (w.Field == "noise" && e.Channel == 'V' || w.Field == "atrial_noise" && e.Channel == 'A') {
+			return true
+		}
+	}
+	return false
 }

@@ -15,6 +15,7 @@ type trackedRun struct {
 	av   []tick.Dur
 	ids  []event.ID
 	held bool // the upper-rate interval kept a stimulus back
+	ramp bool // long before that it did not: the rate rose into it
 	open bool // its beginning is not on the strip
 	last event.ID
 	t    tick.Time // of its last ventricular stimulus
@@ -41,16 +42,29 @@ func (f *finder) upperRuns() []trackedRun {
 			run.last, run.t = m.e.ID, m.e.T
 		case m.e.Channel == 'A' && m.paced():
 			run = trackedRun{open: true}
-		case m.e.Use == event.Refractory || m.e.Use == event.Blanked:
+		case m.e.Channel == 'A' && (m.e.Use == event.Refractory || m.e.Use == event.Blanked):
 			if w := f.log.At(m.e.By); w == nil || w.Cause != run.last || run.last == 0 || !f.fromAboveP(m) {
 				continue
 			}
 			run.ids = append(run.ids, m.e.ID, m.e.By)
+			run.trim(f)
 			out = append(out, run)
 			run = trackedRun{}
 		}
 	}
 	return out
+}
+
+// trim leaves of a run in which the rate rose into the upper rate only the period
+// itself: the last stimulus that came in time and those held back after it.
+func (r *trackedRun) trim(f *finder) {
+	first := len(r.av) // the first of the stimuli held back at the end
+	for first > 0 && f.dev.marker(r.ids[2*first-1]).e.Field == "upper_rate" {
+		first--
+	}
+	if cut := first - 1; cut > 0 && r.held {
+		r.av, r.ids, r.ramp = r.av[cut:], r.ids[2*cut:], true
+	}
 }
 
 // fromAboveP tells whether a signal is a P from above.
@@ -91,10 +105,12 @@ func (f *finder) wenckebachPacing(runs []trackedRun) {
 	longest := -1
 	for i, r := range runs {
 		ids = append(ids, r.ids...)
-		if r.open && anyClosed(runs) {
+		if (r.open || r.ramp) && anyClosed(runs) {
 			continue
 		}
-		groups = append(groups, avGroup{c: make([]int, len(r.av)), b: make([]int, 1)})
+		if !r.ramp {
+			groups = append(groups, avGroup{c: make([]int, len(r.av)), b: make([]int, 1)})
+		}
 		if longest < 0 || len(r.av) > len(runs[longest].av) {
 			longest = i
 		}
@@ -106,12 +122,12 @@ func (f *finder) wenckebachPacing(runs []trackedRun) {
 		Text: fmt.Sprintf("The AV interval grows (%s ms) because the upper-rate interval%s holds the stimulus back, until a P falls in PVARP and is not tracked, %s: consistent with Wenckebach behaviour of the device at its upper rate.",
 			av, f.upperInterval(), times(len(runs))),
 		Rivals: []string{"Wenckebach periods of the AV node, if the stimuli are not seen"},
-		clause: strings.TrimSpace(fmt.Sprintf("%s tracked %s at the upper rate (AV %s ms)", name, ratio, av)),
+		clause: strings.Join(strings.Fields(fmt.Sprintf("%s tracked %s at the upper rate (AV %s ms)", name, ratio, av)), " "),
 	})
 }
 
 func anyClosed(runs []trackedRun) bool {
-	return slices.ContainsFunc(runs, func(r trackedRun) bool { return !r.open })
+	return slices.ContainsFunc(runs, func(r trackedRun) bool { return !r.open && !r.ramp })
 }
 
 // upperInterval is the length of an upper-rate interval that ran out, in words.
@@ -142,10 +158,14 @@ func (f *finder) twoToOnePacing(runs []trackedRun) {
 	if 2*blind > len(runs) {
 		where = "blanking, unseen,"
 	}
+	name := f.atrialName(&pairs{})
+	if f.has("upper_rate_wenckebach") {
+		name = "also"
+	}
 	f.add(orderDevice, Finding{
 		Slug: "upper_rate_two_to_one", Evidence: ids, Count: len(runs), Ratio: "2:1", PRs: []float64{medianDur(av).MS()}, Note: judged,
 		Text:   fmt.Sprintf("Every other P falls in %s after the last stimulus and is not tracked, %s, at a constant AV interval of %s ms: consistent with 2:1 behaviour of the device, PP shorter than its total atrial refractory period (AV delay and PVARP).", where, times(len(runs)), whole(medianDur(av))),
 		Rivals: []string{"2:1 AV block, if the stimuli are not seen"},
-		clause: fmt.Sprintf("%s tracked 2:1 (AV %s ms)", f.atrialName(&pairs{}), whole(medianDur(av))),
+		clause: fmt.Sprintf("%s tracked 2:1 (AV %s ms)", name, whole(medianDur(av))),
 	})
 }
