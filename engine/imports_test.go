@@ -36,7 +36,7 @@ var allowed = map[string][]string{
 	"engine/scene":          {"engine/tick", "engine/event", "engine/lead", "engine/ladder"},
 	"engine/press":          {"engine/scene"},
 	"presets":               {},
-	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
+	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
 		"engine/account", "engine/scene", "presets"},
 }
 

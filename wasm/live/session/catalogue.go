@@ -4,6 +4,7 @@ import (
 	"encoding/json"
 
 	"escapement/engine/heart"
+	"escapement/engine/pacer"
 	"escapement/engine/plan"
 	"escapement/engine/scene"
 	"escapement/presets"
@@ -13,6 +14,7 @@ type catalogueReply struct {
 	Fields  []plan.Field `json:"fields"`
 	Presets []preset     `json:"presets"`
 	Sites   []site       `json:"sites"`
+	Modes   []string     `json:"modes"` // of a device, without letters IV and V
 	Styles  struct {
 		Light json.RawMessage `json:"light"`
 		Dark  json.RawMessage `json:"dark"`
@@ -34,7 +36,7 @@ type site struct {
 }
 
 func catalogue() *catalogueReply {
-	r := &catalogueReply{Fields: plan.Catalogue()}
+	r := &catalogueReply{Fields: plan.Catalogue(), Modes: pacer.Modes}
 	r.Margins.Plain, r.Margins.Full = marginPlain+edge, marginFull+edge
 	for _, e := range presets.List() {
 		file, ok := presets.Read(e.Name)

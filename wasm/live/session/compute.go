@@ -40,6 +40,7 @@ type answer struct {
 	Span        float64   `json:"span_ms"`
 	Fingerprint string    `json:"fingerprint"`
 	Overview    overview  `json:"overview"`
+	Device      *device   `json:"device"` // null: none
 	Took        float64   `json:"took_ms"` // the computation, without the scene
 }
 
@@ -79,7 +80,11 @@ func (s *Session) run(file []byte) (*timeline, error) {
 	if err != nil {
 		return nil, err
 	}
-	log, err := sim.Run(p)
+	prog, err := p.Compile()
+	if err != nil {
+		return nil, err
+	}
+	log, err := sim.Play(prog)
 	if err != nil {
 		return nil, err
 	}
@@ -87,7 +92,7 @@ func (s *Session) run(file []byte) (*timeline, error) {
 	if log.Span <= leadsUpTo {
 		rec = s.field.Record(log)
 	}
-	return &timeline{plan: p, log: log, record: rec, report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{}}, nil
+	return &timeline{plan: p, pacer: prog.Device, log: log, record: rec, drawn: pressed(log, rec), report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{}}, nil
 }
 
 // leadsUpTo is the longest strip that has leads: 12 of them at 1000 samples a
@@ -114,6 +119,7 @@ func (t *timeline) answer() *answer {
 		Measured: numbers(&t.report.Summary), Events: len(t.log.Events), Span: t.log.Span.MS(),
 		Fingerprint: fmt.Sprintf("%016x", t.log.Fingerprint()),
 		Overview:    t.overview(),
+		Device:      t.device(),
 	}
 	if t.record == nil {
 		a.Warnings = append(a.Warnings, fmt.Sprintf("Leads are computed for strips of up to %.0f min; this one has its ladder alone.", leadsUpTo.Seconds()/60))

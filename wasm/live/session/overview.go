@@ -6,12 +6,16 @@ import (
 )
 
 // overview is the strip on one line a chamber: milliseconds at which a wave
-// began, an impulse was blocked, a stimulus was given.
+// began, an impulse was blocked, a stimulus was given. A device's stimuli stand apart
+// from those of the plan's interventions, each with the chamber it was meant for.
 type overview struct {
 	Atrium    []float64 `json:"atrium"`
 	Ventricle []float64 `json:"ventricle"`
 	Blocks    []float64 `json:"blocks"`
 	Stimuli   []float64 `json:"stimuli"`
+	PacedA    []float64 `json:"paced_atrium"`
+	PacedV    []float64 `json:"paced_ventricle"`
+	Lost      []float64 `json:"lost"` // those of the device that did not capture, of both chambers
 }
 
 // The overview is a thousand or so pixels wide: marks nearer to each other than a
@@ -19,9 +23,9 @@ type overview struct {
 const overviewMarks = 4000
 
 func (t *timeline) overview() overview {
-	o := overview{[]float64{}, []float64{}, []float64{}, []float64{}}
+	o := overview{[]float64{}, []float64{}, []float64{}, []float64{}, []float64{}, []float64{}, []float64{}}
 	gap := tick.Dur(t.log.Span) / overviewMarks
-	var last [4]tick.Time
+	var last [7]tick.Time
 	put := func(line int, into *[]float64, at tick.Time) {
 		if len(*into) > 0 && at.Sub(last[line]) < gap {
 			return
@@ -41,8 +45,20 @@ func (t *timeline) overview() overview {
 		}
 	}
 	for i := range t.log.Events {
-		if e := &t.log.Events[i]; e.Kind == event.Stimulus {
+		e := &t.log.Events[i]
+		if e.Kind != event.Stimulus {
+			continue
+		}
+		switch {
+		case e.Rule != event.Timed:
 			put(3, &o.Stimuli, e.T)
+		case e.Channel == 'A':
+			put(4, &o.PacedA, e.T)
+		default:
+			put(5, &o.PacedV, e.T)
+		}
+		if e.Rule == event.Timed && !e.Captured {
+			put(6, &o.Lost, e.T)
 		}
 	}
 	return o

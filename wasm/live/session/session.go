@@ -3,7 +3,7 @@
 // computed, so that another view of it needs no new computation.
 //
 //	catalogue  {}                      fields of a plan, presets, sites, styles
-//	compute    {plan, view, selected}  a plan's timeline: measures, statement, scene; or its diagnoses
+//	compute    {plan, view, selected}  a plan's timeline: measures, statement, arithmetic, scene; or its diagnoses
 //	layout     {view, selected}        another scene of the same timeline
 //	account    {event}                 why an event came
 //	listing    {from_ms, to_ms}        events as text
@@ -33,8 +33,10 @@ type Session struct {
 // timeline is a computed plan.
 type timeline struct {
 	plan     *plan.Plan
+	pacer    *plan.Device // nil: none
 	log      *event.Log
-	record   *lead.Record
+	record   *lead.Record // nil for a strip too long to have leads
+	drawn    *lead.Record // the same, with what a press on a wave selects
 	report   *measure.Report
 	diagrams map[ladder.Form]*ladder.Diagram // made when first drawn
 }

@@ -29,6 +29,8 @@ type view struct {
 		MMPerMV float64  `json:"mm_per_mv"`
 		Leads   []string `json:"leads"`
 		Ladder  string   `json:"ladder"`
+
+		NoDevice bool `json:"no_device"` // leave the device's lane out
 	} `json:"view"`
 	Selected event.ID `json:"selected"`
 }
@@ -49,7 +51,7 @@ func (t *timeline) scene(q *view) ([]byte, []float32) {
 	if q.View.Ladder == "full" {
 		form, margin = ladder.Full, marginFull
 	}
-	in := scene.Input{Log: t.log, Record: t.record, Diagram: t.diagram(form)}
+	in := scene.Input{Log: t.log, Record: t.drawn, Diagram: t.diagram(form)}
 	o := t.options(q)
 	o.Margin = margin
 	o.LadderMM = ladderHeight(in, o, q.View.Height)
@@ -86,7 +88,7 @@ func (t *timeline) options(q *view) scene.Options {
 	}
 	room := math.Max(v.Width, 20)
 	to := min(from.Add(tick.MS(math.Min(room/speed*1000, 1e9))), t.log.Span)
-	o := scene.Options{From: from, To: to, MMPerS: speed, MMPerMV: v.MMPerMV, FontMM: fontMM, ColumnMM: 0.13, Grid: true}
+	o := scene.Options{From: from, To: to, MMPerS: speed, MMPerMV: v.MMPerMV, FontMM: fontMM, ColumnMM: 0.13, Grid: true, NoDevice: v.NoDevice}
 	for _, name := range v.Leads {
 		if l, ok := lead.Parse(name); ok {
 			o.Leads = append(o.Leads, l)

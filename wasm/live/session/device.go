@@ -1,0 +1,151 @@
+package session
+
+import (
+	"fmt"
+
+	"escapement/engine/measure"
+	"escapement/engine/pacer"
+	"escapement/engine/tick"
+)
+
+// device is what the page shows of a pacemaker: the sums that follow from its
+// settings, and what it did on the strip.
+type device struct {
+	Warnings   []string   `json:"warnings"` // about the settings; the strip stands all the same
+	Arithmetic []sum      `json:"arithmetic"`
+	Counted    []number   `json:"counted"`
+	Intervals  []interval `json:"intervals"`
+}
+
+// sum is a number that follows from settings, with how it was reached.
+type sum struct {
+	Name    string `json:"name"`
+	Label   string `json:"label"`
+	Text    string `json:"text"`
+	Unit    string `json:"unit"`
+	Formula string `json:"formula"`
+	Numbers string `json:"numbers"`
+	Source  string `json:"source"`
+}
+
+type interval struct {
+	Name    string   `json:"name"`
+	Count   int      `json:"count"`
+	Median  *float64 `json:"median_ms"`
+	Least   float64  `json:"least_ms"`
+	Longest float64  `json:"longest_ms"`
+}
+
+// device is nil where the plan has no pacemaker.
+func (t *timeline) device() *device {
+	if t.pacer == nil {
+		return nil
+	}
+	s, heart := &t.pacer.Settings, t.plan.Patient()
+	if pr := t.report.Summary.PR; pr != nil {
+		heart.PR = tick.MS(*pr)
+	}
+	d := &device{Warnings: []string{}, Arithmetic: []sum{}, Counted: []number{}, Intervals: []interval{}}
+	for _, w := range pacer.Warnings(s, heart) {
+		d.Warnings = append(d.Warnings, upper(w.Text)+".")
+	}
+	d.put(pacer.Arithmetic(s, heart), "")
+	t.leads(d)
+	if r := t.report.Device; r != nil {
+		d.Counted = counted(r)
+		for _, i := range r.Intervals {
+			d.Intervals = append(d.Intervals, interval{i.Name, i.Count, i.Median, i.Least, i.Longest})
+		}
+	}
+	return d
+}
+
+func (d *device) put(vs []pacer.Value, of string) {
+	for _, v := range vs {
+		d.Arithmetic = append(d.Arithmetic, sum{of + v.Name, v.Label, v.Text, v.Unit, v.Formula, v.Numbers, v.Source})
+	}
+}
+
+// leads adds the threshold and the margin of every lead that the mode stimulates by,
+// and warns of one that cannot capture, or whose channel hears nothing.
+func (t *timeline) leads(d *device) {
+	m := t.pacer.Settings.Mode
+	for _, l := range []struct {
+		name, label           string
+		lead                  pacer.Lead
+		stimulates, listensTo bool
+	}{
+		{"atrial", "atrial", pacer.RA, m.PacesA(), m.SensesA()},
+		{"ventricular", "ventricular", pacer.RV, m.PacesV(), m.SensesV()},
+		{"left", "left ventricular", pacer.LV, m.Multisite == 'V', false},
+	} {
+		at := "pacemaker.leads." + l.name + "."
+		volt := func(name string) float64 { return t.plan.Or(at+name, 0) }
+		if own := &t.pacer.Leads[l.lead]; l.stimulates {
+			s := pacer.Strength{Rheobase: volt("rheobase_v"), Chronaxie: tick.MS(volt("chronaxie_ms"))}
+			vs := s.Values(own.Amplitude, tick.MS(volt("width_ms")))
+			for i := range vs {
+				vs[i].Label = l.label + " " + vs[i].Label
+			}
+			if own.Threshold > 0 { // without one every stimulus captures, and there is no margin
+				d.put(vs, l.name+"_")
+			}
+			if !own.Captures() {
+				d.Warnings = append(d.Warnings, fmt.Sprintf("The %s output of %.2f V is below the threshold of %.2f V: no stimulus captures.", l.label, own.Amplitude, own.Threshold))
+			}
+		}
+		if l.listensTo && !t.pacer.Leads[l.lead].Senses {
+			d.Warnings = append(d.Warnings, fmt.Sprintf("The %s signal of %g mV is below the sensitivity of %g mV: the heart is not sensed there.", l.label, volt("signal_mv"), volt("sensitivity_mv")))
+		}
+	}
+}
+
+// counted lists what the device did. What never came, and no one would miss, is left
+// out.
+func counted(r *measure.Device) []number {
+	whole := func(n int) *float64 {
+		v := float64(n)
+		return &v
+	}
+	some := func(n int) *float64 {
+		if n == 0 {
+			return nil
+		}
+		return whole(n)
+	}
+	list := []number{
+		{Name: "atrial_paced_percent", Label: "atrium paced", Value: r.AtrialPaced, Unit: "%", Help: "AP of AS and AP."},
+		{Name: "ventricular_paced_percent", Label: "ventricle paced", Value: r.VentricularPaced, Unit: "%", Help: "VP of VS and VP."},
+		{Name: "av_synchronous_percent", Label: "AV synchronous", Value: r.Synchronous, Unit: "%", Help: "QRS complexes with a P at most 300 ms before them (Circulation 2024;150:439)."},
+		{Name: "as_count", Label: "AS, P sensed", Value: whole(r.AS), Help: "Atrial signals that the timing used."},
+		{Name: "ap_count", Label: "AP, atrial stimuli", Value: whole(r.AP)},
+		{Name: "vs_count", Label: "VS, R sensed", Value: whole(r.VS), Help: "Ventricular signals that the timing used."},
+		{Name: "vp_count", Label: "VP, ventricular stimuli", Value: whole(r.VP)},
+		{Name: "longest_without_qrs_ms", Label: "longest without QRS", Value: &r.Longest, Unit: "ms", Help: "Between QRS complexes, or to an end of the strip."},
+		{Name: "atrial_refractory_count", Label: "atrial, refractory", Value: some(r.RefractoryA), Help: "Atrial signals in refractory periods."},
+		{Name: "ventricular_refractory_count", Label: "ventricular, refractory", Value: some(r.RefractoryV), Help: "Ventricular signals in refractory periods."},
+		{Name: "atrial_blanked_count", Label: "atrial, not heard", Value: some(r.BlankedA), Help: "Atrial depolarisations in blanking periods."},
+		{Name: "ventricular_blanked_count", Label: "ventricular, not heard", Value: some(r.BlankedV), Help: "Ventricular depolarisations in blanking periods."},
+		{Name: "atrial_no_capture_count", Label: "AP without capture", Value: some(r.LostA)},
+		{Name: "ventricular_no_capture_count", Label: "VP without capture", Value: some(r.LostV)},
+		{Name: "fusion_count", Label: "fusion beats", Value: some(r.Fusion)},
+		{Name: "pseudofusion_count", Label: "pseudofusion beats", Value: some(r.Pseudofusion)},
+		{Name: "safety_stimulus_count", Label: "safety stimuli", Value: some(r.Safety)},
+		{Name: "noise_count", Label: "noise", Value: some(r.Noise)},
+		{Name: "mode_change_count", Label: "mode changes", Value: some(r.ModeChanges)},
+	}
+	out := []number{}
+	for _, n := range list {
+		if n.Value != nil {
+			out = append(out, n)
+		}
+	}
+	return out
+}
+
+func upper(s string) string {
+	if s == "" || s[0] < 'a' || s[0] > 'z' {
+		return s
+	}
+	return string(s[0]-'a'+'A') + s[1:]
+}
