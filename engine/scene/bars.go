@@ -91,37 +91,3 @@ func (v *watch) timer(w *ladder.Window, row Box) {
 		v.add(Mark{Shape: Line, Class: Held, X: x0, Y: y, X2: x1, Y2: y, Event: w.HeldBy})
 	}
 }
-
-// caption writes the text of a bar: inside it; over a timer it may stand out at both
-// ends where its neighbours leave room.
-func (v *watch) caption(w *ladder.Window, texts []string) {
-	x0, x1, _ := v.visible(w.T0, max(w.T1, w.Held))
-	row, h := v.rows[w.Row], WindowText.height(v.o.FontMM)
-	whole := w.T0 >= v.o.From && max(w.T1, w.Held) <= v.o.To
-	for _, text := range texts {
-		m := Mark{Shape: Text, Class: WindowText, Text: text, Anchor: Middle, Event: w.Event, Y: (row.Y0+row.Y1)/2 + 0.34*h}
-		width := WindowText.Width(text, v.o.FontMM)
-		least, parts := width+1.2, []float64{0.5, 0.6, 0.7, 0.8}
-		if w.Hearing == ladder.Timer {
-			m.Y, parts = row.Y1-1.6, parts[:1]
-			if whole {
-				least = 0.4 * width
-			}
-		}
-		if x1-x0 < least {
-			continue
-		}
-		for _, part := range parts {
-			m.X = x0 + part*(x1-x0)
-			b := v.TextBox(&m)
-			if w.Hearing != ladder.Timer && (b.X0 < x0+0.4 || b.X1 > x1-0.4) || b.X0 < v.Axis.X0 || b.X1 > v.right+pad {
-				continue
-			}
-			if v.room.free(b) {
-				v.room.box(b)
-				v.over = append(v.over, m)
-				return
-			}
-		}
-	}
-}

@@ -126,7 +126,7 @@ func TestStretchedDelayKeepsItsNumber(t *testing.T) {
 		mm   float64
 		want string
 		name bool
-	}{{80, "150+80", true}, {25, "150+80", false}, {12, "230", false}} {
+	}{{80, "150+80", true}, {25, "150+80", false}, {10, "230", false}} {
 		s, _ := deviceStrip(t, "device_upper_rate.log", Options{MMPerS: c.mm})
 		number, name := false, false
 		for _, m := range s.Marks {

@@ -70,7 +70,7 @@ func (s *sheet) deviceSigns() []sign {
 		{"deaf", func(x, y float64) {
 			bar(x, y)
 			for d := 0.0; d < 5; d += hatchMM {
-				if l, ok := clip(Box{x + d, y - 1.1, x + d - 2.2, y + 1.1}, Box{x, y - 1.1, x + 3.2, y + 1.1}); ok&& l.X0-l.X1 > 0.05 {
+				if l, ok := clip(Box{x + d, y - 1.1, x + d - 2.2, y + 1.1}, Box{x, y - 1.1, x + 3.2, y + 1.1}); ok && l.X0-l.X1 > 0.05 {
 					s.sample(Line, Hatch, l.X0, l.Y0, l.X1, l.Y1, 0)
 				}
 			}
