@@ -24,7 +24,6 @@ import (
 	"html"
 	"image/png"
 	"io"
-	"regexp"
 	"strings"
 
 	"github.com/tdewolff/canvas"
@@ -61,10 +60,6 @@ func SVG(w io.Writer, s *scene.Scene) error {
 	return err
 }
 
-// created is the date that canvas puts into a PDF: it would make every print of
-// the same drawing differ.
-var created = regexp.MustCompile(`D:\d{14}(Z|[+-]\d{4})`)
-
 // PDF writes the scene as a PDF file with one page of the scene's size.
 func PDF(w io.Writer, s *scene.Scene) error {
 	if err := check(s); err != nil {
@@ -81,11 +76,11 @@ func PDF(w io.Writer, s *scene.Scene) error {
 	if err := r.Close(); err != nil {
 		return fmt.Errorf("press: %w", err)
 	}
-	// Same length, so that the offsets in the file stay right.
-	out := created.ReplaceAllFunc(b.Bytes(), func(date []byte) []byte {
-		return append([]byte("D:20000101000000"), date[len("D:20000101000000"):]...)
-	})
-	_, err := w.Write(out)
+	out, err := steady(b.Bytes())
+	if err != nil {
+		return err
+	}
+	_, err = w.Write(out)
 	return err
 }
 
