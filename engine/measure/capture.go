@@ -30,7 +30,7 @@ func (f *finder) captures() {
 		}
 		if n := len(functional); n > 0 {
 			f.add(orderFault, Finding{
-				Slug: "functional_non_capture", Evidence: functional, Count: n,
+				Slug: "functional_non_capture", Channel: string(rune(ch)), Evidence: functional, Count: n,
 				Text:   fmt.Sprintf("%s refractory tissue, %s ms too soon (median), and does not capture: consistent with functional non-capture.", plural(n, articled(ch)+" stimulus meets", chamberOf(ch)+" stimuli meet"), whole(medianDur(missed))),
 				Rivals: []string{"loss of capture by threshold or lead"},
 				clause: fmt.Sprintf("%s functional non-capture (%s)", chamberOf(ch), times(n)),
@@ -41,7 +41,7 @@ func (f *finder) captures() {
 				why = "cause not on the record"
 			}
 			f.add(orderFault, Finding{
-				Slug: "loss_of_capture", Evidence: lost, Count: n,
+				Slug: "loss_of_capture", Channel: string(rune(ch)), Evidence: lost, Count: n,
 				Text:   fmt.Sprintf("%s without capture into excitable tissue (%s): consistent with loss of %s capture.", plural(n, chamberOf(ch)+" stimulus", chamberOf(ch)+" stimuli"), why, chamberOf(ch)),
 				clause: fmt.Sprintf("loss of %s capture (%s)", chamberOf(ch), times(n)),
 			})

@@ -204,7 +204,8 @@ func TestDeviceFindings(t *testing.T) {
 		{"undersensing", `"span_ms":9000,"heart":{},"pacemaker":{"mode":"VVI"},"interventions":[{"at_ms":3000,"do":"undersense","channel":"V","for_ms":3000}]`, "undersensing", "ventricular undersensing"},
 		{"functional", `"span_ms":9000,"heart":{},"pacemaker":{"mode":"VVI"},"interventions":[{"at_ms":3000,"do":"undersense","channel":"V","for_ms":3000}]`, "functional_non_capture", ""},
 		{"noise", `"span_ms":12000,"heart":{` + blockedNode + `},"pacemaker":{"mode":"VVI"},"interventions":[{"at_ms":3000,"do":"signal","channel":"V","cycle_ms":400,"count":6}]`, "oversensing", "oversensing of interference or noise (6 times)"},
-		{"reversion", `"span_ms":12000,"heart":{` + blockedNode + `},"pacemaker":{"mode":"VVI","noise":{"window_ms":100}},"interventions":[{"at_ms":3000,"do":"signal","channel":"V","cycle_ms":80,"count":30}]`, "noise_reversion", "stimuli came all the same"},
+		{"reversion", `"span_ms":12000,"heart":{` + blockedNode + `},"pacemaker":{"mode":"VVI","noise":{"window_ms":100}},"interventions":[{"at_ms":3000,"do":"signal","channel":"V","cycle_ms":80,"count":30}]`, "noise_reversion", "stimuli during it all the same"},
+		{"noise inhibits", `"span_ms":12000,"heart":{` + blockedNode + `},"pacemaker":{"mode":"VVI","noise":{"window_ms":100,"inhibits":true}},"interventions":[{"at_ms":3000,"do":"signal","channel":"V","cycle_ms":80,"count":30}]`, "noise_reversion", "no stimulus during it"},
 		{"safety", `"span_ms":7000,"heart":{` + slow + `},"pacemaker":{"mode":"DDD","paced_av_ms":180,"pavb_ms":40},"interventions":[{"at_ms":1400,"do":"signal","channel":"V"}]`, "safety_stimulus", "safety stimulus (once)"},
 		{"crosstalk", `"span_ms":7000,"heart":{` + slow + `,` + blockedNode + `},"pacemaker":{"mode":"DDD","safety_stimulus":false},"interventions":[{"at_ms":1350,"do":"signal","channel":"V"}]`, "crosstalk_inhibition", "crosstalk inhibition (once)"},
 		{"fusion", `"span_ms":9000,"heart":{},"pacemaker":{"mode":"DDD"}`, "fusion_beat", "fusion beats"},
@@ -240,6 +241,7 @@ func TestConductionNeedsOpportunity(t *testing.T) {
 		{"healthy, 2:1", `"span_ms":20000,"heart":{` + sinusEvery("158") + `},"pacemaker":{"mode":"DDD","sensed_av_ms":80,"pvarp_ms":320}`, ""},
 		{"block, VVI", `"span_ms":20000,"heart":{` + blockedNode + `},"pacemaker":{"mode":"VVI"}`, "complete_av_block"},
 		{"block, stimuli without capture", `"span_ms":9000,"heart":{` + blockedNode + `},"pacemaker":{"mode":"DDD"},"interventions":[{"at_ms":3000,"do":"lose_capture","channel":"V","for_ms":3000}]`, "complete_av_block"},
+		{"healthy, stimuli among sinus beats", `"span_ms":14000,"heart":{` + sinusEvery("96") + `},"pacemaker":{"mode":"DDD","magnet":{"mode":"DOO","rate_bpm":80,"av_ms":100,"from_ms":4000,"to_ms":9000}}`, ""},
 		{"healthy, VVI faster than the sinus", `"span_ms":20000,"heart":{"av_node":{"fast":{"ah_ms":80,"va_ms":null}}},"pacemaker":{"mode":"VVI","lower_rate_bpm":80}`, ""},
 	} {
 		_, r := paced(t, c.plan)

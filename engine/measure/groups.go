@@ -24,7 +24,7 @@ func (s *strip) token(i int) token {
 		return apart // it met a beat that the device had begun
 	case w.to >= 0:
 		return conducted
-	case w.interfered || s.pacedOver(i):
+	case w.interfered || s.pacedOver(i) || s.byDevice(w.id) && early(s.pp(i), s.pp(i-1)):
 		return apart
 	case len(w.blocks) == 0 && s.log.Span.Sub(w.t) < unsettled:
 		return apart

@@ -137,6 +137,8 @@ func (f *finder) loopEnd(t turn) (string, event.ID) {
 	}
 	s := f.dev.at(f.dev.as[retro])
 	switch {
+	case f.log.Span.Sub(last.e.T) < tick.Second && (s == nil || s.e.Use == event.Tracked):
+		return "to the end of the strip", 0
 	case s == nil:
 		return "ended by a P that was not sensed", f.p[retro].id
 	case s.e.Use == event.Refractory || s.e.Use == event.Blanked:
@@ -144,8 +146,6 @@ func (f *finder) loopEnd(t turn) (string, event.ID) {
 			return fmt.Sprintf("ended by a PVARP of %s ms (%s)", whole(w.Until.Sub(w.T)), w.Why), s.e.ID
 		}
 		return "ended by a P in PVARP", s.e.ID
-	case f.log.Span.Sub(last.e.T) < tick.Second:
-		return "to the end of the strip", 0
 	}
 	return "ended by another ventricular event", s.e.ID
 }

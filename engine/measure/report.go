@@ -119,6 +119,8 @@ type Finding struct {
 	Ratio    string     `json:"ratio,omitempty"` // P:QRS of the groups, "4:3"
 	PRs      []float64  `json:"pr_list_ms,omitempty"`
 
+	Channel string `json:"channel,omitempty"` // A or V, of a device's fault in one chamber
+
 	Level   string   `json:"level,omitempty"`         // where, as the model knows it: nodal, infranodal
 	Surface string   `json:"surface_level,omitempty"` // where, as the surface alone can tell
 	Note    string   `json:"surface_note,omitempty"`  // why the surface tells that much

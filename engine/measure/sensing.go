@@ -73,7 +73,7 @@ func (f *finder) undersensed(c int, ch byte) {
 		return
 	}
 	f.add(orderFault, Finding{
-		Slug: "undersensing", Evidence: ids, Count: n,
+		Slug: "undersensing", Channel: string(rune(ch)), Evidence: ids, Count: n,
 		Text:   fmt.Sprintf("%s after %s beat that the device had no signal of: consistent with %s undersensing.", plural(n, chamberOf(ch)+" stimulus comes", chamberOf(ch)+" stimuli come"), articled(ch), chamberOf(ch)),
 		Rivals: []string{"asynchronous pacing, by mode or by magnet"},
 		clause: fmt.Sprintf("%s undersensing (%s)", chamberOf(ch), times(n)),
@@ -139,7 +139,7 @@ func (f *finder) oversensed(ch byte) {
 		effect = "are followed by ventricular stimuli"
 	}
 	f.add(orderFault, Finding{
-		Slug: "oversensing", Evidence: ids, Count: n,
+		Slug: "oversensing", Channel: string(rune(ch)), Evidence: ids, Count: n,
 		Text:   fmt.Sprintf("%s (%s) taken for %s beats %s: consistent with %s oversensing.", plural(n, "signal that no beat of the chamber caused", "signals that no beat of the chamber caused"), what, chamberOf(ch), effect, chamberOf(ch)),
 		Rivals: []string{"failure of output, if the signals are not seen"},
 		clause: fmt.Sprintf("%s oversensing of %s (%s)", chamberOf(ch), what, times(n)),
@@ -247,22 +247,23 @@ func (f *finder) noiseReversion() {
 	if n == 0 {
 		return
 	}
-	what := "no stimulus came between them"
+	what, clause := "no stimulus came between them", "noise, no stimulus during it"
 	if paced > 0 {
 		what = plural(paced, "stimulus came", "stimuli came") + " all the same"
+		clause = "noise, " + plural(paced, "stimulus", "stimuli") + " during it all the same"
 	}
 	f.add(orderFault, Finding{
 		Slug: "noise_reversion", Evidence: ids, Count: n,
 		Text:   fmt.Sprintf("%s close upon each other fell in the noise window, and %s: consistent with the device's response to noise.", plural(n, "signal", "signals"), what),
-		clause: fmt.Sprintf("noise, %s", what),
+		clause: clause,
 	})
 }
 
-// inNoise tells whether a noise window runs at a stimulus, or ends with it.
+// inNoise tells whether a noise window runs at a stimulus, or is ended by it.
 func (f *finder) inNoise(e *event.Event) bool {
 	i := sort.Search(len(f.dev.windows), func(i int) bool { return f.dev.windows[i].T > e.T })
 	for i--; i >= 0 && e.T.Sub(f.dev.windows[i].T) < tick.Second; i-- {
-		if w := f.dev.windows[i]; w.Until >= e.T && w.T < e.T && (w.Field == "noise" && e.Channel == 'V' || w.Field == "atrial_noise" && e.Channel == 'A') {
+		if w := f.dev.windows[i]; (w.Until > e.T || w.By >= e.ID) && w.ID < e.ID && (w.Field == "noise" && e.Channel == 'V' || w.Field == "atrial_noise" && e.Channel == 'A') {
 			return true
 		}
 	}
