@@ -394,4 +394,3 @@ func BenchmarkTenSecondsDDD(b *testing.B) {
 	b.ReportMetric(float64(b.N)/seconds, "runs/s")
 	b.ReportMetric(float64(events)/seconds, "events/s")
 }
-
