@@ -52,7 +52,7 @@ type Window struct {
 	HeldBy   event.ID  // the stimulus or signal at Held
 	Why      string    // what changed its usual length, or empty
 	Hits     []Hit     // signals that it decided about
-	Differs  bool      // a timer that ran out, longer or shorter than the one before it
+	Differs  bool      // its usual length was changed, or it is a timer that ran out later or sooner than the one before it
 	Priority int       // the higher, the later its text is left out for want of room
 }
 

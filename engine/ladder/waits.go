@@ -70,10 +70,14 @@ func (w *waiter) window(e *event.Event) {
 	}
 }
 
-// rank raises the text of a timer that differs from the one before it of its name,
-// and lowers that of one that did not run out.
+// rank raises the text of a window that something changed and of a timer that differs
+// from the one before it of its name, and lowers that of one that did not run out.
 func (w *waiter) rank(b *Window) {
 	if b.Hearing != Timer {
+		if b.Why != "" {
+			b.Differs = true
+			b.Priority += changedBonus
+		}
 		return
 	}
 	if b.Ended || b.Cut {

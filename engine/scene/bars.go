@@ -13,6 +13,7 @@ func (v *watch) window(w *ladder.Window) {
 		return
 	}
 	row := v.rows[w.Row]
+	v.drawn = append(v.drawn, w)
 	if texts := words(w); len(texts) > 0 {
 		v.texts = append(v.texts, caption{w: w, texts: texts})
 	}

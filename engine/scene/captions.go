@@ -70,6 +70,8 @@ func words(w *ladder.Window) []string {
 		return nil // no text on hatching
 	case w.Hearing != ladder.Timer && (w.Ended || w.Cut || w.Name == "av_delay"):
 		return []string{w.Label}
+	case w.Hearing != ladder.Timer && w.Why != "":
+		return []string{w.Label + " " + value + " " + w.Why, w.Label + " " + value, value}
 	case w.Hearing != ladder.Timer:
 		return []string{w.Label + " " + value, w.Label}
 	case w.Cut, w.Ended && w.Name != "av_delay":
@@ -85,35 +87,54 @@ func words(w *ladder.Window) []string {
 }
 
 // caption writes the text of a bar: inside it; over a timer it may stand out at both
-// ends where its neighbours leave room.
+// ends where its neighbours leave room; that of a window of unusual length may follow
+// its bar.
 func (v *watch) caption(w *ladder.Window, texts []string) {
 	x0, x1, _ := v.visible(w.T0, max(w.T1, w.Held))
 	row, h := v.rows[w.Row], WindowText.height(v.o.FontMM)
-	whole := w.T0 >= v.o.From && max(w.T1, w.Held) <= v.o.To
 	for _, text := range texts {
-		m := Mark{Shape: Text, Class: WindowText, Text: text, Anchor: Middle, Event: w.Event, Y: (row.Y0+row.Y1)/2 + 0.34*h}
+		m := Mark{Shape: Text, Class: WindowText, X: (x0 + x1) / 2, Y: (row.Y0+row.Y1)/2 + 0.34*h, Text: text, Anchor: Middle, Event: w.Event}
 		width := WindowText.Width(text, v.o.FontMM)
-		least, parts := width+1.2, []float64{0.5, 0.6, 0.7, 0.8}
 		if w.Hearing == ladder.Timer {
-			m.Y, parts = row.Y1-1.6, parts[:1]
-			if whole {
+			m.Y = row.Y1 - 1.6
+			least := width + 1.2
+			if w.T0 >= v.o.From && max(w.T1, w.Held) <= v.o.To {
 				least = 0.4 * width
 			}
-		}
-		if x1-x0 < least {
+			if x1-x0 >= least && v.write(m, v.Axis.X0, v.right+pad) {
+				return
+			}
 			continue
 		}
-		for _, part := range parts {
+		for _, part := range [...]float64{0.5, 0.6, 0.7, 0.8} {
 			m.X = x0 + part*(x1-x0)
-			b := v.TextBox(&m)
-			if w.Hearing != ladder.Timer && (b.X0 < x0+0.4 || b.X1 > x1-0.4) || b.X0 < v.Axis.X0 || b.X1 > v.right+pad {
-				continue
-			}
-			if v.room.free(b) {
-				v.room.box(b)
-				v.over = append(v.over, m)
+			if v.write(m, x0+0.6, x1-0.6) {
 				return
 			}
 		}
+		if m.X, m.Anchor = x1+0.6, Start; w.Why != "" && w.T1 <= v.o.To && v.empty(w.Row, x1, x1+width+1.2) && v.write(m, x1, v.right+pad) {
+			return
+		}
 	}
+}
+
+// write puts a text down if it lies between two places and is free.
+func (v *watch) write(m Mark, from, to float64) bool {
+	b := v.TextBox(&m)
+	if b.X0 < from || b.X1 > to || !v.room.free(b) {
+		return false
+	}
+	v.room.box(b)
+	v.over = append(v.over, m)
+	return true
+}
+
+// empty tells whether no bar of a row lies between two places.
+func (v *watch) empty(row int, from, to float64) bool {
+	for _, w := range v.drawn {
+		if w.Row == row && v.Axis.X(w.T0) < to && v.Axis.X(w.T1) > from {
+			return false
+		}
+	}
+	return true
 }

@@ -22,6 +22,7 @@ type watch struct {
 	line  float64   // y of the line between the chambers' marks
 	rows  []Box     // of the rows of bars, over the width of the window
 	texts []caption // to be placed by priority
+	drawn []*ladder.Window
 }
 
 // caption is the text of a bar. It is left out where it has no room.

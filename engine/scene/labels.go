@@ -47,7 +47,7 @@ func (r *rungs) labels() {
 	r.unname()
 }
 
-// thin takes back the routine numbers of every beat (PR, AH, HV, node) where
+// thin takes back the routine numbers of every beat (PR, AH, HV, HA, node) where
 // fewer than three in five had room: the few that are left by chance would say
 // less than none.
 func (r *rungs) thin(all []label) {
@@ -65,7 +65,7 @@ func (r *rungs) thin(all []label) {
 	for i := range all {
 		l := &all[i]
 		switch l.measure {
-		case ladder.PR, ladder.AH, ladder.HV, ladder.NodeIn:
+		case ladder.PR, ladder.AH, ladder.HV, ladder.NodeIn, ladder.HA, ladder.NodeUp:
 			if 5*placed[l.measure] < 3*tried[l.measure] {
 				continue
 			}

@@ -27,18 +27,18 @@ func (v *watch) markers() {
 	}
 }
 
-// rankOf gives the order in which marks are named: what is out of the ordinary and
-// what the device did first.
+// rankOf gives the order in which marks are named: what the device did and what is
+// out of the ordinary first, words where there is room left.
 func rankOf(m *ladder.Marker) int {
 	switch {
 	case m.Channel == 0:
-		return 0
-	case m.Paced || m.Refractory:
-		return 1
-	case len(m.Label) == 2:
 		return 2
+	case m.Paced || m.Refractory:
+		return 0
+	case len(m.Label) == 2:
+		return 1
 	}
-	return 3 // a word that may come many times, as noise does
+	return 3 // noise, which comes many times
 }
 
 const ranks = 4
@@ -63,18 +63,27 @@ func (v *watch) tick(m *ladder.Marker) {
 	}
 }
 
-// label names a mark over its end, a little aside where another stands too near.
+// label names a mark over its end, a little aside where another stands too near. A
+// change of mode belongs to no chamber and takes the side that is free.
 func (v *watch) label(m *ladder.Marker) {
-	h, x := MarkerText.height(v.o.FontMM), v.Axis.X(m.T)
-	t := Mark{Shape: Text, Class: MarkerText, X: x, Y: v.line - tickMM - 0.3*h, Text: m.Label, Anchor: Middle, Event: m.Event}
-	if m.Channel == 'V' {
-		t.Y = v.line + tickMM + 0.9*h
+	h, x, w := MarkerText.height(v.o.FontMM), v.Axis.X(m.T), MarkerText.Width(m.Label, v.o.FontMM)
+	above, below := v.line-tickMM-0.3*h, v.line+tickMM+0.9*h
+	sides, shifts := []float64{above}, []float64{0, 0.25, -0.25}
+	switch {
+	case m.Channel == 'V':
+		sides[0] = below
+	case m.Channel == 0:
+		shifts = append(shifts, 0.56, -0.56)
+		if v.has('V') {
+			sides = append(sides, below)
+		}
 	}
-	w := MarkerText.Width(m.Label, v.o.FontMM)
-	for _, shift := range [...]float64{0, 0.25, -0.25} {
-		t.X = x + shift*w
-		if b := v.TextBox(&t); b.X0 >= v.Axis.X0-w/2 && b.X1 <= v.right+w/2 && v.clear(&t, 0.3) && v.place(t) {
-			return
+	for _, y := range sides {
+		for _, shift := range shifts {
+			t := Mark{Shape: Text, Class: MarkerText, X: x + shift*w, Y: y, Text: m.Label, Anchor: Middle, Event: m.Event}
+			if b := v.TextBox(&t); b.X0 >= v.Axis.X0-w/2 && b.X1 <= v.right+w/2 && v.clear(&t, 0.3) && v.place(t) {
+				return
+			}
 		}
 	}
 }
