@@ -58,6 +58,24 @@ func BenchmarkTenSeconds(b *testing.B) {
 	b.ReportMetric(float64(b.N)/b.Elapsed().Seconds(), "runs/s")
 }
 
+// BenchmarkTenSecondsDDD runs ten seconds of a device in an endless loop by retrograde
+// conduction, with the plan compiled once. runs/s is what a search of settings does.
+func BenchmarkTenSecondsDDD(b *testing.B) {
+	prog := program(b, 10000, sinusAt(500, 1100)+","+conductsBack(300, 380), `"mode":"DDD","lower_rate_bpm":50`, stimulus(3300, "rv_apex"))
+	events := 0
+	b.ReportAllocs()
+	for b.Loop() {
+		l, err := Play(prog)
+		if err != nil {
+			b.Fatal(err)
+		}
+		events += len(l.Events)
+	}
+	seconds := b.Elapsed().Seconds()
+	b.ReportMetric(float64(b.N)/seconds, "runs/s")
+	b.ReportMetric(float64(events)/seconds, "events/s")
+}
+
 // BenchmarkReference is the fixed-step simulation on the same strip: what the
 // queue saves.
 func BenchmarkReference(b *testing.B) {

@@ -254,7 +254,7 @@ func (d dice) clinical() *plan.Program {
 			OverdriveGain: d.either(0.5, 0, d.Float64()), OverdriveTauS: d.between(0.1, 10), Exit: direct(20, 120)},
 		AtriumERP: cycled(d.between(120, 300), heart.SlopeAtrium), VentricERP: cycled(d.between(150, 320), heart.SlopeVentricle),
 		Fast: heart.NodeNumbers{AHMS: d.between(55, 160), ERPMS: d.between(220, 380), WCLMS: d.between(290, 500), VAMS: d.between(150, 330),
-			NoDown: d.chance(0.1), NoUp: d.chance(0.3), VADefault: d.chance(0.5), Inner: d.between(0.4, 1), UpReach: d.either(0.3, 0, d.Float64()), Drop: d.rarely()},
+			NoDown: d.chance(0.1), NoUp: d.chance(0.3), VADefault: d.chance(0.5), Inner: d.between(0.4, 1), UpReach: d.either(0.3, 0, d.Float64()), DownReach: d.either(0.3, 0, d.Float64()), Drop: d.rarely()},
 		Slow:      heart.NodeNumbers{Absent: d.chance(0.5), ByCurve: true, Direct: direct(100, 300)},
 		AHCycleMS: 800, ERPCycleMS: 600,
 		Lower: heart.Lower{Direct: direct(5, 20)}, HVMS: d.between(35, 80),
