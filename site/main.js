@@ -85,6 +85,7 @@ async function compute() {
     selected: selected <= answer.events ? selected : 0,
   });
   if (selected) explain();
+  if (view !== asked.view || selected !== asked.selected) layout(); // it was drawn for what was asked
 }
 
 async function layout() {

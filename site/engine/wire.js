@@ -5,11 +5,13 @@
  * @property {string} path
  * @property {string} label
  * @property {string} unit
- * @property {"number" | "switch" | "choice" | "pattern" | "list" | "any" | "group"} kind
+ * @property {"number" | "switch" | "choice" | "pattern" | "list" | "mode" | "any" | "group"} kind
  * @property {number} min
  * @property {number} max
  * @property {number | null} default null where it is left out
  * @property {{low: number, high: number} | null} normal
+ * @property {string} [word] default of a choice or a mode
+ * @property {boolean} [on] default of a switch
  * @property {boolean} [nullable]
  * @property {string} [null] what null means
  * @property {boolean} [is_null] null is the default
@@ -49,6 +51,7 @@
  * @property {Field[]} fields
  * @property {Preset[]} presets
  * @property {SiteName[]} sites
+ * @property {string[]} modes of pacing, without the letters for rate modulation and multisite pacing
  * @property {{light: Styles, dark: Styles}} styles
  * @property {{plain: number, full: number}} margins_mm what a scene needs beside its time axis
  */
@@ -61,11 +64,25 @@
  * @property {number[]} atrium milliseconds at which a wave in the atria began
  * @property {number[]} ventricle
  * @property {number[]} blocks
- * @property {number[]} stimuli
+ * @property {number[]} stimuli of the plan's interventions
+ * @property {number[]} paced_atrium stimuli of the device
+ * @property {number[]} paced_ventricle
+ * @property {number[]} lost those of the device that did not capture
  */
 
 /** @typedef {{name: string, label: string, value: number | null, unit: string, normal: [number, number] | null, help: string, source: string}} Measured */
 /** @typedef {{text: string, events: number[], t_ms: number, note: string, rivals: string[]}} Finding */
+
+/** @typedef {{name: string, label: string, text: string, unit: string, formula: string, numbers: string, source: string}} Sum */
+/** @typedef {{name: string, count: number, median_ms: number | null, least_ms: number, longest_ms: number}} Interval */
+
+/**
+ * @typedef {object} Device
+ * @property {string[]} warnings about the settings
+ * @property {Sum[]} arithmetic
+ * @property {Measured[]} counted over the strip
+ * @property {Interval[]} intervals
+ */
 
 /**
  * @typedef {object} Answer
@@ -79,6 +96,7 @@
  * @property {number} span_ms
  * @property {string} fingerprint
  * @property {Overview} overview
+ * @property {Device | null} device
  */
 
 /** @typedef {{id: number, t_ms: number, text: string}} Line */

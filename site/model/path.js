@@ -79,6 +79,19 @@ export function drop(plan, path) {
 }
 
 /**
+ * The plan without what stands at a path, but with the object at another one kept,
+ * were it empty: a part that is there, all of it by default.
+ * @param {any} plan
+ * @param {string} path
+ * @param {string} part
+ * @returns {any}
+ */
+export function dropWithin(plan, path, part) {
+  const out = drop(plan, path);
+  return part !== "" && get(plan, part) && !get(out, part) ? put(out, part, {}) : out;
+}
+
+/**
  * @param {any} node
  * @param {(string | number)[]} at
  * @returns {any}

@@ -11,6 +11,8 @@ import { clamp } from "../base/scale.js";
  * @property {number} mm_per_mv gain
  * @property {string[]} leads shown, in the usual order
  * @property {"plain" | "full"} ladder
+ * @property {boolean} ladder_chosen by hand; else it goes by the room there is
+ * @property {boolean} no_device the device's lane is left out
  */
 
 export const SPEEDS = [25, 50];
@@ -22,7 +24,20 @@ const MIN_SPEED = 1;
 const MAX_SPEED = 800;
 
 /** @type {View} */
-export const FIRST_VIEW = { t0_ms: 0, width_mm: 200, height_mm: 140, mm_per_s: 25, mm_per_mv: 10, leads: ["I", "II", "V1", "V6"], ladder: "plain" };
+export const FIRST_VIEW = { t0_ms: 0, width_mm: 200, height_mm: 140, mm_per_s: 25, mm_per_mv: 10, leads: ["I", "II", "V1", "V6"], ladder: "plain", ladder_chosen: false, no_device: false };
+
+/** A sheet as high as this, in CSS pixels, has room for every level of the ladder. */
+const FULL_FROM_PX = 760;
+
+/**
+ * The ladder's form for a sheet of a height.
+ * @param {View} v
+ * @param {number} px
+ */
+export function ladderFor(v, px) {
+  if (v.ladder_chosen) return v.ladder;
+  return px >= FULL_FROM_PX ? "full" : "plain";
+}
 
 /**
  * How much of the strip the view shows, in milliseconds.

@@ -4,6 +4,7 @@
 import { el, fill } from "../base/dom.js";
 import { num, seconds } from "../base/format.js";
 import { reveal } from "../model/view.js";
+import { deviceParts } from "./arithmetic.js";
 import { rangeBar, verdict } from "./range.js";
 
 /**
@@ -27,6 +28,7 @@ export function accountView(root, store) {
   const back = el("button", { type: "button", id: "deselect", onclick: () => store.set({ selected: 0 }) }, "Measured");
   const shut = el("button", { type: "button", class: "drawer-close", onclick: () => store.set({ drawer: "" }) }, "Close");
   const body = el("div", { class: "account-body" });
+  const device = deviceParts();
   root.append(el("div", { class: "part" }, title, back, shut), body);
 
   /** @param {number} id @param {number} t */
@@ -64,6 +66,9 @@ export function accountView(root, store) {
     const note = String(state.plan.note || answer.note || "");
     fill(body,
       note && el("section", { class: "look" }, el("h3", null, "Look for"), el("p", null, note)),
+      answer.device && device.sums(answer.device),
+      answer.device && device.counts(answer.device),
+      answer.device && el("h3", null, "Medians of the strip"),
       el("dl", { class: "numbers" }, answer.measured.filter((m) => m.value !== null).map(row).flat()),
       answer.findings.length > 0 && el("section", null,
         el("h3", null, "Consistent with"),

@@ -76,17 +76,21 @@ export function headView(root, store, presets, open) {
         undo.disabled = !store.canUndo();
         redo.disabled = !store.canRedo();
       }
+      if (changed.has("selected")) warnings.classList.toggle("selected", state.selected !== 0);
       if (changed.has("dark")) say(sheet, state.dark ? "Light" : "Dark");
       if (changed.has("answer") && state.answer) {
         fill(says, state.answer.statement.map(clause));
       }
       if (changed.has("answer") || changed.has("diagnoses")) {
         const wrong = state.diagnoses.length;
+        const doubts = state.answer?.device?.warnings.length ?? 0;
         fill(warnings,
           wrong > 0 && el("li", null,
             state.answer ? "The sheet shows the last values that could be computed: " : "Nothing can be computed: ",
             el("button", { type: "button", class: "link", id: "show-wrong", onclick: open.wrong }, `${count(wrong, "value")} ${wrong === 1 ? "is" : "are"} wrong`), "."),
-          (state.answer?.warnings ?? []).map((w) => el("li", null, w)));
+          (state.answer?.warnings ?? []).map((w) => el("li", null, w)),
+          doubts > 0 && el("li", { class: "doubts" },
+            el("button", { type: "button", class: "link", id: "show-doubts", onclick: () => store.set({ selected: 0, drawer: "account" }) }, `${count(doubts, "warning")} about the device's settings`), "."));
       }
     },
     destroy() {

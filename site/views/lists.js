@@ -20,13 +20,13 @@ import { makeRow } from "./row.js";
  * @param {string} list.at path of the list
  * @param {(item: any) => string} list.title
  * @param {(item: any) => Field[]} list.fields
- * @param {{label: string, make: () => any}[]} list.adds
+ * @param {{label: string, make: () => any, when?: (plan: any) => boolean}[]} list.adds
  * @param {(item: any) => string} list.shape what, if it changes, asks for new rows
  */
 function listView(store, list) {
   const items = el("div", { class: "items" });
-  const node = el("section", { class: "list", "data-list": list.at }, items,
-    el("div", { class: "adds" }, list.adds.map((a) => el("button", { type: "button", class: "add", onclick: () => add(a.make()) }, `+ ${a.label}`))));
+  const adds = list.adds.map((a) => el("button", { type: "button", class: "add", onclick: () => add(a.make()) }, `+ ${a.label}`));
+  const node = el("section", { class: "list", "data-list": list.at }, items, el("div", { class: "adds" }, adds));
   /** @type {Row[]} */
   let rows = [];
   let built = "";
@@ -59,7 +59,7 @@ function listView(store, list) {
   function build(all) {
     rows = [];
     fill(items, all.map((item, i) => {
-      const own = list.fields(item).map((f) => makeRow(store, f, f.path.replace("[]", `[${i}]`)));
+      const own = list.fields(item).map((f) => makeRow(store, f, { path: f.path.replace("[]", `[${i}]`) }));
       rows.push(...own);
       return el("div", { class: "item" },
         el("div", { class: "item-head" }, el("span", null, list.title(item)),
@@ -74,6 +74,9 @@ function listView(store, list) {
     /** @param {State} state */
     update(state) {
       const all = current();
+      list.adds.forEach((a, i) => {
+        adds[i].hidden = a.when !== undefined && !a.when(state.plan);
+      });
       const shape = all.map(list.shape).join("|") + all.length;
       if (shape !== built) {
         built = shape;
@@ -89,8 +92,8 @@ function listView(store, list) {
  * @param {string} prefix
  */
 function itemFields(catalogue, prefix) {
-  const names = Object.fromEntries(catalogue.sites.map((s) => [s.name, s.label]));
-  return catalogue.fields.filter((f) => f.path.startsWith(prefix)).map((f) => (f.kind === "choice" && f.path.endsWith(".site") ? { ...f, names } : f));
+  const names = { ...Object.fromEntries(catalogue.sites.map((s) => [s.name, s.label])), A: "atrium", V: "ventricle" };
+  return catalogue.fields.filter((f) => f.path.startsWith(prefix)).map((f) => (f.kind === "choice" && /[.](site|channel)$/.test(f.path) ? { ...f, names } : f));
 }
 
 /**
@@ -119,6 +122,9 @@ const DEEDS = {
   stimulate: { name: "Premature beat", fields: ["at_ms", "site"] },
   train: { name: "Train", fields: ["at_ms", "site", "cycle_ms", "count", "extras_ms"] },
   set: { name: "Change", fields: ["at_ms", "field", "to", "over_ms"] },
+  lose_capture: { name: "Loss of capture", fields: ["at_ms", "channel", "for_ms"] },
+  undersense: { name: "Undersensing", fields: ["at_ms", "channel", "for_ms"] },
+  signal: { name: "Signals from outside", fields: ["at_ms", "channel", "cycle_ms", "count"] },
 };
 
 /**
@@ -137,6 +143,7 @@ export function interventionsView(store, catalogue) {
     return (deed?.fields ?? ["at_ms", "do"]).flatMap((name) => {
       const f = fields.find((x) => x.path === `interventions[].${name}`);
       if (!f) return [];
+      if (name === "count" && item?.do === "signal") return [{ ...f, label: "signals" }];
       if (name === "field") return [{ ...f, choices: numbers.map((n) => n.path), names }];
       if (name === "to" && target) {
         return [{ ...f, label: "to", unit: target.unit, kind: /** @type {const} */ ("number"), min: target.min, max: target.max, normal: target.normal, default: null, nullable: target.nullable, null: target.null, is_null: false }];
@@ -161,9 +168,15 @@ export function interventionsView(store, catalogue) {
       { label: "premature beat", make: () => ({ at_ms: now(), do: "stimulate", site: "right_atrium" }) },
       { label: "train", make: () => ({ at_ms: now(), do: "train", site: "right_atrium", cycle_ms: 600, count: 8 }) },
       { label: "change", make: () => ({ at_ms: now(), do: "set", field: "heart.sinus.rate_bpm", to: 120 }) },
+      { label: "loss of capture", when: paced, make: () => ({ at_ms: now(), do: "lose_capture", channel: "V", for_ms: 2000 }) },
+      { label: "undersensing", when: paced, make: () => ({ at_ms: now(), do: "undersense", channel: "V", for_ms: 2000 }) },
+      { label: "signals from outside", when: paced, make: () => ({ at_ms: now(), do: "signal", channel: "V", cycle_ms: 100, count: 10 }) },
     ],
   });
 }
+
+/** Whether a plan has a device, for which alone some interventions mean anything. @param {any} plan */
+const paced = (plan) => Boolean(plan.pacemaker);
 
 /** @param {string} path */
 function place(path) {

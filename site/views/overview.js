@@ -33,7 +33,7 @@ export function overviewView(root, store) {
 
   function readLook() {
     const style = getComputedStyle(root);
-    const ink = Object.fromEntries(["wash", "device", "atrium", "ventricle", "alarm", "ink-soft", "rule-strong"].map((n) => [n, style.getPropertyValue(`--${n}`).trim()]));
+    const ink = Object.fromEntries(["wash", "device", "atrium", "ventricle", "alarm", "ink-soft", "rule-strong", "paper"].map((n) => [n, style.getPropertyValue(`--${n}`).trim()]));
     look = { family: style.fontFamily, ink };
   }
 
@@ -108,12 +108,16 @@ export function overviewView(root, store) {
 
     g.font = `12px ${look.family}`;
     g.textBaseline = "middle";
-    line("atria", ROWS.atrium, colour("atrium"), answer.overview.atrium);
-    line("ventricles", ROWS.ventricle, colour("ventricle"), answer.overview.ventricle);
+    const { overview } = answer;
+    const lost = new Set(overview.lost);
+    line("atria", ROWS.atrium, colour("atrium"), overview.atrium);
+    line("ventricles", ROWS.ventricle, colour("ventricle"), overview.ventricle);
+    paced(ROWS.atrium, overview.paced_atrium);
+    paced(ROWS.ventricle, overview.paced_ventricle);
     g.fillStyle = colour("alarm");
-    for (const t of answer.overview.blocks) flag(xOf(s, t), 19);
+    for (const t of overview.blocks) flag(xOf(s, t), 19);
     g.strokeStyle = colour("device");
-    for (const t of answer.overview.stimuli) ring(xOf(s, t), 19);
+    for (const t of overview.stimuli) ring(xOf(s, t), 19);
     ticks(colour("ink-soft"), colour("rule-strong"));
 
     /**
@@ -135,6 +139,29 @@ export function overviewView(root, store) {
         if (x - last < 0.6) continue; // denser than the screen shows
         last = x;
         g.fillRect(x - 0.75, y - 5, 1.5, 10);
+      }
+    }
+
+    /**
+     * The device's stimuli as discs on the line of their chamber, open where they did
+     * not capture; where they stand too close for that, a band below the line.
+     * @param {number} y
+     * @param {number[]} times
+     */
+    function paced(y, times) {
+      const room = (times.length > 1 ? xOf(s, times[times.length - 1]) - xOf(s, times[0]) : Infinity) / Math.max(1, times.length - 1);
+      for (const t of times) {
+        const x = xOf(s, t);
+        g.fillStyle = g.strokeStyle = colour("device");
+        if (room < 7) {
+          g.fillRect(x - 0.75, y + 2, 1.5, lost.has(t) ? 1.5 : 4);
+          continue;
+        }
+        g.beginPath();
+        g.arc(x, y, 2.8, 0, 2 * Math.PI);
+        if (lost.has(t)) g.fillStyle = colour("paper");
+        g.fill();
+        g.stroke();
       }
     }
 

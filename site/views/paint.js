@@ -68,6 +68,29 @@ export function halo(g, scene, styles, events) {
   }
 }
 
+const AROUND_MM = 0.9; // from a block's bar to the outline around it
+
+/**
+ * Draws an outline around the blocks among some events: their bars are short, and a
+ * halo behind one hardly shows.
+ * @param {CanvasRenderingContext2D} g
+ * @param {Scene} scene
+ * @param {Styles} styles
+ * @param {Set<number>} events
+ */
+export function outline(g, scene, styles, events) {
+  g.strokeStyle = styles.device;
+  g.lineWidth = 0.35;
+  g.setLineDash([]);
+  for (const m of scene.marks) {
+    if (m.cls !== "block" || m.shape !== LINE || !events.has(m.event)) continue;
+    g.beginPath();
+    g.roundRect(Math.min(m.x, m.x2) - AROUND_MM, Math.min(m.y, m.y2) - AROUND_MM,
+      Math.abs(m.x2 - m.x) + 2 * AROUND_MM, Math.abs(m.y2 - m.y) + 2 * AROUND_MM, AROUND_MM);
+    g.stroke();
+  }
+}
+
 /**
  * @param {CanvasRenderingContext2D} g
  * @param {Style} style

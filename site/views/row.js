@@ -5,7 +5,7 @@
 import { el, say, uid } from "../base/dom.js";
 import { num, typed } from "../base/format.js";
 import { clamp } from "../base/scale.js";
-import { drop, get, put } from "../model/path.js";
+import { drop, dropWithin, get, put } from "../model/path.js";
 import { rangeBar, valueAt } from "./range.js";
 
 /**
@@ -31,10 +31,13 @@ const STEP = { ms: 5, "/min": 1, "ms/ms": 0.01, s: 1 };
 /**
  * @param {Store} store
  * @param {Field} field
- * @param {string} [path] where it differs from the field's own
+ * @param {object} [about]
+ * @param {string} [about.path] where it differs from the field's own
+ * @param {string} [about.within] path of the part it belongs to, which may be absent as a
+ *   whole. What the plan does not state of such a part is shown as assumed.
  * @returns {Row}
  */
-export function makeRow(store, field, path = field.path) {
+export function makeRow(store, field, { path = field.path, within = "" } = {}) {
   const id = uid("row");
   const step = STEP[field.unit] ?? (field.max <= 2 ? 0.05 : 1);
   const control = makeControl();
@@ -42,13 +45,13 @@ export function makeRow(store, field, path = field.path) {
   const off = field.nullable ? el("input", { type: "checkbox", onchange: () => setNull(/** @type {HTMLInputElement} */ (off).checked) }) : null;
   const reset = el("button", {
     type: "button", class: "reset", onclick: () => change(undefined),
-    title: field.default === null ? "Leave out" : `Back to ${num(field.default, 3)}`, "aria-label": `${field.label}: back to the default`,
+    title: standing(field) === undefined ? "Leave out" : `Back to ${told(standing(field))}`, "aria-label": `${field.label}: back to the default`,
   }, "↺");
   const fault = el("p", { class: "row-fault", id: `${id}-fault`, role: "alert" });
   const help = el("span", { class: "unseen", id: `${id}-help` }, describe(field));
-  const node = el("div", { class: `row ${field.kind}`, "data-path": path },
+  const node = el("div", { class: `row ${field.kind}${within ? " within" : ""}`, "data-path": path },
     field.kind === "group" ? el("span", { class: "name" }, field.label) : el("label", { class: "name", for: id, title: describe(field) }, field.label),
-    control, el("span", { class: "unit" }, field.unit ?? ""), bar.node, reset,
+    control, el("span", { class: "unit" }, field.unit ?? ""), bar.node, within && el("span", { class: "assumed", title: "The plan does not state it" }, "assumed"), reset,
     off && el("label", { class: "off" }, off, field.null ?? "absent"), fault, help);
   bar.node.addEventListener("pointerdown", slide);
   bar.show(null, normal());
@@ -62,7 +65,7 @@ export function makeRow(store, field, path = field.path) {
     const common = { id, "aria-describedby": `${id}-help ${id}-fault`, "data-field": path };
     if (field.kind === "group") return el("span", null);
     if (field.kind === "switch") {
-      return el("input", { ...common, type: "checkbox", onchange: (/** @type {any} */ e) => change(e.target.checked || undefined) });
+      return el("input", { ...common, type: "checkbox", onchange: (/** @type {any} */ e) => change(e.target.checked === standing(field) && within === "" ? undefined : e.target.checked) });
     }
     if (field.kind === "choice") {
       return el("select", { ...common, onchange: (/** @type {any} */ e) => change(e.target.value) },
@@ -70,7 +73,7 @@ export function makeRow(store, field, path = field.path) {
     }
     return el("input", {
       ...common, type: "text", class: "value", inputMode: field.kind === "number" ? "decimal" : "text", autocomplete: "off", spellcheck: false,
-      placeholder: field.default === null ? "–" : num(field.default, 3),
+      placeholder: standing(field) === undefined ? "–" : told(standing(field)), list: field.kind === "mode" ? `modes-${field.path}` : undefined,
       oninput: (/** @type {any} */ e) => write(read(e.target.value)), onkeydown: keys, onfocus: remember,
       onblur: () => {
         store.settle();
@@ -81,6 +84,7 @@ export function makeRow(store, field, path = field.path) {
 
   /** @param {string} text */
   function read(text) {
+    if (field.kind === "mode") return text.trim() === "" ? undefined : text.trim().toUpperCase();
     if (field.kind !== "list") return typed(text);
     const parts = text.split(/[\s,;]+/).filter((p) => p !== "");
     return parts.length === 0 ? undefined : parts.map((p) => typed(p));
@@ -96,13 +100,13 @@ export function makeRow(store, field, path = field.path) {
   /** @param {State} state */
   function value(state) {
     const v = get(state.plan, path);
-    return v === undefined ? (field.is_null ? null : field.default ?? undefined) : v;
+    return v === undefined ? (field.is_null ? null : standing(field)) : v;
   }
 
   /** Takes a value while it is being typed. @param {any} v */
   function write(v) {
     const { plan } = store.get();
-    store.edit(v === undefined ? drop(plan, path) : put(plan, path, v), `type ${path}`);
+    store.edit(v === undefined ? dropWithin(plan, path, within) : put(plan, path, v), `type ${path}`);
   }
 
   /** Takes a value as one step. @param {any} v */
@@ -112,10 +116,14 @@ export function makeRow(store, field, path = field.path) {
     store.settle();
   }
 
+  let away = /** @type {any} */ (undefined); // what stood in a part that was switched off
   /** @param {boolean} on */
   function setNull(on) {
-    if (on) change(null);
-    else if (field.is_null) change(field.kind === "group" ? {} : field.min);
+    if (on && field.is_null && field.kind === "group") {
+      away = get(store.get().plan, path);
+      change(undefined);
+    } else if (on) change(null);
+    else if (field.is_null) change(field.kind === "group" ? (away ?? {}) : field.min);
     else change(undefined);
   }
 
@@ -175,16 +183,18 @@ export function makeRow(store, field, path = field.path) {
 
   /** @param {State} state @param {boolean} [afresh] even while it is being typed */
   function show(state, afresh = false) {
-    const v = value(state);
+    const stated = get(state.plan, path) !== undefined;
+    const v = within !== "" && !stated && control instanceof HTMLInputElement && control.type === "text" ? undefined : value(state);
     if (control instanceof HTMLSelectElement) control.value = String(v ?? "");
     else if (control instanceof HTMLInputElement && control.type === "checkbox") control.checked = v === true;
     else if (control instanceof HTMLInputElement) {
       const own = document.activeElement === control && !afresh;
-      if (!own || text(read(control.value) ?? value(state)) !== text(v)) control.value = text(v);
+      if (!own || text(read(control.value) ?? v) !== text(v)) control.value = text(v);
       control.disabled = v === null;
     }
     if (off) off.checked = v === null;
-    bar.show(v, normal());
+    node.classList.toggle("stated", within !== "" && stated);
+    bar.show(value(state), normal());
   }
 
   /** @param {State} state */
@@ -192,7 +202,7 @@ export function makeRow(store, field, path = field.path) {
     const v = get(state.plan, path);
     if (v === undefined || field.kind === "group" && v !== null) return false;
     if (v === null) return !field.is_null;
-    return field.default === null || v !== field.default;
+    return v !== standing(field);
   }
 
   return {
@@ -212,6 +222,23 @@ export function makeRow(store, field, path = field.path) {
 }
 
 /**
+ * What holds where the plan does not say; undefined where nothing does.
+ * @param {Field} f
+ * @returns {number | string | boolean | undefined}
+ */
+export function standing(f) {
+  if (f.kind === "switch") return f.on ?? false;
+  if (f.kind === "choice" || f.kind === "mode") return f.word || undefined;
+  return f.default ?? undefined;
+}
+
+/** @param {number | string | boolean | undefined} v */
+function told(v) {
+  if (typeof v === "number") return num(v, 3);
+  return typeof v === "boolean" ? (v ? "on" : "off") : (v ?? "");
+}
+
+/**
  * A field in words: meaning, normal range with its source, what may be typed.
  * @param {Field} f
  */
@@ -220,5 +247,6 @@ export function describe(f) {
   const parts = [f.help ?? ""];
   if (f.normal) parts.push(`Normal ${num(f.normal.low)}–${num(f.normal.high)}${unit}${f.source ? ` (${f.source})` : ""}.`);
   if (f.kind === "number") parts.push(`${f.default === null ? "Left out by default" : `Default ${num(f.default, 3)}`}; from ${num(f.min)} to ${num(f.max)}${unit}.`);
+  else if (["switch", "choice", "mode"].includes(f.kind) && standing(f) !== undefined) parts.push(`Default: ${f.names?.[String(standing(f))] ?? told(standing(f))}.`);
   return parts.filter((p) => p !== "").join(" ");
 }

@@ -4,6 +4,7 @@
 
 import { el, fill, say } from "../base/dom.js";
 import { count } from "../base/format.js";
+import { DEVICE_PLACES, deviceChoices, modeLists } from "./device.js";
 import { interventionsView, fociView } from "./lists.js";
 import { describe, makeRow } from "./row.js";
 
@@ -17,6 +18,7 @@ import { describe, makeRow } from "./row.js";
 
 /** Headings by the place of a field: the first prefix that fits. @type {[string, string, string][]} */
 const PLACES = [
+  ...DEVICE_PLACES,
   ["heart.sinus", "Heart", "Sinus node"],
   ["heart.atria", "Heart", "Atria"],
   ["heart.av_node.slow", "Heart", "AV node, slow pathway"],
@@ -30,7 +32,6 @@ const PLACES = [
   ["heart.ventricles", "Heart", "Ventricles"],
   ["heart.pathways", "Heart", "Accessory pathways"],
   ["heart", "Heart", "More"],
-  ["pacemaker", "Pacemaker", "Pacemaker"],
   ["", "Strip", ""],
 ];
 
@@ -41,6 +42,7 @@ const PLACES = [
  * @property {HTMLButtonElement} more shows the rows that few people need
  * @property {boolean} open
  * @property {string} title
+ * @property {boolean} whole all of it folds away
  */
 
 /**
@@ -65,14 +67,19 @@ export function settingsView(root, store, catalogue) {
   const groups = new Map();
   /** @type {Section[]} */
   const sections = [];
-  for (const field of catalogue.fields) {
-    if (field.path.includes("[]")) continue;
+  const parts = catalogue.fields.filter((f) => f.kind === "group" && f.is_null).map((f) => f.path);
+  const naming = deviceChoices(catalogue);
+  body.append(...modeLists(catalogue));
+  for (const listed of catalogue.fields) {
+    if (listed.path.includes("[]")) continue;
+    const field = naming(listed);
     const [place, group, title] = PLACES.find(([at]) => at === "" || field.path === at || field.path.startsWith(`${at}.`)) ?? PLACES[PLACES.length - 1];
-    const section = sections.find((s) => s.title === title && groups.get(group)?.contains(s.node)) ?? open(group, title);
+    const section = sections.find((s) => s.title === title && groups.get(group)?.contains(s.node)) ?? open(group, title, place.startsWith("pacemaker."));
     // Whether a part is there at all is never folded away.
-    const row = makeRow(store, field.path === place ? { ...field, advanced: false } : field);
+    const within = parts.find((p) => p === "pacemaker" && field.path.startsWith(`${p}.`));
+    const row = makeRow(store, field.path === place && field.kind === "group" ? { ...field, advanced: false } : field, { within });
     section.rows.push(row);
-    section.node.insertBefore(row.node, section.more);
+    section.node.insertBefore(row.node, section.whole ? null : section.more);
   }
   const foci = fociView(store, catalogue);
   groups.get("Heart")?.append(foci.node);
@@ -94,8 +101,8 @@ export function settingsView(root, store, catalogue) {
     return g;
   }
 
-  /** @param {string} group @param {string} title @returns {Section} */
-  function open(group, title) {
+  /** @param {string} group @param {string} title @param {boolean} whole @returns {Section} */
+  function open(group, title, whole) {
     const more = el("button", {
       type: "button", class: "more", "aria-expanded": "false",
       onclick: () => {
@@ -103,10 +110,11 @@ export function settingsView(root, store, catalogue) {
         sift();
       },
     }, "more");
-    const node = el("section", null, title && el("h4", null, title), more);
+    const node = el("section", null, title && group !== title && !whole && el("h4", null, title), more);
+    if (whole) node.prepend(more); // its heading is what unfolds it
     fold(group).append(node);
     /** @type {Section} */
-    const s = { node, rows: [], more, title, open: false };
+    const s = { node, rows: [], more, title, open: false, whole };
     sections.push(s);
     return s;
   }
@@ -135,12 +143,13 @@ export function settingsView(root, store, catalogue) {
       }
       found += any;
       s.node.hidden = any === 0;
-      s.more.hidden = away === 0 || filtered;
-      say(s.more, s.open ? "less" : "more");
-      s.more.setAttribute("aria-expanded", String(s.open));
+      s.more.hidden = away === 0 && !(s.whole && any > 0);
+      s.more.disabled = filtered;
+      say(s.more, s.whole ? s.title : s.open ? "less" : "more");
+      s.more.setAttribute("aria-expanded", String(s.open || filtered));
     }
     foci.node.hidden = (wanted !== "" && !"foci focus rate site escape".includes(wanted)) || (only.checked && foci.count() === 0);
-    last.hidden = (wanted !== "" && !"interventions premature beat train change stimulate set".includes(wanted)) || (only.checked && interventions.count() === 0);
+    last.hidden = (wanted !== "" && !"interventions premature beat train change stimulate set loss of capture undersensing signals from outside noise".includes(wanted)) || (only.checked && interventions.count() === 0);
     for (const [name, g] of groups) {
       if (name !== "Interventions") g.hidden = filtered && !g.querySelector(":scope > section:not([hidden])");
       if (filtered) g.open = true;

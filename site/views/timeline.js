@@ -5,9 +5,9 @@ import { nextFrame } from "../base/frame.js";
 import { seconds } from "../base/format.js";
 import { PX_PER_MM } from "../base/scale.js";
 import { handleAt, nearest, placeOf, timeAt } from "../engine/scene.js";
-import { pan, zoomTo } from "../model/view.js";
+import { ladderFor, pan, zoomTo } from "../model/view.js";
 import { grip } from "./grip.js";
-import { halo, paint } from "./paint.js";
+import { halo, outline, paint } from "./paint.js";
 import { timelineKeys } from "./keys.js";
 
 /**
@@ -45,7 +45,7 @@ export function timelineView(root, store, _engine, catalogue) {
   const family = getComputedStyle(pane).fontFamily;
 
   function draw() {
-    const { scene, dark, lit } = store.get();
+    const { scene, dark, lit, selected } = store.get();
     if (!scene || width === 0) return;
     const dpr = window.devicePixelRatio || 1;
     const styles = dark ? catalogue.styles.dark : catalogue.styles.light;
@@ -64,6 +64,7 @@ export function timelineView(root, store, _engine, catalogue) {
     g.fillRect(0, 0, scene.width, scene.height);
     halo(g, scene, styles, new Set(lit));
     paint(g, scene, styles, family, { hairMM: 1 / k });
+    outline(g, scene, styles, new Set([...lit, selected]));
     canvas.dataset.marks = String(scene.marks.length);
     stick();
   }
@@ -164,11 +165,12 @@ export function timelineView(root, store, _engine, catalogue) {
   function fit() {
     if (pane.clientWidth === 0) return;
     width = pane.clientWidth;
-    const width_mm = Math.max(20, width / PX_PER_MM - catalogue.margins_mm[store.get().view.ladder]);
-    const height_mm = Math.floor(pane.clientHeight / PX_PER_MM);
     const { view } = store.get();
-    if (view.width_mm === width_mm && view.height_mm === height_mm) return;
-    store.set({ view: { ...view, width_mm, height_mm } });
+    const ladder = ladderFor(view, pane.clientHeight);
+    const width_mm = Math.max(20, width / PX_PER_MM - catalogue.margins_mm[ladder]);
+    const height_mm = Math.floor(pane.clientHeight / PX_PER_MM);
+    if (view.width_mm === width_mm && view.height_mm === height_mm && view.ladder === ladder) return;
+    store.set({ view: { ...view, width_mm, height_mm, ladder } });
     nextFrame(draw);
   }
   const watch = new ResizeObserver(fit);
@@ -178,7 +180,7 @@ export function timelineView(root, store, _engine, catalogue) {
     /** @param {State} state @param {Set<string>} changed */
     update(state, changed) {
       if (["scene", "dark", "lit"].some((k) => changed.has(k))) draw();
-      else if (changed.has("selected")) stick();
+      else if (changed.has("selected")) draw();
       if (changed.has("view")) {
         hideHair();
         fit();

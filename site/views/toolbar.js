@@ -61,7 +61,10 @@ export function toolbarView(root, store) {
   }, "The whole strip");
   const current = el("span", { class: "reading" });
   const gains = GAINS.map((gain) => press(String(gain), () => set({ mm_per_mv: gain }), `${gain} millimetres a millivolt`));
-  const ladders = /** @type {const} */ (["plain", "full"]).map((l) => press(l, () => set({ ladder: l }), l === "plain" ? "Atria, node, ventricles" : "Every level of the conduction system"));
+  const ladders = /** @type {const} */ (["plain", "full"]).map((l) => press(l, () => set({ ladder: l, ladder_chosen: true }), l === "plain" ? "Atria, node, ventricles" : "Every level of the conduction system"));
+  const lane = press("Device", () => set({ no_device: !view().no_device }), "What the device sensed, gave and waited for");
+  lane.id = "device-lane";
+  const device = el("div", { class: "group" }, lane);
   const tabs = /** @type {const} */ (["timeline", "listing"]).map((t) => el("button", {
     type: "button", role: "tab", id: `tab-${t}`, onclick: () => store.set({ tab: t }),
   }, t === "timeline" ? "Timeline" : "Listing"));
@@ -74,6 +77,7 @@ export function toolbarView(root, store) {
       el("button", { type: "button", onclick: () => speed(view().mm_per_s * 1.25), "aria-label": "Stretch time" }, "+"), current),
     group("Gain", gains),
     group("Ladder", ladders),
+    device,
     el("button", { type: "button", class: "drawer-open last", id: "open-account", onclick: () => store.set({ drawer: "account" }) }, "Account"));
   root.append(bar);
   const drawing = [leads, ...bar.querySelectorAll(".group")]; // of no use to the listing
@@ -85,6 +89,7 @@ export function toolbarView(root, store) {
         tabs.forEach((b) => b.setAttribute("aria-selected", String(b.id === `tab-${state.tab}`)));
         for (const d of drawing) d.toggleAttribute("hidden", state.tab !== "timeline");
       }
+      device.hidden = state.tab !== "timeline" || !state.answer?.device;
       if (!changed.has("view") && !changed.has("answer")) return;
       const v = state.view;
       boxes.forEach((b) => {
@@ -97,6 +102,7 @@ export function toolbarView(root, store) {
       say(current, named ? "" : num(v.mm_per_s, v.mm_per_s < 10 ? 1 : 0));
       gains.forEach((b, i) => mark(b, v.mm_per_mv === GAINS[i]));
       ladders.forEach((b) => mark(b, b.textContent === v.ladder));
+      mark(lane, !v.no_device);
     },
     destroy() {
       document.removeEventListener("pointerdown", closeLeads);

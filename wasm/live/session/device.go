@@ -49,7 +49,13 @@ func (t *timeline) device() *device {
 	for _, w := range pacer.Warnings(s, heart) {
 		d.Warnings = append(d.Warnings, upper(w.Text)+".")
 	}
-	d.put(pacer.Arithmetic(s, heart), "")
+	vs := pacer.Arithmetic(s, heart)
+	for i := range vs {
+		if vs[i].Name == "pattern" && heart.PR > 0 {
+			vs[i].Label += ", if the heart did not conduct"
+		}
+	}
+	d.put(vs, "")
 	t.leads(d)
 	if r := t.report.Device; r != nil {
 		d.Counted = counted(r)

@@ -1,0 +1,157 @@
+// The pacemaker on the page: its lane, its settings, its arithmetic.
+
+import assert from "node:assert/strict";
+import { join } from "node:path";
+import { describe, test } from "node:test";
+import { ROOT, settled } from "./host.js";
+import { ink, onPage, openPreset, RATE, stage } from "./walk.js";
+
+/** @typedef {import("playwright-core").Page} Page */
+
+const field = (/** @type {string} */ name) => `[data-field="pacemaker.${name}"]`;
+const row = (/** @type {string} */ name) => `[data-path="pacemaker.${name}"]`;
+const OFF = '.row.group[data-path="pacemaker"] input';
+
+/** @param {Page} page */
+async function withDevice(page) {
+  await page.uncheck(OFF);
+  return settled(page);
+}
+
+/** A heart that neither conducts down nor back, so that the device alone decides. @param {Page} page */
+async function block(page) {
+  await page.check('[data-path="heart.av_node.fast.ah_ms"] .off input');
+  await page.check('[data-path="heart.av_node.fast.va_ms"] .off input');
+  return settled(page);
+}
+
+describe("the pacemaker", () => {
+  stage();
+
+  test("is switched on, draws its lane, and is switched off and on again with what was typed", () => onPage(async (page) => {
+    await block(page);
+    const first = await settled(page);
+    const before = (await ink(page)).marks;
+    assert.equal(await page.isVisible(field("pvarp_ms")), false);
+    assert.equal(await page.isVisible("#device-lane"), false);
+    const paced = await withDevice(page);
+    assert.notEqual(paced, first);
+    assert.ok((await ink(page)).marks > before + 20);
+    assert.match(await page.innerText("#statement"), /DDD/);
+    await page.fill(field("sensed_av_ms"), "120");
+    const typed = await settled(page);
+    assert.notEqual(typed, paced);
+    await page.check(OFF);
+    assert.equal(await settled(page), first);
+    assert.equal(await page.isVisible(field("pvarp_ms")), false);
+    await page.uncheck(OFF);
+    assert.equal(await settled(page), typed);
+    assert.equal(await page.inputValue(field("sensed_av_ms")), "120");
+  }));
+
+  test("its lane can be hidden", () => onPage(async (page) => {
+    const print = await withDevice(page);
+    const before = (await ink(page)).marks;
+    await page.click("#device-lane");
+    await settled(page);
+    assert.ok((await ink(page)).marks < before);
+    assert.equal(await page.getAttribute("#device-lane", "aria-pressed"), "false");
+    await page.click("#device-lane");
+    assert.equal(await settled(page), print);
+    assert.equal((await ink(page)).marks, before);
+  }));
+
+  test("what the plan does not state is assumed, and can be left out again", () => onPage(async (page) => {
+    const first = await withDevice(page);
+    assert.equal(await page.inputValue(field("pvarp_ms")), "");
+    assert.equal(await page.getAttribute(field("pvarp_ms"), "placeholder"), "250");
+    assert.equal(await page.isVisible(`${row("pvarp_ms")} .assumed`), true);
+    await page.fill(field("pvarp_ms"), "250");
+    await page.press(field("pvarp_ms"), "Enter");
+    assert.equal(await page.isVisible(`${row("pvarp_ms")} .assumed`), false);
+    await page.click(`${row("pvarp_ms")} .reset`);
+    assert.equal(await settled(page), first); // the last value taken out leaves a device
+    assert.equal(await page.isVisible(`${row("pvarp_ms")} .assumed`), true);
+    await page.click("text=Crosstalk");
+    assert.equal(await page.isChecked(field("safety_stimulus")), true);
+    await page.uncheck(field("safety_stimulus"));
+    await settled(page);
+    assert.match(await page.innerText("#account ul.doubts"), /safety stimulus is off/i);
+    await page.click(`${row("safety_stimulus")} .reset`);
+    await settled(page);
+    assert.equal(await page.isChecked(field("safety_stimulus")), true);
+  }));
+
+  test("PVARP changes the timeline, and the arithmetic warns of 2:1 below the upper tracking rate", () => onPage(async (page) => {
+    await block(page);
+    await withDevice(page);
+    await page.fill(RATE, "130");
+    const first = await settled(page);
+    const tarp = () => page.evaluate(() => document.querySelector('[data-sum="tarp"]')?.nextElementSibling?.textContent);
+    assert.equal(await tarp(), "400 ms"); // 150 + 250
+    assert.equal(await page.locator("#account ul.doubts").count(), 0);
+    await page.fill(field("pvarp_ms"), "400");
+    assert.notEqual(await settled(page), first);
+    assert.equal(await tarp(), "550 ms"); // 150 + 400
+    assert.match(await page.innerText("#account ul.doubts"), /TARP of 550 ms is longer than the upper-rate interval of 500 ms: 2:1 begins at 109\.1\/min/);
+    assert.match(await page.innerText("#account .sums"), /SAV \+ PVARP: 150 \+ 400 = 550 ms/);
+    assert.match(await page.innerText("#account .counts"), /ventricle paced\s+100 %/);
+    assert.equal(await page.isVisible("#show-doubts"), false);
+    await page.focus("#timeline");
+    await page.keyboard.press(".");
+    await settled(page);
+    await page.click("#show-doubts");
+    await settled(page);
+    assert.equal(await page.isVisible("#account ul.doubts"), true);
+  }));
+
+  test("a wrong mode is told at its field, a right one in small letters is taken", () => onPage(async (page) => {
+    const first = await withDevice(page);
+    await page.fill(field("mode"), "DXD");
+    await page.waitForSelector(`${row("mode")}.wrong`);
+    assert.match(await page.innerText(`${row("mode")} .row-fault`), /pacemaker\.mode: "DXD"; allowed: .*position 2 is the chamber sensed/);
+    assert.equal(await settled(page), first);
+    await page.fill(field("mode"), "vvi");
+    await page.waitForSelector(`${row("mode")}.wrong`, { state: "detached" });
+    assert.notEqual(await settled(page), first);
+    assert.equal(await page.locator("#modes-pacemaker\\.mode option").count() >= 14, true);
+    await page.fill(field("mode"), "");
+    assert.equal(await settled(page), first);
+  }));
+
+  test("its faults and signals from outside are interventions", () => onPage(async (page) => {
+    assert.equal(await page.isVisible("text=+ loss of capture"), false);
+    await block(page);
+    let last = await withDevice(page);
+    for (const [i, name] of ["loss of capture", "undersensing", "signals from outside"].entries()) {
+      await page.click(`text=+ ${name}`);
+      const next = await settled(page);
+      assert.equal(await page.locator(".row.wrong").count(), 0, name);
+      assert.equal(await page.inputValue(`[data-field="interventions[${i}].channel"]`), "V");
+      if (name === "undersensing") await page.selectOption(`[data-field="interventions[${i}].channel"]`, "A");
+      assert.notEqual(await settled(page), last, name);
+      last = next;
+    }
+    assert.match(await page.innerText("#account .counts"), /VP without capture/);
+  }));
+
+  test("nothing sticks out and the sheet is filled, from desk to tablet", () => onPage(async (page) => {
+    await page.click("#presets");
+    const names = await page.$$eval("[data-preset]", (all) => all.map((b) => b.getAttribute("data-preset") ?? "").filter((n) => /^(dual|vvi|crt|aai)/.test(n)).slice(0, 4));
+    await page.keyboard.press("Escape");
+    for (const size of [{ width: 1280, height: 800 }, { width: 1600, height: 1000 }, { width: 820, height: 1180 }]) {
+      await page.setViewportSize(size);
+      for (const name of names) {
+        await openPreset(page, name);
+        await page.screenshot({ path: join(ROOT, "site", "test", "shots", `device-${size.width}-${name}.png`) });
+        assert.equal(await page.isVisible("#device-lane"), true, name);
+        assert.equal(await page.evaluate(() => document.documentElement.scrollWidth - document.documentElement.clientWidth), 0);
+        const wide = await page.evaluate(() => {
+          const c = /** @type {HTMLElement} */ (document.querySelector("#timeline canvas"));
+          return c.getBoundingClientRect().width / /** @type {HTMLElement} */ (c.closest("#timeline")).clientWidth;
+        });
+        assert.ok(wide > 0.97 && wide <= 1.01, `${name} fills ${wide} of the sheet at ${size.width}`);
+      }
+    }
+  }));
+});
