@@ -62,7 +62,7 @@ func (s *sheet) deviceSigns() []sign {
 			{float32(x + 3.2), float32(y - 1.1)}, {float32(x), float32(y - 1.1)}, {float32(x), float32(y + 1.1)}, {float32(x + 3.2), float32(y + 1.1)}}})
 	}
 	return []sign{
-		{"AS, VS sensed; AP, VP paced; AR, VR in a refractory period", nil},
+		{"AS, VS sensed", nil}, {"AP, VP paced", nil}, {"AR, VR in a refractory period", nil},
 		{"not seen", func(x, y float64) {
 			s.mark(Mark{Shape: Poly, Class: WindowEdge, Points: []Point{
 				{float32(x + 1.2), float32(y + 1)}, {float32(x + 1.2), float32(y - 1)}, {float32(x + 1.9), float32(y - 1)}, {float32(x + 1.9), float32(y + 1)}}})
