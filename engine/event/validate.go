@@ -99,7 +99,8 @@ func (v *validator) activate(e *Event) {
 	case Fired:
 		v.want(e, cause.Kind == Discharge && cause.Site == e.Site && cause.T == e.T && e.Path == None)
 	case Captured:
-		v.want(e, cause.Kind == Stimulus && cause.Captured && cause.Site == e.Site && e.Path == None)
+		// A device's lead may capture the muscle beside the tissue it lies on.
+		v.want(e, cause.Kind == Stimulus && cause.Captured && (cause.Site == e.Site || cause.Rule == Timed) && e.Path == None)
 	case Conducted:
 		if !v.want(e, v.path(e.Path) && e.Dir != 0) {
 			return

@@ -132,6 +132,14 @@ func New(s Settings, r Recorder) *Device {
 	return d
 }
 
+// Program puts other settings in force, as a programmer does in the middle of a
+// strip. What has begun runs out by the old ones; the mode stays.
+func (d *Device) Program(s Settings) {
+	s.LowerRate = max(s.LowerRate, 1)
+	s.Mode = d.s.Mode
+	d.s = s
+}
+
 // Start begins the strip.
 func (d *Device) Start(now tick.Time) {
 	d.now = now

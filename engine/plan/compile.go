@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"sort"
+	"strings"
 
 	"escapement/engine/event"
 	"escapement/engine/heart"
@@ -126,6 +127,12 @@ func (c *compiler) faults() {
 			f.Lost, end.Lost = 1, -1
 		case "undersense":
 			f.Deaf, end.Deaf = 1, -1
+		case "fracture":
+			f.Lost, end.Lost, f.Deaf, end.Deaf = 1, -1, 1, -1
+		case "dislodge":
+			f.Moved, f.Site = true, c.prog.Heart.Site(it["site"].Text)
+			c.prog.Faults = append(c.prog.Faults, f)
+			continue
 		case "signal":
 			f.Signal = true
 			for range max(int(it["count"].Number), 1) {
@@ -149,6 +156,12 @@ func (c *compiler) changes() {
 		field := it["field"].Text
 		name, item := itemPath(field)
 		ch := Change{T: it.at(), Field: field, To: c.to(it)}
+		if strings.HasPrefix(name, device+".") {
+			now.set(name, item, it["to"])
+			ch.Device = now.device(c.prog.Heart)
+			c.prog.Changes = append(c.prog.Changes, ch)
+			continue
+		}
 		if byPath[name].Unit == "/min" {
 			c.prog.Changes = append(c.prog.Changes, ch)
 			continue

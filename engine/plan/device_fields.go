@@ -110,11 +110,17 @@ func deviceFields() []*Field {
 		n(at+".width_ms", "pulse width", "ms", 0.4, 0.05, 2)
 		n(at+".rheobase_v", "rheobase", "V", 0.35, 0, 10)
 		n(at+".chronaxie_ms", "chronaxie", "ms", 0.4, 0, 2)
+		n(at+".latency_ms", "latency", "ms", 0, 0, 100)
+		if l.name != "atrial" {
+			fs = append(fs, opt(d(at+".muscle_rheobase_v"), "rheobase of the muscle", "V", 0, 10, "For a lead on the conduction system: the muscle beside it, which it may capture too. Left out: never.").advanced())
+		}
+		n(at+".sensing_delay_ms", "sensed late by", "ms", 0, 0, 200)
 		n(at+".signal_mv", "signal", "mV", l.signal, 0, 40)
 		n(at+".sensitivity_mv", "sensitivity", "mV", l.sense, 0.1, 20)
 	}
 	n("leads.far_field_ms", "far field of the QRS after", "ms", 0, 0, 300)
 	n("leads.t_wave_ms", "T wave sensed after", "ms", 0, 0, 600)
+	n("leads.crosstalk_ms", "atrial stimulus sensed in the ventricle after", "ms", 0, 0, 150)
 	for _, f := range fs {
 		switch {
 		case f.Unit == "stimuli":

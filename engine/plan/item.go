@@ -25,7 +25,7 @@ func itemFields() []*Field {
 		num(f+".overdrive", "overdrive suppression", "", 0, 0, 1),
 		num(f+".overdrive_tau_s", "suppression fades over", "s", 10, 0.1, 600),
 		num(i+".at_ms", "at", "ms", 0, 0, 86400000),
-		{Path: i + ".do", Label: "what", Kind: Choice, Choices: []string{"stimulate", "train", "set", "lose_capture", "undersense", "signal"}},
+		{Path: i + ".do", Label: "what", Kind: Choice, Choices: []string{"stimulate", "train", "set", "lose_capture", "undersense", "signal", "fracture", "dislodge"}},
 		site(i + ".site"),
 		{Path: i + ".channel", Label: "channel", Kind: Choice, Choices: []string{"A", "V"}, Help: "Of the device: atrial or ventricular."},
 		opt(i+".for_ms", "for", "ms", 1, 86400000, "How long the fault lasts."),
@@ -45,5 +45,7 @@ var needs = map[string]struct{ must, may []string }{
 	"set":          {must: []string{"field", "to"}, may: []string{"over_ms"}},
 	"lose_capture": {must: []string{"channel", "for_ms"}},
 	"undersense":   {must: []string{"channel", "for_ms"}},
+	"fracture":     {must: []string{"channel", "for_ms"}},
+	"dislodge":     {must: []string{"channel", "site"}},
 	"signal":       {must: []string{"channel"}, may: []string{"cycle_ms", "count"}},
 }

@@ -13,6 +13,7 @@ type Device struct {
 	Leads    [pacer.HisLead + 1]Lead // by pacer.Lead; unused ones have no site
 	FarField tick.Dur                // a ventricular depolarisation is a signal on the atrial channel so much later; 0: it is not
 	TWave    tick.Dur                // and one on the ventricular channel; 0: it is not
+	Cross    tick.Dur                // an atrial stimulus is a signal on the ventricular channel so much later; 0: it is not
 }
 
 // Lead is where a device stimulates and senses.
@@ -22,6 +23,14 @@ type Lead struct {
 	Threshold float64      // V, at the programmed pulse width
 	Amplitude float64      // V
 	Senses    bool         // the signal there is above the programmed sensitivity
+	Latency   tick.Dur     // from the stimulus to the depolarisation
+	Delay     tick.Dur     // from the depolarisation to its signal, as in mechanical sensing
+
+	// Muscle is the muscle beside a lead on the conduction system and MuscleThreshold
+	// what captures it, by itself; event.None where it is never captured. Two tissues
+	// under one tip have two thresholds and two refractory periods.
+	Muscle          event.SiteID
+	MuscleThreshold float64
 }
 
 // Captures tells whether the programmed output is above the threshold.
@@ -123,7 +132,8 @@ func (p *Plan) device(h *heart.Heart) *Device {
 	if p.null(device) {
 		return nil
 	}
-	d := &Device{Settings: p.settings(), FarField: tick.MS(p.number(device + ".leads.far_field_ms")), TWave: tick.MS(p.number(device + ".leads.t_wave_ms"))}
+	d := &Device{Settings: p.settings(), FarField: tick.MS(p.number(device + ".leads.far_field_ms")), TWave: tick.MS(p.number(device + ".leads.t_wave_ms")),
+		Cross: tick.MS(p.number(device + ".leads.crosstalk_ms"))}
 	for i := range d.Leads {
 		d.Leads[i].Site, d.Leads[i].Sensing = event.None, event.None
 	}
@@ -139,15 +149,19 @@ func (p *Plan) device(h *heart.Heart) *Device {
 func (p *Plan) lead(h *heart.Heart, name string) Lead {
 	at := device + ".leads." + name
 	site := p.word(at + ".site")
-	l := Lead{Site: h.Site(site), Amplitude: p.number(at + ".amplitude_v")}
+	l := Lead{Site: h.Site(site), Muscle: event.None, Amplitude: p.number(at + ".amplitude_v"), Latency: tick.MS(p.number(at + ".latency_ms")), Delay: tick.MS(p.number(at + ".sensing_delay_ms"))}
 	// Lapicque in volts: V(t) = b (1 + c/t), rheobase b and chronaxie c (Geddes, IEEE
 	// TBME 2004).
-	l.Threshold = p.number(at+".rheobase_v") * (1 + p.number(at+".chronaxie_ms")/p.number(at+".width_ms"))
+	shape := 1 + p.number(at+".chronaxie_ms")/p.number(at+".width_ms")
+	l.Threshold = p.number(at+".rheobase_v") * shape
 	l.Senses = p.number(at+".signal_mv") >= p.number(at+".sensitivity_mv")
 	l.Sensing = l.Site
 	if t := h.Sites[l.Site].Tissue; t != event.Atrium && t != event.Ventricle {
 		// A lead on the conduction system senses the muscle beside it.
 		l.Sensing = h.Site(beside[site])
+		if p.given(at + ".muscle_rheobase_v") {
+			l.Muscle, l.MuscleThreshold = l.Sensing, p.number(at+".muscle_rheobase_v")*shape
+		}
 	}
 	return l
 }

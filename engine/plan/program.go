@@ -29,11 +29,12 @@ type Stimulus struct {
 // Change puts another set of parameters in force. Field and To are recorded where
 // Field is not empty; the steps of a ramp after its first are silent. Heart is nil
 // where the field is a rate, which every heart of the program holds over the
-// whole strip.
+// whole strip. Device is nil where the field is not one of the device.
 type Change struct {
 	T         tick.Time
 	Field, To string
 	Heart     *heart.Heart
+	Device    *Device
 }
 
 // Fault is the beginning (1) or the end (-1) of a fault of the device, or one signal
@@ -43,6 +44,8 @@ type Fault struct {
 	Channel    pacer.Channel
 	Deaf, Lost int
 	Signal     bool
+	Moved      bool // the lead lies at Site from now on
+	Site       event.SiteID
 }
 
 // Lead is the lead of the fault's channel.

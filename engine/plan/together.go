@@ -127,8 +127,17 @@ func itemNames(it Item) []string {
 func (d *decoder) set(at string, it Item) {
 	field, item := itemPath(it["field"].Text)
 	f := byPath[field]
-	if f == nil || !strings.HasPrefix(field, "heart.") || f.Kind != Number && f.Kind != Pattern && !(f.Kind == Group && !f.IsNull) {
-		d.ds.add(at+".field", show(it["field"].Text), "the path of a number in heart, such as heart.sinus.rate_bpm", meant(it["field"].Text, settable()))
+	ofDevice := strings.HasPrefix(field, device+".") && f != nil && f.Kind == Number
+	if f == nil || !ofDevice && (!strings.HasPrefix(field, "heart.") || f.Kind != Number && f.Kind != Pattern && !(f.Kind == Group && !f.IsNull)) {
+		d.ds.add(at+".field", show(it["field"].Text), "the path of a number in heart or pacemaker, such as heart.sinus.rate_bpm", meant(it["field"].Text, settable()))
+		return
+	}
+	if ofDevice && d.p.null(device) {
+		d.ds.add(at+".field", show(it["field"].Text), "a number of the heart: this plan has no pacemaker", "")
+		return
+	}
+	if ofDevice && it.number("interventions", "over_ms") > 0 {
+		d.ds.add(at+".over_ms", "a gradual change of a device", "a change at once", "take over_ms out")
 		return
 	}
 	if item >= len(d.p.Foci) {
@@ -167,7 +176,7 @@ func (v Value) raw() any {
 func settable() []string {
 	var names []string
 	for _, f := range catalogue {
-		if strings.HasPrefix(f.Path, "heart.") && f.Kind == Number {
+		if f.Kind == Number && (strings.HasPrefix(f.Path, "heart.") || strings.HasPrefix(f.Path, device+".")) {
 			names = append(names, f.Path)
 		}
 	}

@@ -16,7 +16,7 @@ import (
 // the device's timers.
 type device struct {
 	m          *Machine
-	p          *plan.Device
+	p          plan.Device
 	d          *pacer.Device
 	deaf, lost [pacer.Ventricular + 1]int // faults in force, by channel
 }
@@ -32,7 +32,7 @@ func (m *Machine) connect(prog *plan.Program) {
 	if prog.Device == nil {
 		return
 	}
-	m.dev = &device{m: m, p: prog.Device}
+	m.dev = &device{m: m, p: *prog.Device}
 	m.dev.d = pacer.New(prog.Device.Settings, m.dev)
 	m.dev.d.Start(0)
 	for i := range prog.Faults {
@@ -57,9 +57,25 @@ func (v *device) expire(t tick.Time) {
 func (v *device) fault(f *plan.Fault) {
 	v.deaf[f.Channel] += f.Deaf
 	v.lost[f.Channel] += f.Lost
+	if f.Moved {
+		l := v.p.Leads[f.Lead()]
+		l.Site, l.Sensing, l.Muscle = f.Site, f.Site, event.None
+		v.p.Leads[f.Lead()] = l
+	}
 	if f.Signal {
 		v.signal(0, f.Channel, v.p.Leads[f.Lead()].Sensing, 0)
 	}
+}
+
+// program puts other numbers in force; a lead that has moved stays where it is.
+func (v *device) program(p *plan.Device) {
+	next := *p
+	for i := range next.Leads {
+		old := &v.p.Leads[i]
+		next.Leads[i].Site, next.Leads[i].Sensing, next.Leads[i].Muscle = old.Site, old.Sensing, old.Muscle
+	}
+	v.p = next
+	v.d.Program(p.Settings)
 }
 
 // depolarised looks whether a lead senses the depolarisation of a site.
@@ -67,16 +83,16 @@ func (v *device) depolarised(e *event.Event, id event.ID) {
 	a, r := &v.p.Leads[pacer.RA], &v.p.Leads[pacer.RV]
 	own := false
 	if e.Rule == event.Captured {
-		own = v.m.at(e.Cause).Rule == event.Timed
+		own = e.Cause > v.m.base && v.m.at(e.Cause).Rule == event.Timed
 	}
 	if e.Site == a.Sensing && !own && a.Senses && v.deaf[pacer.Atrial] == 0 {
-		v.signal(0, pacer.Atrial, e.Site, id)
+		v.signal(a.Delay, pacer.Atrial, e.Site, id)
 	}
 	if e.Site != r.Sensing {
 		return
 	}
 	if !own && r.Senses && v.deaf[pacer.Ventricular] == 0 {
-		v.signal(0, pacer.Ventricular, e.Site, id)
+		v.signal(r.Delay, pacer.Ventricular, e.Site, id)
 	}
 	if v.p.FarField > 0 {
 		v.signal(v.p.FarField, pacer.Atrial, e.Site, id)
@@ -103,7 +119,9 @@ func (v *device) sense(site event.SiteID, ch pacer.Channel, cause event.ID) {
 // at finds an event that is still kept.
 func (m *Machine) at(id event.ID) *event.Event { return &m.log.Events[id-m.base-1] }
 
-// Stimulate delivers a stimulus of the device (pacer.Recorder).
+// Stimulate delivers a stimulus of the device (pacer.Recorder). Two tissues under one
+// tip are captured each by its own threshold and its own refractory period; Why says
+// which, where only one is.
 func (v *device) Stimulate(p pacer.Pulse) event.ID {
 	m := v.m
 	lead := &v.p.Leads[p.Lead]
@@ -112,24 +130,55 @@ func (v *device) Stimulate(p pacer.Pulse) event.ID {
 		ch = pacer.Atrial
 	}
 	st := &m.sites[lead.Site]
-	excitable := st.id == 0 || m.now >= st.until
-	enough := lead.Captures() && v.lost[ch] == 0
+	excitable := m.excitable(lead.Site)
+	site := excitable && v.lost[ch] == 0 && lead.Amplitude >= lead.Threshold
+	muscle := lead.Muscle >= 0 && m.excitable(lead.Muscle) && v.lost[ch] == 0 && lead.Amplitude >= lead.MuscleThreshold
 	e := event.Event{Kind: event.Stimulus, Rule: event.Timed, Site: lead.Site, Path: event.None, Cause: p.Cause, Field: p.Timer.String(), Why: p.Why,
-		Channel: letter(ch), Captured: excitable && enough}
+		Channel: letter(ch), Captured: site || muscle}
 	if st.id != 0 {
 		e.Recovery, e.Needed = m.now.Sub(st.last), st.until.Sub(st.last)
 	}
-	if excitable && !enough {
+	switch {
+	case muscle && !site:
+		e.Why = "muscle only"
+	case site && lead.Muscle >= 0 && !muscle:
+		e.Why = "conduction system only"
+	case !e.Captured && excitable && v.lost[ch] > 0:
+		e.Why = "loss of capture"
+	case !e.Captured && excitable:
 		e.Why = "below threshold"
-		if lead.Captures() {
-			e.Why = "loss of capture"
-		}
 	}
 	id := m.record(e)
-	if e.Captured {
-		m.activate(event.Event{Rule: event.Captured, Site: lead.Site, Path: event.None, Cause: id})
+	if site {
+		v.captureAfter(lead.Latency, lead.Site, id)
+	}
+	if muscle {
+		v.captureAfter(lead.Latency, lead.Muscle, id)
+	}
+	if ch == pacer.Atrial && v.p.Cross > 0 {
+		v.signal(v.p.Cross, pacer.Ventricular, v.p.Leads[pacer.RV].Sensing, id)
 	}
 	return id
+}
+
+func (m *Machine) excitable(site event.SiteID) bool {
+	st := &m.sites[site]
+	return st.id == 0 || m.now >= st.until
+}
+
+func (v *device) captureAfter(latency tick.Dur, site event.SiteID, stimulus event.ID) {
+	if latency == 0 {
+		v.capture(site, stimulus)
+		return
+	}
+	v.m.push(v.m.now.Add(latency), classCapture, int(site), 0, uint32(stimulus))
+}
+
+// capture depolarises a site by a stimulus, unless another impulse came there before.
+func (v *device) capture(site event.SiteID, stimulus event.ID) {
+	if v.m.excitable(site) {
+		v.m.activate(event.Event{Rule: event.Captured, Site: site, Path: event.None, Cause: stimulus})
+	}
 }
 
 // Open records a window (pacer.Recorder).

@@ -200,6 +200,8 @@ func (m *Machine) Run(budget int) bool {
 			m.change(&m.prog.Changes[it.index])
 		case classFault:
 			m.dev.fault(&m.prog.Faults[it.index])
+		case classCapture:
+			m.dev.capture(event.SiteID(it.index), event.ID(it.gen))
 		case classSense:
 			m.dev.sense(event.SiteID(it.index), pacer.Channel(it.dir), event.ID(it.gen))
 		case classStop:
@@ -254,6 +256,9 @@ func (m *Machine) later(t tick.Time, e event.Event) {
 func (m *Machine) change(c *plan.Change) {
 	if c.Field != "" {
 		m.record(event.Event{Kind: event.Change, Rule: event.Planned, Site: event.None, Path: event.None, Field: c.Field, To: c.To})
+	}
+	if c.Device != nil {
+		m.dev.program(c.Device)
 	}
 	if c.Heart == nil {
 		return

@@ -18,6 +18,7 @@ const (
 	classArriveHis
 	classArrivePurkinje
 	classArriveVentricle
+	classCapture
 	classSense
 	classDischarge
 	classStimulate
