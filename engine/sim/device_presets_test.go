@@ -172,6 +172,9 @@ var deviceFacts = map[string]func(strip){
 		if lost := len(s.at("VP lost")); lost == 0 || lost == len(s.at("VP")) {
 			s.t.Errorf("%d of %d stimuli lost: some should, not all", lost, len(s.at("VP")))
 		}
+		if n := len(after(s.at("VP"), 8300)); n != 0 || len(after(s.at("VS resets"), 8000)) < 4 {
+			s.t.Errorf("%d stimuli after the fault", n)
+		}
 	},
 	"vvi-fusion": func(s strip) {
 		left := s.times("left_bundle")
@@ -194,6 +197,7 @@ var deviceFacts = map[string]func(strip){
 		if n := len(s.at("AP")); n != 0 {
 			s.t.Errorf("%d atrial stimuli in VDD", n)
 		}
+		s.every("tracked at first", first(s.delays("AS tracked", "VP"), 5), 150)
 		if got := diffs(s.stimuli("lower_rate")); len(got) == 0 {
 			s.t.Error("no stimulus at the lower rate")
 		}
@@ -255,7 +259,12 @@ var deviceFacts = map[string]func(strip){
 		}
 		s.every("loop", diffs(after(s.at("VP"), 5200)), 500)
 	},
-	"vvi-noise-paces": func(s strip) { s.every("V-V", diffs(within(s.at("VP"), 4500, 9000)), 1000) },
+	"vvi-noise-paces": func(s strip) {
+		s.every("V-V", diffs(within(s.at("VP"), 4500, 9000)), 1000)
+		if n := len(s.at("VS noise")); n < 40 {
+			s.t.Errorf("%d signals taken for noise", n)
+		}
+	},
 	"vvi-noise-inhibits": func(s strip) {
 		near(s.t, "pause", greatest(diffs(s.at("VP"))), 5000, exact)
 		if n := len(within(s.times("rv_apex"), 4500, 8000)); n == 0 || n > 2 {
