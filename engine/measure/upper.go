@@ -14,10 +14,9 @@ import (
 type trackedRun struct {
 	av   []tick.Dur
 	ids  []event.ID
-	held bool // the upper-rate interval kept a stimulus back
-	ramp bool // long before that it did not: the rate rose into it
-	open bool // its beginning is not on the strip
-	last event.ID
+	held bool      // the upper-rate interval kept a stimulus back
+	ramp bool      // long before that it did not: the rate rose into it
+	open bool      // its beginning is not on the strip
 	t    tick.Time // of its last ventricular stimulus
 }
 
@@ -39,11 +38,11 @@ func (f *finder) upperRuns() []trackedRun {
 			run.av = append(run.av, m.e.T.Sub(p.e.T))
 			run.ids = append(run.ids, p.e.ID, m.e.ID)
 			run.held = run.held || m.e.Field == "upper_rate"
-			run.last, run.t = m.e.ID, m.e.T
+			run.t = m.e.T
 		case m.e.Channel == 'A' && m.paced():
 			run = trackedRun{open: true}
 		case m.e.Channel == 'A' && (m.e.Use == event.Refractory || m.e.Use == event.Blanked):
-			if w := f.log.At(m.e.By); w == nil || w.Cause != run.last || run.last == 0 || !f.fromAboveP(m) {
+			if len(run.av) == 0 || m.e.By == 0 || !f.fromAboveP(m) {
 				continue
 			}
 			run.ids = append(run.ids, m.e.ID, m.e.By)
