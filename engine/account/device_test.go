@@ -111,6 +111,31 @@ func TestDeviceSentences(t *testing.T) {
 	}
 }
 
+// What a sentence leaves out where it would be wrong.
+func TestDeviceSentencesAtTheEdges(t *testing.T) {
+	const early = `"interventions":[{"at_ms":%,"do":"stimulate","site":"right_atrium"}]`
+	at := func(ms string) string { return strings.ReplaceAll(early, "%", ms) }
+	flutter := `"span_ms":9000,"heart":{` + block + `,"foci":[{"site":"left_atrium","rate_bpm":250}]},"pacemaker":{"mode":"DDD","sensed_av_ms":107,"pvab_ms":105,"atrial_blanking_ms":50,"pvarp_ms":300,"max_tracking_rate_bpm":130,"mode_switch":{"rate_bpm":170,"short":4,"of":7}}`
+	for _, c := range []struct {
+		name, plan string
+		n          int
+		fits       func(*event.Event) bool
+		says, not  string
+	}{
+		{"second P in an AV delay", `"span_ms":3000,"heart":{` + block + `},"pacemaker":{"mode":"DDD","sensed_av_ms":300},` + at("620"), 1, sensed('A', event.Refractory), "a P before it had begun the AV delay already", "later it would have been"},
+		{"blanked, then still refractory", `"span_ms":3000,"heart":{` + block + `},"pacemaker":{"mode":"DDD","pvab_ms":150},` + at("620"), 1, sensed('A', event.Blanked), "PVAB ends 40 ms later, but PVARP runs on to 0.760 s.", "PVAB ends 140"},
+		{"refractory in a mode that does not track", flutter, 3, sensed('A', event.Refractory), "refractory, noted and nothing more", "not tracked"},
+		{"the upper rate in time", `"span_ms":3000,"heart":{` + block + `},"pacemaker":{"mode":"DDD"}`, 2, sensed('A', event.Tracked), "it began an AV delay of 150 ms", "cannot come before"},
+		{"no interval of that reason ran out", `"span_ms":6000,"heart":{},"pacemaker":{"mode":"VVI","lower_rate_bpm":65,"hysteresis":{"rate_bpm":50}},"interventions":[{"at_ms":0,"do":"undersense","channel":"V","for_ms":3000}]`, 2, sensed('V', event.Resets), "It kept back the ventricular stimulus", "that ran out"},
+	} {
+		l := run(t, c.plan)
+		text := strings.Join(Of(l, find(t, l, c.n, c.fits).ID).Sentences, " ")
+		if !strings.Contains(text, c.says) || strings.Contains(text, c.not) {
+			t.Errorf("%s: got %q, want %q and not %q in it", c.name, text, c.says, c.not)
+		}
+	}
+}
+
 // Every event of strips with devices can be accounted for, and every chain ends at a
 // focus, a planned stimulus or where the strip began.
 func TestDeviceChains(t *testing.T) {
@@ -202,6 +227,13 @@ func TestWhyGap(t *testing.T) {
 	l = run(t, `"span_ms":9000,"heart":{"sinus":{"rate_bpm":45}},"pacemaker":{"mode":"VVI","lower_rate_bpm":70,"hysteresis":{"rate_bpm":50}}`)
 	if n = WhyGap(l, tick.Time(tick.MS(600)), tick.Time(tick.MS(1700))); !strings.Contains(n.Sentences[0], "its length set by: hysteresis and runs 1200 ms") {
 		t.Errorf("hysteresis: got %v", n.Sentences)
+	}
+	l = run(t, wenckebach)
+	p := find(t, l, 1, sensed('A', event.Refractory))
+	for _, s := range WhyGap(l, p.T, p.T+500000).Sentences {
+		if strings.Contains(s, "1.740") {
+			t.Errorf("the gap begins after its first event: got %q", s)
+		}
 	}
 	if WhyGap(parse(t, small), 0, 1000000) != nil {
 		t.Error("a gap of a device that is not there")
