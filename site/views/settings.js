@@ -35,6 +35,8 @@ const PLACES = [
   ["", "Strip", ""],
 ];
 
+const GROUPS = ["Heart", "Pacemaker", "Interventions", "Strip"];
+
 /**
  * @typedef {object} Section
  * @property {HTMLElement} node
@@ -61,7 +63,8 @@ export function settingsView(root, store, catalogue) {
     el("div", { class: "part" }, el("h2", null, "Settings"),
       el("label", { class: "only" }, only, onlyCount),
       el("button", { type: "button", class: "drawer-close", onclick: () => store.set({ drawer: "" }) }, "Close")),
-    search, loose, body, foot);
+    search, el("nav", { class: "jumps", "aria-label": "Groups of settings" }, GROUPS.map((name) => el("button", { type: "button", onclick: () => jump(name) }, name))),
+    loose, body, foot);
 
   /** @type {Map<string, HTMLDetailsElement>} */
   const groups = new Map();
@@ -86,9 +89,17 @@ export function settingsView(root, store, catalogue) {
   const interventions = interventionsView(store, catalogue);
   const last = fold("Interventions");
   last.append(interventions.node);
-  for (const name of ["Heart", "Pacemaker", "Interventions", "Strip"]) {
+  for (const name of GROUPS) {
     const g = groups.get(name);
     if (g) body.append(g);
+  }
+
+  /** Unfolds a group and brings it to the top. @param {string} name */
+  function jump(name) {
+    const g = groups.get(name);
+    if (!g || g.hidden) return;
+    g.open = true;
+    body.scrollTop += g.getBoundingClientRect().top - body.getBoundingClientRect().top;
   }
 
   /** @param {string} name */

@@ -40,7 +40,7 @@ type answer struct {
 	Span        float64   `json:"span_ms"`
 	Fingerprint string    `json:"fingerprint"`
 	Overview    overview  `json:"overview"`
-	Device      *device   `json:"device"` // null: none
+	Device      *device   `json:"device"`  // null: none
 	Took        float64   `json:"took_ms"` // the computation, without the scene
 }
 

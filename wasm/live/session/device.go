@@ -119,14 +119,17 @@ func counted(r *measure.Device) []number {
 		}
 		return whole(n)
 	}
+	// A chamber that the device knows nothing of is not counted as zeros.
+	atrium := func(n int) *float64 { return unless(r.AtrialPaced == nil && r.RefractoryA == 0, whole(n)) }
+	ventricle := func(n int) *float64 { return unless(r.VentricularPaced == nil && r.RefractoryV == 0, whole(n)) }
 	list := []number{
 		{Name: "atrial_paced_percent", Label: "atrium paced", Value: r.AtrialPaced, Unit: "%", Help: "AP of AS and AP."},
 		{Name: "ventricular_paced_percent", Label: "ventricle paced", Value: r.VentricularPaced, Unit: "%", Help: "VP of VS and VP."},
 		{Name: "av_synchronous_percent", Label: "AV synchronous", Value: r.Synchronous, Unit: "%", Help: "QRS complexes with a P at most 300 ms before them (Circulation 2024;150:439)."},
-		{Name: "as_count", Label: "AS, P sensed", Value: whole(r.AS), Help: "Atrial signals that the timing used."},
-		{Name: "ap_count", Label: "AP, atrial stimuli", Value: whole(r.AP)},
-		{Name: "vs_count", Label: "VS, R sensed", Value: whole(r.VS), Help: "Ventricular signals that the timing used."},
-		{Name: "vp_count", Label: "VP, ventricular stimuli", Value: whole(r.VP)},
+		{Name: "as_count", Label: "AS, P sensed", Value: atrium(r.AS), Help: "Atrial signals that the timing used."},
+		{Name: "ap_count", Label: "AP, atrial stimuli", Value: atrium(r.AP)},
+		{Name: "vs_count", Label: "VS, R sensed", Value: ventricle(r.VS), Help: "Ventricular signals that the timing used."},
+		{Name: "vp_count", Label: "VP, ventricular stimuli", Value: ventricle(r.VP)},
 		{Name: "longest_without_qrs_ms", Label: "longest without QRS", Value: &r.Longest, Unit: "ms", Help: "Between QRS complexes, or to an end of the strip."},
 		{Name: "atrial_refractory_count", Label: "atrial, refractory", Value: some(r.RefractoryA), Help: "Atrial signals in refractory periods."},
 		{Name: "ventricular_refractory_count", Label: "ventricular, refractory", Value: some(r.RefractoryV), Help: "Ventricular signals in refractory periods."},
@@ -147,6 +150,13 @@ func counted(r *measure.Device) []number {
 		}
 	}
 	return out
+}
+
+func unless(out bool, v *float64) *float64 {
+	if out {
+		return nil
+	}
+	return v
 }
 
 func upper(s string) string {
