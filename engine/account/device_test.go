@@ -125,7 +125,7 @@ func TestDeviceSentencesAtTheEdges(t *testing.T) {
 		{"second P in an AV delay", `"span_ms":3000,"heart":{` + block + `},"pacemaker":{"mode":"DDD","sensed_av_ms":300},` + at("620"), 1, sensed('A', event.Refractory), "a P before it had begun the AV delay already", "later it would have been"},
 		{"blanked, then still refractory", `"span_ms":3000,"heart":{` + block + `},"pacemaker":{"mode":"DDD","pvab_ms":150},` + at("620"), 1, sensed('A', event.Blanked), "PVAB ends 40 ms later, but PVARP runs on to 0.760 s.", "PVAB ends 140"},
 		{"refractory in a mode that does not track", flutter, 3, sensed('A', event.Refractory), "refractory, noted and nothing more", "not tracked"},
-		{"the upper rate in time", `"span_ms":3000,"heart":{` + block + `},"pacemaker":{"mode":"DDD"}`, 2, sensed('A', event.Tracked), "it began an AV delay of 150 ms", "cannot come before"},
+		{"the upper rate in time", `"span_ms":3000,"heart":{"sinus":{"rate_bpm":109.0909},` + block + `},"pacemaker":{"mode":"DDD"}`, 2, sensed('A', event.Tracked), "it began an AV delay of 150 ms", "cannot come before"},
 		{"no interval of that reason ran out", `"span_ms":6000,"heart":{},"pacemaker":{"mode":"VVI","lower_rate_bpm":65,"hysteresis":{"rate_bpm":50}},"interventions":[{"at_ms":0,"do":"undersense","channel":"V","for_ms":3000}]`, 2, sensed('V', event.Resets), "It kept back the ventricular stimulus", "that ran out"},
 	} {
 		l := run(t, c.plan)
