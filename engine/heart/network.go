@@ -122,6 +122,13 @@ func (b *builder) add(name, label string, tissue event.Tissue, from, to string, 
 	return &b.h.Paths[len(b.h.Paths)-1]
 }
 
+// muscleTurn is well under every refractory period of muscle and over the time for
+// which two ways round can differ.
+const muscleTurn = 100 * tick.Millisecond
+
+// muscle makes a path one through muscle.
+func (p *Path) muscle() { p.Silent, p.Turn = true, muscleTurn }
+
 // plain is a conduction time without decrement.
 func plain(d tick.Dur, thetaMS float64) Conduct {
 	return Conduct{Open: true, Curve: Curve{MinMS: d.MS(), Theta: Cycled{BaseMS: thetaMS}, Inner: 1}}
@@ -156,7 +163,7 @@ func (b *builder) atria() {
 			w, a.From, a.To = atrialPaths[[2]string{a.To, a.From}], a.To, a.From
 		}
 		c := plain(a.Delay, 0)
-		b.add(w.name, w.label, event.Atrium, a.From, a.To, c, c).Silent = true
+		b.add(w.name, w.label, event.Atrium, a.From, a.To, c, c).muscle()
 	}
 }
 
@@ -203,7 +210,7 @@ func (b *builder) purkinje() {
 		// No theta of its own: an ending that let nothing in while the wave passes
 		// would let the muscle re-enter the fascicle long after. Its two ends decide.
 		c := plain(a.Delay, 0)
-		b.add(a.From+"-"+a.To, SiteLabel(a.From)+" to "+SiteLabel(a.To), event.Purkinje, a.From, a.To, c, c).Silent = true
+		b.add(a.From+"-"+a.To, SiteLabel(a.From)+" to "+SiteLabel(a.To), event.Purkinje, a.From, a.To, c, c).muscle()
 	}
 }
 
@@ -235,7 +242,7 @@ func (b *builder) trunk(name, from, to string, d tick.Dur, n *BundleNumbers) {
 func (b *builder) muscle() {
 	for _, a := range anatomyMuscle {
 		c := plain(a.Delay, 0)
-		b.add(a.From+"-"+a.To, "ventricular muscle", event.Ventricle, a.From, a.To, c, c).Silent = true
+		b.add(a.From+"-"+a.To, "ventricular muscle", event.Ventricle, a.From, a.To, c, c).muscle()
 	}
 }
 

@@ -81,7 +81,9 @@ func (d dice) sites(grain float64) *heart.Heart {
 		if d.chance(0.3) {
 			p.Up = p.Down
 		}
-		p.Silent = d.chance(0.2)
+		if p.Silent = d.chance(0.2); p.Silent && d.chance(0.5) {
+			p.Turn = 80 * tick.Millisecond
+		}
 		p.Drop = d.drop()
 		h.Paths = append(h.Paths, p)
 	}

@@ -16,6 +16,9 @@
 //     that one entered. The path has recovered if r >= theta or nothing ever left it.
 //     theta follows the interval between the last two impulses that rule 7 let in,
 //     either way (the basic cycle until there are two).
+//     A path with a Turn lets nothing in, and records nothing, while an impulse that
+//     went the other way, or two that met, left it less than Turn ago and none is
+//     being conducted the other way.
 //  4. A path that does not conduct in that direction blocks the impulse (OneWay): at
 //     the entrance where Reach is 0 or the path has not recovered, otherwise after
 //     Reach of its length, taking that share of the delay of rule 7. The path then
@@ -89,6 +92,7 @@ type exit struct {
 type pathState struct {
 	left    tick.Time // when an impulse last left or stopped inside; may lie ahead
 	used    bool      // one ever did
+	went    event.Dir // which way; 0 where two met
 	entered tick.Time // last entry that was conducted
 	entries uint8     // how many, up to 2
 	cycle   tick.Dur  // between the last two

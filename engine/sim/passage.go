@@ -17,6 +17,7 @@ type way struct {
 	decrease bool     // the delay depends on recovery
 	open     bool
 	silent   bool
+	turn     tick.Dur
 	drops    bool  // a drop pattern stands in it
 	class    class // of arrivals
 	exit     event.SiteID
@@ -24,7 +25,7 @@ type way struct {
 
 func (m *Machine) compile(p *heart.Path, d event.Dir) way {
 	c := p.Dir(d)
-	w := way{c: c, min: m.quantise(tick.MS(c.MinMS)), open: c.Open, silent: p.Silent, fixed: c.Theta.PerCycle == 0, decrease: c.AlphaMS != 0, exit: p.Exit(d)}
+	w := way{c: c, min: m.quantise(tick.MS(c.MinMS)), open: c.Open, silent: p.Silent, turn: m.quantise(p.Turn), fixed: c.Theta.PerCycle == 0, decrease: c.AlphaMS != 0, exit: p.Exit(d)}
 	if w.fixed {
 		w.theta = m.quantise(c.Refractory(0))
 	}
@@ -90,6 +91,9 @@ func (m *Machine) enter(p event.PathID, d event.Dir, cause event.ID, from event.
 	if against.active {
 		left, used = against.leftBefore, against.usedBefore
 	}
+	if w.turn > 0 && used && !against.active && st.went != d && m.now.Sub(left) < w.turn {
+		return
+	}
 	a := attempt{path: p, dir: d, from: from, cause: cause, recovery: event.Unknown, needed: m.theta(w, st)}
 	if used {
 		a.recovery = m.now.Sub(left)
@@ -131,7 +135,7 @@ func (m *Machine) block(w *way, t tick.Time, a *attempt, r event.Rule, depth uin
 
 // stopInside lets an impulse come a part of the way; the path counts as left there.
 func (m *Machine) stopInside(w *way, st *pathState, after tick.Dur, a *attempt, r event.Rule, depth uint16) {
-	st.left, st.used = m.now.Add(after), true
+	st.left, st.used, st.went = m.now.Add(after), true, a.dir
 	m.block(w, st.left, a, r, depth)
 }
 
@@ -156,7 +160,7 @@ func (m *Machine) conduct(w *way, st *pathState, a *attempt) {
 	in.leftBefore, in.usedBefore = st.left, st.used
 	in.attempt = *a
 	st.enter(m.now)
-	st.left, st.used = m.now.Add(in.delay), true
+	st.left, st.used, st.went = m.now.Add(in.delay), true, a.dir
 	m.push(st.left, w.class, int(a.path), uint8(a.dir), in.gen)
 }
 
@@ -190,7 +194,7 @@ func (m *Machine) collide(w *way, st *pathState, a *attempt, against *transit) {
 		x, gone = reach, m.quantise(theirs*tick.Dur(1000-w.c.Reach)/1000)
 		rule, depth = event.OneWay, w.c.Reach
 	}
-	st.left, st.used = against.start.Add(gone), true
+	st.left, st.used, st.went = against.start.Add(gone), true, 0
 	m.block(w, st.left, &against.attempt, event.Collision, uint16(min(gone*1000/theirs, 1000)))
 	m.block(w, m.now.Add(x), a, rule, depth)
 }

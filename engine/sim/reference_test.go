@@ -41,6 +41,7 @@ type refPath struct {
 	inside [3]refImpulse // by direction
 	used   bool          // an impulse has left, or is stopping inside
 	left   tick.Time     // when; ahead of now for one that is stopping
+	went   event.Dir     // which way; 0 where two met
 	letIn  []tick.Time
 	met    int // impulses that met the drop pattern
 	random *rand.Rand

@@ -147,3 +147,17 @@ func TestSuppressionKnowsThePhaseAtTheStart(t *testing.T) {
 		t.Errorf("got\n%s\nwant\n%s", got, want)
 	}
 }
+
+// A premature beat at the edge of ventricular refractoriness must not start
+// re-entry in a healthy ventricle: an ending of a fascicle once carried the impulse
+// back through muscle that the same wave had just crossed.
+func TestNoReentryThroughMuscleJustCrossed(t *testing.T) {
+	for at := 3936.0; at < 3990; at += 2 {
+		s := withDevice(t, 6000, `"sinus":{"rate_bpm":58},"av_node":{"fast":{"ah_ms":null,"va_ms":null}}`, `"mode":"DDD","lower_rate_bpm":50`, stimulus(at, "rv_apex"))
+		for i, d := range diffs(s.times("rv_apex")) {
+			if d < 300 {
+				t.Fatalf("premature beat at %v ms: the apex is depolarised again after %.0f ms (beat %d)", at, d, i+1)
+			}
+		}
+	}
+}
