@@ -123,16 +123,21 @@ describe("the pacemaker", () => {
     assert.equal(await page.isVisible("text=+ loss of capture"), false);
     await block(page);
     let last = await withDevice(page);
-    for (const [i, name] of ["loss of capture", "undersensing", "signals from outside"].entries()) {
+    for (const [i, name] of ["loss of capture", "undersensing", "broken lead", "dislodged lead", "signals from outside"].entries()) {
       await page.click(`text=+ ${name}`);
       const next = await settled(page);
       assert.equal(await page.locator(".row.wrong").count(), 0, name);
-      assert.equal(await page.inputValue(`[data-field="interventions[${i}].channel"]`), "V");
+      assert.ok(["A", "V"].includes(await page.inputValue(`[data-field="interventions[${i}].channel"]`)));
       if (name === "undersensing") await page.selectOption(`[data-field="interventions[${i}].channel"]`, "A");
       assert.notEqual(await settled(page), last, name);
       last = next;
     }
     assert.match(await page.innerText("#account .counts"), /VP without capture/);
+    await page.click("text=+ change");
+    await page.selectOption('[data-field="interventions[5].field"]', "pacemaker.lower_rate_bpm");
+    await page.fill('[data-field="interventions[5].to"]', "95");
+    assert.notEqual(await settled(page), last);
+    assert.equal(await page.locator(".row.wrong").count(), 0);
   }));
 
   test("nothing sticks out and the sheet is filled, from desk to tablet", () => onPage(async (page) => {

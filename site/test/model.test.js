@@ -5,9 +5,10 @@ import { test } from "node:test";
 import { num, typed } from "../base/format.js";
 import { timeScale, tOf, xOf } from "../base/scale.js";
 import { nearest, placeOf, readScene, timeAt } from "../engine/scene.js";
-import { covers, drop, get, put, steps } from "../model/path.js";
+import { covers, drop, dropWithin, get, put, steps } from "../model/path.js";
 import { createStore } from "../model/store.js";
-import { FIRST_VIEW, fitSpeed, onStrip, pan, reveal, shown, zoomTo } from "../model/view.js";
+import { FIRST_VIEW, fitSpeed, ladderFor, onStrip, pan, reveal, shown, zoomTo } from "../model/view.js";
+import { headingOf, modeWords } from "../views/device.js";
 import { fraction, valueAt, verdict } from "../views/range.js";
 
 test("a path is read into steps", () => {
@@ -41,6 +42,30 @@ test("put and get agree, and drop undoes put on a plan that lacked the place", (
     assert.equal(get(put({}, path, 7), path), 7);
     assert.deepEqual(drop(put({}, path, 7), path), {});
   }
+});
+
+test("a part that is there stays there without its last value", () => {
+  assert.deepEqual(dropWithin({ format: "f", pacemaker: { pvarp_ms: 300 } }, "pacemaker.pvarp_ms", "pacemaker"), { format: "f", pacemaker: {} });
+  assert.deepEqual(dropWithin({ pacemaker: { loop: { beats: 8 } } }, "pacemaker.loop.beats", "pacemaker"), { pacemaker: {} });
+  assert.deepEqual(dropWithin({ format: "f" }, "pacemaker.pvarp_ms", "pacemaker"), { format: "f" });
+  assert.deepEqual(dropWithin({ heart: { atria: { erp_ms: 1 } } }, "heart.atria.erp_ms", ""), {});
+});
+
+test("the ladder goes by the room there is until a form is chosen", () => {
+  assert.equal(ladderFor(FIRST_VIEW, 759), "plain");
+  assert.equal(ladderFor(FIRST_VIEW, 760), "full");
+  assert.equal(ladderFor({ ...FIRST_VIEW, ladder: "plain", ladder_chosen: true }, 900), "plain");
+});
+
+test("a mode's letters are told in words", () => {
+  assert.equal(modeWords("DDDR"), "paces both chambers, senses both chambers, tracks P, is inhibited by R, rate by sensor");
+  assert.equal(modeWords("VOO"), "paces ventricle, senses nothing");
+});
+
+test("folded numbers of the device carry their heading", () => {
+  assert.equal(headingOf("pacemaker.night.to_ms"), "night: ");
+  assert.equal(headingOf("pacemaker.leads.far_field_ms"), "far field and T wave: ");
+  assert.equal(headingOf("pacemaker.lower_rate_bpm"), "");
 });
 
 test("a diagnosis below a row's place belongs to the row", () => {

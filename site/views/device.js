@@ -43,6 +43,16 @@ export const DEVICE_PLACES = [
 ];
 
 /**
+ * The heading under which a folded field of the device stands, to tell it from others
+ * of the same name: "hysteresis: "; empty for the everyday ones.
+ * @param {string} path
+ */
+export function headingOf(path) {
+  const title = FOLDED.find(([name]) => path === `pacemaker.${name}` || path.startsWith(`pacemaker.${name}.`))?.[1];
+  return title ? `${title[0].toLowerCase()}${title.slice(1)}: ` : "";
+}
+
+/**
  * Gives a field of the device the words of its choices.
  * @param {Catalogue} catalogue
  */

@@ -4,6 +4,7 @@
 import { el, fill } from "../base/dom.js";
 import { drop, get, put } from "../model/path.js";
 import { shown } from "../model/view.js";
+import { headingOf } from "./device.js";
 import { makeRow } from "./row.js";
 
 /**
@@ -124,6 +125,8 @@ const DEEDS = {
   set: { name: "Change", fields: ["at_ms", "field", "to", "over_ms"] },
   lose_capture: { name: "Loss of capture", fields: ["at_ms", "channel", "for_ms"] },
   undersense: { name: "Undersensing", fields: ["at_ms", "channel", "for_ms"] },
+  fracture: { name: "Broken lead", fields: ["at_ms", "channel", "for_ms"] },
+  dislodge: { name: "Dislodged lead", fields: ["at_ms", "channel", "site"] },
   signal: { name: "Signals from outside", fields: ["at_ms", "channel", "cycle_ms", "count"] },
 };
 
@@ -133,8 +136,9 @@ const DEEDS = {
  */
 export function interventionsView(store, catalogue) {
   const fields = itemFields(catalogue, "interventions[].");
-  const numbers = catalogue.fields.filter((f) => !f.path.includes("[]") && f.path.startsWith("heart.") && (f.kind === "number" || (f.kind === "group" && f.nullable)) && !f.curve);
-  const names = Object.fromEntries(numbers.map((f) => [f.path, `${place(f.path)}${f.label}`]));
+  const numbers = catalogue.fields.filter((f) => !f.path.includes("[]") && !f.curve &&
+    (f.path.startsWith("heart.") ? f.kind === "number" || (f.kind === "group" && f.nullable) : f.path.startsWith("pacemaker.") && f.kind === "number"));
+  const names = Object.fromEntries(numbers.map((f) => [f.path, f.path.startsWith("heart.") ? `${place(f.path)}${f.label}` : `device, ${headingOf(f.path)}${f.label}`]));
 
   /** @param {any} item */
   function own(item) {
@@ -144,7 +148,8 @@ export function interventionsView(store, catalogue) {
       const f = fields.find((x) => x.path === `interventions[].${name}`);
       if (!f) return [];
       if (name === "count" && item?.do === "signal") return [{ ...f, label: "signals" }];
-      if (name === "field") return [{ ...f, choices: numbers.map((n) => n.path), names }];
+      if (name === "field") return [{ ...f, choices: numbers.filter((n) => n.path.startsWith("heart.") || paced(store.get().plan)).map((n) => n.path), names }];
+      if (name === "over_ms" && target?.path.startsWith("pacemaker.") && item.over_ms === undefined) return [];
       if (name === "to" && target) {
         return [{ ...f, label: "to", unit: target.unit, kind: /** @type {const} */ ("number"), min: target.min, max: target.max, normal: target.normal, default: null, nullable: target.nullable, null: target.null, is_null: false }];
       }
@@ -163,13 +168,15 @@ export function interventionsView(store, catalogue) {
     at: "interventions",
     title: (item) => DEEDS[item?.do]?.name ?? "Intervention",
     fields: own,
-    shape: (item) => `${item?.do} ${item?.field ?? ""}`,
+    shape: (item) => `${item?.do} ${item?.field ?? ""} ${paced(store.get().plan)} ${item?.over_ms === undefined}`,
     adds: [
       { label: "premature beat", make: () => ({ at_ms: now(), do: "stimulate", site: "right_atrium" }) },
       { label: "train", make: () => ({ at_ms: now(), do: "train", site: "right_atrium", cycle_ms: 600, count: 8 }) },
       { label: "change", make: () => ({ at_ms: now(), do: "set", field: "heart.sinus.rate_bpm", to: 120 }) },
       { label: "loss of capture", when: paced, make: () => ({ at_ms: now(), do: "lose_capture", channel: "V", for_ms: 2000 }) },
       { label: "undersensing", when: paced, make: () => ({ at_ms: now(), do: "undersense", channel: "V", for_ms: 2000 }) },
+      { label: "broken lead", when: paced, make: () => ({ at_ms: now(), do: "fracture", channel: "V", for_ms: 2000 }) },
+      { label: "dislodged lead", when: paced, make: () => ({ at_ms: now(), do: "dislodge", channel: "A", site: "rv_outflow" }) },
       { label: "signals from outside", when: paced, make: () => ({ at_ms: now(), do: "signal", channel: "V", cycle_ms: 100, count: 10 }) },
     ],
   });

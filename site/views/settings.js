@@ -160,7 +160,7 @@ export function settingsView(root, store, catalogue) {
       s.more.setAttribute("aria-expanded", String(s.open || filtered));
     }
     foci.node.hidden = (wanted !== "" && !"foci focus rate site escape".includes(wanted)) || (only.checked && foci.count() === 0);
-    last.hidden = (wanted !== "" && !"interventions premature beat train change stimulate set loss of capture undersensing signals from outside noise".includes(wanted)) || (only.checked && interventions.count() === 0);
+    last.hidden = (wanted !== "" && !"interventions premature beat train change stimulate set loss of capture undersensing broken dislodged lead signals from outside noise".includes(wanted)) || (only.checked && interventions.count() === 0);
     for (const [name, g] of groups) {
       if (name !== "Interventions") g.hidden = filtered && !g.querySelector(":scope > section:not([hidden])");
       if (filtered) g.open = true;

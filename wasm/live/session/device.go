@@ -3,6 +3,7 @@ package session
 import (
 	"fmt"
 
+	"escapement/engine/event"
 	"escapement/engine/measure"
 	"escapement/engine/pacer"
 	"escapement/engine/tick"
@@ -95,6 +96,11 @@ func (t *timeline) leads(d *device) {
 			}
 			if own.Threshold > 0 { // without one every stimulus captures, and there is no margin
 				d.put(vs, l.name+"_")
+			}
+			if own.Muscle != event.None {
+				muscle := pacer.Strength{Rheobase: volt("muscle_rheobase_v"), Chronaxie: s.Chronaxie}.Values(own.Amplitude, tick.MS(volt("width_ms")))
+				muscle[0].Label = "capture threshold of the muscle beside it"
+				d.put(muscle[:1], l.name+"_muscle_")
 			}
 			if !own.Captures() {
 				d.Warnings = append(d.Warnings, fmt.Sprintf("The %s output of %.2f V is below the threshold of %.2f V: no stimulus captures.", l.label, own.Amplitude, own.Threshold))
