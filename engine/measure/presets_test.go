@@ -99,6 +99,8 @@ var expected = map[string][]string{
 	"dual-t-wave-long-pvarp":          {"av_sequential_pacing", "sinus_rhythm", "complete_av_block", "oversensing"},
 	"his-pacing":                      {"p_synchronous_pacing", "sinus_rhythm"},
 	"left-fascicle-pacing":            {"p_synchronous_pacing", "sinus_rhythm"},
+	"his-output-steps":                {"ventricular_pacing", "sinus_rhythm", "complete_av_block", "av_dissociation", "loss_of_capture"},
+	"vdd-mechanical-sensing":          {"upper_rate_wenckebach", "upper_rate_two_to_one", "p_synchronous_pacing", "sinus_tachycardia", "complete_av_block"},
 
 	// Whether the definitions apply depends on the rate the preset is given: from
 	// 100/min the finding is functional block.

@@ -280,6 +280,26 @@ var deviceFacts = map[string]func(strip){
 			s.t.Errorf("%d refractory P waves", n)
 		}
 	},
+	"his-output-steps": func(s strip) {
+		for _, e := range s.given('V') {
+			t := e.T.MS()
+			sv := firstVentricular(s, t-0.001) - t
+			switch {
+			case t < 4300 || t > 10700:
+				near(s.t, "both tissues: stimulus to ventricle", sv, 0, exact)
+			case t < 8600:
+				near(s.t, "His bundle only: stimulus to ventricle", sv, 45, exact)
+			case e.Captured:
+				s.t.Errorf("captured at %v ms below both thresholds", t)
+			}
+		}
+	},
+	"vdd-mechanical-sensing": func(s strip) {
+		near(s.t, "P to stimulus", s.at("VP")[3]-s.times("right_atrium")[3], 140, exact)
+		if n := len(after(s.at("AS refractory"), 8000)); n == 0 {
+			s.t.Error("no P in PVARP at the fast rate")
+		}
+	},
 	"his-pacing": func(s strip) {
 		v := s.at("VP")
 		for i, first := range s.firstVentricular() {
