@@ -68,11 +68,12 @@ export function halo(g, scene, styles, events) {
   }
 }
 
-const AROUND_MM = 0.9; // from a block's bar to the outline around it
+/** How far an outline stands off, in millimetres, by the class it is drawn around. @type {Record<string, number>} */
+const AROUND = { block: 0.9, window: 0.3, "window-edge": 0.3 };
 
 /**
- * Draws an outline around the blocks among some events: their bars are short, and a
- * halo behind one hardly shows.
+ * Draws an outline around the blocks and the windows among some events: a halo behind
+ * a short bar or a filled one hardly shows.
  * @param {CanvasRenderingContext2D} g
  * @param {Scene} scene
  * @param {Styles} styles
@@ -80,15 +81,24 @@ const AROUND_MM = 0.9; // from a block's bar to the outline around it
  */
 export function outline(g, scene, styles, events) {
   g.strokeStyle = styles.device;
-  g.lineWidth = 0.35;
+  g.lineWidth = 0.4;
   g.setLineDash([]);
   for (const m of scene.marks) {
-    if (m.cls !== "block" || m.shape !== LINE || !events.has(m.event)) continue;
+    const off = AROUND[m.cls];
+    if (off === undefined || !events.has(m.event)) continue;
+    const { x0, y0, x1, y1 } = box(m, scene);
     g.beginPath();
-    g.roundRect(Math.min(m.x, m.x2) - AROUND_MM, Math.min(m.y, m.y2) - AROUND_MM,
-      Math.abs(m.x2 - m.x) + 2 * AROUND_MM, Math.abs(m.y2 - m.y) + 2 * AROUND_MM, AROUND_MM);
+    g.roundRect(x0 - off, y0 - off, x1 - x0 + 2 * off, y1 - y0 + 2 * off, off);
     g.stroke();
   }
+}
+
+/** @param {Mark} m @param {Scene} scene */
+function box(m, scene) {
+  const at = m.shape === POLY ? [...scene.points.subarray(2 * m.from, 2 * (m.from + m.count))] : [m.x, m.y, m.x2, m.y2];
+  const xs = at.filter((_, i) => i % 2 === 0);
+  const ys = at.filter((_, i) => i % 2 === 1);
+  return { x0: Math.min(...xs), y0: Math.min(...ys), x1: Math.max(...xs), y1: Math.max(...ys) };
 }
 
 /**

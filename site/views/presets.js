@@ -15,7 +15,7 @@ import { dialog } from "./dialog.js";
  */
 export function presetsDialog(store, catalogue) {
   const find = el("input", { type: "search", placeholder: "Search", "aria-label": "Search presets", oninput: show });
-  const list = el("ul", { class: "preset-list" });
+  const list = el("div", null);
   const box = dialog("Presets", "presets", find, list);
   box.addEventListener("close", () => {
     find.value = "";
@@ -25,15 +25,22 @@ export function presetsDialog(store, catalogue) {
     const wanted = find.value.trim().toLowerCase();
     const current = store.get().preset;
     const hits = catalogue.presets.filter((p) => `${p.title} ${p.note} ${p.name}`.toLowerCase().includes(wanted));
-    fill(list, hits.map((p) => el("li", null,
-      el("button", {
-        type: "button", "data-preset": p.name, "aria-current": p.name === current ? "true" : null,
-        onclick: () => {
-          openPreset(store, p);
-          box.close();
-        },
-      }, el("strong", null, p.title), p.note && el("span", null, p.note)))),
-    hits.length === 0 && el("li", { class: "none" }, `No preset speaks of “${find.value.trim()}”.`));
+    const parts = /** @type {[string, Preset[]][]} */ ([["Heart", hits.filter((p) => !p.plan.pacemaker)], ["Pacemaker", hits.filter((p) => p.plan.pacemaker)]]);
+    fill(list, parts.filter(([, own]) => own.length > 0).map(([name, own]) => el("section", null,
+      el("h3", null, name),
+      el("ul", { class: "preset-list" }, own.map((p) => entry(p, p.name === current))))),
+    hits.length === 0 && el("p", { class: "none" }, `No preset speaks of “${find.value.trim()}”.`));
+  }
+
+  /** @param {Preset} p @param {boolean} current */
+  function entry(p, current) {
+    return el("li", null, el("button", {
+      type: "button", "data-preset": p.name, "aria-current": current ? "true" : null,
+      onclick: () => {
+        openPreset(store, p);
+        box.close();
+      },
+    }, el("strong", null, p.title), p.note && el("span", null, p.note)));
   }
 
   return {
