@@ -114,6 +114,8 @@ describe("the pacemaker", () => {
     await page.fill(field("mode"), "vvi");
     await page.waitForSelector(`${row("mode")}.wrong`, { state: "detached" });
     assert.notEqual(await settled(page), first);
+    assert.equal(await page.innerText(`${row("pvarp_ms")} .assumed`), "not used");
+    assert.equal(await page.innerText(`${row("lower_rate_bpm")} .assumed`), "assumed");
     assert.equal(await page.locator("#modes-pacemaker\\.mode option").count() >= 14, true);
     await page.fill(field("mode"), "");
     assert.equal(await settled(page), first);

@@ -8,7 +8,7 @@ import { nearest, placeOf, readScene, timeAt } from "../engine/scene.js";
 import { covers, drop, dropWithin, get, put, steps } from "../model/path.js";
 import { createStore } from "../model/store.js";
 import { FIRST_VIEW, fitSpeed, ladderFor, onStrip, pan, reveal, shown, zoomTo } from "../model/view.js";
-import { headingOf, modeWords } from "../views/device.js";
+import { headingOf, idle, modeWords } from "../views/device.js";
 import { fraction, valueAt, verdict } from "../views/range.js";
 
 test("a path is read into steps", () => {
@@ -60,6 +60,13 @@ test("the ladder goes by the room there is until a form is chosen", () => {
 test("a mode's letters are told in words", () => {
   assert.equal(modeWords("DDDR"), "paces both chambers, senses both chambers, tracks P, is inhibited by R, rate by sensor");
   assert.equal(modeWords("VOO"), "paces ventricle, senses nothing");
+});
+
+test("a number that the mode does not use lies idle", () => {
+  for (const [path, code, want] of /** @type {[string, string, boolean][]} */ ([
+    ["pvarp_ms", "VVI", true], ["pvarp_ms", "VDD", false], ["pvarp_ms", "DDIR", false], ["sensed_av_ms", "DDI", true], ["paced_av_ms", "DDI", false],
+    ["paced_av_ms", "VDD", true], ["ventricular_refractory_ms", "AAI", true], ["lower_rate_bpm", "VVI", false], ["pvarp_ms", "nonsense", false],
+  ])) assert.equal(idle(`pacemaker.${path}`, code), want, `${path} in ${code}`);
 });
 
 test("folded numbers of the device carry their heading", () => {

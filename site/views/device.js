@@ -77,6 +77,32 @@ export function modeWords(code) {
   return [`paces ${CHAMBER[paced]}`, `senses ${CHAMBER[sensed]}`, answer, rate === "R" && "rate by sensor"].filter(Boolean).join(", ");
 }
 
+/** @typedef {(code: string) => boolean} Uses */
+const tracks = /** @type {Uses} */ (([p, s, r]) => r === "D" && "AD".includes(s) && "VD".includes(p));
+const pacesBoth = /** @type {Uses} */ (([p]) => p === "D");
+const hearsAtriumForVentricle = /** @type {Uses} */ (([p, s]) => "AD".includes(s) && "VD".includes(p));
+const hearsVentricle = /** @type {Uses} */ (([, s]) => "VD".includes(s));
+
+/** Which modes use an everyday number. @type {Record<string, Uses>} */
+const USES = {
+  "pacemaker.max_tracking_rate_bpm": tracks,
+  "pacemaker.sensed_av_ms": tracks,
+  "pacemaker.paced_av_ms": pacesBoth,
+  "pacemaker.base_timing": pacesBoth,
+  "pacemaker.pvarp_ms": hearsAtriumForVentricle,
+  "pacemaker.pvab_ms": hearsAtriumForVentricle,
+  "pacemaker.ventricular_refractory_ms": hearsVentricle,
+};
+
+/**
+ * Whether a mode lets a number of the device lie idle.
+ * @param {string} path
+ * @param {string} code
+ */
+export function idle(path, code) {
+  return /^[OAVD]{2}[OTID]/.test(code) && USES[path]?.(code) === false;
+}
+
 /** Modes that a field of its own takes, by its path. @type {Record<string, string[]>} */
 const OWN = {
   "pacemaker.magnet.mode": ["AOO", "VOO", "DOO"],

@@ -85,7 +85,7 @@ export function outline(g, scene, styles, events) {
   g.setLineDash([]);
   for (const m of scene.marks) {
     const off = AROUND[m.cls];
-    if (off === undefined || !events.has(m.event)) continue;
+    if (off === undefined || m.event === 0 || !events.has(m.event)) continue;
     const { x0, y0, x1, y1 } = box(m, scene);
     g.beginPath();
     g.roundRect(x0 - off, y0 - off, x1 - x0 + 2 * off, y1 - y0 + 2 * off, off);

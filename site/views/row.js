@@ -35,13 +35,15 @@ const STEP = { ms: 5, "/min": 1, "ms/ms": 0.01, s: 1 };
  * @param {string} [about.path] where it differs from the field's own
  * @param {string} [about.within] path of the part it belongs to, which may be absent as a
  *   whole. What the plan does not state of such a part is shown as assumed.
+ * @param {(state: State) => boolean} [about.idle] whether nothing uses it as things stand
  * @returns {Row}
  */
-export function makeRow(store, field, { path = field.path, within = "" } = {}) {
+export function makeRow(store, field, { path = field.path, within = "", idle = () => false } = {}) {
   const id = uid("row");
   const step = STEP[field.unit] ?? (field.max <= 2 ? 0.05 : 1);
   const control = makeControl();
   const bar = rangeBar();
+  const assumed = within && el("span", { class: "assumed", title: "The plan does not state it" }, "assumed");
   const off = field.nullable ? el("input", { type: "checkbox", onchange: () => setNull(/** @type {HTMLInputElement} */ (off).checked) }) : null;
   const reset = el("button", {
     type: "button", class: "reset", onclick: () => change(undefined),
@@ -51,7 +53,7 @@ export function makeRow(store, field, { path = field.path, within = "" } = {}) {
   const help = el("span", { class: "unseen", id: `${id}-help` }, describe(field));
   const node = el("div", { class: `row ${field.kind}${within ? " within" : ""}`, "data-path": path },
     field.kind === "group" ? el("span", { class: "name" }, field.label) : el("label", { class: "name", for: id, title: describe(field) }, field.label),
-    control, el("span", { class: "unit" }, field.unit ?? ""), bar.node, within && el("span", { class: "assumed", title: "The plan does not state it" }, "assumed"), reset,
+    control, el("span", { class: "unit" }, field.unit ?? ""), bar.node, assumed, reset,
     off && el("label", { class: "off" }, off, field.null ?? "absent"), fault, help);
   bar.node.addEventListener("pointerdown", slide);
   bar.show(null, normal());
@@ -194,6 +196,9 @@ export function makeRow(store, field, { path = field.path, within = "" } = {}) {
     }
     if (off) off.checked = v === null;
     node.classList.toggle("stated", within !== "" && stated);
+    const unused = idle(state);
+    node.classList.toggle("idle", unused);
+    if (assumed) say(assumed, unused ? "not used" : "assumed");
     bar.show(value(state), normal());
   }
 

@@ -4,7 +4,7 @@
 
 import { el, fill, say } from "../base/dom.js";
 import { count } from "../base/format.js";
-import { DEVICE_PLACES, deviceChoices, modeLists } from "./device.js";
+import { DEVICE_PLACES, deviceChoices, idle, modeLists } from "./device.js";
 import { interventionsView, fociView } from "./lists.js";
 import { describe, makeRow } from "./row.js";
 
@@ -80,7 +80,7 @@ export function settingsView(root, store, catalogue) {
     const section = sections.find((s) => s.title === title && groups.get(group)?.contains(s.node)) ?? open(group, title, place.startsWith("pacemaker."));
     // Whether a part is there at all is never folded away.
     const within = parts.find((p) => p === "pacemaker" && field.path.startsWith(`${p}.`));
-    const row = makeRow(store, field.path === place && field.kind === "group" ? { ...field, advanced: false } : field, { within });
+    const row = makeRow(store, field.path === place && field.kind === "group" ? { ...field, advanced: false } : field, { within, idle: (state) => within !== undefined && idle(field.path, modeOf(state)) });
     section.rows.push(row);
     section.node.insertBefore(row.node, section.whole ? null : section.more);
   }
@@ -92,6 +92,12 @@ export function settingsView(root, store, catalogue) {
   for (const name of GROUPS) {
     const g = groups.get(name);
     if (g) body.append(g);
+  }
+
+  const standard = catalogue.fields.find((f) => f.path === "pacemaker.mode")?.word ?? "";
+  /** @param {State} state */
+  function modeOf(state) {
+    return String(state.plan.pacemaker?.mode ?? standard);
   }
 
   /** Unfolds a group and brings it to the top. @param {string} name */
