@@ -64,6 +64,7 @@ func TestDiagnosesNameThePlaceTheValueAndWhatIsAllowed(t *testing.T) {
 		{"unknown site", head + `,"heart":{"foci":[{"site":"rv_apx"}]}}`, "heart.foci[0].site: \"rv_apx\"; allowed: one of sinus, "},
 		{"site left out", head + `,"heart":{"foci":[{"rate_bpm":40}]}}`, "heart.foci[0].site: nothing; allowed: one of sinus, "},
 		{"train without a count", head + `,"interventions":[{"at_ms":1,"do":"train","site":"his","cycle_ms":500}]}`, "interventions[0].count: nothing; allowed: a whole number from 1 to 20000"},
+		{"a burst without a cycle", head + `,"interventions":[{"at_ms":1,"do":"signal","channel":"V","count":4}]}`, "interventions[0].cycle_ms: nothing; allowed: a number from 20 to 10000 ms"},
 		{"half a stimulus", head + `,"interventions":[{"at_ms":1,"do":"train","site":"his","cycle_ms":500,"count":1.5}]}`, "interventions[0].count: 1.5; allowed: a whole number from 1 to 20000"},
 		{"wrong field of a stimulus", head + `,"interventions":[{"at_ms":1,"do":"stimulate","site":"his","count":2}]}`, "interventions[0].count: a field that stimulate does not take; allowed: at_ms, site"},
 		{"set of an unknown field", head + `,"interventions":[{"at_ms":1,"do":"set","field":"heart.sinus.rate_bp","to":2}]}`, "interventions[0].field: \"heart.sinus.rate_bp\"; allowed: the path of a number in heart or pacemaker, such as heart.sinus.rate_bpm\n  note: did you mean \"heart.sinus.rate_bpm\"?"},

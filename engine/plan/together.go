@@ -106,8 +106,11 @@ func (d *decoder) intervention(at string, it Item) {
 			d.ds.add(at+"."+name, "a field that "+do+" does not take", strings.Join(append(append([]string{"at_ms"}, n.must...), n.may...), ", "), "")
 		}
 	}
-	if do == "set" {
+	switch {
+	case do == "set":
 		d.set(at, it)
+	case do == "signal" && it["count"].Number > 1:
+		d.has(at, it, "cycle_ms")
 	}
 }
 

@@ -261,7 +261,7 @@ func (m *Machine) change(c *plan.Change) {
 	if c.Field != "" {
 		m.record(event.Event{Kind: event.Change, Rule: event.Planned, Site: event.None, Path: event.None, Field: c.Field, To: c.To})
 	}
-	if c.Device != nil {
+	if c.Device != nil && m.dev != nil {
 		m.dev.program(c.Device)
 	}
 	if c.Heart == nil {
