@@ -37,7 +37,7 @@ var allowed = map[string][]string{
 	"engine/press":          {"engine/scene"},
 	"presets":               {},
 	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
-		"engine/account", "engine/scene", "presets"},
+		"engine/account", "engine/nomenclature", "engine/scene", "presets"},
 }
 
 // top are the programs: they wire everything, and nothing imports them.

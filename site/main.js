@@ -14,6 +14,7 @@ import { listingView } from "./views/listing.js";
 import { overviewView } from "./views/overview.js";
 import { presetsDialog } from "./views/presets.js";
 import { settingsView } from "./views/settings.js";
+import { tableView } from "./views/table.js";
 import { timelineView } from "./views/timeline.js";
 import { toolbarView } from "./views/toolbar.js";
 
@@ -109,7 +110,7 @@ async function explain() {
 function build(catalogue) {
   const keys = keysDialog();
   const presets = presetsDialog(store, catalogue);
-  const settings = settingsView(part("settings"), store, catalogue);
+  const settings = settingsView(part("settings"), store, catalogue, tableView(store, ask));
   const open = {
     presets: presets.open,
     keys: () => keys.showModal(),

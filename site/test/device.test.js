@@ -1,6 +1,7 @@
 // The pacemaker on the page: its lane, its settings, its arithmetic.
 
 import assert from "node:assert/strict";
+import { readFile } from "node:fs/promises";
 import { join } from "node:path";
 import { describe, test } from "node:test";
 import { ROOT, settled } from "./host.js";
@@ -140,6 +141,26 @@ describe("the pacemaker", () => {
     await page.fill('[data-field="interventions[5].to"]', "95");
     assert.notEqual(await settled(page), last);
     assert.equal(await page.locator(".row.wrong").count(), 0);
+  }));
+
+  test("its settings are saved as a table and read back; what is not stated is told", () => onPage(async (page) => {
+    await block(page);
+    await withDevice(page);
+    await page.fill(field("lower_rate_bpm"), "85");
+    const typed = await settled(page);
+    const [download] = await Promise.all([page.waitForEvent("download"), page.click("text=Save table")]);
+    const table = await readFile(await download.path(), "utf8");
+    assert.match(table, /MDC_IDC_SET_BRADY_LOWRATE,730880,pacemaker.lower_rate_bpm,85,\/min/);
+    assert.match(table, /pacemaker.pvarp_ms,not stated,ms/);
+    await page.fill(field("lower_rate_bpm"), "60");
+    assert.notEqual(await settled(page), typed);
+    await page.setInputFiles('[aria-label="Table of settings"]', { name: "report.csv", mimeType: "text/csv", buffer: Buffer.from(table) });
+    await page.waitForFunction(() => document.querySelector(".table-said")?.textContent?.startsWith("report.csv was read"));
+    assert.equal(await settled(page), typed);
+    await page.setInputFiles('[aria-label="Table of settings"]', { name: "bad.csv", mimeType: "text/csv", buffer: Buffer.from("mode,VVI\n") });
+    await page.waitForFunction(() => document.querySelector(".table-said.wrong"));
+    assert.match(await page.innerText(".table-said"), /bad.csv was not read. line 1/);
+    assert.equal(await settled(page), typed);
   }));
 
   test("nothing sticks out and the sheet is filled, from desk to tablet", () => onPage(async (page) => {

@@ -51,8 +51,9 @@ const GROUPS = ["Heart", "Pacemaker", "Interventions", "Strip"];
  * @param {HTMLElement} root
  * @param {Store} store
  * @param {Catalogue} catalogue
+ * @param {HTMLElement} table saving and reading the device's settings
  */
-export function settingsView(root, store, catalogue) {
+export function settingsView(root, store, catalogue, table) {
   const search = el("input", { type: "search", id: "search", placeholder: "Search settings", "aria-label": "Search settings", oninput: sift });
   const only = el("input", { type: "checkbox", id: "changed-only", onchange: sift });
   const onlyCount = el("span", null, "changed only");
@@ -84,6 +85,7 @@ export function settingsView(root, store, catalogue) {
     section.rows.push(row);
     section.node.insertBefore(row.node, section.whole ? null : section.more);
   }
+  groups.get("Pacemaker")?.append(table);
   const foci = fociView(store, catalogue);
   groups.get("Heart")?.append(foci.node);
   const interventions = interventionsView(store, catalogue);

@@ -7,8 +7,9 @@
 //	layout     {view, selected}        another scene of the same timeline
 //	account    {event}                 why an event came
 //	listing    {from_ms, to_ms}        events as text
+//	table      {plan, read}            the device's settings as a table, or the plan with a table read
 //
-// Every answer but compute's is null while nothing has been computed. An operation
+// Every answer but compute's and table's is null while nothing has been computed. An operation
 // that does not exist and arguments that are not JSON are bugs of the page and
 // panic.
 package session
@@ -57,6 +58,8 @@ func (s *Session) Call(op string, args []byte) (reply []byte, points []float32) 
 		return s.account(args), nil
 	case "listing":
 		return s.listing(args), nil
+	case "table":
+		return table(args), nil
 	}
 	panic("session: there is no operation " + op)
 }
