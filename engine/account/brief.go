@@ -23,8 +23,8 @@ func (w *writer) shortPacing(e *event.Event) string {
 	case e.Captured:
 	case e.MissedBy() > 0:
 		capture = "no capture, refractory tissue, missed by " + span(e.MissedBy())
-	case e.Why != "":
-		capture = "no capture, " + e.Why
+	case e.Outcome != 0:
+		capture = "no capture, " + outcomes[e.Outcome]
 	default:
 		capture = "no capture"
 	}

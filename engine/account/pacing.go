@@ -16,7 +16,7 @@ func (w *writer) pacing(e *event.Event) {
 		w.a.Title = what + " without capture"
 	}
 	w.say(fmt.Sprintf("%s at %s: %s.", what, clock(e.T), w.timer(e)))
-	if why := e.Why; why != "" && (e.Captured || e.MissedBy() > 0) {
+	if why := e.Why; why != "" {
 		w.say("The length of the interval was set by: " + why + ".")
 	}
 	w.capture(e)
@@ -103,6 +103,15 @@ func (w *writer) windowOf(e *event.Event, name string) *event.Event {
 	return nil
 }
 
+// outcomes in words.
+var outcomes = [...]string{
+	event.MuscleOnly:     "only the muscle of the two tissues under the tip",
+	event.ConductionOnly: "only the conduction system, not the muscle beside it",
+	event.BelowThreshold: "the output was below the threshold",
+	event.CaptureLost:    "loss of capture",
+	event.Overtaken:      "another impulse came first",
+}
+
 // capture: captured with what to spare, or why not.
 func (w *writer) capture(e *event.Event) {
 	known := e.Needed > 0 && e.Recovery >= 0
@@ -112,11 +121,15 @@ func (w *writer) capture(e *event.Event) {
 	}
 	where := w.site(e.Site)
 	switch {
+	case e.Captured && e.Outcome != 0:
+		w.say(fmt.Sprintf("It captured %s.", outcomes[e.Outcome]))
 	case e.Captured && known:
 		w.say(fmt.Sprintf("It captured at %s, which had last been depolarised %s before and needed %s.", where, span(e.Recovery), span(e.Needed)))
 		w.margin(e.Recovery-e.Needed, fmt.Sprintf("%s earlier it would not have captured.", span(e.Recovery-e.Needed)))
 	case e.Captured:
 		w.say(fmt.Sprintf("It captured at %s.", where))
+	case e.Outcome == event.Overtaken:
+		w.say(fmt.Sprintf("It did not capture: another impulse reached %s before it took effect.", where))
 	case e.MissedBy() > 0:
 		by := ""
 		if last := w.lastActivation(e.Site, e.ID); last != nil {
@@ -125,8 +138,8 @@ func (w *writer) capture(e *event.Event) {
 		w.say(fmt.Sprintf("It did not capture: %s had been depolarised%s %s before and needed %s: refractory tissue, missed by %s.", where, by, span(e.Recovery), span(e.Needed), span(e.MissedBy())))
 		w.unsensed(e)
 		w.margin(e.MissedBy(), fmt.Sprintf("%s later it would have captured.", span(e.MissedBy())))
-	case e.Why != "":
-		w.say(fmt.Sprintf("It did not capture although %s was excitable: %s.", where, e.Why))
+	case e.Outcome != 0:
+		w.say(fmt.Sprintf("It did not capture although %s was excitable: %s.", where, outcomes[e.Outcome]))
 	default:
 		w.say(fmt.Sprintf("It did not capture at %s.", where))
 	}

@@ -91,6 +91,9 @@ type Event struct {
 	// Captured tells whether a Stimulus depolarised its site.
 	Captured bool
 
+	// Outcome says what was particular about the capture of a Stimulus by Timed.
+	Outcome Outcome
+
 	// Recovery is the time since an impulse last left the path, and Needed the
 	// time it needed to conduct again, for an impulse that met the path's recovery
 	// (Activate by conduction, Block by PathRefractory or Collision). For
@@ -117,6 +120,19 @@ type Event struct {
 	// that ended it before its time, at Until. 0 is none: the window ran out.
 	By ID
 }
+
+// Outcome tells which tissue answered a stimulus, or why none did although it was
+// excitable when the stimulus came. The zero Outcome says nothing particular.
+type Outcome uint8
+
+const (
+	_              Outcome = iota
+	MuscleOnly             // of two tissues under one tip, the muscle
+	ConductionOnly         // of two tissues under one tip, the conduction system
+	BelowThreshold         // the output is below the threshold
+	CaptureLost            // a fault of the lead
+	Overtaken              // another impulse came first, during the latency
+)
 
 // Use is what a device does with a signal it sensed. The zero Use is invalid for a
 // Sense.

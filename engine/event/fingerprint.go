@@ -28,7 +28,7 @@ func (l *Log) Fingerprint() uint64 {
 			captured = 1
 		}
 		put(h, int64(e.ID), int64(e.Cause), int64(e.T), int64(e.Kind), int64(e.Rule), int64(e.Dir),
-			int64(e.Site), int64(e.Path), int64(e.Depth), captured, int64(e.Recovery), int64(e.Needed), int64(e.Until), int64(e.Channel), int64(e.Use), int64(e.By))
+			int64(e.Site), int64(e.Path), int64(e.Depth), captured, int64(e.Recovery), int64(e.Needed), int64(e.Until), int64(e.Channel), int64(e.Use), int64(e.By), int64(e.Outcome))
 		h.Write([]byte(e.Field))
 		h.Write([]byte(e.To))
 		h.Write([]byte(e.Why))

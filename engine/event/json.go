@@ -28,6 +28,7 @@ type record struct {
 	Field    string   `json:"field,omitempty"`
 	To       string   `json:"to,omitempty"`
 	Timer    string   `json:"timer,omitempty"`
+	Outcome  string   `json:"outcome,omitempty"`
 	Channel  string   `json:"channel,omitempty"`
 	Use      string   `json:"use,omitempty"`
 	Because  ID       `json:"because,omitempty"` // the window that decided a sense
@@ -86,7 +87,10 @@ func (l *Log) record(e *Event) record {
 		r.From, r.To, r.Why = e.Field, e.To, e.Why
 	case Stimulus:
 		captured := e.Captured
-		r.Captured, r.Timer = &captured, e.Field
+		r.Captured, r.Timer, r.Why = &captured, e.Field, e.Why
+		if e.Outcome != 0 {
+			r.Outcome = e.Outcome.String()
+		}
 		if c := l.Sites[e.Site].Chamber(); c != 0 {
 			r.Chamber = string(c)
 		}

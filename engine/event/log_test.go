@@ -154,3 +154,42 @@ func FuzzParse(f *testing.F) {
 		}
 	})
 }
+
+const paced = `log span=2000000
+site right_atrium atrium
+site rv_apex ventricle
+1 0 window opened from=0 until=1000000 channel=A field="atrial_escape" why="sensor"
+2 1000000 stimulus timed from=0 site=right_atrium captured=1 channel=A field="atrial_escape" why="sensor"
+3 1000000 activate captured from=2 site=right_atrium until=1220000
+4 1100000 sense signal from=0 site=rv_apex channel=V use=safety by=1
+5 1110000 stimulus timed from=4 site=rv_apex channel=V outcome=below_threshold field="safety"
+6 1200000 mode switched from=4 field="DDD" to="DDI" why="atrial rate"
+`
+
+// The device's events keep every field in the text form, and the validator knows them.
+func TestDeviceEventsRoundTrip(t *testing.T) {
+	l := parse(t, paced)
+	if got := l.Text(); got != paced {
+		t.Errorf("got\n%s\nwant\n%s", got, paced)
+	}
+	if faults := Validate(l); len(faults) > 0 {
+		t.Errorf("faults: %v", faults)
+	}
+	for _, c := range [][2]string{{"use=safety ", ""}, {"until=1000000", "until=900000 by=2"}, {`to="DDI" `, ""}, {"channel=V use", "use"}} {
+		if spoiled := parse(t, strings.Replace(paced, c[0], c[1], 1)); len(Validate(spoiled)) == 0 && spoiled.Fingerprint() == l.Fingerprint() {
+			t.Errorf("%q for %q passes unseen", c[1], c[0])
+		}
+	}
+	var b bytes.Buffer
+	if err := l.WriteJSON(&b); err != nil {
+		t.Fatal(err)
+	}
+	for _, want := range []string{
+		`"timer":"safety","outcome":"below_threshold"`, `"channel":"V","use":"safety","because":1`,
+		`"name":"atrial_escape","until_us":1000000,"ended_by":0`, `"from":"DDD"`,
+	} {
+		if !strings.Contains(b.String(), want) {
+			t.Errorf("the JSON lines lack %s:\n%s", want, b.String())
+		}
+	}
+}

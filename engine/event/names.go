@@ -27,6 +27,11 @@ var useNames = [...]string{
 	Noise: "noise", Safety: "safety", Triggers: "triggers", Observed: "observed",
 }
 
+var outcomeNames = [...]string{
+	MuscleOnly: "muscle_only", ConductionOnly: "conduction_only", BelowThreshold: "below_threshold",
+	CaptureLost: "capture_lost", Overtaken: "overtaken",
+}
+
 func name(names []string, i int) string {
 	if i <= 0 || i >= len(names) {
 		return "invalid"
@@ -43,11 +48,12 @@ func index(names []string, s string) int {
 	return 0
 }
 
-func (k Kind) String() string   { return name(kindNames[:], int(k)) }
-func (r Rule) String() string   { return name(ruleNames[:], int(r)) }
-func (u Use) String() string    { return name(useNames[:], int(u)) }
-func (d Dir) String() string    { return name(dirNames[:], int(d)) }
-func (t Tissue) String() string { return name(tissueNames[:], int(t)) }
+func (k Kind) String() string    { return name(kindNames[:], int(k)) }
+func (r Rule) String() string    { return name(ruleNames[:], int(r)) }
+func (u Use) String() string     { return name(useNames[:], int(u)) }
+func (o Outcome) String() string { return name(outcomeNames[:], int(o)) }
+func (d Dir) String() string     { return name(dirNames[:], int(d)) }
+func (t Tissue) String() string  { return name(tissueNames[:], int(t)) }
 
 // Chamber is A for a site whose depolarisation makes a P wave, V for one whose
 // depolarisation makes a QRS, and 0 for the rest.

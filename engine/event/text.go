@@ -65,6 +65,9 @@ func (l *Log) line(b *strings.Builder, e *Event) {
 	if e.Use != 0 {
 		fmt.Fprintf(b, " use=%s", e.Use)
 	}
+	if e.Outcome != 0 {
+		fmt.Fprintf(b, " outcome=%s", e.Outcome)
+	}
 	if e.By != 0 {
 		fmt.Fprintf(b, " by=%d", e.By)
 	}
@@ -179,6 +182,9 @@ func (l *Log) setField(e *Event, k, v string) bool {
 	case "use":
 		e.Use = Use(index(useNames[:], v))
 		return e.Use != 0
+	case "outcome":
+		e.Outcome = Outcome(index(outcomeNames[:], v))
+		return e.Outcome != 0
 	case "channel":
 		e.Channel = v[0]
 		return v == "A" || v == "V"

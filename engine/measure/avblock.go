@@ -208,10 +208,7 @@ func (f *finder) mobitz2(groups []avGroup) {
 		return
 	}
 	ids, ps := f.evidence(groups)
-	var pr []tick.Dur
-	for _, g := range groups {
-		pr = append(pr, f.prs(g.c)...)
-	}
+	pr := f.allPRs(groups)
 	ratio := ratios(closed(groups))
 	surface, note := "infranodal_likely", "A constant PR around a single blocked P suggests block below the AV node."
 	if f.wide(ids) {
@@ -228,15 +225,21 @@ func (f *finder) mobitz2(groups []avGroup) {
 	})
 }
 
+// allPRs are the PR intervals of the conducted beats of all groups.
+func (f *finder) allPRs(groups []avGroup) []tick.Dur {
+	var pr []tick.Dur
+	for _, g := range groups {
+		pr = append(pr, f.prs(g.c)...)
+	}
+	return pr
+}
+
 func (f *finder) twoToOne(groups []avGroup) {
 	if len(groups) == 0 {
 		return
 	}
 	ids, ps := f.evidence(groups)
-	var pr []tick.Dur
-	for _, g := range groups {
-		pr = append(pr, f.prs(g.c)...)
-	}
+	pr := f.allPRs(groups)
 	f.add(orderBlock, Finding{
 		Slug: "two_to_one_av_block", Evidence: ids, Count: len(groups), Ratio: "2:1", PRs: []float64{medianDur(pr).MS()},
 		Text:  fmt.Sprintf("Every other P conducts (PR %s ms): consistent with 2:1 AV block, which is neither type I nor type II.", whole(medianDur(pr))),

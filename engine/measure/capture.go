@@ -22,7 +22,9 @@ func (f *finder) captures() {
 			case !m.paced() || e.Captured || e.Channel != ch || f.dev.looped[e.ID]:
 			case e.MissedBy() == 0:
 				lost = append(lost, e.ID)
-				why = e.Why
+				if e.Outcome != 0 {
+					why = strings.ReplaceAll(e.Outcome.String(), "_", " ")
+				}
 			case !contains(pseudo, e.ID):
 				functional = append(functional, e.ID)
 				missed = append(missed, e.MissedBy())

@@ -78,7 +78,7 @@ func grow(l *event.Log, n func(int, int, string) int, at tick.Time, until []tick
 	case 7:
 		ch := channelOf(n)
 		id := put(event.Event{Kind: event.Stimulus, Rule: event.Timed, Captured: n(0, 1, "captured") == 1 && until[site] <= at, Cause: earlier, Site: site, Path: event.None, Channel: ch,
-			Field: []string{"av_delay", "upper_rate", "atrial_escape", "lower_rate", "safety", "offset", "backup"}[n(0, 6, "timer")], Recovery: 100000, Needed: tick.Dur(n(0, 1, "needed")) * 200000, Why: []string{"", "hysteresis", "loss of capture"}[n(0, 2, "why")]})
+			Field: []string{"av_delay", "upper_rate", "atrial_escape", "lower_rate", "safety", "offset", "backup"}[n(0, 6, "timer")], Recovery: 100000, Needed: tick.Dur(n(0, 1, "needed")) * 200000, Why: []string{"", "hysteresis"}[n(0, 1, "why")], Outcome: event.Outcome(n(0, 5, "outcome"))})
 		if l.At(id).Captured {
 			activate(event.Event{Rule: event.Captured, Cause: id, Site: site, Path: event.None})
 		}

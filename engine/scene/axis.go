@@ -9,7 +9,7 @@ import (
 
 const axisLabel = "time, s"
 
-func strconvFixed(v float64) string { return strconv.FormatFloat(v, 'f', 2, 64) }
+func twoDecimals(v float64) string { return strconv.FormatFloat(v, 'f', 2, 64) }
 
 // steps between labelled instants of the axis, in milliseconds.
 var steps = [...]int64{1, 2, 5, 10, 20, 50, 100, 200, 500, 1000, 2000, 5000, 10000, 20000, 30000,

@@ -234,6 +234,6 @@ func (s *sheet) lane(name, label string, y0, y1 float64) {
 
 // trim writes a number with at most two decimals.
 func trim(v float64) string {
-	t := strings.TrimRight(strconvFixed(v), "0")
+	t := strings.TrimRight(twoDecimals(v), "0")
 	return strings.TrimSuffix(t, ".")
 }

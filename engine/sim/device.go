@@ -58,13 +58,19 @@ func (v *device) fault(f *plan.Fault) {
 	v.deaf[f.Channel] += f.Deaf
 	v.lost[f.Channel] += f.Lost
 	if f.Moved {
-		l := v.p.Leads[f.Lead()]
-		l.Site, l.Sensing, l.Muscle = f.Site, f.Site, event.None
-		v.p.Leads[f.Lead()] = l
+		v.move(f.Lead(), f.Site)
+		if f.Channel == pacer.Ventricular {
+			v.move(pacer.HisLead, f.Site) // the same lead, by another name
+		}
 	}
 	if f.Signal {
 		v.signal(0, f.Channel, v.p.Leads[f.Lead()].Sensing, 0)
 	}
+}
+
+func (v *device) move(lead pacer.Lead, to event.SiteID) {
+	l := &v.p.Leads[lead]
+	l.Site, l.Sensing, l.Muscle = to, to, event.None
 }
 
 // program puts other numbers in force; a lead that has moved stays where it is.
@@ -85,13 +91,13 @@ func (v *device) depolarised(e *event.Event, id event.ID) {
 	if e.Rule == event.Captured {
 		own = e.Cause > v.m.base && v.m.at(e.Cause).Rule == event.Timed
 	}
-	if e.Site == a.Sensing && !own && a.Senses && v.deaf[pacer.Atrial] == 0 {
+	if e.Site == a.Sensing && !own && a.Senses {
 		v.signal(a.Delay, pacer.Atrial, e.Site, id)
 	}
 	if e.Site != r.Sensing {
 		return
 	}
-	if !own && r.Senses && v.deaf[pacer.Ventricular] == 0 {
+	if !own && r.Senses {
 		v.signal(r.Delay, pacer.Ventricular, e.Site, id)
 	}
 	if v.p.FarField > 0 {
@@ -102,8 +108,10 @@ func (v *device) depolarised(e *event.Event, id event.ID) {
 	}
 }
 
+// signal brings one to a channel. A deaf channel hears nothing of heart and device;
+// interference, which has no cause, arises behind the lead.
 func (v *device) signal(after tick.Dur, ch pacer.Channel, site event.SiteID, cause event.ID) {
-	if v.d.Senses(ch) {
+	if v.d.Senses(ch) && (cause == 0 || v.deaf[ch] == 0) {
 		v.m.push(v.m.now.Add(after), classSense, int(site), uint8(ch), uint32(cause))
 	}
 }
@@ -120,8 +128,8 @@ func (v *device) sense(site event.SiteID, ch pacer.Channel, cause event.ID) {
 func (m *Machine) at(id event.ID) *event.Event { return &m.log.Events[id-m.base-1] }
 
 // Stimulate delivers a stimulus of the device (pacer.Recorder). Two tissues under one
-// tip are captured each by its own threshold and its own refractory period; Why says
-// which, where only one is.
+// tip are captured each by its own threshold and its own refractory period; Outcome
+// says which, where only one is.
 func (v *device) Stimulate(p pacer.Pulse) event.ID {
 	m := v.m
 	lead := &v.p.Leads[p.Lead]
@@ -140,13 +148,13 @@ func (v *device) Stimulate(p pacer.Pulse) event.ID {
 	}
 	switch {
 	case muscle && !site:
-		e.Why = "muscle only"
+		e.Outcome = event.MuscleOnly
 	case site && lead.Muscle >= 0 && !muscle:
-		e.Why = "conduction system only"
+		e.Outcome = event.ConductionOnly
 	case !e.Captured && excitable && v.lost[ch] > 0:
-		e.Why = "loss of capture"
+		e.Outcome = event.CaptureLost
 	case !e.Captured && excitable:
-		e.Why = "below threshold"
+		e.Outcome = event.BelowThreshold
 	}
 	id := m.record(e)
 	if site {
@@ -174,10 +182,31 @@ func (v *device) captureAfter(latency tick.Dur, site event.SiteID, stimulus even
 	v.m.push(v.m.now.Add(latency), classCapture, int(site), 0, uint32(stimulus))
 }
 
-// capture depolarises a site by a stimulus, unless another impulse came there before.
+// capture depolarises a site by a stimulus. Where another impulse came first during
+// the latency, the record of the stimulus is put right.
 func (v *device) capture(site event.SiteID, stimulus event.ID) {
-	if v.m.excitable(site) {
-		v.m.activate(event.Event{Rule: event.Captured, Site: site, Path: event.None, Cause: stimulus})
+	m := v.m
+	captured := m.excitable(site)
+	if stimulus > m.base && m.now > m.at(stimulus).T {
+		v.outcome(m.at(stimulus), site, captured)
+	}
+	if captured {
+		m.activate(event.Event{Rule: event.Captured, Site: site, Path: event.None, Cause: stimulus})
+	}
+}
+
+// outcome corrects a stimulus for what one of its tissues did after the latency.
+func (v *device) outcome(e *event.Event, site event.SiteID, captured bool) {
+	beside := site != e.Site // the muscle beside the tissue that the lead lies on
+	switch {
+	case captured && !e.Captured:
+		e.Captured, e.Outcome = true, event.MuscleOnly
+	case !captured && beside && e.Captured && e.Outcome != event.MuscleOnly:
+		e.Outcome = event.ConductionOnly
+	case !captured:
+		st := &v.m.sites[site]
+		e.Captured, e.Outcome = false, event.Overtaken
+		e.Recovery, e.Needed = v.m.now.Sub(st.last), st.until.Sub(st.last)
 	}
 }
 

@@ -30,20 +30,20 @@ func TestHisPacingHasTwoThresholds(t *testing.T) {
 	for _, c := range []struct {
 		name                   string
 		his, muscle, amplitude float64
-		why                    string
+		outcome                event.Outcome
 		sv                     float64 // stimulus to first ventricular depolarisation; -1: none
 		captured               bool
 	}{
-		{"both", 0.5, 1, 2.5, "", 0, true},
-		{"selective", 0.5, 1, 1.5, "conduction system only", 45, true},
-		{"muscle only", 1.5, 0.5, 2, "muscle only", 0, true},
-		{"neither", 0.5, 1, 0.9, "below threshold", -1, false},
+		{"both", 0.5, 1, 2.5, 0, 0, true},
+		{"selective", 0.5, 1, 1.5, event.ConductionOnly, 45, true},
+		{"muscle only", 1.5, 0.5, 2, event.MuscleOnly, 0, true},
+		{"neither", 0.5, 1, 0.9, event.BelowThreshold, -1, false},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			s := withDevice(t, 5000, blocked, fmt.Sprintf(lead, c.his, c.muscle, c.amplitude))
 			stim := s.given('V')[1]
-			if stim.Captured != c.captured || stim.Why != c.why {
-				t.Errorf("captured %v (%q), want %v (%q)", stim.Captured, stim.Why, c.captured, c.why)
+			if stim.Captured != c.captured || stim.Outcome != c.outcome {
+				t.Errorf("captured %v (%s), want %v (%s)", stim.Captured, stim.Outcome, c.captured, c.outcome)
 			}
 			got := firstVentricular(s, stim.T.MS()-0.001) - stim.T.MS()
 			if c.sv >= 0 {
@@ -90,13 +90,43 @@ func TestBrokenAndDislodgedLeads(t *testing.T) {
 	s := withDevice(t, 9000, blocked, `"mode":"VVI"`, `{"at_ms":2500,"do":"fracture","channel":"V","for_ms":3000}`)
 	for _, e := range s.given('V') {
 		if want := e.T.MS() < 2500 || e.T.MS() >= 5500; e.Captured != want {
-			t.Errorf("stimulus at %v ms captured %v, want %v (%s)", e.T, e.Captured, want, e.Why)
+			t.Errorf("stimulus at %v ms captured %v, want %v (%s)", e.T, e.Captured, want, e.Outcome)
 		}
 	}
 	s = withDevice(t, 6000, blocked, `"mode":"VVI"`, `{"at_ms":2500,"do":"dislodge","channel":"V","site":"rv_outflow"}`)
 	v := s.given('V')
 	if got := s.Sites[v[0].Site].Name + " " + s.Sites[v[len(v)-1].Site].Name; got != "rv_apex rv_outflow" {
 		t.Errorf("paced %s", got)
+	}
+}
+
+// A lead at the His bundle can be dislodged too: it is the ventricular lead.
+func TestADislodgedHisLeadPacesFromWhereItLies(t *testing.T) {
+	s := withDevice(t, 6000, blocked, `"mode":"VVI","leads":{"ventricular":{"site":"his"}}`, `{"at_ms":2500,"do":"dislodge","channel":"V","site":"rv_apex"}`)
+	v := s.given('V')
+	if got := s.Sites[v[0].Site].Name + " " + s.Sites[v[len(v)-1].Site].Name; got != "his rv_apex" {
+		t.Errorf("paced %s, want his rv_apex", got)
+	}
+}
+
+// A broken lead passes on nothing of the heart, the far field neither.
+func TestABrokenLeadHasNoFarField(t *testing.T) {
+	s := withDevice(t, 6000, `"sinus":{"rate_bpm":75}`, `"mode":"DDD","leads":{"far_field_ms":120}`, `{"at_ms":0,"do":"fracture","channel":"A","for_ms":6000}`)
+	for i := range s.Events {
+		if e := &s.Events[i]; e.Kind == event.Sense && e.Channel == 'A' {
+			t.Fatalf("atrial signal at %v ms on a broken lead", e.T)
+		}
+	}
+}
+
+// A beat that reaches the lead's site while a stimulus has not yet taken effect comes
+// first: the stimulus did not capture, and says so.
+func TestABeatOvertakesAStimulusWithLatency(t *testing.T) {
+	s := withDevice(t, 5000, blocked, `"mode":"VVI","leads":{"ventricular":{"latency_ms":60}}`, stimulus(1030, "rv_apex"))
+	stim := s.given('V')[0]
+	near(t, "first stimulus", stim.T.MS(), 1000, exact)
+	if stim.Captured || stim.Outcome != event.Overtaken {
+		t.Errorf("captured %v (%s), but another beat came first", stim.Captured, stim.Outcome)
 	}
 }
 
