@@ -2,10 +2,10 @@
 
 import { append, el, fill } from "./base/dom.js";
 import { nextFrame } from "./base/frame.js";
-import { Fault, startEngine } from "./engine/client.js";
-import { readScene } from "./engine/scene.js";
+import { startEngine } from "./engine/client.js";
+import { conduct } from "./engine/conductor.js";
 import { createStore } from "./model/store.js";
-import { FIRST_VIEW, onStrip, reveal } from "./model/view.js";
+import { FIRST_VIEW } from "./model/view.js";
 import { accountView } from "./views/account.js";
 import { drawersView } from "./views/drawers.js";
 import { headView } from "./views/head.js";
@@ -46,64 +46,11 @@ const engine = startEngine(new URL("engine/worker.js", import.meta.url), (busy) 
   document.body.dataset.busy = String(busy);
 });
 
+const { ask, compute, request } = conduct(store, engine);
+
 function wantsDark() {
   const chosen = localStorage.getItem(SHEET);
   return chosen ? chosen === "dark" : matchMedia("(prefers-color-scheme: dark)").matches;
-}
-
-/** What the drawing of the present state is asked with. @param {State} s */
-const drawing = (s) => ({ view: s.view, selected: s.selected });
-
-/**
- * Asks the engine; a failure is told on the page and the values stay.
- * @param {import("./engine/client.js").Op} op
- * @param {any} args
- */
-async function ask(op, args) {
-  try {
-    return await engine.ask(op, args);
-  } catch (err) {
-    if (!(err instanceof Fault)) throw err;
-    store.set({ fault: err.message });
-    return null;
-  }
-}
-
-async function compute() {
-  const asked = store.get();
-  const reply = await ask("compute", { plan: asked.plan, ...drawing(asked) });
-  if (!reply) return;
-  const { ok, diagnoses, answer, scene } = reply.json;
-  if (!ok) {
-    store.set({ diagnoses, fault: "" });
-    return;
-  }
-  const { view, selected } = store.get();
-  store.set({
-    answer, diagnoses: [], fault: "",
-    scene: readScene(scene, reply.points),
-    view: onStrip(view, answer.span_ms),
-    selected: selected <= answer.events ? selected : 0,
-  });
-  if (selected) explain();
-  if (view !== asked.view || selected !== asked.selected) layout(); // it was drawn for what was asked
-}
-
-async function layout() {
-  const s = store.get();
-  if (!s.answer) return;
-  const reply = await ask("layout", drawing(s));
-  if (reply?.json) store.set({ scene: readScene(reply.json, reply.points) });
-  else if (reply) compute(); // a restarted engine has no timeline yet
-}
-
-async function explain() {
-  const { selected, answer } = store.get();
-  if (!selected || !answer) return;
-  const reply = await ask("account", { event: selected });
-  if (!reply?.json || store.get().selected !== selected) return;
-  const account = reply.json;
-  store.set({ account, view: reveal(store.get().view, account.t_ms, answer.span_ms) });
 }
 
 /** @param {Catalogue} catalogue */
@@ -137,13 +84,6 @@ function build(catalogue) {
     "?": open.keys,
     p: open.presets,
   });
-
-  /** Asks the engine at once; the answer is painted in the frame after it comes. @param {Set<string>} changed */
-  function request(changed) {
-    if (changed.has("plan")) compute();
-    else if (changed.has("view") || changed.has("selected")) layout();
-    if (changed.has("selected")) explain();
-  }
 
   const pending = new Set(Object.keys(store.get())); // the first time everything is new
   function refresh() {

@@ -32,14 +32,22 @@
 
 const HISTORY = 200; // steps kept
 
+/** Keys of the state that a step can take back. A view belongs here by its choices. */
+const UNDOABLE = ["plan", "preset", "before", "calipers", "view"];
+
+/** What of a view is not a choice: where one looks, and how much room there is. */
+const PASSING = ["t0_ms", "width_mm", "height_mm", "mm_per_s"];
+
+/** What a step changed, with the values to put back. @typedef {{keys: Record<string, any>, view: Record<string, any>}} Step */
+
 /**
  * @param {State} first
  */
 export function createStore(first) {
   let state = first;
-  /** @type {Plan[]} */
+  /** @type {Step[]} */
   let past = [];
-  /** @type {Plan[]} */
+  /** @type {Step[]} */
   let future = [];
   let stroke = "";
   /** @type {Set<(state: State, changed: Set<string>) => void>} */
@@ -56,47 +64,80 @@ export function createStore(first) {
     for (const tell of listeners) tell(state, changed);
   }
 
+  /**
+   * Takes the state to a step's values.
+   * @param {Step} step
+   * @returns {Step} the way back
+   */
+  function take(step) {
+    const now = /** @type {any} */ (state);
+    const back = { keys: pick(now, Object.keys(step.keys)), view: pick(now.view, Object.keys(step.view)) };
+    const view = Object.keys(step.view).length > 0 ? { view: { ...state.view, ...step.view } } : {};
+    stroke = "";
+    set({ ...step.keys, ...view });
+    return back;
+  }
+
+  /**
+   * Changes the state so that it can be undone. Changes under the same name that
+   * follow each other (typing into one field, one drag) are one step. What is not
+   * undoable (the selection, panning) may change along with it and stays.
+   * @param {Partial<State>} patch
+   * @param {string} name what is being changed; "" always begins a step
+   */
+  function change(patch, name) {
+    const step = stepOf(state, patch);
+    const last = past[past.length - 1];
+    if (name !== "" && name === stroke && last) {
+      last.keys = { ...step.keys, ...last.keys };
+      last.view = { ...step.view, ...last.view };
+    } else if (!idle(step)) {
+      past = [...past.slice(-HISTORY + 1), step];
+      future = [];
+      stroke = name;
+    }
+    set(patch);
+    const made = past[past.length - 1];
+    if (stroke !== "" && made && same(made)) { // put back by hand: nothing is left to undo
+      past = past.slice(0, -1);
+      stroke = "";
+    }
+  }
+
+  /** Whether the state is as it was before a step. @param {Step} step */
+  function same(step) {
+    const now = /** @type {any} */ (state);
+    return Object.entries(step.keys).every(([k, v]) => now[k] === v) && Object.entries(step.view).every(([k, v]) => now.view[k] === v);
+  }
+
   return {
     get: () => state,
     set,
+    change,
 
     /**
-     * Changes the plan so that it can be undone. Edits under the same name that
-     * follow each other (typing into one field, one drag) are one step.
+     * Changes the plan so that it can be undone; see change.
      * @param {Plan} plan
      * @param {string} name what is being edited
      * @param {Partial<State>} [also]
      */
-    edit(plan, name, also) {
-      if (name !== stroke || name === "") {
-        past = [...past.slice(-HISTORY + 1), state.plan];
-        future = [];
-      }
-      stroke = name;
-      set({ ...also, plan });
-    },
+    edit: (plan, name, also) => change({ ...also, plan }, name),
 
-    /** Ends the step begun by the last edit. */
+    /** Ends the step begun by the last change. */
     settle() {
       stroke = "";
     },
 
     undo() {
-      const plan = past.pop();
-      if (plan === undefined) return false;
-      future.push(state.plan);
-      stroke = "";
-      set({ plan });
-      return true;
+      const step = past.pop();
+      if (step) future.push(take(step));
+      return step !== undefined;
     },
 
     redo() {
-      const plan = future.pop();
-      if (plan === undefined) return false;
-      past.push(state.plan);
-      stroke = "";
-      set({ plan });
-      return true;
+      const step = future.pop();
+      if (step) past.push(take(step));
+      return step !== undefined;
     },
 
     canUndo: () => past.length > 0,
@@ -108,4 +149,26 @@ export function createStore(first) {
       return () => listeners.delete(fn);
     },
   };
+}
+
+/**
+ * What a patch changes of what can be undone, with the values before it.
+ * @param {any} state
+ * @param {any} patch
+ * @returns {Step}
+ */
+function stepOf(state, patch) {
+  const keys = UNDOABLE.filter((k) => k !== "view" && k in patch && patch[k] !== state[k]);
+  const view = patch.view ? Object.keys({ ...state.view, ...patch.view }).filter((k) => !PASSING.includes(k) && patch.view[k] !== state.view[k]) : [];
+  return { keys: pick(state, keys), view: pick(state.view, view) };
+}
+
+/** @param {any} from @param {string[]} names @returns {Record<string, any>} */
+function pick(from, names) {
+  return Object.fromEntries(names.map((k) => [k, from?.[k]]));
+}
+
+/** @param {Step} step */
+function idle(step) {
+  return Object.keys(step.keys).length === 0 && Object.keys(step.view).length === 0;
 }

@@ -125,6 +125,48 @@ test("a settled edit of the same name is another step", () => {
   assert.deepEqual(store.get().plan, { n: 1 });
 });
 
+test("undo brings back what a change changed, and only that", () => {
+  const store = createStore(state({ plan: { n: 0 }, preset: "a" }));
+  store.change({ view: { ...FIRST_VIEW, leads: ["II"] } }, "");
+  store.edit({ n: 1 }, "", { preset: "b", selected: 4 });
+  store.set({ view: { ...store.get().view, t0_ms: 700 } });
+  store.undo();
+  assert.deepEqual([store.get().plan, store.get().preset, store.get().selected], [{ n: 0 }, "a", 4]);
+  assert.deepEqual(store.get().view.leads, ["II"], "a choice made before the edit stays");
+  store.undo();
+  assert.deepEqual(store.get().view, { ...FIRST_VIEW, t0_ms: 700 }, "panning is not taken back");
+  assert.equal(store.canUndo(), false);
+  store.redo();
+  store.redo();
+  assert.deepEqual([store.get().plan, store.get().preset, store.get().view.leads], [{ n: 1 }, "b", ["II"]]);
+});
+
+test("panning and zooming make no step", () => {
+  const store = createStore(state());
+  store.change({ view: { ...FIRST_VIEW, t0_ms: 500, mm_per_s: 50 } }, "");
+  assert.equal(store.canUndo(), false);
+  assert.equal(store.get().view.t0_ms, 500);
+});
+
+test("a stroke that is put back by hand leaves nothing to undo", () => {
+  const plan = { n: 0 };
+  const store = createStore(state({ plan }));
+  store.edit({ n: 1 }, "move 0");
+  store.edit(plan, "move 0");
+  assert.equal(store.canUndo(), false);
+  store.edit({ n: 2 }, "move 0");
+  store.undo();
+  assert.equal(store.get().plan, plan);
+});
+
+test("a new change lets go of what was undone", () => {
+  const store = createStore(state({ plan: { n: 0 } }));
+  store.edit({ n: 1 }, "");
+  store.undo();
+  store.edit({ n: 2 }, "");
+  assert.equal(store.redo(), false);
+});
+
 test("listeners hear only of what changed", () => {
   const store = createStore(state());
   /** @type {string[][]} */

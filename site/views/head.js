@@ -69,12 +69,12 @@ export function headView(root, store, presets, open) {
   return {
     /** @param {State} state @param {Set<string>} changed */
     update(state, changed) {
+      undo.disabled = !store.canUndo();
+      redo.disabled = !store.canRedo();
       if (changed.has("plan") || changed.has("answer")) {
         say(title, String(state.plan.title || state.answer?.title || "A heart of your own"));
         const preset = presets.find((p) => p.name === state.preset);
         say(pick, `${preset && preset.plan !== state.plan ? "changed; " : ""}choose a preset ▾`);
-        undo.disabled = !store.canUndo();
-        redo.disabled = !store.canRedo();
       }
       if (changed.has("selected")) warnings.classList.toggle("selected", state.selected !== 0);
       if (changed.has("dark")) say(sheet, state.dark ? "Light" : "Dark");

@@ -59,7 +59,7 @@ export function timelineKeys(e, store) {
     1: () => store.set({ view: zoomTo(view, 25, centre, span) }),
     2: () => store.set({ view: zoomTo(view, 50, centre, span) }),
     0: () => store.set({ view: zoomTo(view, fitSpeed(view, span), 0, span) }),
-    f: () => store.set({ view: { ...view, ladder: view.ladder === "plain" ? "full" : "plain" } }),
+    f: () => store.change({ view: { ...view, ladder: view.ladder === "plain" ? "full" : "plain", ladder_chosen: true } }, ""),
   };
   const act = acts[e.key.length === 1 ? e.key.toLowerCase() : e.key];
   if (!act) return;

@@ -25,7 +25,7 @@ const SETS = [
 export function toolbarView(root, store) {
   const view = () => store.get().view;
   /** @param {Partial<import("../model/view.js").View>} patch */
-  const set = (patch) => store.set({ view: { ...view(), ...patch } });
+  const set = (patch) => store.change({ view: { ...view(), ...patch } }, "");
 
   /** @param {number} mm_per_s */
   function speed(mm_per_s) {
