@@ -35,9 +35,12 @@ var allowed = map[string][]string{
 	"engine/account":        {"engine/tick", "engine/event"},
 	"engine/scene":          {"engine/tick", "engine/event", "engine/lead", "engine/ladder"},
 	"engine/press":          {"engine/scene"},
-	"presets":               {},
+	"engine/numbers":        {"engine/tick", "engine/event", "engine/pacer", "engine/plan", "engine/measure"},
+	"engine/report": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
+		"engine/numbers", "engine/scene"},
+	"presets": {},
 	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
-		"engine/account", "engine/nomenclature", "engine/scene", "presets"},
+		"engine/account", "engine/nomenclature", "engine/numbers", "engine/scene", "presets"},
 }
 
 // top are the programs: they wire everything, and nothing imports them.

@@ -50,3 +50,7 @@ func (p *Plan) State(path, text string) error {
 	p.values[path] = v
 	return nil
 }
+
+// Absent tells whether the path or an object around it is null, by the plan or by
+// default.
+func (p *Plan) Absent(path string) bool { return p.null(path) }

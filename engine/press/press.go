@@ -61,17 +61,31 @@ func SVG(w io.Writer, s *scene.Scene) error {
 }
 
 // PDF writes the scene as a PDF file with one page of the scene's size.
-func PDF(w io.Writer, s *scene.Scene) error {
-	if err := check(s); err != nil {
-		return err
+func PDF(w io.Writer, s *scene.Scene) error { return Pages(w, []*scene.Scene{s}) }
+
+// Pages writes a PDF file with one page for each scene, of the scene's size. Every one
+// carries the caution.
+func Pages(w io.Writer, pages []*scene.Scene) error {
+	if len(pages) == 0 {
+		return errors.New("press: a PDF without a page")
+	}
+	for _, s := range pages {
+		if err := check(s); err != nil {
+			return err
+		}
 	}
 	var b bytes.Buffer
-	r := pdf.New(&b, s.Width, s.Height, nil)
-	title, desc := words(s)
+	r := pdf.New(&b, pages[0].Width, pages[0].Height, nil)
+	title, desc := words(pages[0])
 	r.SetInfo(title, desc, "", "", "escapement")
-	p := painter{ctx: canvas.NewContext(r), s: s, text: true}
-	if err := p.paint(); err != nil {
-		return err
+	for i, s := range pages {
+		if i > 0 {
+			r.NewPage(s.Width, s.Height)
+		}
+		p := painter{ctx: canvas.NewContext(r), s: s, text: true}
+		if err := p.paint(); err != nil {
+			return err
+		}
 	}
 	if err := r.Close(); err != nil {
 		return fmt.Errorf("press: %w", err)

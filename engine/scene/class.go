@@ -49,7 +49,11 @@ const (
 	Title
 	Statement
 	Caution
-	Note // scales, legend
+	Note    // scales, legend
+	Heading // of a part of a page
+	Body    // usual text of a page
+	Strong  // numbers to be seen first
+	Rule    // a line between parts of a page
 	classEnd
 )
 
@@ -65,6 +69,7 @@ var classNames = [classEnd]string{
 	Hatch: "hatch", Timer: "timer", Held: "held", WindowText: "window-text", MarkerText: "marker-text",
 	Dim: "dim", DimText: "dim-text", Selected: "selected",
 	Title: "title", Statement: "statement", Caution: "caution", Note: "note",
+	Heading: "heading", Body: "body", Strong: "strong", Rule: "rule",
 }
 
 // String is the stable name, as in the wire form and the styles.

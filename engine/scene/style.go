@@ -133,6 +133,14 @@ func (p *Palette) Style(c Class) Style {
 		return text(p.Ink, 0.9, 400)
 	case BlockLabel:
 		return text(p.Warning, 0.9, 400)
+	case Heading:
+		return text(p.Ink, 1.1, 700)
+	case Body:
+		return text(p.Ink, 0.95, 400)
+	case Strong:
+		return text(p.Ink, 0.95, 700)
+	case Rule:
+		return line(p.GridMajor, thin)
 	case Caution:
 		return text(p.Warning, 0.9, 400)
 	}

@@ -12,7 +12,6 @@ import (
 
 	"escapement/engine/field"
 	"escapement/engine/ladder"
-	"escapement/engine/lead"
 	"escapement/engine/measure"
 	"escapement/engine/plan"
 	"escapement/engine/press"
@@ -84,16 +83,11 @@ func (d *drawing) printer() (func(io.Writer, *scene.Scene) error, error) {
 
 func (d *drawing) scene(p *plan.Plan) (*scene.Scene, error) {
 	o := scene.Options{MMPerS: d.speed, MMPerMV: d.gain, Grid: true, Legend: true, Caution: true, Title: p.Title}
-	for _, name := range strings.Split(d.leads, ",") {
-		if name == "" {
-			continue
-		}
-		n, ok := lead.Parse(name)
-		if !ok {
-			return nil, &usageError{fmt.Sprintf("draw: %q is not a lead: I, II, III, aVR, aVL, aVF, V1 to V6", name)}
-		}
-		o.Leads = append(o.Leads, n)
+	names, err := leadNames("draw", d.leads)
+	if err != nil {
+		return nil, err
 	}
+	o.Leads = names
 	log, err := sim.Run(p)
 	if err != nil {
 		return nil, err

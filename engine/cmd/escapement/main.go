@@ -25,6 +25,8 @@ const usage = `escapement: conduction timelines of the whole heart
   escapement run PLAN           the events, one JSON object a line
   escapement measure PLAN       beats with their intervals, summary and findings, as JSON
   escapement draw PLAN -o F     the sheet as a drawing: F.svg, F.pdf or F.png
+  escapement report PLAN -o F   the report on paper, F.pdf: strip, intervals, findings, settings;
+                                with -before PLAN, both strips and what differs
   escapement settings PLAN      the device's settings as a table in open nomenclature, as CSV;
                                 with -read TABLE, the plan with the device of a table
   escapement presets            names, titles and notes of the built-in plans, as JSON
@@ -76,6 +78,8 @@ func command(args []string, in io.Reader, out io.Writer) error {
 		return writeJSON(out, measure.Of(log, field.Record(log)))
 	case "draw":
 		return draw(args, in)
+	case "report":
+		return onPaper(args, in)
 	case "settings":
 		return settings(args, in, out, os.Stderr)
 	case "presets":

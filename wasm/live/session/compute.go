@@ -11,6 +11,7 @@ import (
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
 	"escapement/engine/measure"
+	"escapement/engine/numbers"
 	"escapement/engine/plan"
 	"escapement/engine/sim"
 	"escapement/engine/tick"
@@ -30,18 +31,18 @@ type diagnosis struct {
 }
 
 type answer struct {
-	Title       string    `json:"title"`
-	Note        string    `json:"note"`
-	Statement   []clause  `json:"statement"`
-	Warnings    []string  `json:"warnings"`
-	Measured    []number  `json:"measured"`
-	Findings    []finding `json:"findings"`
-	Events      int       `json:"events"`
-	Span        float64   `json:"span_ms"`
-	Fingerprint string    `json:"fingerprint"`
-	Overview    overview  `json:"overview"`
-	Device      *device   `json:"device"`  // null: none
-	Took        float64   `json:"took_ms"` // the computation, without the scene
+	Title       string           `json:"title"`
+	Note        string           `json:"note"`
+	Statement   []clause         `json:"statement"`
+	Warnings    []string         `json:"warnings"`
+	Measured    []numbers.Number `json:"measured"`
+	Findings    []finding        `json:"findings"`
+	Events      int              `json:"events"`
+	Span        float64          `json:"span_ms"`
+	Fingerprint string           `json:"fingerprint"`
+	Overview    overview         `json:"overview"`
+	Device      *numbers.Device  `json:"device"`  // null: none
+	Took        float64          `json:"took_ms"` // the computation, without the scene
 }
 
 type clause struct {
@@ -116,10 +117,10 @@ func (t *timeline) answer() *answer {
 	a := &answer{
 		Title: t.plan.Title, Note: t.plan.Note,
 		Statement: sentence(t.report.Statement, t.report.Clauses), Warnings: []string{}, Findings: []finding{},
-		Measured: numbers(&t.report.Summary), Events: len(t.log.Events), Span: t.log.Span.MS(),
+		Measured: numbers.Measured(&t.report.Summary), Events: len(t.log.Events), Span: t.log.Span.MS(),
 		Fingerprint: fmt.Sprintf("%016x", t.log.Fingerprint()),
 		Overview:    t.overview(),
-		Device:      t.device(),
+		Device:      numbers.OfDevice(t.plan, t.pacer, t.report),
 	}
 	if t.record == nil {
 		a.Warnings = append(a.Warnings, fmt.Sprintf("Leads are computed for strips of up to %.0f min; this one has its ladder alone.", leadsUpTo.Seconds()/60))

@@ -7,6 +7,7 @@ import (
 	"testing"
 
 	"escapement/engine/event"
+	"escapement/engine/numbers"
 )
 
 // block is a heart that conducts neither way, so that the device alone decides.
@@ -44,7 +45,7 @@ func TestADevicesArithmeticStandsBesideTheStrip(t *testing.T) {
 		if d == nil {
 			t.Fatalf("%s: no device", c.name)
 		}
-		at := slices.IndexFunc(d.Arithmetic, func(v sum) bool { return v.Name == c.sum })
+		at := slices.IndexFunc(d.Arithmetic, func(v numbers.Sum) bool { return v.Name == c.sum })
 		if at < 0 || d.Arithmetic[at].Text != c.text {
 			t.Errorf("%s: got %+v, want %s of %s", c.name, d.Arithmetic, c.sum, c.text)
 		}

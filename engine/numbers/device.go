@@ -1,4 +1,4 @@
-package session
+package numbers
 
 import (
 	"fmt"
@@ -6,20 +6,21 @@ import (
 	"escapement/engine/event"
 	"escapement/engine/measure"
 	"escapement/engine/pacer"
+	"escapement/engine/plan"
 	"escapement/engine/tick"
 )
 
-// device is what the page shows of a pacemaker: the sums that follow from its
+// Device is what there is to say of a pacemaker: the sums that follow from its
 // settings, and what it did on the strip.
-type device struct {
+type Device struct {
 	Warnings   []string   `json:"warnings"` // about the settings; the strip stands all the same
-	Arithmetic []sum      `json:"arithmetic"`
-	Counted    []number   `json:"counted"`
-	Intervals  []interval `json:"intervals"`
+	Arithmetic []Sum      `json:"arithmetic"`
+	Counted    []Number   `json:"counted"`
+	Intervals  []Interval `json:"intervals"`
 }
 
-// sum is a number that follows from settings, with how it was reached.
-type sum struct {
+// Sum is a number that follows from settings, with how it was reached.
+type Sum struct {
 	Name    string `json:"name"`
 	Label   string `json:"label"`
 	Text    string `json:"text"`
@@ -29,7 +30,8 @@ type sum struct {
 	Source  string `json:"source"`
 }
 
-type interval struct {
+// Interval is a kind of interval of the device: between its markers, by their names.
+type Interval struct {
 	Name    string   `json:"name"`
 	Count   int      `json:"count"`
 	Median  *float64 `json:"median_ms"`
@@ -37,16 +39,16 @@ type interval struct {
 	Longest float64  `json:"longest_ms"`
 }
 
-// device is nil where the plan has no pacemaker.
-func (t *timeline) device() *device {
-	if t.pacer == nil {
+// OfDevice is nil where the plan has no pacemaker, that is where set is nil.
+func OfDevice(p *plan.Plan, set *plan.Device, r *measure.Report) *Device {
+	if set == nil {
 		return nil
 	}
-	s, heart := &t.pacer.Settings, t.plan.Patient()
-	if pr := t.report.Summary.PR; pr != nil {
+	s, heart := &set.Settings, p.Patient()
+	if pr := r.Summary.PR; pr != nil {
 		heart.PR = tick.MS(*pr)
 	}
-	d := &device{Warnings: []string{}, Arithmetic: []sum{}, Counted: []number{}, Intervals: []interval{}}
+	d := &Device{Warnings: []string{}, Arithmetic: []Sum{}, Counted: []Number{}, Intervals: []Interval{}}
 	for _, w := range pacer.Warnings(s, heart) {
 		d.Warnings = append(d.Warnings, upper(w.Text)+".")
 	}
@@ -57,26 +59,26 @@ func (t *timeline) device() *device {
 		}
 	}
 	d.put(vs, "")
-	t.leads(d)
-	if r := t.report.Device; r != nil {
+	d.leads(p, set)
+	if r := r.Device; r != nil {
 		d.Counted = counted(r)
 		for _, i := range r.Intervals {
-			d.Intervals = append(d.Intervals, interval{i.Name, i.Count, i.Median, i.Least, i.Longest})
+			d.Intervals = append(d.Intervals, Interval{i.Name, i.Count, i.Median, i.Least, i.Longest})
 		}
 	}
 	return d
 }
 
-func (d *device) put(vs []pacer.Value, of string) {
+func (d *Device) put(vs []pacer.Value, of string) {
 	for _, v := range vs {
-		d.Arithmetic = append(d.Arithmetic, sum{of + v.Name, v.Label, v.Text, v.Unit, v.Formula, v.Numbers, v.Source})
+		d.Arithmetic = append(d.Arithmetic, Sum{of + v.Name, v.Label, v.Text, v.Unit, v.Formula, v.Numbers, v.Source})
 	}
 }
 
 // leads adds the threshold and the margin of every lead that the mode stimulates by,
 // and warns of one that cannot capture, or whose channel hears nothing.
-func (t *timeline) leads(d *device) {
-	m := t.pacer.Settings.Mode
+func (d *Device) leads(p *plan.Plan, set *plan.Device) {
+	m := set.Settings.Mode
 	for _, l := range []struct {
 		name, label           string
 		lead                  pacer.Lead
@@ -87,8 +89,8 @@ func (t *timeline) leads(d *device) {
 		{"left", "left ventricular", pacer.LV, m.Multisite == 'V', false},
 	} {
 		at := "pacemaker.leads." + l.name + "."
-		volt := func(name string) float64 { return t.plan.Or(at+name, 0) }
-		if own := &t.pacer.Leads[l.lead]; l.stimulates {
+		volt := func(name string) float64 { return p.Or(at+name, 0) }
+		if own := &set.Leads[l.lead]; l.stimulates {
 			s := pacer.Strength{Rheobase: volt("rheobase_v"), Chronaxie: tick.MS(volt("chronaxie_ms"))}
 			vs := s.Values(own.Amplitude, tick.MS(volt("width_ms")))
 			for i := range vs {
@@ -106,7 +108,7 @@ func (t *timeline) leads(d *device) {
 				d.Warnings = append(d.Warnings, fmt.Sprintf("The %s output of %.2f V is below the threshold of %.2f V: no stimulus captures.", l.label, own.Amplitude, own.Threshold))
 			}
 		}
-		if l.listensTo && !t.pacer.Leads[l.lead].Senses {
+		if l.listensTo && !set.Leads[l.lead].Senses {
 			d.Warnings = append(d.Warnings, fmt.Sprintf("The %s signal of %g mV is below the sensitivity of %g mV: the heart is not sensed there.", l.label, volt("signal_mv"), volt("sensitivity_mv")))
 		}
 	}
@@ -114,7 +116,7 @@ func (t *timeline) leads(d *device) {
 
 // counted lists what the device did. What never came, and no one would miss, is left
 // out.
-func counted(r *measure.Device) []number {
+func counted(r *measure.Device) []Number {
 	whole := func(n int) *float64 {
 		v := float64(n)
 		return &v
@@ -128,7 +130,7 @@ func counted(r *measure.Device) []number {
 	// A chamber that the device knows nothing of is not counted as zeros.
 	atrium := func(n int) *float64 { return unless(r.AtrialPaced == nil && r.RefractoryA == 0, whole(n)) }
 	ventricle := func(n int) *float64 { return unless(r.VentricularPaced == nil && r.RefractoryV == 0, whole(n)) }
-	list := []number{
+	list := []Number{
 		{Name: "atrial_paced_percent", Label: "atrium paced", Value: r.AtrialPaced, Unit: "%", Help: "AP of AS and AP."},
 		{Name: "ventricular_paced_percent", Label: "ventricle paced", Value: r.VentricularPaced, Unit: "%", Help: "VP of VS and VP."},
 		{Name: "av_synchronous_percent", Label: "AV synchronous", Value: r.Synchronous, Unit: "%", Help: "QRS complexes with a P at most 300 ms before them (Circulation 2024;150:439)."},
@@ -149,7 +151,7 @@ func counted(r *measure.Device) []number {
 		{Name: "noise_count", Label: "noise", Value: some(r.Noise)},
 		{Name: "mode_change_count", Label: "mode changes", Value: some(r.ModeChanges)},
 	}
-	out := []number{}
+	out := []Number{}
 	for _, n := range list {
 		if n.Value != nil {
 			out = append(out, n)

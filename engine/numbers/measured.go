@@ -1,9 +1,17 @@
-package session
+// Package numbers decides which numbers stand beside a strip, on the page, in prints
+// and in exports: what was measured with its normal range and whose that is, what
+// follows from a device's settings with how it was reached, what the device did, and
+// which settings deserve a warning.
+//
+// It computes nothing of its own: values come from packages measure and pacer. Its
+// JSON names are the page's.
+package numbers
 
 import "escapement/engine/measure"
 
-// number is one measured value as the page shows it.
-type number struct {
+// Number is one value with its unit. A nil Value was not measured, a nil Normal has no
+// range that this project could name a source for.
+type Number struct {
 	Name   string      `json:"name"`
 	Label  string      `json:"label"`
 	Value  *float64    `json:"value"`
@@ -20,10 +28,10 @@ const (
 	alboni     = "Alboni et al., Eur Heart J 1985;6:602-608, and Josephson, from memory"
 )
 
-// numbers lists the medians of a strip with adult normal ranges and whose they are.
-func numbers(s *measure.Summary) []number {
+// Measured lists the medians of a strip with adult normal ranges and whose they are.
+func Measured(s *measure.Summary) []Number {
 	between := func(lo, hi float64) *[2]float64 { return &[2]float64{lo, hi} }
-	return []number{
+	return []Number{
 		{"p_rate_bpm", "P rate", s.PRate, "/min", between(60, 100), "Median rate of P waves.", "Common practice."},
 		{"v_rate_bpm", "QRS rate", s.VRate, "/min", between(60, 100), "Median rate of QRS complexes.", "Common practice."},
 		{"pr_ms", "PR", s.PR, "ms", between(120, 200), "Start of P to the first ventricular activation it led to.", statpearls},

@@ -1,0 +1,144 @@
+// Package report fills the one-page report of a plan and the page that compares two:
+// it computes the plan, takes the strip, its measures, the arithmetic and the settings,
+// and puts them into the rows that package scene lays out on paper.
+//
+// What is printed is what the page shows, from the same packages. Nothing is read from
+// a clock: date and version are given. A report names no person; a plan has no field
+// for one.
+package report
+
+import (
+	"fmt"
+
+	"escapement/engine/event"
+	"escapement/engine/field"
+	"escapement/engine/ladder"
+	"escapement/engine/lead"
+	"escapement/engine/measure"
+	"escapement/engine/numbers"
+	"escapement/engine/plan"
+	"escapement/engine/scene"
+	"escapement/engine/sim"
+	"escapement/engine/tick"
+)
+
+// Case is a computed plan.
+type Case struct {
+	Plan    *plan.Plan
+	Device  *plan.Device // nil: none
+	Log     *event.Log
+	Record  *lead.Record // nil for a strip longer than LeadsUpTo
+	Measure *measure.Report
+}
+
+// LeadsUpTo is the longest strip that has leads: 12 of them at 1000 samples a second
+// take 43 MB.
+const LeadsUpTo = tick.Time(15 * tick.Minute)
+
+// Run computes a plan. Errors are those of [plan.Plan.Compile] and [sim.Play].
+func Run(p *plan.Plan) (*Case, error) { return RunWith(p, field.New()) }
+
+// RunWith computes a plan with a field that may know some of its waves already.
+func RunWith(p *plan.Plan, f *field.Field) (*Case, error) {
+	prog, err := p.Compile()
+	if err != nil {
+		return nil, err
+	}
+	log, err := sim.Play(prog)
+	if err != nil {
+		return nil, err
+	}
+	c := &Case{Plan: p, Device: prog.Device, Log: log}
+	if log.Span <= LeadsUpTo {
+		c.Record = f.Record(log)
+	}
+	c.Measure = measure.Of(log, c.Record)
+	return c, nil
+}
+
+// Options say what is printed. The zero value is A4 with leads II and V1, the full
+// ladder and as much of the strip's beginning as one line holds.
+type Options struct {
+	Paper         scene.Paper
+	Date, Version string // as they are to be printed; empty: left out
+	From, To      tick.Time
+	Leads         []lead.Name // nil: II and V1; empty: none
+	Twelve        bool        // four columns of three leads over a rhythm strip
+	Ladder        ladder.Form // 0: full
+	NoLadder      bool
+	NoDevice      bool    // leave the device's lane out
+	MMPerS        float64 // 0: 25
+	MMPerMV       float64 // 0: 10
+}
+
+// Build lays out the report of one plan.
+func Build(c *Case, o Options) ([]*scene.Scene, error) {
+	strip, err := c.excerpt(&o)
+	if err != nil {
+		return nil, err
+	}
+	r := &scene.Report{
+		Title: c.title(), Statement: c.Measure.Statement, Note: c.Plan.Note, Strip: strip,
+		Findings: c.findings(), Settings: c.settings(), Date: o.Date, Version: o.Version,
+	}
+	measured := numbers.Measured(&c.Measure.Summary)
+	r.Readings = readings(measured)
+	if d := numbers.OfDevice(c.Plan, c.Device, c.Measure); d != nil {
+		r.Warnings, r.Sums, r.Counted = d.Warnings, sums(d.Arithmetic), readings(d.Counted)
+	}
+	if c.Record == nil {
+		r.Warnings = append(r.Warnings, fmt.Sprintf("Leads are computed for strips of up to %.0f min; this one has its ladder alone.", LeadsUpTo.Seconds()/60))
+	}
+	r.Sources = sources(measured)
+	return r.Pages(o.Paper)
+}
+
+// Compare lays out two plans one above the other, named as given ("before", "after"),
+// with the lines in which they differ.
+func Compare(cases [2]*Case, names [2]string, differences []scene.Difference, o Options) ([]*scene.Scene, error) {
+	p := &scene.Comparison{Title: cases[1].title(), Differences: differences, Date: o.Date, Version: o.Version}
+	for i, c := range cases {
+		own := o
+		if own.From >= c.Log.Span {
+			own.From, own.To = 0, 0
+		}
+		own.To = min(own.To, c.Log.Span)
+		strip, err := c.excerpt(&own)
+		if err != nil {
+			return nil, err
+		}
+		p.Parts[i] = scene.Part{Name: names[i], Title: c.Plan.Title, Statement: c.Measure.Statement, Strip: strip}
+	}
+	return p.Pages(o.Paper)
+}
+
+func (c *Case) title() string {
+	if c.Plan.Title == "" {
+		return "Untitled plan"
+	}
+	return c.Plan.Title
+}
+
+func (c *Case) excerpt(o *Options) (scene.Excerpt, error) {
+	span := c.Log.Span
+	if o.From < 0 || o.From >= span || o.To != 0 && (o.To <= o.From || o.To > span) {
+		return scene.Excerpt{}, fmt.Errorf("report: the window from %v to %v ms does not lie in the strip of %v ms", o.From, o.To, span)
+	}
+	e := scene.Excerpt{In: scene.Input{Log: c.Log, Record: c.Record}, Twelve: o.Twelve}
+	leads := o.Leads
+	if leads == nil {
+		leads = []lead.Name{lead.II, lead.V1}
+		if o.Twelve {
+			leads = []lead.Name{lead.II}
+		}
+	}
+	e.O = scene.Options{From: o.From, To: o.To, MMPerS: o.MMPerS, MMPerMV: o.MMPerMV, Leads: leads, NoDevice: o.NoDevice}
+	if !o.NoLadder {
+		form := o.Ladder
+		if form == 0 {
+			form = ladder.Full
+		}
+		e.In.Diagram = ladder.Build(c.Log, ladder.Options{Form: form})
+	}
+	return e, nil
+}

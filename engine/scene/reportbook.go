@@ -1,0 +1,236 @@
+package scene
+
+import (
+	"fmt"
+	"strconv"
+
+	"escapement/engine/tick"
+)
+
+// book is a report in the making: pages, and how far the last one is filled.
+type book struct {
+	paper                Paper
+	title, date, version string
+	caution              []string // in lines
+	pages                []*Scene
+	y, bottom            float64
+}
+
+func newBook(p Paper, title, date, version string) (*book, error) {
+	p.fill()
+	if err := p.check(); err != nil {
+		return nil, err
+	}
+	b := &book{paper: p, title: title, date: date, version: version}
+	b.caution = wrap(Caution, CautionText, reportFont, p.body())
+	b.bottom = p.Height - p.Margin - b.footHeight()
+	b.page()
+	return b, nil
+}
+
+func (b *book) at() *Scene { return b.pages[len(b.pages)-1] }
+
+func (b *book) put(m Mark) { b.at().Marks = append(b.at().Marks, m) }
+
+func (b *book) page() {
+	b.pages = append(b.pages, &Scene{Width: b.paper.Width, Height: b.paper.Height, FontMM: reportFont})
+	b.y = b.paper.Margin
+	if len(b.pages) > 1 && b.title != "" {
+		line := wrap(Note, b.title, reportFont, b.paper.body())[0]
+		b.text(Note, line)
+		b.y += 1
+	}
+}
+
+// fresh tells whether nothing but the running title stands on the page.
+func (b *book) fresh() bool {
+	return len(b.at().Marks) <= 1 && len(b.pages) > 1 || len(b.at().Marks) == 0
+}
+
+// need begins a page where so much has no room on this one.
+func (b *book) need(mm float64) {
+	if b.y+mm > b.bottom && !b.fresh() {
+		b.page()
+	}
+}
+
+// text sets one line at the left margin and moves on.
+func (b *book) text(c Class, line string) {
+	h := c.height(reportFont)
+	b.put(Mark{Shape: Text, Class: c, X: b.paper.Margin, Y: b.y + ascent*h, Text: line})
+	b.y += leading * h
+}
+
+// paragraph sets a text over the whole width.
+func (b *book) paragraph(c Class, text string) {
+	for _, line := range wrap(c, text, reportFont, b.paper.body()) {
+		b.need(leading * c.height(reportFont))
+		b.text(c, line)
+	}
+}
+
+func (b *book) heading(statement, note string) {
+	if b.title != "" {
+		b.paragraph(Title, b.title)
+	}
+	b.paragraph(Statement, statement)
+	b.paragraph(Body, note)
+	b.y += 1.5
+}
+
+// embed puts a drawing on the page, its top left corner at x, y.
+func (b *book) embed(s *Scene, x, y float64) {
+	page := b.at()
+	if page.Axis.MMPerS == 0 && s.Axis.MMPerS != 0 {
+		page.Axis = s.Axis
+		page.Axis.X0 += x
+	}
+	for _, l := range s.Lanes {
+		l.Y0, l.Y1 = l.Y0+y, l.Y1+y
+		page.Lanes = append(page.Lanes, l)
+	}
+	for _, m := range s.Marks {
+		m.X, m.X2, m.Y, m.Y2 = m.X+x, m.X2+x, m.Y+y, m.Y2+y
+		if len(m.Points) > 0 {
+			points := make([]Point, len(m.Points))
+			for i, p := range m.Points {
+				points[i] = Point{float32(float64(p.X) + x), float32(float64(p.Y) + y)}
+			}
+			m.Points = points
+		}
+		page.Marks = append(page.Marks, m)
+	}
+}
+
+// mostLines bounds how many lines of a strip are printed.
+const mostLines = 400
+
+// excerpt sets a strip in as many lines as it takes, and what explains it.
+func (b *book) excerpt(e Excerpt) error {
+	o, line := b.fit(e)
+	whole := o.To == 0
+	end := o.To
+	if whole || end > e.In.Log.Span {
+		end = e.In.Log.Span
+	}
+	if whole {
+		end = min(end, o.From.Add(line))
+	}
+	if n := (end.Sub(o.From) + line - 1) / max(line, 1); n > mostLines {
+		return fmt.Errorf("scene: from %.3f to %.3f s is %d lines of %.1f s on this paper; at most %d are printed", o.From.Seconds(), end.Seconds(), n, line.MS()/1000, mostLines)
+	}
+	for from := o.From; from < end; from = from.Add(line) {
+		o.From, o.To = from, min(from.Add(line), end)
+		s, err := b.system(e, o)
+		if err != nil {
+			return err
+		}
+		b.need(s.Height)
+		b.embed(s, b.paper.Margin-pad, b.y-pad)
+		b.y += s.Height - pad
+	}
+	b.explain(e.In, o)
+	return nil
+}
+
+// fit gives the options of a strip's lines and how much time a line holds.
+func (b *book) fit(e Excerpt) (Options, tick.Dur) {
+	o := e.O
+	o.FontMM, o.Grid = reportFont, true
+	o.Title, o.Statement, o.Legend, o.Caution = "", "", false, false
+	probe := o
+	probe.fill(&e.In)
+	o.Margin, o.MMPerS, o.MMPerMV, o.LadderMM = probe.Margin, probe.MMPerS, probe.MMPerMV, probe.LadderMM
+	return o, fits(b.paper.body()+pad-o.Margin, o.MMPerS)
+}
+
+// leastRung is the least height of a ladder's unit on paper, mm.
+const leastRung = 5.2
+
+// system is one line of a strip, its ladder lower where the page asks for it.
+func (b *book) system(e Excerpt, o Options) (*Scene, error) {
+	room := b.bottom - b.paper.Margin - 6 // a running title
+	s := e.draw(o)
+	if s.Height <= room {
+		return s, nil
+	}
+	if e.In.Diagram != nil {
+		least := leastRung * e.In.Diagram.Height()
+		if o.LadderMM = max(least, o.LadderMM-(s.Height-room)); o.LadderMM > 0 {
+			s = e.draw(o)
+		}
+	}
+	if s.Height > room {
+		return nil, fmt.Errorf("scene: the strip's lanes are %.0f mm high and the page has %.0f mm: print fewer leads, fewer lanes, a lower gain or on larger paper", s.Height, room)
+	}
+	return s, nil
+}
+
+func (e *Excerpt) draw(o Options) *Scene {
+	if e.Twelve {
+		return Page12(e.In, o)
+	}
+	return Strip(e.In, o)
+}
+
+// rulerMM is the length of the line that shows whether a print is at true scale.
+const rulerMM = 50.0
+
+// explain sets the scales, a line to check them by, and the signs.
+func (b *book) explain(in Input, o Options) {
+	scales := trim(o.MMPerS) + " mm/s"
+	if in.Record != nil {
+		scales += ", " + trim(o.MMPerMV) + " mm/mV"
+	}
+	scales += ". Numbers in ms. Printed at true scale this line is " + trim(rulerMM) + " mm:"
+	h := Note.height(reportFont)
+	b.need(3 * leading * h)
+	b.text(Note, scales)
+	x, y := b.paper.Margin+Note.Width(scales, reportFont)+2, b.y-leading*h+0.5*ascent*h
+	b.put(Mark{Shape: Line, Class: AxisLine, X: x, Y: y, X2: x + rulerMM, Y2: y})
+	for _, at := range [...]float64{x, x + rulerMM} {
+		b.put(Mark{Shape: Line, Class: AxisLine, X: at, Y: y - 1, X2: at, Y2: y + 1})
+	}
+	if in.Diagram != nil {
+		s := &sheet{Scene: &Scene{FontMM: reportFont, Width: b.paper.body() + 2*pad}, in: &in, o: o}
+		s.room = newRoom(s.Width)
+		s.legend()
+		b.need(s.y)
+		b.embed(s.Scene, b.paper.Margin-pad, b.y)
+		b.y += s.y
+	}
+	b.y += 2
+}
+
+func (b *book) footHeight() float64 {
+	return 2 + leading*(Caution.height(reportFont)*float64(len(b.caution))+Note.height(reportFont))
+}
+
+// close numbers the pages and sets the foot of each.
+func (b *book) close() []*Scene {
+	for i, s := range b.pages {
+		left := b.paper.Margin
+		right, y := b.paper.Width-left, b.bottom+1
+		mark := func(m Mark) { s.Marks = append(s.Marks, m) }
+		mark(Mark{Shape: Line, Class: Rule, X: left, Y: y, X2: right, Y2: y})
+		y++
+		h := Caution.height(reportFont)
+		for _, line := range b.caution {
+			mark(Mark{Shape: Text, Class: Caution, X: left, Y: y + ascent*h, Text: line})
+			y += leading * h
+		}
+		h = Note.height(reportFont)
+		count := "page " + strconv.Itoa(i+1) + " of " + strconv.Itoa(len(b.pages))
+		imprint := "escapement"
+		for _, part := range [...]string{b.version, b.date} {
+			if part != "" {
+				imprint += " · " + part
+			}
+		}
+		if fitted := wrap(Note, imprint, reportFont, right-left-Note.Width(count, reportFont)-4); len(fitted) > 0 {
+			mark(Mark{Shape: Text, Class: Note, X: left, Y: y + ascent*h, Text: fitted[0]})
+		}
+		mark(Mark{Shape: Text, Class: Note, X: right, Y: y + ascent*h, Text: count, Anchor: End})
+	}
+	return b.pages
+}
