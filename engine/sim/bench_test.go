@@ -50,8 +50,9 @@ func BenchmarkDay(b *testing.B) {
 func BenchmarkTenSeconds(b *testing.B) {
 	prog := healthy(b, 10*tick.Second)
 	b.ReportAllocs()
+	var player Player
 	for b.Loop() {
-		if _, err := Play(prog); err != nil {
+		if _, err := player.Play(prog); err != nil {
 			b.Fatal(err)
 		}
 	}
@@ -64,8 +65,9 @@ func BenchmarkTenSecondsDDD(b *testing.B) {
 	prog := program(b, 10000, sinusAt(500, 1100)+","+conductsBack(300, 380), `"mode":"DDD","lower_rate_bpm":50`, stimulus(3300, "rv_apex"))
 	events := 0
 	b.ReportAllocs()
+	var player Player
 	for b.Loop() {
-		l, err := Play(prog)
+		l, err := player.Play(prog)
 		if err != nil {
 			b.Fatal(err)
 		}

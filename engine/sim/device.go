@@ -49,7 +49,7 @@ func (v *device) due() tick.Time {
 }
 
 func (v *device) expire(t tick.Time) {
-	v.m.now = t
+	v.m.now, v.m.order = t, atLast
 	v.d.Expire(t)
 }
 
@@ -85,26 +85,26 @@ func (v *device) program(p *plan.Device) {
 }
 
 // depolarised looks whether a lead senses the depolarisation of a site.
-func (v *device) depolarised(e *event.Event, id event.ID) {
+func (v *device) depolarised(w *wave, id event.ID) {
 	a, r := &v.p.Leads[pacer.RA], &v.p.Leads[pacer.RV]
 	own := false
-	if e.Rule == event.Captured {
-		own = e.Cause > v.m.base && v.m.at(e.Cause).Rule == event.Timed
+	if w.rule == event.Captured {
+		own = w.cause > v.m.base && v.m.at(w.cause).Rule == event.Timed
 	}
-	if e.Site == a.Sensing && !own && a.Senses {
-		v.signal(a.Delay, pacer.Atrial, e.Site, id)
+	if w.site == a.Sensing && !own && a.Senses {
+		v.signal(a.Delay, pacer.Atrial, w.site, id)
 	}
-	if e.Site != r.Sensing {
+	if w.site != r.Sensing {
 		return
 	}
 	if !own && r.Senses {
-		v.signal(r.Delay, pacer.Ventricular, e.Site, id)
+		v.signal(r.Delay, pacer.Ventricular, w.site, id)
 	}
 	if v.p.FarField > 0 {
-		v.signal(v.p.FarField, pacer.Atrial, e.Site, id)
+		v.signal(v.p.FarField, pacer.Atrial, w.site, id)
 	}
 	if v.p.TWave > 0 {
-		v.signal(v.p.TWave, pacer.Ventricular, e.Site, id)
+		v.signal(v.p.TWave, pacer.Ventricular, w.site, id)
 	}
 }
 
@@ -191,7 +191,7 @@ func (v *device) capture(site event.SiteID, stimulus event.ID) {
 		v.outcome(m.at(stimulus), site, captured)
 	}
 	if captured {
-		m.activate(event.Event{Rule: event.Captured, Site: site, Path: event.None, Cause: stimulus})
+		m.activate(&wave{rule: event.Captured, site: site, path: event.None, cause: stimulus})
 	}
 }
 

@@ -55,7 +55,7 @@ func (m *Machine) discharge(i int) {
 	m.cycle(i, id)
 	st := &m.sites[f.Site]
 	if st.id == 0 || m.now >= st.until {
-		m.activate(event.Event{Rule: event.Fired, Site: f.Site, Path: event.None, Cause: id})
+		m.activate(&wave{rule: event.Fired, site: f.Site, path: event.None, cause: id})
 		return
 	}
 	m.record(event.Event{Kind: event.Block, Rule: event.SiteRefractory, Site: f.Site, Path: event.None, Cause: id,
@@ -64,10 +64,10 @@ func (m *Machine) discharge(i int) {
 
 // reset begins the cycles of the foci at a site that was depolarised, except
 // where the focus is protected or did it itself.
-func (m *Machine) reset(e *event.Event, id event.ID) {
+func (m *Machine) reset(w *wave, id event.ID) {
 	for i := range m.h.Foci {
 		f, s := &m.h.Foci[i], &m.foci[i]
-		if f.Site != e.Site || f.Protected || e.Rule == event.Fired && s.cause == e.Cause {
+		if f.Site != w.site || f.Protected || w.rule == event.Fired && s.cause == w.cause {
 			continue
 		}
 		s.decay(f.OverdriveTau, m.now)

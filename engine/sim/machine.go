@@ -65,11 +65,13 @@ type Machine struct {
 	prog  *plan.Program
 	queue queue
 	now   tick.Time
+	order uint64   // in the queue's total order at now: what comes before it has been
 	base  event.ID // events already taken away by Drain
 	dev   *device  // nil: none
 
 	ways  []way // paths by 2*id + direction, compiled
 	exits [][]exit
+	laid  *heart.Heart // whose sites and paths exits were laid for
 	sites []siteState
 	paths []pathState
 	foci  []focusState
@@ -81,6 +83,9 @@ type siteState struct {
 	last  tick.Time
 	until tick.Time
 	id    event.ID // its last depolarisation; 0 for none
+
+	cycle, period tick.Dur // the last cycle asked for and its refractory period
+	await                  // what is on its way
 }
 
 // exit is a path as seen from one of its ends.
@@ -103,7 +108,9 @@ type pathState struct {
 // transit is an impulse inside a path.
 type transit struct {
 	active     bool
+	unseen     bool // its arrival is not in the queue: see await
 	gen        uint32
+	order      uint64 // that its arrival has, or would have, at its instant
 	start      tick.Time
 	delay      tick.Dur
 	leftBefore tick.Time // the path's state before it entered
@@ -113,20 +120,32 @@ type transit struct {
 
 // New prepares a run of a program.
 func New(prog *plan.Program) *Machine {
+	m := &Machine{}
+	m.begin(prog)
+	return m
+}
+
+// begin makes the machine ready for a program, in the room of the run before, if
+// there was one: a search makes thousands.
+func (m *Machine) begin(prog *plan.Program) {
 	h := prog.Heart
-	m := &Machine{prog: prog, sites: make([]siteState, len(h.Sites)), paths: make([]pathState, len(h.Paths)),
-		foci: make([]focusState, len(h.Foci)), ways: make([]way, 0, 2*len(h.Paths))}
-	m.log = event.Log{Span: prog.Span, Sites: make([]event.Site, len(h.Sites)), Paths: make([]event.Path, len(h.Paths)), Events: make([]event.Event, 0, 256)}
-	m.queue.items = make([]item, 0, 2*len(h.Paths)+len(prog.Stimuli)+len(prog.Changes))
-	for i := range h.Sites {
-		m.log.Sites[i] = h.Sites[i].Site
+	m.prog, m.now, m.order, m.base, m.dev = prog, 0, 0, 0, nil
+	if m.log.Events == nil {
+		m.log.Events = make([]event.Event, 0, 256)
 	}
+	m.log = event.Log{Span: prog.Span, Sites: m.log.Sites, Paths: m.log.Paths, Events: m.log.Events[:0]}
+	m.queue.begin(2*len(h.Paths) + len(prog.Stimuli) + len(prog.Changes))
+	m.sites, m.paths, m.foci = cleared(m.sites, len(h.Sites)), cleared(m.paths, len(h.Paths)), cleared(m.foci, len(h.Foci))
+	m.stops, m.free = m.stops[:0], m.free[:0]
+	if !sameNetwork(m.laid, h) {
+		m.lay(h)
+	}
+	m.laid = h
 	for i := range h.Paths {
-		m.log.Paths[i] = h.Paths[i].Path
 		m.paths[i].drops.seen = h.Paths[i].Drop.Phase
 	}
-	m.lay(h)
 	m.use(h)
+	m.expect(prog)
 	for i := range h.Foci {
 		m.foci[i].init(m, i)
 	}
@@ -137,11 +156,46 @@ func New(prog *plan.Program) *Machine {
 		m.push(prog.Changes[i].T, classChange, i, 0, 0)
 	}
 	m.connect(prog)
-	return m
 }
 
-// lay lists the paths that leave each site, in order of their numbers.
+// cleared is a slice of n zero values in the room of another one.
+func cleared[T any](s []T, n int) []T {
+	if cap(s) < n {
+		return make([]T, n)
+	}
+	s = s[:n]
+	clear(s)
+	return s
+}
+
+// sameNetwork tells whether two hearts have the same sites and paths.
+func sameNetwork(a, b *heart.Heart) bool {
+	if a == nil || len(a.Sites) != len(b.Sites) || len(a.Paths) != len(b.Paths) {
+		return false
+	}
+	for i := range a.Sites {
+		if a.Sites[i].Site != b.Sites[i].Site {
+			return false
+		}
+	}
+	for i := range a.Paths {
+		if a.Paths[i].Path != b.Paths[i].Path {
+			return false
+		}
+	}
+	return true
+}
+
+// lay names the sites and paths and lists the paths that leave each site, in order of
+// their numbers.
 func (m *Machine) lay(h *heart.Heart) {
+	m.log.Sites, m.log.Paths = make([]event.Site, len(h.Sites)), make([]event.Path, len(h.Paths))
+	for i := range h.Sites {
+		m.log.Sites[i] = h.Sites[i].Site
+	}
+	for i := range h.Paths {
+		m.log.Paths[i] = h.Paths[i].Path
+	}
 	count := make([]int, len(h.Sites))
 	for i := range h.Paths {
 		count[h.Paths[i].From]++
@@ -198,7 +252,7 @@ func (m *Machine) Run(budget int) bool {
 			continue
 		}
 		it := m.queue.pop()
-		m.now = it.t
+		m.now, m.order = it.t, it.order
 		switch it.class() {
 		case classChange:
 			m.change(&m.prog.Changes[it.index])
@@ -239,6 +293,20 @@ func (m *Machine) record(e event.Event) event.ID {
 	return e.ID
 }
 
+// slot records an empty event, to be filled in before the next.
+func (m *Machine) slot() *event.Event {
+	n := len(m.log.Events)
+	if n == cap(m.log.Events) {
+		m.log.Events = append(m.log.Events, event.Event{})
+	} else {
+		m.log.Events = m.log.Events[:n+1]
+		m.log.Events[n] = event.Event{}
+	}
+	e := &m.log.Events[n]
+	e.ID, e.T = m.base+event.ID(n+1), m.now
+	return e
+}
+
 // later records an event at a time to come.
 func (m *Machine) later(t tick.Time, e event.Event) {
 	if t == m.now {
@@ -273,6 +341,9 @@ func (m *Machine) change(c *plan.Change) {
 		}
 	}
 	m.use(c.Heart)
+	for i := range m.sites {
+		m.sites[i].period = 0
+	}
 }
 
 func (m *Machine) stimulate(s *plan.Stimulus) {
@@ -283,30 +354,53 @@ func (m *Machine) stimulate(s *plan.Stimulus) {
 	}
 	id := m.record(e)
 	if e.Captured {
-		m.activate(event.Event{Rule: event.Captured, Site: s.Site, Path: event.None, Cause: id})
+		m.activate(&wave{rule: event.Captured, site: s.Site, path: event.None, cause: id})
 	}
 }
 
+// wave is what depolarises a site: a stimulus, a focus or an impulse that arrives.
+type wave struct {
+	rule     event.Rule
+	dir      event.Dir
+	site     event.SiteID
+	path     event.PathID // it came by, or None
+	cause    event.ID
+	recovery tick.Dur // of that path, as on the event
+	needed   tick.Dur
+}
+
 // activate depolarises an excitable site and sends the impulse on.
-func (m *Machine) activate(e event.Event) {
-	st := &m.sites[e.Site]
+func (m *Machine) activate(a *wave) {
+	st := &m.sites[a.site]
 	cycle := m.h.Basic
 	if st.id != 0 {
 		cycle = m.now.Sub(st.last)
 	}
-	e.Kind = event.Activate
-	e.Until = m.now.Add(m.quantise(m.h.Sites[e.Site].Refractory.At(cycle)))
-	id := m.record(e)
+	e := m.slot()
+	e.Kind, e.Rule, e.Dir, e.Site, e.Path, e.Cause, e.Recovery, e.Needed = event.Activate, a.rule, a.dir, a.site, a.path, a.cause, a.recovery, a.needed
+	e.Until = m.now.Add(m.refractory(a.site, cycle))
+	id := e.ID
 	st.last, st.until, st.id = m.now, e.Until, id
-	m.reset(&e, id)
+	st.await.order = 0
+	m.reset(a, id)
 	if m.dev != nil {
-		m.dev.depolarised(&e, id)
+		m.dev.depolarised(a, id)
 	}
-	for _, x := range m.exits[e.Site] {
-		if x.path != e.Path {
-			m.enter(x.path, x.dir, id, e.Site)
+	for _, x := range m.exits[a.site] {
+		if x.path != a.path {
+			m.enter(x.path, x.dir, id, a.site)
 		}
 	}
+}
+
+// refractory is a site's refractory period after a cycle. In a steady rhythm it is
+// that of the beat before.
+func (m *Machine) refractory(site event.SiteID, cycle tick.Dur) tick.Dur {
+	st := &m.sites[site]
+	if st.period == 0 || st.cycle != cycle {
+		st.cycle, st.period = cycle, m.quantise(m.h.Sites[site].Refractory.At(cycle))
+	}
+	return st.period
 }
 
 // quantise rounds up to a whole number of quanta.

@@ -17,6 +17,7 @@ type way struct {
 	decrease bool     // the delay depends on recovery
 	open     bool
 	silent   bool
+	plain    bool // silent muscle: open, all or none, no depth; see cross
 	turn     tick.Dur
 	drops    bool  // a drop pattern stands in it
 	class    class // of arrivals
@@ -30,6 +31,7 @@ func (m *Machine) compile(p *heart.Path, d event.Dir) way {
 		w.theta = m.quantise(c.Refractory(0))
 	}
 	w.drops = d == event.Down && (p.Drop.Of > 0 || p.Drop.Chance > 0)
+	w.plain = w.silent && w.open && w.fixed && !w.decrease && !w.drops && c.Inner >= 1
 	switch m.h.Sites[w.exit].Tissue {
 	case event.Sinus:
 		w.class = classArriveSinus
@@ -87,8 +89,12 @@ func (m *Machine) delay(w *way, recovery tick.Dur) tick.Dur {
 func (m *Machine) enter(p event.PathID, d event.Dir, cause event.ID, from event.SiteID) {
 	w, st := m.way(p, d), &m.paths[p]
 	against := &st.transit[other(d)]
+	if w.plain {
+		m.cross(w, st, against, attempt{path: p, dir: d, from: from, cause: cause})
+		return
+	}
 	left, used := st.left, st.used
-	if against.active {
+	if m.inside(against) {
 		left, used = against.leftBefore, against.usedBefore
 	}
 	if w.turn > 0 && used && !against.active && st.went != d && m.now.Sub(left) < w.turn {
@@ -111,8 +117,32 @@ func (m *Machine) enter(p event.PathID, d event.Dir, cause event.ID, from event.
 	case !w.open:
 		m.stopInside(w, st, m.reach(w, m.delay(w, a.recovery)), &a, event.OneWay, w.c.Reach)
 	default:
-		m.conduct(w, st, &a)
+		m.conduct(w, st, &st.transit[d], a)
 	}
+}
+
+// cross is enter for the paths through muscle, which are most: the same rules, without
+// what these cannot need, and nothing recorded.
+func (m *Machine) cross(w *way, st *pathState, against *transit, a attempt) {
+	left, used, met := st.left, st.used, m.inside(against)
+	if met {
+		left, used = against.leftBefore, against.usedBefore
+	}
+	a.recovery, a.needed = event.Unknown, w.theta
+	if used {
+		a.recovery = m.now.Sub(left)
+		if a.recovery < w.theta || a.recovery < w.turn && !met && st.went != a.dir {
+			return
+		}
+	}
+	if !met {
+		m.conduct(w, st, &st.transit[a.dir], a)
+		return
+	}
+	against.active = false
+	against.gen++
+	st.enter(m.now)
+	st.left, st.used, st.went = m.now.Add(m.meeting(max(w.min, 1), against)), true, 0
 }
 
 // reach is how long an impulse with a delay takes to come as deep as it can in a
@@ -152,16 +182,18 @@ func (m *Machine) refuse(w *way, st *pathState, a *attempt, against bool) {
 	m.stopInside(w, st, after, a, event.PathRefractory, uint16(min(max(part*1000/whole, 1), 999)))
 }
 
-func (m *Machine) conduct(w *way, st *pathState, a *attempt) {
-	in := &st.transit[a.dir]
+func (m *Machine) conduct(w *way, st *pathState, in *transit, a attempt) {
 	in.active = true
 	in.gen++
-	in.start, in.delay = m.now, m.delay(w, a.recovery)
+	in.start, in.delay = m.now, w.min
+	if w.decrease {
+		in.delay = m.delay(w, a.recovery)
+	}
 	in.leftBefore, in.usedBefore = st.left, st.used
-	in.attempt = *a
+	in.attempt = a
 	st.enter(m.now)
 	st.left, st.used, st.went = m.now.Add(in.delay), true, a.dir
-	m.push(st.left, w.class, int(a.path), uint8(a.dir), in.gen)
+	m.send(w, in, st.left)
 }
 
 // enter notes a conducted entry, for the cycle that sets refractoriness.
@@ -179,9 +211,7 @@ func (st *pathState) enter(t tick.Time) {
 func (m *Machine) collide(w *way, st *pathState, a *attempt, against *transit) {
 	mine := max(m.delay(w, a.recovery), 1)
 	theirs := max(against.delay, 1)
-	rest := against.start.Add(against.delay).Sub(m.now) // what the other one had still to go
-	x := m.quantise(tick.Dur(float64(rest) * float64(mine) / float64(mine+theirs)))
-	x = min(x, rest)
+	x := m.meeting(mine, against)
 	against.active = false
 	against.gen++
 	gone := m.now.Add(x).Sub(against.start)
@@ -199,6 +229,14 @@ func (m *Machine) collide(w *way, st *pathState, a *attempt, against *transit) {
 	m.block(w, m.now.Add(x), a, rule, depth)
 }
 
+// meeting is how long an impulse that enters now with a delay takes to meet an opposite
+// one.
+func (m *Machine) meeting(mine tick.Dur, against *transit) tick.Dur {
+	rest := against.start.Add(against.delay).Sub(m.now) // what the other one had still to go
+	x := m.quantise(tick.Dur(float64(rest) * float64(mine) / float64(mine+max(against.delay, 1))))
+	return min(x, rest)
+}
+
 // arrive brings an impulse to the far end of its path.
 func (m *Machine) arrive(p event.PathID, d event.Dir, gen uint32) {
 	w, in := m.way(p, d), &m.paths[p].transit[d]
@@ -208,7 +246,7 @@ func (m *Machine) arrive(p event.PathID, d event.Dir, gen uint32) {
 	in.active = false
 	st := &m.sites[w.exit]
 	if st.id == 0 || m.now >= st.until {
-		m.activate(event.Event{Rule: event.Conducted, Site: w.exit, Path: p, Dir: d, Cause: in.cause, Recovery: in.recovery, Needed: in.needed})
+		m.activate(&wave{rule: event.Conducted, site: w.exit, path: p, dir: d, cause: in.cause, recovery: in.recovery, needed: in.needed})
 		return
 	}
 	if !w.silent {

@@ -46,9 +46,25 @@ type queue struct {
 	count uint64
 }
 
-func (q *queue) push(t tick.Time, c class, index int, dir uint8, gen uint32) {
+// begin empties the queue and makes room.
+func (q *queue) begin(room int) {
+	if cap(q.items) < room {
+		q.items = make([]item, 0, room)
+	}
+	q.items, q.count = q.items[:0], 0
+}
+
+// place is the next place in the order of an instant, for an item of a class.
+func (q *queue) place(c class) uint64 {
 	q.count++
-	it := item{t: t, order: uint64(c)<<56 | q.count, gen: gen, index: int32(index), dir: dir}
+	return uint64(c)<<56 | q.count
+}
+
+func (q *queue) push(t tick.Time, c class, index int, dir uint8, gen uint32) {
+	q.put(item{t: t, order: q.place(c), gen: gen, index: int32(index), dir: dir})
+}
+
+func (q *queue) put(it item) {
 	q.items = append(q.items, it)
 	i := len(q.items) - 1
 	for i > 0 {

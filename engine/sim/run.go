@@ -22,11 +22,22 @@ func Run(p *plan.Plan) (*event.Log, error) {
 
 // Play runs a program that is compiled already.
 func Play(prog *plan.Program) (*event.Log, error) {
-	m := New(prog)
-	if !m.Run(MaxEvents) {
-		return nil, &Overrun{Events: len(m.log.Events), Seconds: m.now.Seconds()}
+	return new(Player).Play(prog)
+}
+
+// Player runs one program after another in the same room, for searches and sweeps: a
+// run then allocates next to nothing. The zero Player is ready. Use it from one
+// goroutine.
+type Player struct{ m Machine }
+
+// Play runs a program that is compiled already. The log is the player's own and holds
+// until its next run. The error is as with [Run].
+func (p *Player) Play(prog *plan.Program) (*event.Log, error) {
+	p.m.begin(prog)
+	if !p.m.Run(MaxEvents) {
+		return nil, &Overrun{Events: len(p.m.log.Events), Seconds: p.m.now.Seconds()}
 	}
-	return m.Log(), nil
+	return &p.m.log, nil
 }
 
 // Overrun says where a run was stopped for its length.
