@@ -24,6 +24,7 @@ var allowed = map[string][]string{
 	"engine/heart":          {"engine/tick", "engine/portmath", "engine/event"},
 	"engine/pacer":          {"engine/tick", "engine/event"},
 	"engine/plan":           {"engine/tick", "engine/event", "engine/heart", "engine/pacer"},
+	"engine/plan/link":      {"engine/plan"},
 	"engine/nomenclature":   {"engine/plan"},
 	"engine/sim":            {"engine/tick", "engine/portmath", "engine/event", "engine/heart", "engine/pacer", "engine/plan"},
 	"engine/ladder":         {"engine/tick", "engine/event"},

@@ -16,6 +16,7 @@ import (
 	"escapement/engine/field"
 	"escapement/engine/measure"
 	"escapement/engine/plan"
+	"escapement/engine/plan/link"
 	"escapement/engine/sim"
 	"escapement/presets"
 )
@@ -30,9 +31,10 @@ const usage = `escapement: conduction timelines of the whole heart
   escapement settings PLAN      the device's settings as a table in open nomenclature, as CSV;
                                 with -read TABLE, the plan with the device of a table
   escapement presets            names, titles and notes of the built-in plans, as JSON
+  escapement link PLAN          the plan as the end of a web address: #plan=...
   escapement serve              the built site on a loopback port
 
-PLAN is a file, "-" for standard input, or the name of a preset.
+PLAN is a file, "-" for standard input, the name of a preset, or a link with a plan in it.
 Planning and teaching aid, not a medical device; not for treating a patient.
 `
 
@@ -82,6 +84,8 @@ func command(args []string, in io.Reader, out io.Writer) error {
 		return onPaper(args, in)
 	case "settings":
 		return settings(args, in, out, os.Stderr)
+	case "link":
+		return writeLink(args, in, out)
 	case "presets":
 		return writeJSON(out, presets.List())
 	case "serve":
@@ -101,10 +105,30 @@ func run(arg string, in io.Reader) (*event.Log, error) {
 	return sim.Run(p)
 }
 
-// read finds a plan: standard input, a preset, or a file.
+// writeLink prints the fragment that carries a plan to the page.
+func writeLink(args []string, in io.Reader, out io.Writer) error {
+	if len(args) != 1 {
+		return &usageError{fmt.Sprintf("link takes one plan, found %d arguments", len(args))}
+	}
+	p, err := read(args[0], in)
+	if err != nil {
+		return err
+	}
+	fragment, err := link.Encode(p)
+	if err != nil {
+		return err
+	}
+	_, err = fmt.Fprintln(out, fragment)
+	return err
+}
+
+// read finds a plan: standard input, a link, a preset, or a file.
 func read(arg string, in io.Reader) (*plan.Plan, error) {
 	var data []byte
 	var err error
+	if link.Is(arg) {
+		return link.Decode(arg)
+	}
 	if arg == "-" {
 		data, err = io.ReadAll(io.LimitReader(in, plan.MaxBytes+1))
 	} else if b, ok := presets.Read(arg); ok {

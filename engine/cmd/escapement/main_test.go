@@ -47,6 +47,24 @@ func TestRunPrintsOneEventALine(t *testing.T) {
 	}
 }
 
+func TestAPlanGoesThroughALinkAndBack(t *testing.T) {
+	fragment, err := call(t, "", "link", "normal")
+	if err != nil || !strings.HasPrefix(fragment, "#plan=") {
+		t.Fatalf("%q, %v", fragment, err)
+	}
+	byLink, err := call(t, "", "run", "https://example.org/"+strings.TrimSpace(fragment))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if byName, _ := call(t, "", "run", "normal"); byName != byLink {
+		t.Error("the preset by name and by its link differ")
+	}
+	var ds plan.Diagnoses
+	if _, err := call(t, "", "run", strings.TrimSpace(fragment)[:20]); !errors.As(err, &ds) {
+		t.Errorf("a link that is cut off: %v, want a diagnosis", err)
+	}
+}
+
 // The names of the summary are a contract with programs.
 func TestMeasureHoldsItsContract(t *testing.T) {
 	out, err := call(t, "", "measure", "normal")
