@@ -81,7 +81,8 @@ func Text(text string) ([]byte, error) {
 	if err != nil {
 		return nil, wrong(fmt.Sprintf("%d letters, which no text is packed to", len(body)), "a link that is whole")
 	}
-	z, err := zlib.NewReader(bytes.NewReader(packed))
+	rest := bytes.NewReader(packed)
+	z, err := zlib.NewReader(rest)
 	if err != nil {
 		return nil, damaged()
 	}
@@ -89,7 +90,7 @@ func Text(text string) ([]byte, error) {
 	if len(data) > MaxBytes {
 		return nil, wrong(fmt.Sprintf("a plan of more than %d bytes", MaxBytes), fmt.Sprintf("up to %d bytes", MaxBytes))
 	}
-	if err != nil {
+	if err != nil || rest.Len() > 0 {
 		return nil, damaged()
 	}
 	return data, nil

@@ -57,6 +57,7 @@ func TestABadLinkIsToldInWords(t *testing.T) {
 		{"cut in the middle of a letter", Prefix + "abcde", "link: 5 letters, which no text is packed to"},
 		{"only a head", Prefix + "eA", "cut off"},
 		{"changed", whole[:14] + "x" + whole[15:], "cut off or changed"},
+		{"something after it", pack(`{"format":"escapement-plan/1"}`+" ") + "abcd", "cut off or changed"},
 		{"not deflated", Prefix + base64.RawURLEncoding.EncodeToString([]byte(`{"format":"escapement-plan/1"}`)), "cut off or changed"},
 		{"a bomb", bomb, "link: a plan of more than 1048576 bytes; allowed: up to 1048576 bytes"},
 		{"not JSON", pack("hello"), "not JSON"},
