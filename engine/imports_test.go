@@ -27,6 +27,7 @@ var allowed = map[string][]string{
 	"engine/plan/link":      {"engine/plan"},
 	"engine/nomenclature":   {"engine/plan"},
 	"engine/sim":            {"engine/tick", "engine/portmath", "engine/event", "engine/heart", "engine/pacer", "engine/plan"},
+	"engine/handle":         {"engine/tick", "engine/event", "engine/pacer", "engine/plan"},
 	"engine/ladder":         {"engine/tick", "engine/event"},
 	"engine/field":          {"engine/tick", "engine/portmath", "engine/event", "engine/lead", "engine/field/tissue"},
 	"engine/field/tissue":   {"engine/tick", "engine/portmath", "engine/lead"},
@@ -41,7 +42,7 @@ var allowed = map[string][]string{
 		"engine/numbers", "engine/scene"},
 	"presets": {},
 	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
-		"engine/account", "engine/nomenclature", "engine/numbers", "engine/scene", "presets"},
+		"engine/account", "engine/handle", "engine/nomenclature", "engine/numbers", "engine/scene", "presets"},
 }
 
 // top are the programs: they wire everything, and nothing imports them.

@@ -1,7 +1,9 @@
 package plan
 
 import (
+	"regexp"
 	"strconv"
+	"strings"
 )
 
 // Stated gives what the plan itself says at the path of a single value, as text, and
@@ -54,3 +56,17 @@ func (p *Plan) State(path, text string) error {
 // Absent tells whether the path or an object around it is null, by the plan or by
 // default.
 func (p *Plan) Absent(path string) bool { return p.null(path) }
+
+// FieldAt describes the value at a path with the places in lists filled in, such as
+// "heart.foci[0].rate_bpm".
+func FieldAt(path string) (Field, bool) {
+	name := inList.ReplaceAllString(path, "[]")
+	for _, name := range [...]string{name, strings.TrimSuffix(name, "[]")} { // the second: a place in a list of numbers
+		if f := byPath[name]; f != nil {
+			return *f, true
+		}
+	}
+	return Field{}, false
+}
+
+var inList = regexp.MustCompile(`\[\d+\]`)
