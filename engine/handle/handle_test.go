@@ -3,7 +3,6 @@ package handle
 import (
 	"fmt"
 	"math"
-	"strconv"
 	"strings"
 	"testing"
 
@@ -29,34 +28,6 @@ func run(t *testing.T, file string) (*plan.Plan, *event.Log, *Mover) {
 		t.Fatal(err)
 	}
 	return p, log, New(p, prog.Device, log)
-}
-
-// put gives the plan with another value at a handle's path.
-func put(t *testing.T, p *plan.Plan, path string, v float64) (*plan.Plan, bool) {
-	t.Helper()
-	q := p.Clone()
-	var place, member int
-	var name string
-	switch {
-	case strings.HasPrefix(path, "heart.foci["):
-		fmt.Sscanf(path, "heart.foci[%d].%s", &place, &name)
-		q.Foci[place][name] = plan.Value{Number: v}
-	case strings.HasPrefix(path, "interventions["):
-		fmt.Sscanf(path, "interventions[%d].%s", &place, &name)
-		if stem, rest, ok := strings.Cut(name, "["); ok {
-			fmt.Sscanf(rest, "%d]", &member)
-			list := append([]float64(nil), q.Interventions[place][stem].List...)
-			list[member] = v
-			q.Interventions[place][stem] = plan.Value{List: list}
-			break
-		}
-		q.Interventions[place][name] = plan.Value{Number: v}
-	default:
-		if err := q.State(path, strconv.FormatFloat(v, 'f', -1, 64)); err != nil {
-			return nil, false
-		}
-	}
-	return q, true
 }
 
 // same tells whether two logs hold the same things in the same order up to an event.
@@ -93,8 +64,8 @@ func TestAnEventStandsWhereItsHandleWasMovedTo(t *testing.T) {
 			}
 			h.Step = 0.001
 			v := h.At(h.T.Add(by))
-			q, ok := put(t, p, h.Path, v)
-			if !ok || v == h.Min || v == h.Max {
+			q, err := p.With(h.Path, v)
+			if err != nil || v == h.Min || v == h.Max {
 				continue
 			}
 			next, err := sim.Run(q)

@@ -113,6 +113,7 @@ func (r *rungs) tiers(foot float64) {
 	}
 	for i := range r.d.Tiers {
 		t := &r.d.Tiers[i]
+		r.Tiers = append(r.Tiers, Lane{t.Name, t.Label, r.y(t.Y0), r.y(t.Y1)})
 		edge(r.y(t.Y0))
 		h, middle := TierLabel.height(r.o.FontMM), (r.y(t.Y0)+r.y(t.Y1))/2
 		for _, name := range [...]string{t.Label, t.Short} {

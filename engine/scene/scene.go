@@ -108,5 +108,6 @@ type Scene struct {
 	FontMM        float64 // em size of text of size 1; see [Style]
 	Axis          Axis
 	Lanes         []Lane
+	Tiers         []Lane // of the ladder, by the names of [ladder.Tier]; not on the wire
 	Marks         []Mark
 }

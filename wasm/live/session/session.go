@@ -19,6 +19,7 @@ import (
 
 	"escapement/engine/event"
 	"escapement/engine/field"
+	"escapement/engine/handle"
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
 	"escapement/engine/measure"
@@ -40,6 +41,7 @@ type timeline struct {
 	drawn    *lead.Record // the same, with what a press on a wave selects
 	report   *measure.Report
 	diagrams map[ladder.Form]*ladder.Diagram // made when first drawn
+	mover    *handle.Mover                   // likewise
 }
 
 // New is a session without a timeline.

@@ -57,7 +57,9 @@ func (t *timeline) scene(q *view) ([]byte, []float32) {
 	o.LadderMM = ladderHeight(in, o, q.View.Height)
 	drawn := scene.Strip(in, o)
 	meta, points := scene.Encode(drawn)
-	return append(meta[:len(meta)-1], append(append([]byte(`,"times":`), encode(t.times(drawn))...), '}')...), points
+	meta = append(append(meta[:len(meta)-1], `,"times":`...), encode(t.times(drawn))...)
+	meta = append(append(meta, `,"handles":`...), encode(t.handles(drawn, &o))...)
+	return append(append(append(meta, `,"tiers":`...), encode(tiers(drawn))...), '}'), points
 }
 
 // A tier is between so many millimetres high: readable, and not stretched beyond
