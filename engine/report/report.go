@@ -96,7 +96,11 @@ func Build(c *Case, o Options) ([]*scene.Scene, error) {
 // Compare lays out two plans one above the other, named as given ("before", "after"),
 // with the lines in which they differ.
 func Compare(cases [2]*Case, names [2]string, differences []scene.Difference, o Options) ([]*scene.Scene, error) {
-	p := &scene.Comparison{Title: cases[1].title(), Differences: differences, Date: o.Date, Version: o.Version}
+	title := first(names[0]) + " and " + names[1]
+	if t := cases[1].title(); t == cases[0].title() {
+		title += ": " + t
+	}
+	p := &scene.Comparison{Title: title, Differences: differences, Date: o.Date, Version: o.Version}
 	for i, c := range cases {
 		own := o
 		if own.From >= c.Log.Span {
@@ -110,6 +114,14 @@ func Compare(cases [2]*Case, names [2]string, differences []scene.Difference, o 
 		p.Parts[i] = scene.Part{Name: names[i], Title: c.Plan.Title, Statement: c.Measure.Statement, Strip: strip}
 	}
 	return p.Pages(o.Paper)
+}
+
+// first is a text with a capital at its beginning.
+func first(s string) string {
+	if s == "" || s[0] < 'a' || s[0] > 'z' {
+		return s
+	}
+	return string(s[0]-'a'+'A') + s[1:]
 }
 
 func (c *Case) title() string {

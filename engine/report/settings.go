@@ -32,7 +32,7 @@ func (c *Case) setting(f *plan.Field) (scene.Setting, bool) {
 		if !p.Absent(f.Path) || f.IsNull || parentAbsent(p, f.Path) {
 			return s, false
 		}
-		s.Value, s.State = f.Null, scene.Changed
+		s.Value, s.Word, s.State = f.Null, true, scene.Changed
 		return s, true
 	}
 	text, stated := p.Stated(f.Path)
@@ -40,8 +40,8 @@ func (c *Case) setting(f *plan.Field) (scene.Setting, bool) {
 		if f.Advanced || p.Absent(f.Path) || c.idle(f.Path) {
 			return s, false
 		}
-		if s.Value = standing(f); s.Value == "" {
-			return s, false
+		if s.Value = standing(f); s.Value == "" || s.Value == "0" {
+			return s, false // none, or something that adds nothing
 		}
 		s.State = scene.Assumed
 	} else {
@@ -52,12 +52,12 @@ func (c *Case) setting(f *plan.Field) (scene.Setting, bool) {
 			s.State = scene.Changed
 		}
 		if text == "null" {
-			s.Value = f.Null
+			s.Value, s.Word = f.Null, true
 			return s, true
 		}
 	}
 	s.Value = words(f, s.Value)
-	s.Unit = f.Unit
+	s.Unit, s.Word = f.Unit, f.Kind != plan.Number
 	if f.Normal != nil {
 		s.Normal = between(f.Normal.Low, f.Normal.High, f.Unit)
 	}
@@ -99,7 +99,7 @@ func (c *Case) idle(path string) bool {
 	const fast = "heart.av_node.fast."
 	if strings.HasPrefix(path, fast) {
 		_, curve := c.Plan.Stated(fast + "min_ms")
-		return curve
+		return curve || c.Plan.Absent(fast+"ah_ms") && path != fast+"va_ms"
 	}
 	name, of := strings.CutPrefix(path, "pacemaker.")
 	if !of || c.Device == nil {
@@ -162,10 +162,10 @@ func items(name, list, first string, its []plan.Item) []scene.Setting {
 	var out []scene.Setting
 	for i, it := range its {
 		if i == mostItems {
-			out = append(out, scene.Setting{Group: name, Label: "and more", Value: strconv.Itoa(len(its) - i)})
+			out = append(out, scene.Setting{Group: name, Label: "and more", Word: true, Value: strconv.Itoa(len(its) - i)})
 			break
 		}
-		s := scene.Setting{Group: name, State: scene.Changed}
+		s := scene.Setting{Group: name, Word: true, State: scene.Changed}
 		var rest []string
 		for _, f := range plan.Catalogue() {
 			field, of := strings.CutPrefix(f.Path, list+".")

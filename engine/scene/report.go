@@ -99,6 +99,7 @@ type (
 	Setting struct {
 		Group                      string // a new one begins with its name
 		Label, Value, Unit, Normal string
+		Word                       bool // the value is a text, not a number
 		State                      State
 	}
 	// Reading is a measured number. Outside marks one that its normal range does not hold.
@@ -143,22 +144,37 @@ func (r *Report) Pages(p Paper) ([]*Scene, error) {
 		return nil, err
 	}
 	b.heading(r.Statement, r.Note)
-	if r.Strip.In.Log != nil {
-		if err := b.excerpt(r.Strip); err != nil {
-			return nil, err
-		}
+	rows := r.rows(b.columnWidth())
+	if r.Strip.In.Log == nil {
+		b.flow(rows)
+		return b.close(), nil
 	}
-	w := b.columnWidth()
-	var lines []rowLine
-	lines = append(lines, remarks(w, r.Findings)...)
-	lines = append(lines, warnings(w, r.Warnings)...)
-	lines = append(lines, readings(w, "Intervals", "Medians of the whole strip.", r.Readings)...)
-	lines = append(lines, readings(w, "What the device did", "", r.Counted)...)
-	lines = append(lines, sums(w, r.Sums)...)
-	lines = append(lines, settings(w, r.Settings)...)
-	lines = append(lines, sources(w, r.Sources)...)
-	b.flow(lines)
+	late := !b.has(r.Strip)
+	if late { // a page with a title alone would be a waste
+		b.explainStrip(r.Strip)
+		b.flow(rows)
+		b.page()
+	}
+	if err := b.excerpt(r.Strip); err != nil {
+		return nil, err
+	}
+	if !late {
+		b.explainStrip(r.Strip)
+		b.flow(rows)
+	}
 	return b.close(), nil
+}
+
+// rows are all tables, the most read first.
+func (r *Report) rows(w float64) []rowLine {
+	var rows []rowLine
+	rows = append(rows, remarks(w, r.Findings)...)
+	rows = append(rows, warnings(w, r.Warnings)...)
+	rows = append(rows, readings(w, "Intervals", "Medians of the whole strip.", r.Readings)...)
+	rows = append(rows, readings(w, "What the device did", "", r.Counted)...)
+	rows = append(rows, sums(w, r.Sums)...)
+	rows = append(rows, settings(w, r.Settings)...)
+	return append(rows, sources(w, r.Sources)...)
 }
 
 // A strip on paper begins its lines at multiples of this, so that they begin on a

@@ -103,19 +103,12 @@ func (b *book) embed(s *Scene, x, y float64) {
 }
 
 // mostLines bounds how many lines of a strip are printed.
-const mostLines = 400
+const mostLines = 200
 
-// excerpt sets a strip in as many lines as it takes, and what explains it.
+// excerpt sets a strip in as many lines as it takes.
 func (b *book) excerpt(e Excerpt) error {
 	o, line := b.fit(e)
-	whole := o.To == 0
-	end := o.To
-	if whole || end > e.In.Log.Span {
-		end = e.In.Log.Span
-	}
-	if whole {
-		end = min(end, o.From.Add(line))
-	}
+	end := b.end(e)
 	if n := (end.Sub(o.From) + line - 1) / max(line, 1); n > mostLines {
 		return fmt.Errorf("scene: from %.3f to %.3f s is %d lines of %.1f s on this paper; at most %d are printed", o.From.Seconds(), end.Seconds(), n, line.MS()/1000, mostLines)
 	}
@@ -125,12 +118,28 @@ func (b *book) excerpt(e Excerpt) error {
 		if err != nil {
 			return err
 		}
-		b.need(s.Height)
+		b.need(s.Height - pad)
 		b.embed(s, b.paper.Margin-pad, b.y-pad)
 		b.y += s.Height - pad
 	}
-	b.explain(e.In, o)
 	return nil
+}
+
+// end is where the printed part of a strip ends.
+func (b *book) end(e Excerpt) tick.Time {
+	if e.O.To != 0 {
+		return min(e.O.To, e.In.Log.Span)
+	}
+	o, line := b.fit(e)
+	return min(o.From.Add(line), e.In.Log.Span)
+}
+
+// has tells whether the first line of a strip has room on this page.
+func (b *book) has(e Excerpt) bool {
+	o, line := b.fit(e)
+	o.To = min(o.From.Add(line), e.In.Log.Span)
+	s, err := b.system(e, o)
+	return err != nil || s.Height-pad <= b.bottom-b.y
 }
 
 // fit gives the options of a strip's lines and how much time a line holds.
@@ -145,25 +154,38 @@ func (b *book) fit(e Excerpt) (Options, tick.Dur) {
 }
 
 // leastRung is the least height of a ladder's unit on paper, mm.
-const leastRung = 5.2
+const leastRung = 4.4
 
-// system is one line of a strip, its ladder lower where the page asks for it.
+// system is one line of a strip. Where this page has no room for it, its ladder is
+// drawn lower; where that does not help either, it is for a page of its own.
 func (b *book) system(e Excerpt, o Options) (*Scene, error) {
-	room := b.bottom - b.paper.Margin - 6 // a running title
 	s := e.draw(o)
-	if s.Height <= room {
-		return s, nil
-	}
-	if e.In.Diagram != nil {
-		least := leastRung * e.In.Diagram.Height()
-		if o.LadderMM = max(least, o.LadderMM-(s.Height-room)); o.LadderMM > 0 {
-			s = e.draw(o)
+	whole := b.bottom - b.paper.Margin - running + pad
+	for _, room := range [...]float64{b.bottom - b.y + pad, whole} {
+		if s.Height <= room {
+			return s, nil
+		}
+		if e.In.Diagram == nil {
+			continue
+		}
+		low := o
+		low.LadderMM = max(leastRung*e.In.Diagram.Height(), o.LadderMM-(s.Height-room))
+		if t := e.draw(low); t.Height <= room {
+			return t, nil
 		}
 	}
-	if s.Height > room {
-		return nil, fmt.Errorf("scene: the strip's lanes are %.0f mm high and the page has %.0f mm: print fewer leads, fewer lanes, a lower gain or on larger paper", s.Height, room)
+	return nil, fmt.Errorf("scene: the strip's lanes are %.0f mm high, less %.0f mm that the ladder can give, and a page has %.0f mm: print fewer leads or lanes, a lower gain, or larger paper",
+		s.Height, o.LadderMM-leastRung*ladderUnits(&e), whole)
+}
+
+// running is the room that a running title takes, mm.
+const running = 5
+
+func ladderUnits(e *Excerpt) float64 {
+	if e.In.Diagram == nil {
+		return 0
 	}
-	return s, nil
+	return e.In.Diagram.Height()
 }
 
 func (e *Excerpt) draw(o Options) *Scene {
@@ -176,13 +198,28 @@ func (e *Excerpt) draw(o Options) *Scene {
 // rulerMM is the length of the line that shows whether a print is at true scale.
 const rulerMM = 50.0
 
+// shown says which part of a strip is printed.
+func shown(from, to, span tick.Time) string {
+	s := func(t tick.Time) string { return trim(t.Seconds()) }
+	if from == 0 && to == span {
+		return "The whole strip of " + s(span) + " s. "
+	}
+	return "Shown: " + s(from) + " to " + s(to) + " s of " + s(span) + " s. "
+}
+
+// explainStrip explains a strip that stands above or, on the next page, below.
+func (b *book) explainStrip(e Excerpt) {
+	o, _ := b.fit(e)
+	b.explain(e.In, o, shown(e.O.From, b.end(e), e.In.Log.Span))
+}
+
 // explain sets the scales, a line to check them by, and the signs.
-func (b *book) explain(in Input, o Options) {
-	scales := trim(o.MMPerS) + " mm/s"
+func (b *book) explain(in Input, o Options, part string) {
+	scales := part + trim(o.MMPerS) + " mm/s"
 	if in.Record != nil {
 		scales += ", " + trim(o.MMPerMV) + " mm/mV"
 	}
-	scales += ". Numbers in ms. Printed at true scale this line is " + trim(rulerMM) + " mm:"
+	scales += ". Numbers in ms. This line is " + trim(rulerMM) + " mm long:"
 	h := Note.height(reportFont)
 	b.need(3 * leading * h)
 	b.text(Note, scales)

@@ -75,7 +75,7 @@ func (b *book) pair(parts *[2]Part) error {
 	if parts[1].Strip.In.Diagram != nil && parts[1].Strip.In.Diagram.Device != nil {
 		in, o = parts[1].Strip.In, os[1]
 	}
-	b.explain(in, o)
+	b.explain(in, o, "")
 	return nil
 }
 

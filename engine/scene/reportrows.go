@@ -18,7 +18,7 @@ type cell struct {
 	right bool
 }
 
-// row sets cells side by side; each wraps in its own width.
+// rowOf sets cells side by side; each wraps in its own width.
 func rowOf(cells ...cell) rowLine {
 	var l rowLine
 	for _, c := range cells {
@@ -53,23 +53,34 @@ func section(width float64, heading, note string, rows []rowLine) []rowLine {
 	return append(out, rows...)
 }
 
-// Parts of a row of four: name, value, unit and normal range.
-const (
-	partLabel, partValue, partUnit = 0.46, 0.20, 0.09
-	partGap                        = 1.2 // mm between them
-)
+// partGap stands between the parts of a row, mm.
+const partGap = 1.2
 
-func fourOf(w float64, class, quiet Class, label, value, unit, normal string) rowLine {
-	l, v, u := partLabel*w, partValue*w, partUnit*w
-	if unit == "" && normal == "" { // a word
-		return rowOf(cell{class: quiet, text: label, w: l}, cell{class: class, text: value, x: l + partGap, w: w - l - partGap})
+// quantity sets a row of name, value, unit and normal range; the value ends at a share
+// of the width, so that values stand below one another.
+func quantity(w, ends float64, name, strong Class, label, value, unit, normal string) rowLine {
+	v := max(strong.Width(value, reportFont), 8) + 0.1
+	x := ends * w
+	u := 0.0
+	if unit != "" {
+		u = Note.Width(unit, reportFont) + 0.1
 	}
 	return rowOf(
-		cell{class: quiet, text: label, w: l},
-		cell{class: class, text: value, x: l + partGap, w: v - partGap, right: true},
-		cell{class: quiet, text: unit, x: l + v + partGap, w: u - partGap + 1.5},
-		cell{class: Note, text: normal, x: l + v + u + partGap + 1.5, w: w - l - v - u - partGap - 1.5, right: true})
+		cell{class: name, text: label, w: x - v - partGap},
+		cell{class: strong, text: value, x: x - v, w: v, right: true},
+		cell{class: Note, text: unit, x: x + partGap, w: u},
+		cell{class: Note, text: normal, x: x + u + 2*partGap, w: w - x - u - 2*partGap, right: true})
 }
+
+// word sets a row of a name and a text.
+func word(w float64, name, strong Class, label, value string) rowLine {
+	l := min(max(name.Width(label, reportFont)+0.1, 0.3*w), 0.45*w)
+	return rowOf(cell{class: name, text: label, w: l}, cell{class: strong, text: value, x: l + 2*partGap, w: w - l - 2*partGap, right: true})
+}
+
+// Values of readings end at one share of the width, those of settings, whose names are
+// longer, at another.
+const readingEnds, settingEnds = 0.5, 0.62
 
 func readings(w float64, heading, note string, rs []Reading) []rowLine {
 	var rows []rowLine
@@ -82,7 +93,7 @@ func readings(w float64, heading, note string, rs []Reading) []rowLine {
 			class = Strong
 			normal = "outside " + r.Normal
 		}
-		rows = append(rows, fourOf(w, class, Body, r.Label, r.Value, r.Unit, normal))
+		rows = append(rows, quantity(w, readingEnds, Body, class, r.Label, r.Value, r.Unit, normal))
 	}
 	return section(w, heading, note, rows)
 }
@@ -104,7 +115,11 @@ func settings(w float64, ss []Setting) []rowLine {
 		case Assumed:
 			class, quiet = Note, Note
 		}
-		rows = append(rows, fourOf(w, class, quiet, label, s.Value, s.Unit, s.Normal))
+		if s.Word {
+			rows = append(rows, word(w, quiet, class, label, s.Value))
+		} else {
+			rows = append(rows, quantity(w, settingEnds, quiet, class, label, s.Value, s.Unit, s.Normal))
+		}
 	}
 	return section(w, "Settings", "* and bold: other than the default. Grey: assumed, not stated. Right: normal or usual range.", rows)
 }
@@ -119,7 +134,7 @@ func remarks(w float64, fs []Remark) []rowLine {
 		if len(f.Rivals) > 0 {
 			parts = append(parts, cell{class: Note, text: "Would look the same: " + strings.Join(f.Rivals, "; ") + ".", x: 3, w: w - 3})
 		}
-		rows = append(rows, stack(parts...))
+		rows = append(rows, spaced(stack(parts...)))
 	}
 	return section(w, "Findings", "", rows)
 }
@@ -150,7 +165,7 @@ func sums(w float64, ss []Sum) []rowLine {
 		if s.Numbers != "" {
 			how += ": " + s.Numbers
 		}
-		rows = append(rows, under(first, rowOf(cell{class: Note, text: how, x: 3, w: w - 3})))
+		rows = append(rows, spaced(under(first, rowOf(cell{class: Note, text: how, x: 3, w: w - 3}))))
 	}
 	return section(w, "Arithmetic", "", rows)
 }
@@ -172,4 +187,10 @@ func under(a, b rowLine) rowLine {
 	}
 	a.height += b.height
 	return a
+}
+
+// spaced is a row with a little room below it.
+func spaced(l rowLine) rowLine {
+	l.height += 0.6
+	return l
 }
