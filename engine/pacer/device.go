@@ -100,6 +100,8 @@ type Device struct {
 
 	spans  [windowCount]span
 	timers [slotCount]deadline
+	next   tick.Time // earliest of the timers, unless stale
+	stale  bool
 
 	a, v      beat     // the last atrial and ventricular event that the timing used
 	aa, vv    tick.Dur // the intervals before them, vv without PVCs; 0: not known
@@ -125,7 +127,7 @@ type Device struct {
 // stop the clock are held at a millisecond.
 func New(s Settings, r Recorder) *Device {
 	s.LowerRate = max(s.LowerRate, 1)
-	d := &Device{s: s, r: r, mode: s.Mode}
+	d := &Device{s: s, r: r, mode: s.Mode, stale: true}
 	for i := range d.timers {
 		d.timers[i].at = tick.Never
 	}
@@ -166,11 +168,13 @@ func (d *Device) Senses(ch Channel) bool {
 
 // Due is the next instant at which a timer ends, or tick.Never.
 func (d *Device) Due() tick.Time {
-	due := tick.Never
-	for i := range d.timers {
-		due = min(due, d.timers[i].at)
+	if d.stale {
+		d.next, d.stale = tick.Never, false
+		for i := range d.timers {
+			d.next = min(d.next, d.timers[i].at)
+		}
 	}
-	return due
+	return d.next
 }
 
 // Expire acts on every timer that ends at or before now.
@@ -178,7 +182,7 @@ func (d *Device) Expire(now tick.Time) {
 	d.now = now
 	for s := d.ended(); s < slotCount; s = d.ended() {
 		dl := d.timers[s]
-		d.timers[s] = deadline{at: tick.Never}
+		d.clear(s)
 		d.fire(s, dl)
 	}
 }

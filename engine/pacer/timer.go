@@ -64,9 +64,13 @@ type deadline struct {
 func (d *Device) set(s slot, at tick.Time, dl deadline) {
 	dl.at = at
 	d.timers[s] = dl
+	d.stale = true
 }
 
-func (d *Device) clear(s slot) { d.timers[s].at = tick.Never }
+func (d *Device) clear(s slot) {
+	d.timers[s].at = tick.Never
+	d.stale = true
+}
 
 // advance opens the windows that begin in the middle of others up to now, so that a
 // signal at that very instant finds them.

@@ -92,6 +92,8 @@ type siteState struct {
 type exit struct {
 	path event.PathID
 	dir  event.Dir
+	way  *way
+	st   *pathState
 }
 
 type pathState struct {
@@ -138,6 +140,7 @@ func (m *Machine) begin(prog *plan.Program) {
 	m.sites, m.paths, m.foci = cleared(m.sites, len(h.Sites)), cleared(m.paths, len(h.Paths)), cleared(m.foci, len(h.Foci))
 	m.stops, m.free = m.stops[:0], m.free[:0]
 	if !sameNetwork(m.laid, h) {
+		m.ways = make([]way, 2*len(h.Paths))
 		m.lay(h)
 	}
 	m.laid = h
@@ -208,17 +211,21 @@ func (m *Machine) lay(h *heart.Heart) {
 	}
 	for i := range h.Paths {
 		p := &h.Paths[i]
-		m.exits[p.From] = append(m.exits[p.From], exit{event.PathID(i), event.Down})
-		m.exits[p.To] = append(m.exits[p.To], exit{event.PathID(i), event.Up})
+		m.exits[p.From] = append(m.exits[p.From], m.exit(event.PathID(i), event.Down))
+		m.exits[p.To] = append(m.exits[p.To], m.exit(event.PathID(i), event.Up))
 	}
+}
+
+func (m *Machine) exit(p event.PathID, d event.Dir) exit {
+	return exit{p, d, m.way(p, d), &m.paths[p]}
 }
 
 // use takes over the parameters of a heart with the same sites and paths.
 func (m *Machine) use(h *heart.Heart) {
 	m.h = h
-	m.ways = m.ways[:0]
 	for i := range h.Paths {
-		m.ways = append(m.ways, m.compile(&h.Paths[i], event.Down), m.compile(&h.Paths[i], event.Up))
+		p := &h.Paths[i]
+		m.ways[2*i], m.ways[2*i+1] = m.compile(p, event.Down), m.compile(p, event.Up)
 	}
 }
 
@@ -386,9 +393,10 @@ func (m *Machine) activate(a *wave) {
 	if m.dev != nil {
 		m.dev.depolarised(a, id)
 	}
-	for _, x := range m.exits[a.site] {
-		if x.path != a.path {
-			m.enter(x.path, x.dir, id, a.site)
+	exits := m.exits[a.site]
+	for i := range exits {
+		if x := &exits[i]; x.path != a.path {
+			m.enter(x, id, a.site)
 		}
 	}
 }

@@ -86,11 +86,11 @@ func (m *Machine) delay(w *way, recovery tick.Dur) tick.Dur {
 }
 
 // enter offers the impulse of a depolarised site to a path.
-func (m *Machine) enter(p event.PathID, d event.Dir, cause event.ID, from event.SiteID) {
-	w, st := m.way(p, d), &m.paths[p]
+func (m *Machine) enter(x *exit, cause event.ID, from event.SiteID) {
+	w, st, p, d := x.way, x.st, x.path, x.dir
 	against := &st.transit[other(d)]
 	if w.plain {
-		m.cross(w, st, against, attempt{path: p, dir: d, from: from, cause: cause})
+		m.cross(x, against, cause, from)
 		return
 	}
 	left, used := st.left, st.used
@@ -123,20 +123,21 @@ func (m *Machine) enter(p event.PathID, d event.Dir, cause event.ID, from event.
 
 // cross is enter for the paths through muscle, which are most: the same rules, without
 // what these cannot need, and nothing recorded.
-func (m *Machine) cross(w *way, st *pathState, against *transit, a attempt) {
+func (m *Machine) cross(x *exit, against *transit, cause event.ID, from event.SiteID) {
+	w, st := x.way, x.st
 	left, used, met := st.left, st.used, m.inside(against)
 	if met {
 		left, used = against.leftBefore, against.usedBefore
 	}
-	a.recovery, a.needed = event.Unknown, w.theta
+	recovery := event.Unknown
 	if used {
-		a.recovery = m.now.Sub(left)
-		if a.recovery < w.theta || a.recovery < w.turn && !met && st.went != a.dir {
+		recovery = m.now.Sub(left)
+		if recovery < w.theta || recovery < w.turn && !met && st.went != x.dir {
 			return
 		}
 	}
 	if !met {
-		m.conduct(w, st, &st.transit[a.dir], a)
+		m.conduct(w, st, &st.transit[x.dir], attempt{path: x.path, dir: x.dir, from: from, cause: cause, recovery: recovery, needed: w.theta})
 		return
 	}
 	against.active = false
