@@ -76,8 +76,7 @@ type Path struct {
 	// impulse that meets tissue already depolarised by the same beat just ends.
 	Silent bool
 
-	// Turn is how long after an impulse has left or two have met an impulse the other
-	// way is not let in, nor recorded: muscle that a wave has just crossed does not
+	// Turn is how long after an impulse has left an impulse the other way is not let in, nor recorded: muscle that a wave has just crossed does not
 	// carry it back. 0 for none; for silent paths only.
 	Turn tick.Dur
 }

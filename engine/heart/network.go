@@ -73,6 +73,9 @@ func New(n *Numbers) (*Heart, error) {
 	if err := b.node(); err != nil {
 		return nil, err
 	}
+	if err := b.pathways(); err != nil {
+		return nil, err
+	}
 	for i := range b.h.Paths {
 		p := &b.h.Paths[i]
 		b.first(&p.Down)

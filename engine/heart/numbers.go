@@ -35,6 +35,7 @@ type Numbers struct {
 	Septal     BundleNumbers
 	VentricERP Cycled
 	Foci       []FocusNumbers
+	Pathways   []PathwayNumbers
 	QuantumUS  tick.Dur // 0 is 1 microsecond
 }
 

@@ -168,7 +168,7 @@ func (c *compiler) changes() {
 		}
 		from := now.Or(name, 0)
 		if item >= 0 {
-			from = now.Foci[item].number("heart.foci", name[len("heart.foci[]."):])
+			from = now.item(name, item).number(listOf(name), leafOf(name))
 		}
 		count := max(1, int(tick.MS(it.number("interventions", "over_ms"))/rampStep))
 		if steps += count; steps > maxSteps {
@@ -203,7 +203,7 @@ func (c *compiler) to(it Item) string {
 func (p *Plan) set(path string, item int, v Value) {
 	switch {
 	case item >= 0:
-		p.Foci[item][path[len("heart.foci[]."):]] = v
+		p.item(path, item)[leafOf(path)] = v
 	case v.Text == "default":
 		delete(p.values, path)
 	default:

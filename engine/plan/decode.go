@@ -122,6 +122,8 @@ func (d *decoder) object(at string, m map[string]any, also []string) {
 		case slices.Contains(also, k):
 		case path == "heart.foci":
 			d.p.Foci = d.items(path, v, MaxFoci)
+		case path == pathways:
+			d.p.Pathways = d.items(path, v, MaxPathways)
 		case path == "interventions":
 			d.p.Interventions = d.items(path, v, MaxInterventions)
 		case f != nil && f.Kind != Group:

@@ -70,6 +70,12 @@ func TestDiagnosesNameThePlaceTheValueAndWhatIsAllowed(t *testing.T) {
 		{"set of an unknown field", head + `,"interventions":[{"at_ms":1,"do":"set","field":"heart.sinus.rate_bp","to":2}]}`, "interventions[0].field: \"heart.sinus.rate_bp\"; allowed: the path of a number in heart or pacemaker, such as heart.sinus.rate_bpm\n  note: did you mean \"heart.sinus.rate_bpm\"?"},
 		{"set out of range", head + `,"interventions":[{"at_ms":1,"do":"set","field":"heart.sinus.rate_bpm","to":2}]}`, "interventions[0].to: 2; allowed: a number from 10 to 220 /min"},
 		{"set of a focus that is not there", head + `,"interventions":[{"at_ms":1,"do":"set","field":"heart.foci[0].rate_bpm","to":20}]}`, "interventions[0].field: \"heart.foci[0].rate_bpm\"; allowed: one of the 0 foci of this plan"},
+		{"set of no focus in particular", head + `,"interventions":[{"at_ms":1,"do":"set","field":"heart.foci[].rate_bpm","to":20}]}`, "interventions[0].field: \"heart.foci[].rate_bpm\"; allowed: one of the 0 foci of this plan"},
+		{"set of a pathway that is not there", head + `,"heart":{"pathways":[{"atrium":"left_atrium","ventricle":"lv_lateral"}]},"interventions":[{"at_ms":1,"do":"set","field":"heart.pathways[1].up_ms","to":null}]}`, "interventions[0].field: \"heart.pathways[1].up_ms\"; allowed: one of the 1 accessory pathways of this plan"},
+		{"a ramp from null", head + `,"heart":{"pathways":[{"atrium":"left_atrium","ventricle":"lv_lateral","up_ms":null}]},"interventions":[{"at_ms":1,"do":"set","field":"heart.pathways[0].up_ms","to":40,"over_ms":500}]}`, "interventions[0].over_ms: a gradual change from or to null"},
+		{"pathway to nowhere", head + `,"heart":{"pathways":[{"atrium":"left_atrium"}]}}`, "heart.pathways[0].ventricle: nothing; allowed: one of rv_septum, "},
+		{"pathway from the wrong chamber", head + `,"heart":{"pathways":[{"atrium":"rv_apex","ventricle":"lv_lateral"}]}}`, "heart.pathways[0].atrium: \"rv_apex\"; allowed: one of right_atrium, left_atrium, atrial_septum"},
+		{"pathway out of range", head + `,"heart":{"pathways":[{"atrium":"left_atrium","ventricle":"lv_lateral","down_ms":0}]}}`, "heart.pathways[0].down_ms: 0; allowed: a number from 1 to 500 ms, or null (does not conduct to the ventricles: concealed)"},
 		{"clinical numbers and a curve", head + `,"heart":{"av_node":{"fast":{"ah_ms":80,"min_ms":60,"alpha_ms":0,"tau_ms":1,"theta_ms":200}}}}`, "heart.av_node.fast.ah_ms: a clinical number beside a curve given outright; allowed: one or the other"},
 		{"half a curve", head + `,"heart":{"av_node":{"fast":{"min_ms":60}}}}`, "heart.av_node.fast.alpha_ms: nothing; allowed: a number"},
 		{"a drop pattern", head + `,"heart":{"av_node":{"fast":{"drop":"2:3"}}}}`, `heart.av_node.fast.drop: "2:3"; allowed: "3:2" (two of three conducted)`},
@@ -100,6 +106,7 @@ func TestConflictsNameTheNumbers(t *testing.T) {
 		{"AH shorter than the way below", `"fast":{"ah_ms":9}`, "ah_ms 9 is not longer than the 10 ms below the node"},
 		{"VA shorter than the way outside", `"fast":{"va_ms":60}`, "va_ms 60 is not longer than the way outside the node"},
 		{"FRP out of reach", `"fast":{"frp_ms":2000}`, "gives frp_ms 2000 with ah_ms 80"},
+		{"pathway slower than its ERP", `},"pathways":[{"atrium":"left_atrium","ventricle":"lv_lateral","down_ms":90,"down_erp_ms":80}],"sinus":{`, "down_erp_ms 80 is not longer than down_ms 90"},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			p, err := Decode([]byte(head + `,"heart":{"av_node":{` + c.node + `}}}`))
@@ -108,7 +115,7 @@ func TestConflictsNameTheNumbers(t *testing.T) {
 			}
 			_, err = p.Compile()
 			var ds Diagnoses
-			if !errors.As(err, &ds) || !strings.Contains(err.Error(), c.want) || !strings.HasPrefix(ds[0].Path, "heart.av_node.fast") {
+			if !errors.As(err, &ds) || !strings.Contains(err.Error(), c.want) || !strings.HasPrefix(ds[0].Path, "heart.av_node.fast") && ds[0].Path != "heart.pathways[0].down_erp_ms" {
 				t.Errorf("got  %v\nwant %s", err, c.want)
 			}
 		})
@@ -175,6 +182,7 @@ func FuzzDecode(f *testing.F) {
 		b, _ := presets.Read(name)
 		f.Add(b)
 	}
+	f.Add([]byte(head + `,"heart":{"pathways":[{"atrium":"left_atrium","ventricle":"lv_lateral","down_ms":null,"drop":"3:2"}]},"interventions":[{"at_ms":5,"do":"set","field":"heart.pathways[0].up_ms","to":null}]}`))
 	f.Add([]byte(head + `,"heart":{"av_node":{"slow":{},"fast":{"ah_ms":null}},"his_purkinje":{"left_bundle":null}}}`))
 	f.Fuzz(func(t *testing.T, data []byte) {
 		p, err := Decode(data)

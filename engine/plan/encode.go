@@ -21,6 +21,8 @@ func (p *Plan) Encode() []byte {
 		switch {
 		case f.Path == "heart.foci[].site" && len(p.Foci) > 0:
 			root.at("heart").put("foci", encodeItems("heart.foci[]", p.Foci))
+		case f.Path == pathways+"[].atrium" && len(p.Pathways) > 0:
+			root.at("heart").put("pathways", encodeItems(pathways+"[]", p.Pathways))
 		case f.Path == "interventions[].at_ms" && len(p.Interventions) > 0:
 			root.put("interventions", encodeItems("interventions[]", p.Interventions))
 		}

@@ -6,17 +6,18 @@ import "escapement/engine/heart"
 // reported with its number.
 const (
 	MaxFoci          = 32
+	MaxPathways      = 8
 	MaxInterventions = 500
 	MaxStimuli       = 20000
 )
 
-// itemFields describe the items of the two lists.
+// itemFields describe the items of the lists.
 func itemFields() []*Field {
 	site := func(path string) *Field {
 		return &Field{Path: path, Label: "site", Kind: Choice, Choices: heart.SiteNames()}
 	}
 	const f, i = "heart.foci[]", "interventions[]"
-	return []*Field{
+	return append([]*Field{
 		site(f + ".site"),
 		num(f+".rate_bpm", "rate", "/min", 40, 1, 400).help("Its own rate when nothing resets it. Junction 40-60, ventricle 20-40: common practice."),
 		num(f+".jitter_ms", "cycle variation", "ms", 0, 0, 2000),
@@ -24,6 +25,7 @@ func itemFields() []*Field {
 		{Path: f + ".protected", Label: "protected", Kind: Switch, Help: "Entrance block: other impulses do not reset it."},
 		num(f+".overdrive", "overdrive suppression", "", 0, 0, 1),
 		num(f+".overdrive_tau_s", "suppression fades over", "s", 10, 0.1, 600),
+	}, append(pathwayFields(), []*Field{
 		num(i+".at_ms", "at", "ms", 0, 0, 86400000),
 		{Path: i + ".do", Label: "what", Kind: Choice, Choices: []string{"stimulate", "train", "set", "lose_capture", "undersense", "signal", "fracture", "dislodge"}},
 		site(i + ".site"),
@@ -35,7 +37,7 @@ func itemFields() []*Field {
 		{Path: i + ".field", Label: "number", Kind: Choice, Help: "The number to change, as it stands in the plan file."},
 		{Path: i + ".to", Label: "to", Kind: Any, Nullable: true},
 		opt(i+".over_ms", "over", "ms", 0, 86400000, "The change goes in a straight line over this time; left out: at once."),
-	}
+	}...)...)
 }
 
 // needs lists what each kind of intervention must and may have besides at_ms and do.

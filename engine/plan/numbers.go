@@ -39,6 +39,9 @@ func (p *Plan) numbers(rate func(path string, bpm float64) heart.Rate) *heart.Nu
 			Protected: it["protected"].On, OverdriveGain: at("overdrive"), OverdriveTauS: at("overdrive_tau_s"),
 		})
 	}
+	for _, it := range p.Pathways {
+		n.Pathways = append(n.Pathways, it.accessory())
+	}
 	return n
 }
 

@@ -28,7 +28,8 @@ type Value struct {
 	List   []float64
 }
 
-// Item is an element of a list: a focus or an intervention, by field name.
+// Item is an element of a list: a focus, an accessory pathway or an intervention, by
+// field name.
 type Item map[string]Value
 
 // Plan is a document.
@@ -36,6 +37,7 @@ type Plan struct {
 	Title, Note   string
 	values        map[string]Value
 	Foci          []Item
+	Pathways      []Item
 	Interventions []Item
 }
 
@@ -47,6 +49,7 @@ func (p *Plan) Clone() *Plan {
 	q := *p
 	q.values = maps.Clone(p.values)
 	q.Foci = cloneItems(p.Foci)
+	q.Pathways = cloneItems(p.Pathways)
 	q.Interventions = cloneItems(p.Interventions)
 	return &q
 }

@@ -35,6 +35,11 @@ func (d *decoder) together() {
 			d.ds.add(at+".site", `"sinus"`, "any other site", "the sinus node is a focus already: see heart.sinus")
 		}
 	}
+	for i, it := range d.p.Pathways {
+		at := fmt.Sprintf("%s[%d]", pathways, i)
+		d.has(at, it, "atrium")
+		d.has(at, it, "ventricle")
+	}
 	total := 0
 	for i, it := range d.p.Interventions {
 		d.intervention(fmt.Sprintf("interventions[%d]", i), it)
@@ -143,8 +148,8 @@ func (d *decoder) set(at string, it Item) {
 		d.ds.add(at+".over_ms", "a gradual change of a device", "a change at once", "take over_ms out")
 		return
 	}
-	if item >= len(d.p.Foci) {
-		d.ds.add(at+".field", show(it["field"].Text), fmt.Sprintf("one of the %d foci of this plan", len(d.p.Foci)), "")
+	if list, what := d.p.list(field); item >= len(list) || item < 0 && strings.Contains(field, "[]") {
+		d.ds.add(at+".field", show(it["field"].Text), fmt.Sprintf("one of the %d %s of this plan", len(list), what), "")
 		return
 	}
 	to := it["to"]
@@ -159,7 +164,7 @@ func (d *decoder) set(at string, it Item) {
 		d.ds.add(at+".to", show(to.raw()), allowed, "")
 		return
 	}
-	if it.number("interventions", "over_ms") > 0 && (value.Null || f.Kind != Number || d.p.null(f.Path)) {
+	if it.number("interventions", "over_ms") > 0 && (value.Null || f.Kind != Number || d.p.null(f.Path) || item >= 0 && d.p.item(field, item)[leafOf(field)].Null) {
 		d.ds.add(at+".over_ms", "a gradual change from or to null or of a pattern", "a change at once", "take over_ms out")
 	}
 	it["to"] = value
@@ -191,7 +196,7 @@ func settable() []string {
 func itemPath(path string) (field string, item int) {
 	open, shut := strings.IndexByte(path, '['), strings.IndexByte(path, ']')
 	if open < 0 || shut < open+2 || shut-open > 4 {
-		return path, -1
+		return path, -1 // of a list, that is no item
 	}
 	n := 0
 	for _, c := range path[open+1 : shut] {

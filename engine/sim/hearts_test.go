@@ -268,11 +268,23 @@ func (d dice) clinical() *plan.Program {
 		n.Foci = append(n.Foci, heart.FocusNumbers{Site: names[d.IntN(len(names))], Rate: d.rate(span, 0), JitterMS: d.either(0.5, 0, d.between(0, 200)),
 			FirstMS: d.either(0.5, 0, d.between(1, 1500)), Protected: d.chance(0.4), OverdriveGain: d.either(0.5, 0, d.Float64()), OverdriveTauS: d.between(0.1, 10)})
 	}
+	for d.chance(0.5) && len(n.Pathways) < 3 {
+		n.Pathways = append(n.Pathways, d.pathway())
+	}
 	h, err := heart.New(n)
 	if err != nil {
 		return nil
 	}
 	return &plan.Program{Heart: h, Span: span, Seed: d.Uint64(), Stimuli: d.stimuli(len(h.Sites), span, 0)}
+}
+
+// pathway is an accessory pathway, one-way or both ways.
+func (d dice) pathway() heart.PathwayNumbers {
+	a, v := heart.AtrialSites(), heart.VentricularSites()
+	return heart.PathwayNumbers{Atrium: a[d.IntN(len(a))], Ventricle: v[d.IntN(len(v))],
+		DownMS: d.between(5, 120), UpMS: d.between(5, 120), NoDown: d.chance(0.3), NoUp: d.chance(0.3),
+		DownERPMS: d.between(130, 400), UpERPMS: d.between(130, 400), ERPCycleMS: 600, ERPPerCycle: d.either(0.3, 0, d.between(-0.2, 0.4)),
+		Inner: d.either(0.5, 1, d.between(0.3, 1)), DownReach: d.either(0.5, 0, d.Float64()), UpReach: d.either(0.5, 0, d.Float64()), Drop: d.rarely()}
 }
 
 func (d dice) rarely() heart.Drop {

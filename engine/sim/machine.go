@@ -17,8 +17,8 @@
 //     theta follows the interval between the last two impulses that rule 7 let in,
 //     either way (the basic cycle until there are two).
 //     A path with a Turn lets nothing in, and records nothing, while an impulse that
-//     went the other way, or two that met, left it less than Turn ago and none is
-//     being conducted the other way.
+//     went the other way left it less than Turn ago and none is being conducted the
+//     other way.
 //  4. A path that does not conduct in that direction blocks the impulse (OneWay): at
 //     the entrance where Reach is 0 or the path has not recovered, otherwise after
 //     Reach of its length, taking that share of the delay of rule 7. The path then

@@ -97,7 +97,7 @@ func (m *Machine) enter(x *exit, cause event.ID, from event.SiteID) {
 	if m.inside(against) {
 		left, used = against.leftBefore, against.usedBefore
 	}
-	if w.turn > 0 && used && !against.active && st.went != d && m.now.Sub(left) < w.turn {
+	if w.turn > 0 && used && !against.active && st.went == other(d) && m.now.Sub(left) < w.turn {
 		return
 	}
 	a := attempt{path: p, dir: d, from: from, cause: cause, recovery: event.Unknown, needed: m.theta(w, st)}

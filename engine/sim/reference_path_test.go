@@ -14,7 +14,7 @@ func (r *reference) enter(id event.PathID, d event.Dir, cause event.ID) {
 	c, same, other := h.Dir(d), &p.inside[d], &p.inside[event.Down+event.Up-d]
 	e := event.Event{Kind: event.Block, Cause: cause, Dir: d, Site: h.Entry(d), Path: id}
 
-	if h.Turn > 0 && !other.inside && !same.inside && p.used && p.went != d && r.now.Sub(p.left) < r.up(h.Turn) { // rule 3
+	if h.Turn > 0 && !other.inside && !same.inside && p.used && p.went == event.Down+event.Up-d && r.now.Sub(p.left) < r.up(h.Turn) { // rule 3
 		return
 	}
 	cycle := r.heart.Basic

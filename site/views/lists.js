@@ -1,4 +1,4 @@
-// The two lists of a plan: foci, and interventions. Items are built anew only
+// The lists of a plan: foci, accessory pathways, interventions. Items are built anew only
 // when their number or their shape changes, so that typing keeps its place.
 
 import { el, fill } from "../base/dom.js";
@@ -94,7 +94,7 @@ function listView(store, list) {
  */
 function itemFields(catalogue, prefix) {
   const names = { ...Object.fromEntries(catalogue.sites.map((s) => [s.name, s.label])), A: "atrium", V: "ventricle" };
-  return catalogue.fields.filter((f) => f.path.startsWith(prefix)).map((f) => (f.kind === "choice" && /[.](site|channel)$/.test(f.path) ? { ...f, names } : f));
+  return catalogue.fields.filter((f) => f.path.startsWith(prefix)).map((f) => (f.kind === "choice" && /[.](site|channel|atrium|ventricle)$/.test(f.path) ? { ...f, names } : f));
 }
 
 /**
@@ -115,6 +115,27 @@ export function fociView(store, catalogue) {
     ],
   });
   list.node.prepend(el("h4", null, "Foci"));
+  return list;
+}
+
+/**
+ * @param {Store} store
+ * @param {Catalogue} catalogue
+ */
+export function pathwaysView(store, catalogue) {
+  const fields = itemFields(catalogue, "heart.pathways[].");
+  const label = (/** @type {string} */ site) => catalogue.sites.find((s) => s.name === site)?.label ?? site;
+  const list = listView(store, {
+    at: "heart.pathways",
+    title: (item) => `Pathway: ${label(item?.ventricle)}`,
+    fields: () => fields,
+    shape: (item) => String(item?.ventricle),
+    adds: [
+      { label: "concealed pathway", make: () => ({ atrium: "left_atrium", ventricle: "lv_lateral", down_ms: null }) },
+      { label: "pathway that pre-excites", make: () => ({ atrium: "atrial_septum", ventricle: "lv_posterior" }) },
+    ],
+  });
+  list.node.prepend(el("h4", null, "Accessory pathways"));
   return list;
 }
 

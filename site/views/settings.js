@@ -5,7 +5,7 @@
 import { el, fill, say } from "../base/dom.js";
 import { count } from "../base/format.js";
 import { DEVICE_PLACES, deviceChoices, idle, modeLists } from "./device.js";
-import { interventionsView, fociView } from "./lists.js";
+import { interventionsView, fociView, pathwaysView } from "./lists.js";
 import { describe, makeRow } from "./row.js";
 
 /**
@@ -87,7 +87,8 @@ export function settingsView(root, store, catalogue, table) {
   }
   groups.get("Pacemaker")?.append(table);
   const foci = fociView(store, catalogue);
-  groups.get("Heart")?.append(foci.node);
+  const pathways = pathwaysView(store, catalogue);
+  groups.get("Heart")?.append(foci.node, pathways.node);
   const interventions = interventionsView(store, catalogue);
   const last = fold("Interventions");
   last.append(interventions.node);
@@ -168,6 +169,7 @@ export function settingsView(root, store, catalogue, table) {
       s.more.setAttribute("aria-expanded", String(s.open || filtered));
     }
     foci.node.hidden = (wanted !== "" && !"foci focus rate site escape".includes(wanted)) || (only.checked && foci.count() === 0);
+    pathways.node.hidden = (wanted !== "" && !"accessory pathways bypass tract pre-excitation re-entry concealed".includes(wanted)) || (only.checked && pathways.count() === 0);
     last.hidden = (wanted !== "" && !"interventions premature beat train change stimulate set loss of capture undersensing broken dislodged lead signals from outside noise".includes(wanted)) || (only.checked && interventions.count() === 0);
     for (const [name, g] of groups) {
       if (name !== "Interventions") g.hidden = filtered && !g.querySelector(":scope > section:not([hidden])");
@@ -193,6 +195,7 @@ export function settingsView(root, store, catalogue, table) {
     update(state, changed) {
       if (!["plan", "diagnoses", "catalogue"].some((k) => changed.has(k)) && !first) return;
       foci.update(state);
+      pathways.update(state);
       interventions.update(state);
       const rows = sections.flatMap((s) => s.rows);
       for (const row of rows) row.update(state);
