@@ -22,14 +22,24 @@ type chamber struct {
 	muscle *tissue.Muscle
 	kind   lead.WaveKind
 	group  tick.Dur
-	known  map[string]*lead.Complex // by rounded source times and cycle
-	order  []string                 // of known, oldest first
+	known  map[string]*remembered // by rounded source times and cycle
+	order  []string               // of known, oldest first
 	key    []byte
 	seeds  []tissue.Seed
+	local  *tissue.Local // nil until an electrogram is asked for
+	until  []int32
+}
+
+// remembered is a wave and what else was asked of it.
+type remembered struct {
+	wave    *lead.Complex
+	seeds   []tissue.Seed
+	stretch int32
+	local   map[int][]float32 // its part of electrograms, by bipole
 }
 
 func newChamber(p *tissue.Part, kind lead.WaveKind, limits tissue.Thresholds) *chamber {
-	c := &chamber{muscle: tissue.NewMuscle(p, limits), kind: kind, group: ventricularGroup, known: map[string]*lead.Complex{}}
+	c := &chamber{muscle: tissue.NewMuscle(p, limits), kind: kind, group: ventricularGroup, known: map[string]*remembered{}}
 	if kind == lead.P {
 		c.group = atrialGroup
 	}
@@ -39,18 +49,11 @@ func newChamber(p *tissue.Part, kind lead.WaveKind, limits tissue.Thresholds) *c
 // waves are the chamber's waves on the strip.
 func (c *chamber) waves(log *event.Log) []lead.Wave {
 	groups := c.groups(log)
-	first := make([]tick.Time, len(groups))
-	for i, g := range groups {
-		first[i] = g[0].at
-	}
-	cycles := make([]tick.Dur, len(groups))
-	if c.kind == lead.QRS {
-		cycles = effectiveCycles(first) // atrial repolarisation is left as it is
-	}
+	first, cycles := c.beats(groups)
 	out := make([]lead.Wave, len(groups))
 	for i, g := range groups {
 		w := &out[i]
-		w.Kind, w.T, w.Complex = c.kind, first[i], c.complex(g, cycles[i])
+		w.Kind, w.T, w.Complex = c.kind, first[i], c.complex(g, cycles[i]).wave
 		for _, s := range g {
 			w.Sources = append(w.Sources, s.id)
 		}
@@ -59,10 +62,22 @@ func (c *chamber) waves(log *event.Log) []lead.Wave {
 	return out
 }
 
+// beats gives each group's first source and effective cycle.
+func (c *chamber) beats(groups []group) (first []tick.Time, cycles []tick.Dur) {
+	first = make([]tick.Time, len(groups))
+	for i, g := range groups {
+		first[i] = g[0].at
+	}
+	if c.kind == lead.QRS {
+		return first, effectiveCycles(first)
+	}
+	return first, make([]tick.Dur, len(groups)) // atrial repolarisation is left as it is
+}
+
 // complex is the wave of a group of sources at an effective cycle. Everything
 // is computed from the rounded numbers that are also the key, so a remembered
 // wave is the wave that would be computed.
-func (c *chamber) complex(g group, cycle tick.Dur) *lead.Complex {
+func (c *chamber) complex(g group, cycle tick.Dur) *remembered {
 	c.key = binary.LittleEndian.AppendUint32(c.key[:0], uint32(cycle/effectiveStep))
 	c.seeds = c.seeds[:0]
 	for _, s := range g {
@@ -80,7 +95,7 @@ func (c *chamber) complex(g group, cycle tick.Dur) *lead.Complex {
 	if c.kind == lead.QRS {
 		longer = stretch(cycle)
 	}
-	w := c.muscle.Wave(c.seeds, int32(longer))
+	w := &remembered{wave: c.muscle.Wave(c.seeds, int32(longer)), seeds: slices.Clone(c.seeds), stretch: int32(longer)}
 	if len(c.order) == rememberMost {
 		delete(c.known, c.order[0])
 		c.order = append(c.order[:0], c.order[1:]...)
@@ -94,24 +109,28 @@ func (c *chamber) complex(g group, cycle tick.Dur) *lead.Complex {
 // samples as a rule; the strip's samples are then read off the wave by linear
 // interpolation.
 func lay(r *lead.Record, w *lead.Wave) {
-	start := w.T - tissue.LeadIn*tickStep
+	for _, l := range tissue.Independent {
+		layOne(r.MV[l], w.Complex.MV[l], w.T)
+	}
+}
+
+// layOne adds a signal whose sample LeadIn belongs to the time t.
+func layOne(out, in []float32, t tick.Time) {
+	start := t - tissue.LeadIn*tickStep
 	first := int(floor(start))
 	late := float32(start-tick.Time(first)*tickStep) / float32(tickStep)
-	for _, l := range tissue.Independent {
-		out, in := r.MV[l], w.Complex.MV[l]
-		from, to := max(-first, 0), min(len(in), len(out)-first)
-		if from >= to {
-			continue
-		}
-		out = out[first+from : first+to]
-		last := float32(0)
-		if from > 0 {
-			last = in[from-1]
-		}
-		for k, now := range in[from:to] {
-			out[k] += now + float32(late*(last-now))
-			last = now
-		}
+	from, to := max(-first, 0), min(len(in), len(out)-first)
+	if from >= to {
+		return
+	}
+	out = out[first+from : first+to]
+	last := float32(0)
+	if from > 0 {
+		last = in[from-1]
+	}
+	for k, now := range in[from:to] {
+		out[k] += now + float32(late*(last-now))
+		last = now
 	}
 }
 

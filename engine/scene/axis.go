@@ -72,8 +72,9 @@ func seconds(t tick.Time, step tick.Dur) string {
 
 // grid draws the paper behind the leads. At paper scales it is the millimetre
 // grid; at others it keeps its meaning: 40 and 200 ms, 0.1 and 0.5 mV. It is tied
-// to the strip's start, so that it moves with the signal.
-func (s *sheet) grid(y0, y1 float64) {
+// to the strip's start, so that it moves with the signal. Signals other than leads have
+// lines of time alone.
+func (s *sheet) grid(y0, y1 float64, paper bool) {
 	dx, dy := 1.0, 1.0
 	if !paperScale(s.o.MMPerS, 6.25, 12.5, 25, 50, 100, 200) {
 		dx = 0.04 * s.o.MMPerS
@@ -87,9 +88,15 @@ func (s *sheet) grid(y0, y1 float64) {
 		if major {
 			gx, gy, class = 5*dx, 5*dy, GridMajor
 		}
+		if !paper && !major {
+			continue
+		}
 		lines(s.Axis.X0, s.right, zero, gx, major, func(x float64) {
 			s.mark(Mark{Shape: Line, Class: class, X: x, Y: y0, X2: x, Y2: y1})
 		})
+		if !paper {
+			continue
+		}
 		lines(y0, y1, y0, gy, major, func(y float64) {
 			s.mark(Mark{Shape: Line, Class: class, X: s.Axis.X0, Y: y, X2: s.right, Y2: y})
 		})

@@ -13,6 +13,7 @@ const (
 	Second            // a whole second, drawn through the ladder
 	Trace             // a lead
 	Wave              // the area of a P or QRS-T: not painted, for hit testing
+	LevelLine         // a potential through the lane of a signal
 	Calibration       // the pulse that shows 1 mV
 	AxisLine          // the time axis and its ticks
 	AxisText          // seconds
@@ -59,7 +60,7 @@ const (
 
 var classNames = [classEnd]string{
 	GridMinor: "grid-minor", GridMajor: "grid-major", Second: "second",
-	Trace: "trace", Wave: "wave", Calibration: "calibration",
+	Trace: "trace", Wave: "wave", LevelLine: "level", Calibration: "calibration",
 	AxisLine: "axis", AxisText: "axis-text", LaneLabel: "lane-label",
 	TierEdge: "tier-edge", TierLabel: "tier-label",
 	Sinus: "sinus", Atrium: "atrium", Node: "node", NodeSlow: "node-slow", His: "his",

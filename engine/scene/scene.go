@@ -18,7 +18,8 @@
 //	 "marks":[[1,"grid-minor",12,10,12,35],...]}
 //
 // All lengths are millimetres. Lanes are named "lead:II" (several leads side by side:
-// "lead:I,aVR,V1,V4"), "axis", "ladder" and, where there is a device, "device". An instant t_us stands at x0 + (t_us - t0_us)/1e6*mm_per_s. A mark is
+// "lead:I,aVR,V1,V4"), "egm:HISd" for an electrogram, "membrane:his" for an action
+// potential, "axis", "ladder" and, where there is a device, "device". An instant t_us stands at x0 + (t_us - t0_us)/1e6*mm_per_s. A mark is
 // an array, of which trailing zero or empty values may be missing:
 //
 //	[shape, "class", x, y, x2, y2, r, "text", anchor, event, pointOffset, pointCount]

@@ -20,6 +20,7 @@ type Input struct {
 	Log     *event.Log
 	Record  *lead.Record
 	Diagram *ladder.Diagram
+	Signals []Sampled // electrograms and action potentials that [Options.Lanes] may name
 }
 
 // Options say what of it is drawn, and how large. Zero means the default where
@@ -40,6 +41,19 @@ type Options struct {
 	Caution   bool // the scales and CautionText at the foot
 	Selected  event.ID
 	NoDevice  bool // leave the device's lane out
+
+	// Lanes is which lanes are drawn, from top to bottom, by the names that they
+	// have in the scene; names of what the strip does not have are passed over. Nil is
+	// the leads, the axis, the ladder and the device.
+	Lanes []string
+
+	// Closer moves the lanes of signals together by so many millimetres in all. Traces
+	// keep their scale and may then run into their neighbours' lanes; no lane is made
+	// narrower than its name needs.
+	Closer float64
+
+	// Paper is the form in which [Paper12] sets the twelve leads.
+	Paper Form12
 }
 
 // Limits on sizes, so that no option can make an endless drawing.
@@ -80,6 +94,9 @@ func defaultMargin(in *Input, o *Options) float64 {
 	for _, l := range o.Leads {
 		w = max(w, LaneLabel.Width(l.String(), o.FontMM)+pulseRoom)
 	}
+	for i := range in.Signals {
+		w = max(w, LaneLabel.Width(in.Signals[i].Label, o.FontMM))
+	}
 	if in.Diagram != nil {
 		for i := range in.Diagram.Tiers {
 			w = max(w, TierLabel.Width(in.Diagram.Tiers[i].Label, o.FontMM))
@@ -108,50 +125,8 @@ type sheet struct {
 	over  []Mark  // the ladder's own marks, painted over halos
 }
 
-// Strip lays out leads, time axis and ladder one below the other on one axis.
-func Strip(in Input, o Options) *Scene {
-	s := begin(&in, o)
-	var rows []row
-	for _, n := range s.o.Leads {
-		rows = append(rows, row{parts: []segment{{n, s.o.From, s.o.To}}})
-	}
-	return s.finish(rows)
-}
-
-// columns of the twelve-lead page, each shown one after the other in time
-// (common practice), and the lead that runs below them all.
-var columns = [4][3]lead.Name{{lead.I, lead.II, lead.III}, {lead.AVR, lead.AVL, lead.AVF}, {lead.V1, lead.V2, lead.V3}, {lead.V4, lead.V5, lead.V6}}
-
-// Page12 is the usual page of twelve leads: four columns of three, which follow
-// one another in time, over a rhythm strip of lead II ([Options.Leads] names
-// others). A window of ten seconds gives columns of 2.5 s. Time still runs from
-// left to right over the whole page, so the ladder fits below it.
-func Page12(in Input, o Options) *Scene {
-	rhythm := o.Leads
-	if len(rhythm) == 0 {
-		rhythm = []lead.Name{lead.II}
-	}
-	o.Leads = rhythm
-	if o.To == 0 {
-		o.To = o.From.Add(10 * tick.Second)
-		if in.Log != nil {
-			o.To = min(o.To, in.Log.Span)
-		}
-	}
-	s := begin(&in, o)
-	rows := make([]row, 3)
-	for c := range columns {
-		part := (s.o.To - s.o.From) / tick.Time(len(columns))
-		from := s.o.From + tick.Time(c)*part
-		for i, n := range columns[c] {
-			rows[i].parts = append(rows[i].parts, segment{n, from, from + part})
-		}
-	}
-	for _, n := range rhythm {
-		rows = append(rows, row{parts: []segment{{n, s.o.From, s.o.To}}})
-	}
-	return s.finish(rows)
-}
+// Strip lays out its lanes one below the other on one axis.
+func Strip(in Input, o Options) *Scene { return begin(&in, o).finish(nil) }
 
 func begin(in *Input, o Options) *sheet {
 	o.fill(in)
@@ -162,20 +137,30 @@ func begin(in *Input, o Options) *sheet {
 	return s
 }
 
+// finish lays out the lanes. rows are those of a page of twelve leads, which stand
+// above all others.
 func (s *sheet) finish(rows []row) *Scene {
 	s.heading()
-	if s.in.Record != nil {
-		s.leads(rows)
-	}
-	s.axis()
-	if s.in.Diagram != nil {
-		s.ladder()
-		if s.in.Diagram.Device != nil && !s.o.NoDevice {
+	rows, rest := s.lanes(rows)
+	s.closer(rows)
+	for len(rest) > 0 || len(rows) > 0 {
+		if n := alike(rows, rest); n > 0 {
+			s.signals(rows[:n])
+			rows, rest = rows[n:], rest[n:]
+			continue
+		}
+		switch rest[0] {
+		case "axis":
+			s.axis()
+		case "ladder":
+			s.ladder()
+		case "device":
 			s.device()
 		}
-		if s.o.Legend {
-			s.legend()
-		}
+		rest = rest[1:]
+	}
+	if s.o.Legend && s.in.Diagram != nil {
+		s.legend()
 	}
 	if s.o.Caution {
 		s.foot()
@@ -198,11 +183,7 @@ func (s *sheet) heading() {
 
 func (s *sheet) foot() {
 	s.y += s.o.FontMM * 0.4
-	if s.in.Record != nil && len(s.o.Leads) > 0 {
-		s.paragraph(Note, trim(s.o.MMPerS)+" mm/s, "+trim(s.o.MMPerMV)+" mm/mV. Numbers in ms.")
-	} else {
-		s.paragraph(Note, trim(s.o.MMPerS)+" mm/s. Numbers in ms.")
-	}
+	s.paragraph(Note, s.scales())
 	s.paragraph(Caution, CautionText)
 }
 

@@ -69,6 +69,8 @@ func (p *Palette) Style(c Class) Style {
 		return line(p.GridMajor, thin)
 	case Trace:
 		return line(p.Ink, signal)
+	case LevelLine:
+		return line(p.Quiet, hair, 0.6, 0.6)
 	case Calibration:
 		return line(p.Ink, thin)
 	case AxisLine:

@@ -60,6 +60,7 @@ func run(root string) error {
 		data []byte
 	}{
 		{"engine/field/muscle.bin", tissue.Encode(m.ventricles, m.atria)},
+		{"engine/field/electrodes.bin", tissue.EncodeBipoles(bipoles(m))},
 		{"engine/heart/anatomy_table.go", anatomyTable(m.p, m.ventricles, m.atria)},
 	} {
 		if err := os.WriteFile(filepath.Join(root, f.path), f.data, 0o644); err != nil {

@@ -124,8 +124,7 @@ func (m *Muscle) Wave(seeds []Seed, stretch int32) *lead.Complex {
 	at := m.Activation(seeds)
 	latest, latestEnd := int32(0), int32(0)
 	for n, t := range at {
-		// A node cannot repolarise before it depolarises, however short the cycle.
-		m.until[n] = t + max(m.Part.APD[n]+stretch, 50000)
+		m.until[n] = t + max(m.Part.APD[n]+stretch, shortestAPD)
 		latest, latestEnd = max(latest, t), max(latestEnd, m.until[n])
 	}
 	m.depol, m.repol = clearBins(m.depol, latest/(1000*riseBin)), clearBins(m.repol, latestEnd/(1000*fallBin))

@@ -94,7 +94,7 @@ func (s *Session) run(file []byte) (*timeline, error) {
 	if log.Span <= leadsUpTo {
 		rec = s.field.Record(log)
 	}
-	return &timeline{plan: p, pacer: prog.Device, log: log, record: rec, drawn: pressed(log, rec), report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{}}, nil
+	return &timeline{plan: p, pacer: prog.Device, log: log, record: rec, drawn: pressed(log, rec), report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{}, field: s.field, signals: map[string][]float32{}}, nil
 }
 
 // leadsUpTo is the longest strip that has leads: 12 of them at 1000 samples a

@@ -42,6 +42,8 @@ type timeline struct {
 	report   *measure.Report
 	diagrams map[ladder.Form]*ladder.Diagram // made when first drawn
 	mover    *handle.Mover                   // likewise
+	field    *field.Field
+	signals  map[string][]float32 // electrograms, made when first drawn
 }
 
 // New is a session without a timeline.

@@ -31,6 +31,11 @@ type view struct {
 		Ladder  string   `json:"ladder"`
 
 		NoDevice bool `json:"no_device"` // leave the device's lane out
+
+		Lanes   []string `json:"lanes"`     // from top to bottom; none: the leads, axis, ladder, device
+		EGMGain float64  `json:"egm_gain"`  // of electrograms, mm a millivolt; 0: 10
+		Paper   string   `json:"paper"`     // "3x4", "6x2" or "12x1": the twelve leads as on paper, above the other lanes
+		Rhythm  bool     `json:"no_rhythm"` // leave out the rhythm strip of a paper form
 	} `json:"view"`
 	Selected event.ID `json:"selected"`
 }
@@ -54,8 +59,14 @@ func (t *timeline) scene(q *view) ([]byte, []float32) {
 	in := scene.Input{Log: t.log, Record: t.drawn, Diagram: t.diagram(form)}
 	o := t.options(q)
 	o.Margin = margin
-	o.LadderMM = ladderHeight(in, o, q.View.Height)
-	drawn := scene.Strip(in, o)
+	in.Signals = t.sampled(o.Lanes, q.View.EGMGain)
+	lay := scene.Strip
+	if columns, ok := papers[q.View.Paper]; ok {
+		lay, o.Paper = scene.Paper12, scene.Form12{Columns: columns, Rhythm: !q.View.Rhythm}
+		o.Leads = []lead.Name{lead.II}
+	}
+	o.LadderMM, o.Closer = fit(lay, in, o, q.View.Height)
+	drawn := lay(in, o)
 	meta, points := scene.Encode(drawn)
 	meta = append(append(meta[:len(meta)-1], `,"times":`...), encode(t.times(drawn))...)
 	meta = append(append(meta, `,"handles":`...), encode(t.handles(drawn, &o))...)
@@ -69,13 +80,22 @@ const (
 	mostTier  = 26
 )
 
-// ladderHeight lets the ladder take what room the page has left below the leads.
-// A strip of no length tells how much the rest takes.
-func ladderHeight(in scene.Input, o scene.Options, room float64) float64 {
+// papers are the forms of twelve leads by their name, rows by columns as said in the
+// trade, with their columns.
+var papers = map[string]int{"3x4": 4, "6x2": 2, "12x1": 1}
+
+// fit shares the page's room out: the ladder takes what the other lanes leave. Where that is
+// too little for it, the lanes of signals move closer. A strip of no length tells how
+// much all the rest takes.
+func fit(lay func(scene.Input, scene.Options) *scene.Scene, in scene.Input, o scene.Options, room float64) (ladderMM, closer float64) {
 	units := in.Diagram.Height()
-	o.LadderMM, o.To = leastTier*units, o.From+1
-	rest := scene.Strip(in, o).Height - o.LadderMM
-	return math.Min(math.Max(room-rest, leastTier*units), mostTier*units)
+	least := leastTier * units
+	o.LadderMM, o.To = least, o.From+1
+	rest := lay(in, o).Height - least
+	if room <= 0 {
+		return least, 0
+	}
+	return math.Min(math.Max(room-rest, least), mostTier*units), math.Max(rest+least-room, 0)
 }
 
 func (t *timeline) options(q *view) scene.Options {
@@ -90,7 +110,7 @@ func (t *timeline) options(q *view) scene.Options {
 	}
 	room := math.Max(v.Width, 20)
 	to := min(from.Add(tick.MS(math.Min(room/speed*1000, 1e9))), t.log.Span)
-	o := scene.Options{From: from, To: to, MMPerS: speed, MMPerMV: v.MMPerMV, FontMM: fontMM, ColumnMM: 0.13, Grid: true, NoDevice: v.NoDevice}
+	o := scene.Options{From: from, To: to, MMPerS: speed, MMPerMV: v.MMPerMV, FontMM: fontMM, ColumnMM: 0.13, Grid: true, NoDevice: v.NoDevice, Lanes: v.Lanes}
 	for _, name := range v.Leads {
 		if l, ok := lead.Parse(name); ok {
 			o.Leads = append(o.Leads, l)
