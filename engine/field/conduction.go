@@ -20,28 +20,27 @@ func conduction(out []float32, log *event.Log, b *tissue.Bipole) {
 	for i := range log.Events {
 		e := &log.Events[i]
 		switch {
-		case e.Kind == event.Activate && e.Site == his:
-			if up(log, e) {
-				front(out, &b.Strands[0], e.T-tick.Time(hisTime), e.T, 1, 0)
-			} else {
-				front(out, &b.Strands[0], e.T, e.T+tick.Time(hisTime), 0, 1)
-			}
-		case e.Kind == event.Activate && e.Path >= 0 && e.Dir == event.Down && log.Paths[e.Path].From == his:
-			if side := sideOf(log.Sites[e.Site].Name); side > 0 {
-				from := log.At(e.Cause)
-				if from == nil || from.Site != his {
-					continue
-				}
-				front(out, &b.Strands[side], from.T+tick.Time(trunk(e.T.Sub(from.T), log, from)), e.T, 0, 1)
-			}
-		case e.Kind == event.Activate && e.Site == his && up(log, e):
 		case e.Kind == event.Block && e.Path >= 0:
 			blocked(out, log, b, e, his)
-		}
-		if e.Kind == event.Activate && e.Site == his && up(log, e) {
+		case e.Kind != event.Activate:
+		case e.Site == his && up(log, e):
 			rising(out, log, b, e)
+			front(out, &b.Strands[0], e.T-tick.Time(hisTime), e.T, 1, 0)
+		case e.Site == his:
+			front(out, &b.Strands[0], e.T, e.T+tick.Time(hisTime), 0, 1)
+		case e.Path >= 0 && e.Dir == event.Down && log.Paths[e.Path].From == his:
+			falling(out, log, b, e)
 		}
 	}
+}
+
+// falling is a branch on the way down: from the fork to its site.
+func falling(out []float32, log *event.Log, b *tissue.Bipole, e *event.Event) {
+	from, side := log.At(e.Cause), sideOf(log.Sites[e.Site].Name)
+	if from == nil || side == 0 {
+		return
+	}
+	front(out, &b.Strands[side], from.T+tick.Time(trunk(e.T.Sub(from.T), log, from)), e.T, 0, 1)
 }
 
 // up tells whether an activation of the His bundle came from a branch.
