@@ -35,6 +35,7 @@ var allowed = map[string][]string{
 	"engine/field/generate": {"engine/tick", "engine/portmath", "engine/lead", "engine/field/tissue", "engine/field/criteria"},
 	"engine/measure":        {"engine/tick", "engine/portmath", "engine/event", "engine/lead"},
 	"engine/account":        {"engine/tick", "engine/event"},
+	"engine/sweep":          {"engine/tick", "engine/event", "engine/pacer", "engine/plan", "engine/sim", "engine/measure"},
 	"engine/scene":          {"engine/tick", "engine/event", "engine/lead", "engine/ladder"},
 	"engine/press":          {"engine/scene"},
 	"engine/numbers":        {"engine/tick", "engine/event", "engine/pacer", "engine/plan", "engine/measure"},
@@ -42,7 +43,8 @@ var allowed = map[string][]string{
 		"engine/numbers", "engine/scene"},
 	"presets": {},
 	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
-		"engine/account", "engine/handle", "engine/nomenclature", "engine/numbers", "engine/scene", "presets"},
+		"engine/account", "engine/handle", "engine/nomenclature", "engine/numbers", "engine/scene", "presets",
+		"engine/sweep"},
 }
 
 // top are the programs: they wire everything, and nothing imports them.

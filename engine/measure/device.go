@@ -159,7 +159,10 @@ func (s *strip) longest(r *Device) {
 	look(s.log.Span)
 }
 
-func (s *strip) synchronous(r *Device) {
+func (s *strip) synchronous(r *Device) { r.Synchronous = percent(s.synchronousCount(), len(s.v)) }
+
+// synchronousCount counts QRS complexes as Device.Synchronous does.
+func (s *strip) synchronousCount() int {
 	n, i := 0, 0
 	for j := range s.v {
 		for i < len(s.p) && s.p[i].t <= s.v[j].t {
@@ -173,7 +176,7 @@ func (s *strip) synchronous(r *Device) {
 			n++
 		}
 	}
-	r.Synchronous = percent(n, len(s.v))
+	return n
 }
 
 // intervalNames in the order of the report.

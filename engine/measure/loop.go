@@ -117,6 +117,9 @@ func (f *finder) loopStart(t turn) (string, event.ID) {
 	return "a ventricular stimulus", m.e.ID
 }
 
+// toTheEnd is the end of a loop that has none on the strip.
+const toTheEnd = "to the end of the strip"
+
 // loopEnd says what became of the last stimulus of a loop.
 func (f *finder) loopEnd(t turn) (string, event.ID) {
 	last := t.vp
@@ -131,14 +134,14 @@ func (f *finder) loopEnd(t turn) (string, event.ID) {
 	retro := f.v[last.wave].retro
 	if retro < 0 {
 		if f.log.Span.Sub(last.e.T) < tick.Second {
-			return "to the end of the strip", 0
+			return toTheEnd, 0
 		}
 		return "ended by block on the way up", last.e.ID
 	}
 	s := f.dev.at(f.dev.as[retro])
 	switch {
 	case f.log.Span.Sub(last.e.T) < tick.Second && (s == nil || s.e.Use == event.Tracked):
-		return "to the end of the strip", 0
+		return toTheEnd, 0
 	case s == nil:
 		return "ended by a P that was not sensed", f.p[retro].id
 	case s.e.Use == event.Refractory || s.e.Use == event.Blanked:

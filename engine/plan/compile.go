@@ -20,7 +20,10 @@ const maxSteps = 5000
 
 // Compile makes the plan ready to run. The error, a [Diagnoses], says which
 // numbers cannot hold together.
-func (p *Plan) Compile() (*Program, error) {
+func (p *Plan) Compile() (*Program, error) { return p.compile(nil) }
+
+// compile takes the heart that was solved for the same numbers, where there is one.
+func (p *Plan) compile(known *heart.Heart) (*Program, error) {
 	c := &compiler{plan: p, prog: &Program{Span: p.span(), Seed: uint64(p.number("seed"))}}
 	c.heart = func(q *Plan) *heart.Heart {
 		h, err := heart.New(q.numbers(c.rate))
@@ -30,7 +33,10 @@ func (p *Plan) Compile() (*Program, error) {
 		}
 		return h
 	}
-	if c.prog.Heart = c.heart(p); c.prog.Heart == nil {
+	if c.prog.Heart = known; known == nil {
+		c.prog.Heart = c.heart(p)
+	}
+	if c.prog.Heart == nil {
 		return nil, c.ds
 	}
 	c.prog.Device = p.device(c.prog.Heart)

@@ -93,7 +93,10 @@ func (d *decoder) top(m map[string]any) {
 	}
 	d.p.Title = d.line(m, "title", 200)
 	d.p.Note = d.line(m, "note", 4000)
-	d.object("", m, []string{"format", "title", "note"})
+	d.object("", m, []string{"format", "title", "note", "sweep"})
+	if raw, ok := m["sweep"]; ok {
+		d.p.Sweep = d.sweep(raw)
+	}
 }
 
 func (d *decoder) line(m map[string]any, key string, limit int) string {
@@ -165,7 +168,7 @@ func below(at string) []string {
 		}
 	}
 	if at == "" {
-		names = append(names, "format", "title", "note")
+		names = append(names, "format", "title", "note", "sweep")
 	}
 	return names
 }

@@ -37,6 +37,9 @@ func (p *Plan) Encode() []byte {
 		}
 		at.put(name, v.json(f))
 	}
+	if p.Sweep != nil {
+		root.put("sweep", p.Sweep.section())
+	}
 	var b bytes.Buffer
 	enc := json.NewEncoder(&b)
 	enc.SetEscapeHTML(false)

@@ -39,6 +39,7 @@ type Plan struct {
 	Foci          []Item
 	Pathways      []Item
 	Interventions []Item
+	Sweep         *Sweep // nil: none
 }
 
 // Default is a healthy adult without interventions.

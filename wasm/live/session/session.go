@@ -8,8 +8,10 @@
 //	account    {event}                 why an event came
 //	listing    {from_ms, to_ms}        events as text
 //	table      {plan, read}            the device's settings as a table, or the plan with a table read
+//	sweep      {plan, points}          some points of the plan's sweep, in columns; or its diagnoses
+//	sweep_plan {plan, point, seed}     the plan of one point
 //
-// Every answer but compute's and table's is null while nothing has been computed. An operation
+// Every answer but those of operations that take a plan is null while nothing has been computed. An operation
 // that does not exist and arguments that are not JSON are bugs of the page and
 // panic.
 package session
@@ -28,8 +30,9 @@ import (
 
 // Session is one page's engine. Use it from one goroutine.
 type Session struct {
-	field   *field.Field
-	current *timeline // nil until a plan was computed
+	field    *field.Field
+	current  *timeline // nil until a plan was computed
+	sweeping *sweeping // nil until a plan was swept
 }
 
 // timeline is a computed plan.
@@ -64,6 +67,10 @@ func (s *Session) Call(op string, args []byte) (reply []byte, points []float32) 
 		return s.listing(args), nil
 	case "table":
 		return table(args), nil
+	case "sweep":
+		return s.sweep(args), nil
+	case "sweep_plan":
+		return s.sweptPlan(args), nil
 	}
 	panic("session: there is no operation " + op)
 }
