@@ -50,8 +50,11 @@ func (it Item) accessory() heart.PathwayNumbers {
 
 // list is the list that the field of an item belongs to, and what its items are called.
 func (p *Plan) list(field string) (items []Item, what string) {
-	if strings.HasPrefix(field, pathways) {
+	switch {
+	case strings.HasPrefix(field, pathways):
 		return p.Pathways, "accessory pathways"
+	case strings.HasPrefix(field, "interventions[]."):
+		return p.Interventions, "interventions"
 	}
 	return p.Foci, "foci"
 }

@@ -230,28 +230,17 @@ func (d *decoder) axisField(at string, m map[string]any, a *Axis) *Field {
 	}
 	field, item := itemPath(path)
 	f := byPath[field]
-	list := d.p.list(field)
+	items, what := d.p.list(field)
 	switch {
 	case f == nil || f.Kind == List || f.Kind == Group && path == device || (item >= 0) != strings.Contains(field, "[]"):
 		d.ds.add(at+".field", show(path), allowed, meant(path, sweepable()))
-	case list != nil && item >= len(*list):
-		d.ds.add(at+".field", show(path), fmt.Sprintf("one of the %d items of this plan", len(*list)), "")
+	case item >= len(items):
+		d.ds.add(at+".field", show(path), fmt.Sprintf("one of the %d %s of this plan", len(items), what), "")
 	case strings.HasPrefix(path, device+".") && d.p.null(device):
 		d.ds.add(at+".field", show(path), "a field of the heart: this plan has no pacemaker", `"pacemaker": {} adds one`)
 	default:
 		a.Field = path
 		return f
-	}
-	return nil
-}
-
-// list is the list that a catalogue path is an item's of, or nil.
-func (p *Plan) list(field string) *[]Item {
-	switch {
-	case strings.HasPrefix(field, "heart.foci[]."):
-		return &p.Foci
-	case strings.HasPrefix(field, "interventions[]."):
-		return &p.Interventions
 	}
 	return nil
 }

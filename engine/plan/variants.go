@@ -50,7 +50,8 @@ func (p *Plan) reachesHeart(path string) bool {
 // is a stimulus to add, or nil. It is good until the next call.
 func (v *Variants) Plan(values []Value, seed uint64, extra Item) *Plan {
 	for i, path := range v.fields {
-		v.plan.put(path, values[i])
+		field, item := itemPath(path)
+		v.plan.set(field, item, values[i])
 	}
 	v.plan.values["seed"] = Value{Number: float64(seed)}
 	if v.extra {
@@ -101,18 +102,6 @@ func (v Value) key(b []byte) []byte {
 	b = append(b, v.Text...)
 	b = strconv.AppendBool(b, v.On)
 	return append(b, 0)
-}
-
-// put sets the value at a path, which may be that of an item; "default" takes away
-// what stands there.
-func (p *Plan) put(path string, v Value) {
-	field, item := itemPath(path)
-	list := p.list(field)
-	if list == nil || item < 0 {
-		p.set(path, -1, v)
-		return
-	}
-	(*list)[item][field[strings.LastIndexByte(field, '.')+1:]] = v
 }
 
 // Patient is what a device's arithmetic asks of the latest variant.
