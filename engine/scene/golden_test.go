@@ -23,7 +23,7 @@ func TestGolden(t *testing.T) {
 		{"device_upper_rate", ladder.Plain, Options{Caution: true, Legend: true, Selected: 35}},
 	} {
 		l := all[c.name+".log"]
-		meta, _ := Encode(Strip(Input{Log: l, Diagram: ladder.Build(l, ladder.Options{Form: c.form})}, c.o))
+		meta := Describe(Strip(Input{Log: l, Diagram: ladder.Build(l, ladder.Options{Form: c.form})}, c.o))
 		got := bytes.ReplaceAll(meta, []byte("],["), []byte("],\n["))
 		golden := "testdata/" + c.name + ".golden"
 		if *update {

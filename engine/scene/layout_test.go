@@ -196,8 +196,8 @@ func TestStripIsDeterministic(t *testing.T) {
 	rapid.Check(t, func(r *rapid.T) {
 		l := anyLog(r)
 		in := Input{Log: l, Diagram: ladder.Build(l, ladder.Options{Form: ladder.Full})}
-		a, _ := Encode(Strip(in, Options{Caution: true}))
-		b, _ := Encode(Strip(in, Options{Caution: true}))
+		a := Describe(Strip(in, Options{Caution: true}))
+		b := Describe(Strip(in, Options{Caution: true}))
 		if string(a) != string(b) {
 			r.Fatal("two layouts of one log differ")
 		}

@@ -15,14 +15,15 @@
 //	{"width":262,"height":118.5,"font_mm":3,
 //	 "axis":{"t0_us":0,"x0":12,"mm_per_s":25},
 //	 "lanes":[{"name":"lead:II","label":"II","y0":10,"y1":35},...],
-//	 "marks":[[1,"grid-minor",12,10,12,35],...]}
+//	 "marks":1234,"classes":["grid-minor",...],"texts":["II",...]}
 //
 // All lengths are millimetres. Lanes are named "lead:II" (several leads side by side:
 // "lead:I,aVR,V1,V4"), "egm:HISd" for an electrogram, "membrane:his" for an action
-// potential, "axis", "ladder" and, where there is a device, "device". An instant t_us stands at x0 + (t_us - t0_us)/1e6*mm_per_s. A mark is
-// an array, of which trailing zero or empty values may be missing:
+// potential, "axis", "ladder" and, where there is a device, "device". An instant t_us
+// stands at x0 + (t_us - t0_us)/1e6*mm_per_s. numbers is one array: first eleven for
+// each mark,
 //
-//	[shape, "class", x, y, x2, y2, r, "text", anchor, event, pointOffset, pointCount]
+//	shape, class (place in classes), x, y, x2, y2, r, text (place in texts from 1; 0 none), anchor, event, points
 //
 //	shape 1 line    from x,y to x2,y2
 //	      2 poly    open polyline through its points
@@ -33,8 +34,8 @@
 //	anchor 0 start, 1 middle, 2 end
 //	event  id of the event the mark belongs to, 0 for none
 //
-// points is one array of x, y pairs for all polylines: point k of a mark is
-// points[2*(pointOffset+k)], points[2*(pointOffset+k)+1].
+// and then x, y of the points of all polylines, in the order of the marks.
+// [Describe] is the same for people to read.
 //
 // [StylesJSON] tells how to paint a class: lines, polylines and rings with
 // stroke, width (mm) and dash (mm); discs and rects with fill; texts with fill,

@@ -1,126 +1,50 @@
 package scene
 
 import (
-	"encoding/json"
-	"math"
+	"slices"
 	"strconv"
 )
 
-// Encode gives the wire form, described in the package comment: meta is JSON,
-// points holds the places of all Poly marks as x, y pairs.
-func Encode(s *Scene) (meta []byte, points []float32) {
-	n := 0
+// markWidth is how many numbers a mark takes in the wire form.
+const markWidth = 11
+
+// Encode gives the wire form, described in the package comment: meta is JSON, numbers
+// holds all marks and after them the points of the polylines.
+func Encode(s *Scene) (meta []byte, numbers []float32) {
+	n := markWidth * len(s.Marks)
 	for i := range s.Marks {
-		n += len(s.Marks[i].Points)
+		n += 2 * len(s.Marks[i].Points)
 	}
-	points = make([]float32, 0, 2*n)
-	b := make([]byte, 0, 4096+64*len(s.Marks))
-	b = append(b, `{"width":`...)
-	b = number(b, s.Width)
-	b = append(b, `,"height":`...)
-	b = number(b, s.Height)
-	b = append(b, `,"font_mm":`...)
-	b = number(b, s.FontMM)
-	b = append(b, `,"axis":{"t0_us":`...)
-	b = strconv.AppendInt(b, int64(s.Axis.T0), 10)
-	b = append(b, `,"x0":`...)
-	b = number(b, s.Axis.X0)
-	b = append(b, `,"mm_per_s":`...)
-	b = number(b, s.Axis.MMPerS)
-	b = append(b, `},"lanes":[`...)
-	for i := range s.Lanes {
-		b = lane(comma(b, i), &s.Lanes[i])
-	}
-	b = append(b, `],"marks":[`...)
+	numbers = make([]float32, 0, n)
+	classes, texts := []Class{}, []string{}
 	for i := range s.Marks {
 		m := &s.Marks[i]
-		b = m.encode(comma(b, i), len(points)/2)
-		for _, p := range m.Points {
-			points = append(points, p.X, p.Y)
+		class := slices.Index(classes, m.Class)
+		if class < 0 {
+			class = len(classes)
+			classes = append(classes, m.Class)
+		}
+		text := 0
+		if m.Text != "" {
+			texts = append(texts, m.Text)
+			text = len(texts)
+		}
+		numbers = append(numbers, float32(m.Shape), float32(class), float32(m.X), float32(m.Y), float32(m.X2), float32(m.Y2), float32(m.R),
+			float32(text), float32(m.Anchor), float32(m.Event), float32(len(m.Points)))
+	}
+	for i := range s.Marks {
+		for _, p := range s.Marks[i].Points {
+			numbers = append(numbers, p.X, p.Y)
 		}
 	}
-	return append(b, `]}`...), points
-}
-
-func comma(b []byte, i int) []byte {
-	if i > 0 {
-		return append(b, ',')
+	meta = append(s.frame(make([]byte, 0, 1024+16*len(texts))), `,"marks":`...)
+	meta = append(strconv.AppendInt(meta, int64(len(s.Marks)), 10), `,"classes":[`...)
+	for i, c := range classes {
+		meta = quoted(comma(meta, i), c.String())
 	}
-	return b
-}
-
-func lane(b []byte, l *Lane) []byte {
-	b = append(b, `{"name":`...)
-	b = quoted(b, l.Name)
-	b = append(b, `,"label":`...)
-	b = quoted(b, l.Label)
-	b = append(b, `,"y0":`...)
-	b = number(b, l.Y0)
-	b = append(b, `,"y1":`...)
-	b = number(b, l.Y1)
-	return append(b, '}')
-}
-
-// encode writes the mark as an array and cuts trailing zero values.
-func (m *Mark) encode(b []byte, offset int) []byte {
-	b = append(b, '[')
-	b = strconv.AppendInt(b, int64(m.Shape), 10)
-	b = append(b, ',', '"')
-	b = append(append(b, m.Class.String()...), '"')
-	end := len(b) // what stands behind it is only zeros so far
-	keep := func(filled bool) {
-		if filled {
-			end = len(b)
-		}
+	meta = append(meta, `],"texts":[`...)
+	for i, t := range texts {
+		meta = quoted(comma(meta, i), t)
 	}
-	for _, v := range [...]float64{m.X, m.Y, m.X2, m.Y2, m.R} {
-		b = number(append(b, ','), v)
-		keep(units(v) != 0)
-	}
-	b = quoted(append(b, ','), m.Text)
-	keep(m.Text != "")
-	if len(m.Points) == 0 {
-		offset = 0
-	}
-	for i, v := range [...]int64{int64(m.Anchor), int64(m.Event), int64(offset), int64(len(m.Points))} {
-		b = strconv.AppendInt(append(b, ','), v, 10)
-		keep(v != 0 && (i < 2 || len(m.Points) > 0))
-	}
-	return append(b[:end], ']')
-}
-
-// Numbers are written in tenths of a micrometre: at 100 mm/s that is one
-// microsecond. Integers are several times faster to write than the shortest
-// decimal of a float.
-func units(v float64) int64 {
-	if !(math.Abs(v) < 1e12) { // also for NaN
-		return 0
-	}
-	return int64(math.Round(v * 1e4))
-}
-
-func number(b []byte, v float64) []byte {
-	n := units(v)
-	if n < 0 {
-		b, n = append(b, '-'), -n
-	}
-	b = strconv.AppendInt(b, n/1e4, 10)
-	if n %= 1e4; n > 0 {
-		b = append(b, '.', byte('0'+n/1000), byte('0'+n/100%10), byte('0'+n/10%10), byte('0'+n%10))
-		for b[len(b)-1] == '0' {
-			b = b[:len(b)-1]
-		}
-	}
-	return b
-}
-
-func quoted(b []byte, s string) []byte {
-	if s == "" {
-		return append(b, '"', '"')
-	}
-	q, err := json.Marshal(s)
-	if err != nil {
-		panic("scene: text does not encode: " + err.Error())
-	}
-	return append(b, q...)
+	return append(meta, `]}`...), numbers
 }

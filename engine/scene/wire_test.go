@@ -2,44 +2,36 @@ package scene
 
 import (
 	"encoding/json"
+	"slices"
 	"testing"
 )
 
-func TestEncodeCutsTrailingZeros(t *testing.T) {
-	for _, c := range []struct {
-		name string
-		mark Mark
-		want string
-	}{
-		{"line", Mark{Shape: Line, Class: Atrium, X: 1, Y: 2, X2: 3.00004, Y2: 4.5, Event: 7}, `[1,"atrium",1,2,3,4.5,0,"",0,7]`},
-		{"grid", Mark{Shape: Line, Class: GridMinor, X: 1, X2: 1, Y2: 9}, `[1,"grid-minor",1,0,1,9]`},
-		{"text", Mark{Shape: Text, Class: DimText, X: 1, Y: 2, Text: `a"b`, Anchor: End}, `[6,"dim-text",1,2,0,0,0,"a\"b",2]`},
-		{"disc", Mark{Shape: Disc, Class: Sinus, R: 0.7, Event: 3}, `[4,"sinus",0,0,0,0,0.7,"",0,3]`},
-		{"nothing", Mark{Shape: Text, Class: Title}, `[6,"title"]`},
-	} {
-		if got := string(c.mark.encode(nil, 5)); got != c.want {
-			t.Errorf("%s: %s, want %s", c.name, got, c.want)
-		}
+// What is read from the wire form by its description is the scene.
+func TestEncodeHoldsEveryMark(t *testing.T) {
+	s := small()
+	s.Marks = append(s.Marks, Mark{Shape: Text, Class: DimText, X: 1, Y: 2, Text: `a"b`, Anchor: End, Event: 7}, Mark{Shape: Ring, Class: Trace, R: 0.5, Text: "c"})
+	meta, numbers := Encode(s)
+	var m struct {
+		Marks   int
+		Classes []string
+		Texts   []string
+		Lanes   []struct{ Name string }
 	}
-}
-
-func TestEncodePointsFollowTheirMarks(t *testing.T) {
-	s := &Scene{Width: 10, Height: 5, FontMM: 3, Marks: []Mark{
-		{Shape: Poly, Class: Trace, Points: []Point{{1, 2}, {3, 4}}},
-		{Shape: Line, Class: AxisLine, X2: 1},
-		{Shape: Poly, Class: Trace, Points: []Point{{5, 6}}},
-	}, Lanes: []Lane{{Name: "axis", Label: "s", Y1: 5}}}
-	meta, points := Encode(s)
-	want := `{"width":10,"height":5,"font_mm":3,"axis":{"t0_us":0,"x0":0,"mm_per_s":0},` +
-		`"lanes":[{"name":"axis","label":"s","y0":0,"y1":5}],` +
-		`"marks":[[2,"trace",0,0,0,0,0,"",0,0,0,2],[1,"axis",0,0,1],[2,"trace",0,0,0,0,0,"",0,0,2,1]]}`
-	if got := string(meta); got != want {
-		t.Errorf("meta is\n%s, want\n%s", got, want)
+	if err := json.Unmarshal(meta, &m); err != nil {
+		t.Fatal(err)
 	}
-	if !json.Valid(meta) {
-		t.Error("meta is not JSON")
+	if m.Marks != len(s.Marks) || !slices.Equal(m.Classes, []string{"trace", "axis", "dim-text"}) || !slices.Equal(m.Texts, []string{`a"b`, "c"}) || m.Lanes[0].Name != "axis" {
+		t.Errorf("meta is %s", meta)
 	}
-	if len(points) != 6 || points[4] != 5 || points[5] != 6 {
-		t.Errorf("points are %v", points)
+	want := []float32{
+		2, 0, 0, 0, 0, 0, 0, 0, 0, 0, 2,
+		1, 1, 0, 0, 1, 0, 0, 0, 0, 0, 0,
+		2, 0, 0, 0, 0, 0, 0, 0, 0, 0, 1,
+		6, 2, 1, 2, 0, 0, 0, 1, 2, 7, 0,
+		5, 0, 0, 0, 0, 0, 0.5, 2, 0, 0, 0,
+		1, 2, 3, 4, 5, 6,
+	}
+	if !slices.Equal(numbers, want) {
+		t.Errorf("numbers are\n%v, want\n%v", numbers, want)
 	}
 }

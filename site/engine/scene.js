@@ -13,7 +13,7 @@
  * @property {string} text
  * @property {number} anchor 0 start, 1 middle, 2 end
  * @property {number} event id, 0 for none
- * @property {number} from first of its points
+ * @property {number} from first of its points in the scene's numbers, as an index
  * @property {number} count of its points
  */
 
@@ -27,7 +27,7 @@
  * @property {{t0_us: number, x0: number, mm_per_s: number}} axis
  * @property {Lane[]} lanes
  * @property {Mark[]} marks
- * @property {Float32Array} points x, y pairs
+ * @property {Float32Array} points x, y of the points of polylines, from a mark's `from` on
  * @property {[number, number, number][]} times of every event that has a mark: id, milliseconds,
  *   and the place, from 1, of the intervention that made it, 0 for none
  */
@@ -39,22 +39,27 @@ export const DISC = 4;
 export const RING = 5;
 export const TEXT = 6;
 
-/**
- * @param {any} meta
- * @param {Float32Array | null} points
- * @returns {Scene}
- */
-export function readScene(meta, points) {
-  return { times: [], ...meta, marks: meta.marks.map(readMark), points: points ?? new Float32Array() };
-}
+const WIDTH = 11; // numbers a mark
 
 /**
- * @param {any[]} a
- * @returns {Mark}
+ * @param {any} meta
+ * @param {Float32Array | null} numbers
+ * @returns {Scene}
  */
-function readMark(a) {
-  const [shape, cls, x = 0, y = 0, x2 = 0, y2 = 0, r = 0, text = "", anchor = 0, event = 0, from = 0, count = 0] = a;
-  return { shape, cls, x, y, x2, y2, r, text, anchor, event, from, count };
+export function readScene(meta, numbers) {
+  const { marks: count, classes, texts, ...rest } = meta;
+  const n = numbers ?? new Float32Array();
+  const marks = new Array(count);
+  let from = count * WIDTH;
+  for (let i = 0, k = 0; i < count; i++, k += WIDTH) {
+    const points = n[k + 10];
+    marks[i] = {
+      shape: n[k], cls: classes[n[k + 1]], x: n[k + 2], y: n[k + 3], x2: n[k + 4], y2: n[k + 5], r: n[k + 6],
+      text: n[k + 7] > 0 ? texts[n[k + 7] - 1] : "", anchor: n[k + 8], event: n[k + 9], from, count: points,
+    };
+    from += 2 * points;
+  }
+  return { times: [], ...rest, marks, points: n };
 }
 
 /**

@@ -206,12 +206,20 @@ test("revealing moves only what is needed", () => {
 
 const scene = readScene({
   width: 100, height: 50, font_mm: 3, axis: { t0_us: 1000000, x0: 10, mm_per_s: 25 }, lanes: [],
-  marks: [[3, "wave", 10, 0, 30, 20, 0, "", 0, 5], [1, "atrium", 20, 10, 22, 20, 0, "", 0, 7], [4, "sinus", 20, 10, 0, 0, 1, "", 0, 6], [1, "grid-minor", 0, 1]],
-}, null);
+  marks: 5, classes: ["wave", "atrium", "sinus", "dim-text", "trace"], texts: ["120"],
+}, new Float32Array([
+  3, 0, 10, 0, 30, 20, 0, 0, 0, 5, 0,
+  1, 1, 20, 10, 22, 20, 0, 0, 0, 7, 0,
+  4, 2, 20, 10, 0, 0, 1, 0, 0, 6, 0,
+  6, 3, 1, 2, 0, 0, 0, 1, 1, 0, 0,
+  2, 4, 0, 0, 0, 0, 0, 0, 0, 0, 2,
+  1, 2, 3, 4,
+]));
 
-test("a scene's missing values are zeros and its axis is one map", () => {
-  assert.equal(scene.marks[3].event, 0);
-  assert.equal(scene.marks[3].y2, 0);
+test("a scene's marks are read from their numbers and its axis is one map", () => {
+  assert.deepEqual([scene.marks[0].cls, scene.marks[0].event, scene.marks[3].text, scene.marks[3].anchor], ["wave", 5, "120", 1]);
+  const line = scene.marks[4];
+  assert.deepEqual([...scene.points.subarray(line.from, line.from + 2 * line.count)], [1, 2, 3, 4]);
   assert.equal(timeAt(scene, 35), 2000);
   assert.equal(placeOf(scene, 2000), 35);
 });

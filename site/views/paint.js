@@ -95,7 +95,7 @@ export function outline(g, scene, styles, events) {
 
 /** @param {Mark} m @param {Scene} scene */
 function box(m, scene) {
-  const at = m.shape === POLY ? [...scene.points.subarray(2 * m.from, 2 * (m.from + m.count))] : [m.x, m.y, m.x2, m.y2];
+  const at = m.shape === POLY ? [...scene.points.subarray(m.from, m.from + 2 * m.count)] : [m.x, m.y, m.x2, m.y2];
   const xs = at.filter((_, i) => i % 2 === 0);
   const ys = at.filter((_, i) => i % 2 === 1);
   return { x0: Math.min(...xs), y0: Math.min(...ys), x1: Math.max(...xs), y1: Math.max(...ys) };
@@ -138,7 +138,7 @@ function put(g, m, style, scene) {
     case POLY:
       if (!style.stroke || m.count === 0) return;
       g.beginPath();
-      for (let i = 0, p = 2 * m.from; i < m.count; i++, p += 2) {
+      for (let i = 0, p = m.from; i < m.count; i++, p += 2) {
         g.lineTo(scene.points[p], scene.points[p + 1]);
       }
       g.stroke();

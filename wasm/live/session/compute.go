@@ -74,7 +74,17 @@ func (s *Session) compute(args []byte) ([]byte, []float32) {
 	a := t.answer()
 	a.Took = float64(time.Since(began).Microseconds()) / 1000
 	meta, points := t.scene(&q.view)
-	return encode(computeReply{OK: true, Answer: a, Scene: meta}), points
+	return t.reply(a, meta), points
+}
+
+// reply puts the parts together by hand: the scene is JSON already, and encoding/json
+// would read it all again.
+func (t *timeline) reply(a *answer, scene []byte) []byte {
+	text := encode(a)
+	out := make([]byte, 0, len(text)+len(scene)+64)
+	out = append(append(out, `{"ok":true,"answer":`...), text...)
+	out = append(append(out, `,"scene":`...), scene...)
+	return append(out, '}')
 }
 
 func (s *Session) run(file []byte) (*timeline, error) {
