@@ -1,6 +1,7 @@
 package plan
 
 import (
+	"errors"
 	"fmt"
 	"strings"
 )
@@ -38,6 +39,25 @@ func (ds Diagnoses) Error() string {
 		lines[i] = d.String()
 	}
 	return strings.Join(lines, "\n")
+}
+
+// Worded is a diagnosis with its one wording, as programs outside Go get it.
+type Worded struct {
+	Diagnosis
+	Text string `json:"text"`
+}
+
+// Told puts any refusal in the form of diagnoses.
+func Told(err error) []Worded {
+	var found Diagnoses
+	if !errors.As(err, &found) {
+		return []Worded{{Text: err.Error()}}
+	}
+	out := make([]Worded, len(found))
+	for i, d := range found {
+		out[i] = Worded{d, d.String()}
+	}
+	return out
 }
 
 // most bounds the list; a hostile plan could be wrong in a million places.

@@ -90,15 +90,7 @@ func (b *book) embed(s *Scene, x, y float64) {
 		page.Lanes = append(page.Lanes, l)
 	}
 	for _, m := range s.Marks {
-		m.X, m.X2, m.Y, m.Y2 = m.X+x, m.X2+x, m.Y+y, m.Y2+y
-		if len(m.Points) > 0 {
-			points := make([]Point, len(m.Points))
-			for i, p := range m.Points {
-				points[i] = Point{float32(float64(p.X) + x), float32(float64(p.Y) + y)}
-			}
-			m.Points = points
-		}
-		page.Marks = append(page.Marks, m)
+		page.Marks = append(page.Marks, m.moved(x, y))
 	}
 }
 

@@ -37,8 +37,9 @@ type Options struct {
 	Grid      bool    // paper grid behind the leads
 	Title     string
 	Statement string
-	Legend    bool // what the signs of the ladder mean
-	Caution   bool // the scales and CautionText at the foot
+	Legend    bool   // what the signs of the ladder mean
+	Caution   bool   // the scales and CautionText at the foot
+	Imprint   string // date and version of a print, after the scales at the foot
 	Selected  event.ID
 	NoDevice  bool // leave the device's lane out
 
@@ -183,7 +184,7 @@ func (s *sheet) heading() {
 
 func (s *sheet) foot() {
 	s.y += s.o.FontMM * 0.4
-	s.paragraph(Note, s.scales())
+	s.paragraph(Note, strings.TrimSpace(s.scales()+" "+s.o.Imprint))
 	s.paragraph(Caution, CautionText)
 }
 

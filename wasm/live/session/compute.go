@@ -2,7 +2,6 @@ package session
 
 import (
 	"encoding/json"
-	"errors"
 	"fmt"
 	"strings"
 	"time"
@@ -19,15 +18,9 @@ import (
 
 type computeReply struct {
 	OK        bool            `json:"ok"`
-	Diagnoses []diagnosis     `json:"diagnoses,omitempty"`
+	Diagnoses []plan.Worded   `json:"diagnoses,omitempty"`
 	Answer    *answer         `json:"answer,omitempty"`
 	Scene     json.RawMessage `json:"scene,omitempty"`
-}
-
-// diagnosis is plan.Diagnosis with its one wording.
-type diagnosis struct {
-	plan.Diagnosis
-	Text string `json:"text"`
 }
 
 type answer struct {
@@ -68,7 +61,7 @@ func (s *Session) compute(args []byte) ([]byte, []float32) {
 	began := time.Now()
 	t, err := s.run(q.Plan)
 	if err != nil {
-		return encode(computeReply{Diagnoses: diagnose(err)}), nil
+		return encode(computeReply{Diagnoses: plan.Told(err)}), nil
 	}
 	s.current = t
 	a := t.answer()
@@ -110,19 +103,6 @@ func (s *Session) run(file []byte) (*timeline, error) {
 // leadsUpTo is the longest strip that has leads: 12 of them at 1000 samples a
 // second take 43 MB.
 const leadsUpTo = tick.Time(15 * tick.Minute)
-
-// diagnose puts any refusal in the form of a diagnosis.
-func diagnose(err error) []diagnosis {
-	var found plan.Diagnoses
-	if !errors.As(err, &found) {
-		return []diagnosis{{Text: err.Error()}}
-	}
-	out := make([]diagnosis, len(found))
-	for i, d := range found {
-		out[i] = diagnosis{d, d.String()}
-	}
-	return out
-}
 
 func (t *timeline) answer() *answer {
 	a := &answer{

@@ -18,10 +18,10 @@ type sweeping struct {
 
 // swept is the reply of sweep. Diagnoses are those of the plan or its sweep.
 type swept struct {
-	OK        bool         `json:"ok"`
-	Diagnoses []diagnosis  `json:"diagnoses,omitempty"`
-	Head      *sweep.Head  `json:"head,omitempty"`
-	Slice     *sweep.Slice `json:"slice,omitempty"`
+	OK        bool          `json:"ok"`
+	Diagnoses []plan.Worded `json:"diagnoses,omitempty"`
+	Head      *sweep.Head   `json:"head,omitempty"`
+	Slice     *sweep.Slice  `json:"slice,omitempty"`
 }
 
 // sweep runs some points of a plan's sweep, in their order, and hands them over in
@@ -35,7 +35,7 @@ func (s *Session) sweep(args []byte) []byte {
 	}
 	decode(args, &q)
 	if err := s.toSweep(q.Plan); err != nil {
-		return encode(swept{Diagnoses: diagnose(err)})
+		return encode(swept{Diagnoses: plan.Told(err)})
 	}
 	g, w := s.sweeping.grid, s.sweeping.worker
 	head := g.Head()
@@ -59,7 +59,7 @@ func (s *Session) sweptPlan(args []byte) []byte {
 		Seed  uint64          `json:"seed"`
 	}
 	decode(args, &q)
-	fail := func(err error) []byte { return encode(swept{Diagnoses: diagnose(err)}) }
+	fail := func(err error) []byte { return encode(swept{Diagnoses: plan.Told(err)}) }
 	if err := s.toSweep(q.Plan); err != nil {
 		return fail(err)
 	}

@@ -1,0 +1,122 @@
+package scene
+
+import (
+	"errors"
+	"math"
+	"strings"
+	"testing"
+
+	"pgregory.net/rapid"
+
+	"escapement/engine/ladder"
+	"escapement/engine/lead"
+	"escapement/engine/tick"
+)
+
+// anyPrint draws a strip with options and a paper.
+func anyPrint(r *rapid.T) (Input, Options, Paper) {
+	l := anyLog(r)
+	l.Span += tick.Time(rapid.Int64Range(0, 60e6).Draw(r, "longer"))
+	rec := &lead.Record{}
+	for i := range rec.MV {
+		rec.MV[i] = make([]float32, int(l.Span)/int(lead.Step)+1)
+	}
+	in := Input{Log: l, Record: rec}
+	if rapid.Bool().Draw(r, "ladder") {
+		in.Diagram = ladder.Build(l, ladder.Options{Form: ladder.Full})
+	}
+	o := Options{
+		MMPerS: rapid.Float64Range(5, 200).Draw(r, "speed"), MMPerMV: rapid.Float64Range(2, 20).Draw(r, "gain"), Leads: []lead.Name{lead.II, lead.V1},
+		Grid: true, Legend: true, Caution: true, Title: "Of no great length", Statement: strings.Repeat("A statement. ", rapid.IntRange(0, 30).Draw(r, "sentences")), Imprint: "Printed.",
+	}
+	paper, err := ParsePaper(rapid.SampledFrom([]string{"a4", "a4-landscape", "letter", "letter-landscape", "a3", "a3-landscape", "130x400"}).Draw(r, "paper"))
+	if err != nil {
+		r.Fatal(err)
+	}
+	return in, o, paper
+}
+
+// Whatever is printed stands within the edges of its paper, at the scale that was
+// asked for; the parts of a strip follow each other without a gap; the caution is on
+// every page.
+func TestPagesKeepTheirEdgesAndTheirScale(t *testing.T) {
+	rapid.Check(t, func(r *rapid.T) {
+		in, o, p := anyPrint(r)
+		pages, err := Sheets(in, o, p, StripForm)
+		var room *RoomError
+		if err != nil {
+			if !errors.As(err, &room) || room.Need <= room.Has || room.Error() == "" {
+				r.Fatal(err)
+			}
+			return
+		}
+		for i, s := range pages {
+			if s.Width != p.Width || s.Height != p.Height {
+				r.Fatalf("page %d measures %v by %v mm", i+1, s.Width, s.Height)
+			}
+			if s.Axis.MMPerS != o.MMPerS {
+				r.Fatalf("page %d runs at %v mm/s, want %v", i+1, s.Axis.MMPerS, o.MMPerS)
+			}
+			var said []string
+			for k := range s.Marks {
+				m := &s.Marks[k]
+				if m.Class == Caution {
+					said = append(said, m.Text)
+				}
+				b := Box{min(m.X, m.X2), min(m.Y, m.Y2), max(m.X, m.X2), max(m.Y, m.Y2)}
+				switch m.Shape {
+				case Poly:
+					b = Box{math.Inf(1), math.Inf(1), math.Inf(-1), math.Inf(-1)}
+					for _, q := range m.Points {
+						b = Box{min(b.X0, float64(q.X)), min(b.Y0, float64(q.Y)), max(b.X1, float64(q.X)), max(b.Y1, float64(q.Y))}
+					}
+				case Disc, Ring:
+					b = Box{m.X - m.R, m.Y - m.R, m.X + m.R, m.Y + m.R}
+				case Text:
+					b = s.TextBox(m)
+				}
+				const edge = EdgeMM - 1.6 // discs and letters on the line of the frame
+				if b.X0 < edge || b.Y0 < edge || b.X1 > s.Width-edge || b.Y1 > s.Height-edge {
+					r.Fatalf("page %d: %s %q at %.1f to %.1f, %.1f to %.1f mm", i+1, m.Class, m.Text, b.X0, b.X1, b.Y0, b.Y1)
+				}
+			}
+			if !strings.Contains(strings.ReplaceAll(strings.Join(said, ""), " ", ""), strings.ReplaceAll(CautionText, " ", "")) {
+				r.Fatalf("page %d says %q", i+1, said)
+			}
+		}
+	})
+}
+
+func TestAStripIsCutAtLargeSquares(t *testing.T) {
+	o := Options{To: 60 * tick.Time(tick.Second), MMPerS: 25, Margin: 20}
+	paper := Paper{Width: 297, Height: 210, Margin: EdgeMM}
+	parts, err := cut(&o, paper, 0)
+	if err != nil {
+		t.Fatal(err)
+	}
+	// A4 is 297 mm wide; less two edges of 6, a margin of 20 and 1.5 beyond the end it is 263.5, which is 10.54 s.
+	if got, want := parts[0], [2]tick.Time{0, 10.4e6}; got != want {
+		t.Errorf("the first part runs from %d to %d, want %d", got[0], got[1], want[1])
+	}
+	for i, p := range parts[1:] {
+		if p[0] != parts[i][1] {
+			t.Errorf("part %d begins at %d, the one before ends at %d", i+1, p[0], parts[i][1])
+		}
+	}
+	if last := parts[len(parts)-1][1]; last != o.To {
+		t.Errorf("ends at %d", last)
+	}
+	parts, err = cut(&o, paper, 10*tick.Second)
+	if err != nil || len(parts) != 6 || parts[5] != [2]tick.Time{50e6, 60e6} {
+		t.Errorf("pages of ten seconds: %v, %v", parts, err)
+	}
+	o.To = 14e6
+	if parts, _ = cut(&o, paper, 10*tick.Second); len(parts) != 2 || parts[1] != [2]tick.Time{4e6, 14e6} {
+		t.Errorf("the last page of ten seconds is %v", parts)
+	}
+	o.To, o.MMPerS = 3600e6*24, 100
+	var room *RoomError
+	if _, err = cut(&o, paper, 0); !errors.As(err, &room) || room.What != "pages" {
+		t.Errorf("a day on A4: %v", err)
+	}
+}
