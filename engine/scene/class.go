@@ -47,6 +47,13 @@ const (
 	Dim        // dimension line with its end ticks
 	DimText    // the number on it
 	Selected   // halo beneath the marks of the selected event
+	Gone       // of two timelines: beneath what only the one before has, and its tick between them
+	New        // beneath what only the one after has
+	Moved      // between two timelines: from a beat to its partner that came earlier or later
+	Kept       // to one that came at the same time
+	GoneText   // the sign of what is gone
+	NewText
+	MovedText // by how many milliseconds
 	Title
 	Statement
 	Caution
@@ -69,6 +76,7 @@ var classNames = [classEnd]string{
 	Spike: "spike", Signal: "signal", Window: "window", WindowArea: "window-area", WindowEdge: "window-edge", WindowEnd: "window-end",
 	Hatch: "hatch", Timer: "timer", Held: "held", WindowText: "window-text", MarkerText: "marker-text",
 	Dim: "dim", DimText: "dim-text", Selected: "selected",
+	Gone: "gone", New: "new", Moved: "moved", Kept: "kept", GoneText: "gone-text", NewText: "new-text", MovedText: "moved-text",
 	Title: "title", Statement: "statement", Caution: "caution", Note: "note",
 	Heading: "heading", Body: "body", Strong: "strong", Rule: "rule",
 }

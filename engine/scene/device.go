@@ -106,6 +106,7 @@ func (v *watch) lay() {
 // add paints a mark of the device, with a halo if its event is selected.
 func (v *watch) add(m Mark) {
 	v.over = append(v.over, m)
+	v.lone(m)
 	if m.Event == 0 || m.Event != v.o.Selected || m.Shape == Text {
 		return
 	}

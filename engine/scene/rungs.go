@@ -171,6 +171,7 @@ func (r *rungs) stroke(t *ladder.Stroke) {
 // add paints a mark of the ladder, with a halo if its event is selected.
 func (r *rungs) add(m Mark) {
 	r.over = append(r.over, m)
+	r.lone(m)
 	if m.Event == 0 || m.Event != r.o.Selected {
 		return
 	}

@@ -32,7 +32,8 @@
 //	      5 ring    open circle, radius r at x,y
 //	      6 text    at x,y: x by anchor, y is the baseline
 //	anchor 0 start, 1 middle, 2 end
-//	event  id of the event the mark belongs to, 0 for none
+//	event  id of the event the mark belongs to, 0 for none; negative: of the strip before,
+//	       in a scene of two ([Stack]), whose lanes are named "before:lead:II"
 //
 // and then x, y of the points of all polylines, in the order of the marks.
 // [Describe] is the same for people to read.

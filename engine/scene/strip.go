@@ -55,6 +55,11 @@ type Options struct {
 
 	// Paper is the form in which [Paper12] sets the twelve leads.
 	Paper Form12
+
+	// What [Stack] asks of each half.
+	noAxis bool       // the other half has the time axis
+	lonely []event.ID // sorted: events without a partner, that a broad mark of class alone marks
+	alone  Class
 }
 
 // Limits on sizes, so that no option can make an endless drawing.
@@ -152,7 +157,9 @@ func (s *sheet) finish(rows []row) *Scene {
 		}
 		switch rest[0] {
 		case "axis":
-			s.axis()
+			if !s.o.noAxis {
+				s.axis()
+			}
 		case "ladder":
 			s.ladder()
 		case "device":

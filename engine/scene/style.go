@@ -21,6 +21,7 @@ type Palette struct {
 	Paper, Ink, Quiet, GridMinor, GridMajor string
 	Atrium, Node, Purkinje, Accessory       string
 	Device, Tint, Warning, Halo             string
+	Lost, Found                             string // behind what one of two timelines has alone
 }
 
 // Light is the colours on paper, Dark those of the dark sheet.
@@ -29,11 +30,13 @@ var (
 		Paper: "#FBFAF6", Ink: "#1E2A30", Quiet: "#56666F", GridMinor: "#DCE4E7", GridMajor: "#BFCDD3",
 		Atrium: "#0B6B72", Node: "#8A6100", Purkinje: "#7B2D5E", Accessory: "#2F6B3A",
 		Device: "#3447B5", Tint: "#E3E7F5", Warning: "#B5361B", Halo: "#D3D9F6",
+		Lost: "#F3CFC3", Found: "#C4E2CB",
 	}
 	Dark = Palette{
 		Paper: "#141C20", Ink: "#E4EAEC", Quiet: "#9BABB3", GridMinor: "#1F2A30", GridMajor: "#31414A",
 		Atrium: "#4EBFC6", Node: "#DBA63C", Purkinje: "#DD8CC0", Accessory: "#7CC78B",
 		Device: "#9BA8FF", Tint: "#222B4A", Warning: "#FF8365", Halo: "#2D3770",
+		Lost: "#5A2E22", Found: "#24492F",
 	}
 )
 
@@ -121,6 +124,20 @@ func (p *Palette) Style(c Class) Style {
 		return line(p.Quiet, 0.18)
 	case Selected:
 		return line(p.Halo, 2)
+	case Gone:
+		return line(p.Lost, 1.9, 0.9, 0.5)
+	case New:
+		return line(p.Found, 1.9)
+	case Moved:
+		return line(p.Device, 0.35)
+	case Kept:
+		return line(p.GridMajor, thin)
+	case GoneText:
+		return text(p.Warning, 1, 700)
+	case NewText:
+		return text(p.Accessory, 1, 700)
+	case MovedText:
+		return text(p.Device, 0.85, 400)
 	case LaneLabel:
 		return text(p.Ink, 1, 700)
 	case Title:

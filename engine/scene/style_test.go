@@ -39,7 +39,7 @@ func TestContrastAgainstThePaper(t *testing.T) {
 			s := p.Style(c)
 			for _, colour := range []string{s.Stroke, s.Fill} {
 				switch colour {
-				case "", p.GridMinor, p.GridMajor, p.Halo, p.Tint:
+				case "", p.GridMinor, p.GridMajor, p.Halo, p.Tint, p.Lost, p.Found:
 					continue
 				}
 				if got := contrast(t, colour, p.Paper); got < 4.5 {
@@ -47,6 +47,11 @@ func TestContrastAgainstThePaper(t *testing.T) {
 				}
 				if got := contrast(t, colour, p.Halo); got < 3 {
 					t.Errorf("dark=%v %s: %s has %.2f:1 on the halo, want 3", dark, c, colour, got)
+				}
+				for _, under := range []string{p.Lost, p.Found} {
+					if got := contrast(t, colour, under); got < 3 {
+						t.Errorf("dark=%v %s: %s has %.2f:1 on %s, want 3", dark, c, colour, got, under)
+					}
 				}
 				if got := contrast(t, colour, p.Tint); got < 4.5 && (c == WindowText || c == Signal || c == Hatch) {
 					t.Errorf("dark=%v %s: %s has %.2f:1 on a bar, want 4.5", dark, c, colour, got)
@@ -59,7 +64,7 @@ func TestContrastAgainstThePaper(t *testing.T) {
 // Colour is never the only cue: classes that may stand in one tier with the same
 // shape differ in dash or width as well.
 func TestClassesOfOneTierDifferWithoutColour(t *testing.T) {
-	for _, pair := range [][2]Class{{Node, NodeSlow}, {Node, Accessory}, {BundleLeft, BundleRight}, {His, BundleRight}, {Sinus, Atrium}, {Ventricle, Block}, {Block, Tail}, {Timer, Held}, {Signal, WindowEnd}, {WindowEdge, WindowEnd}} {
+	for _, pair := range [][2]Class{{Node, NodeSlow}, {Node, Accessory}, {BundleLeft, BundleRight}, {His, BundleRight}, {Sinus, Atrium}, {Ventricle, Block}, {Block, Tail}, {Timer, Held}, {Signal, WindowEnd}, {WindowEdge, WindowEnd}, {Gone, New}, {Moved, Kept}} {
 		a, b := Light.Style(pair[0]), Light.Style(pair[1])
 		if a.Width == b.Width && fmt.Sprint(a.Dash) == fmt.Sprint(b.Dash) {
 			t.Errorf("%s and %s differ in colour only", pair[0], pair[1])

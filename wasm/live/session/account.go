@@ -20,9 +20,10 @@ type accountReply struct {
 	T         float64  `json:"t_ms"`
 	Title     string   `json:"title"`
 	Sentences []string `json:"sentences"`
-	Margin    string   `json:"margin"` // how close it came to going the other way; may be empty
-	Chain     []line   `json:"chain"`  // the event, then its causes
-	Led       []line   `json:"led"`    // what it caused directly
+	Margin    string   `json:"margin"`            // how close it came to going the other way; may be empty
+	Chain     []line   `json:"chain"`             // the event, then its causes
+	Led       []line   `json:"led"`               // what it caused directly
+	Against   string   `json:"against,omitempty"` // how it differs from its partner before or after
 }
 
 func (s *Session) account(args []byte) []byte {
@@ -33,21 +34,28 @@ func (s *Session) account(args []byte) []byte {
 	if s.current == nil {
 		return none
 	}
-	a := account.Of(s.current.log, q.Event)
+	t, id, sign := s.current, q.Event, event.ID(1)
+	if q.Event < 0 && s.before != nil {
+		t, id, sign = s.before, -q.Event, -1
+	}
+	a := account.Of(t.log, id)
 	if a == nil {
 		return none
 	}
-	r := accountReply{Event: a.ID, T: a.T.MS(), Title: a.Title, Sentences: a.Sentences, Chain: steps(a.Chain), Led: steps(a.Led)}
+	r := accountReply{Event: q.Event, T: a.T.MS(), Title: a.Title, Sentences: a.Sentences, Chain: steps(a.Chain, sign), Led: steps(a.Led, sign), Against: s.against(q.Event)}
+	if sign < 0 {
+		r.Title = "Before: " + r.Title
+	}
 	if a.Margin != nil {
 		r.Margin = a.Margin.Text
 	}
 	return encode(r)
 }
 
-func steps(from []account.Step) []line {
+func steps(from []account.Step, sign event.ID) []line {
 	out := make([]line, len(from))
 	for i, s := range from {
-		out[i] = line{s.ID, s.T.MS(), s.Text}
+		out[i] = line{s.ID * sign, s.T.MS(), s.Text}
 	}
 	return out
 }

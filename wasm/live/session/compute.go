@@ -54,19 +54,23 @@ type finding struct {
 
 func (s *Session) compute(args []byte) ([]byte, []float32) {
 	var q struct {
-		Plan json.RawMessage `json:"plan"`
+		Plan   json.RawMessage `json:"plan"`
+		Before json.RawMessage `json:"before"`
 		view
 	}
 	decode(args, &q)
 	began := time.Now()
-	t, err := s.run(q.Plan)
+	t, err := s.known(q.Plan)
+	doubt := s.keep(q.Before)
+	s.differs = nil
 	if err != nil {
 		return encode(computeReply{Diagnoses: plan.Told(err)}), nil
 	}
 	s.current = t
 	a := t.answer()
+	a.Warnings = append(a.Warnings, doubt...)
 	a.Took = float64(time.Since(began).Microseconds()) / 1000
-	meta, points := t.scene(&q.view)
+	meta, points := s.scene(&q.view)
 	return t.reply(a, meta), points
 }
 
@@ -97,7 +101,7 @@ func (s *Session) run(file []byte) (*timeline, error) {
 	if log.Span <= leadsUpTo {
 		rec = s.field.Record(log)
 	}
-	return &timeline{plan: p, pacer: prog.Device, log: log, record: rec, drawn: pressed(log, rec), report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{}, field: s.field, signals: map[string][]float32{}}, nil
+	return &timeline{file: file, plan: p, pacer: prog.Device, log: log, record: rec, drawn: pressed(log, rec), report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{}, field: s.field, signals: map[string][]float32{}}, nil
 }
 
 // leadsUpTo is the longest strip that has leads: 12 of them at 1000 samples a

@@ -3,13 +3,17 @@
 // computed, so that another view of it needs no new computation.
 //
 //	catalogue  {}                      fields of a plan, presets, sites, styles
-//	compute    {plan, view, selected}  a plan's timeline: measures, statement, arithmetic, scene; or its diagnoses
+//	compute    {plan, before, view, selected}  a plan's timeline: measures, statement, arithmetic, scene; or its diagnoses
 //	layout     {view, selected}        another scene of the same timeline
+//	contrast   {}                      how the timeline differs from the one before
 //	account    {event}                 why an event came
 //	listing    {from_ms, to_ms}        events as text
 //	table      {plan, read}            the device's settings as a table, or the plan with a table read
 //	sweep      {plan, points}          some points of the plan's sweep, in columns; or its diagnoses
 //	sweep_plan {plan, point, seed}     the plan of one point
+//
+// compute may name a plan to compare with. Its timeline is kept and drawn above the
+// present one until compute names another or none; its events have negative ids.
 //
 // Every answer but those of operations that take a plan is null while nothing has been computed. An operation
 // that does not exist and arguments that are not JSON are bugs of the page and
@@ -33,10 +37,13 @@ type Session struct {
 	field    *field.Field
 	current  *timeline // nil until a plan was computed
 	sweeping *sweeping // nil until a plan was swept
+	before   *timeline // nil: there is nothing to compare with
+	differs  *compared // the two, compared when first asked for
 }
 
 // timeline is a computed plan.
 type timeline struct {
+	file     []byte // the plan as it came
 	plan     *plan.Plan
 	pacer    *plan.Device // nil: none
 	log      *event.Log
@@ -61,6 +68,8 @@ func (s *Session) Call(op string, args []byte) (reply []byte, points []float32) 
 		return s.compute(args)
 	case "layout":
 		return s.layout(args)
+	case "contrast":
+		return s.contrasted(), nil
 	case "account":
 		return s.account(args), nil
 	case "listing":

@@ -46,7 +46,15 @@ func (s *Session) layout(args []byte) ([]byte, []float32) {
 	if s.current == nil {
 		return none, nil
 	}
-	return s.current.scene(&q)
+	return s.scene(&q)
+}
+
+// scene is that of the timeline, or of both.
+func (s *Session) scene(q *view) ([]byte, []float32) {
+	if s.before != nil {
+		return s.stack(q)
+	}
+	return s.current.scene(q)
 }
 
 // scene lays out the part of the timeline that the view asks for and adds the
@@ -56,7 +64,7 @@ func (t *timeline) scene(q *view) ([]byte, []float32) {
 	if q.View.Ladder == "full" {
 		form, margin = ladder.Full, marginFull
 	}
-	in := scene.Input{Log: t.log, Record: t.drawn, Diagram: t.diagram(form)}
+	in := t.input(form)
 	o := t.options(q)
 	o.Margin = margin
 	in.Signals = t.sampled(o.Lanes, q.View.EGMGain)
@@ -67,10 +75,19 @@ func (t *timeline) scene(q *view) ([]byte, []float32) {
 	}
 	o.LadderMM, o.Closer = fit(lay, in, o, q.View.Height)
 	drawn := lay(in, o)
+	return t.wire(drawn, &o, t.times(drawn))
+}
+
+// wire is a scene with the times of its events, what of it can be moved, and its tiers.
+func (t *timeline) wire(drawn *scene.Scene, o *scene.Options, times [][3]float64) ([]byte, []float32) {
 	meta, points := scene.Encode(drawn)
-	meta = append(append(meta[:len(meta)-1], `,"times":`...), encode(t.times(drawn))...)
-	meta = append(append(meta, `,"handles":`...), encode(t.handles(drawn, &o))...)
+	meta = append(append(meta[:len(meta)-1], `,"times":`...), encode(times)...)
+	meta = append(append(meta, `,"handles":`...), encode(t.handles(drawn, o))...)
 	return append(append(append(meta, `,"tiers":`...), encode(tiers(drawn))...), '}'), points
+}
+
+func (t *timeline) input(form ladder.Form) scene.Input {
+	return scene.Input{Log: t.log, Record: t.drawn, Diagram: t.diagram(form)}
 }
 
 // A tier is between so many millimetres high: readable, and not stretched beyond
@@ -138,7 +155,7 @@ func (t *timeline) times(s *scene.Scene) [][3]float64 {
 	out := [][3]float64{}
 	for i := range s.Marks {
 		id := s.Marks[i].Event
-		if id == 0 || seen[id] {
+		if id <= 0 || seen[id] { // those below 0 belong to the timeline before
 			continue
 		}
 		seen[id] = true
