@@ -95,13 +95,16 @@ func TestAPressOnAQRSSelectsTheFirstMuscle(t *testing.T) {
 	for _, plan := range []string{`"heart":{}`, `"heart":{"his_purkinje":{"left_bundle":null}}`, block + `,"pacemaker":{}`} {
 		computed(t, s, plan)
 		log := s.current.log
-		d, _ := reply[struct{ Marks [][]any }](t, s, "layout", asked{View: usual()})
+		d, numbers := reply[struct {
+			Marks   int
+			Classes []string
+		}](t, s, "layout", asked{View: usual()})
 		n := 0
-		for _, m := range d.Marks {
-			if m[1] != "wave" {
+		for m := range slices.Chunk(numbers[:11*d.Marks], 11) { // the wire form of engine/scene
+			if d.Classes[int(m[1])] != "wave" {
 				continue
 			}
-			e := log.At(event.ID(m[9].(float64)))
+			e := log.At(event.ID(m[9]))
 			tissue := log.Sites[e.Site].Tissue
 			if tissue != event.Atrium && tissue != event.Ventricle {
 				t.Fatalf("%s: a wave selects %s", plan, log.Sites[e.Site].Name)
