@@ -29,7 +29,7 @@ site: need-go ## build site/dist, ready for any static host
 		"$$(find $(SITE) -type f ! -name '*.wasm' -exec gzip -9 -c {} \; | wc -c)"
 
 .PHONY: test
-test: need-go need-browser lint site ## everything a contributor must pass (installs what it needs)
+test: need-go need-browser need-edf lint site ## everything a contributor must pass (installs what it needs)
 	@bash .ci/tests
 
 .PHONY: lint
@@ -51,7 +51,7 @@ golden: need-go ## rewrite the goldens and show what changed
 bench: need-go ## benchmarks: work per second and ratios taken in one run
 	$(GO) test -run '^$$' -bench . ./...
 
-.PHONY: need-go need-node need-browser
+.PHONY: need-go need-node need-browser need-edf
 need-go:
 	@command -v $(GO) >/dev/null || { echo "Go is missing: install Go 1.26 or later from your system or go.dev, then run this again."; exit 1; }
 
@@ -60,3 +60,6 @@ need-node:
 
 need-browser: need-node
 	@bash .ci/need browser
+
+need-edf:
+	@bash .ci/need edf

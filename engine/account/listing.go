@@ -151,3 +151,13 @@ func (l *lister) close(c byte) {
 	l.out[m.line].Text = text + "."
 	m.line = -1
 }
+
+// Sentences gives every event of the log in one short sentence, in the log's order.
+func Sentences(log *event.Log) []string {
+	w := newWriter(log)
+	out := make([]string, len(log.Events))
+	for i := range log.Events {
+		out[i] = w.short(&log.Events[i])
+	}
+	return out
+}

@@ -7,7 +7,17 @@
 // JSON names are the page's.
 package numbers
 
-import "escapement/engine/measure"
+import (
+	"escapement/engine/measure"
+	"escapement/engine/tick"
+)
+
+// LeadsUpTo is the longest strip that has leads: 12 of them at 1000 samples a second
+// take 43 MB. NoLeads says so beside one that is longer.
+const (
+	LeadsUpTo = tick.Time(15 * tick.Minute)
+	NoLeads   = "Leads are computed for strips of up to 15 min; this one has its ladder alone."
+)
 
 // Number is one value with its unit. A nil Value was not measured, a nil Normal has no
 // range that this project could name a source for.

@@ -27,13 +27,9 @@ type Case struct {
 	Plan    *plan.Plan
 	Device  *plan.Device // nil: none
 	Log     *event.Log
-	Record  *lead.Record // nil for a strip longer than LeadsUpTo
+	Record  *lead.Record // nil for a strip longer than [numbers.LeadsUpTo]
 	Measure *measure.Report
 }
-
-// LeadsUpTo is the longest strip that has leads: 12 of them at 1000 samples a second
-// take 43 MB.
-const LeadsUpTo = tick.Time(15 * tick.Minute)
 
 // Run computes a plan. Errors are those of [plan.Plan.Compile] and [sim.Play].
 func Run(p *plan.Plan) (*Case, error) { return RunWith(p, field.New()) }
@@ -49,7 +45,7 @@ func RunWith(p *plan.Plan, f *field.Field) (*Case, error) {
 		return nil, err
 	}
 	c := &Case{Plan: p, Device: prog.Device, Log: log}
-	if log.Span <= LeadsUpTo {
+	if log.Span <= numbers.LeadsUpTo {
 		c.Record = f.Record(log)
 	}
 	c.Measure = measure.Of(log, c.Record)
@@ -87,7 +83,7 @@ func Build(c *Case, o Options) ([]*scene.Scene, error) {
 		r.Warnings, r.Sums, r.Counted = d.Warnings, sums(d.Arithmetic), readings(d.Counted)
 	}
 	if c.Record == nil {
-		r.Warnings = append(r.Warnings, fmt.Sprintf("Leads are computed for strips of up to %.0f min; this one has its ladder alone.", LeadsUpTo.Seconds()/60))
+		r.Warnings = append(r.Warnings, numbers.NoLeads)
 	}
 	r.Sources = sources(measured)
 	return r.Pages(o.Paper)

@@ -28,6 +28,8 @@ const usage = `escapement: conduction timelines of the whole heart
   escapement draw PLAN -o F     the sheet as a drawing: F.svg, F.pdf or F.png
   escapement report PLAN -o F   the report on paper, F.pdf: strip, intervals, findings, settings;
                                 with -before PLAN, both strips and what differs
+  escapement export PLAN -o F   the strip for other programs: F.edf (EDF+: leads with annotations),
+                                F.csv (events) or F.json (plan, events, measures, findings)
   escapement settings PLAN      the device's settings as a table in open nomenclature, as CSV;
                                 with -read TABLE, the plan with the device of a table
   escapement presets            names, titles and notes of the built-in plans, as JSON
@@ -82,6 +84,8 @@ func command(args []string, in io.Reader, out io.Writer) error {
 		return draw(args, in)
 	case "report":
 		return onPaper(args, in)
+	case "export":
+		return exporting(args, in)
 	case "settings":
 		return settings(args, in, out, os.Stderr)
 	case "link":

@@ -13,7 +13,6 @@ import (
 	"escapement/engine/numbers"
 	"escapement/engine/plan"
 	"escapement/engine/sim"
-	"escapement/engine/tick"
 )
 
 type computeReply struct {
@@ -98,15 +97,11 @@ func (s *Session) run(file []byte) (*timeline, error) {
 		return nil, err
 	}
 	var rec *lead.Record
-	if log.Span <= leadsUpTo {
+	if log.Span <= numbers.LeadsUpTo {
 		rec = s.field.Record(log)
 	}
 	return &timeline{file: file, plan: p, pacer: prog.Device, log: log, record: rec, drawn: pressed(log, rec), report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{}, field: s.field, signals: map[string][]float32{}}, nil
 }
-
-// leadsUpTo is the longest strip that has leads: 12 of them at 1000 samples a
-// second take 43 MB.
-const leadsUpTo = tick.Time(15 * tick.Minute)
 
 func (t *timeline) answer() *answer {
 	a := &answer{
@@ -118,7 +113,7 @@ func (t *timeline) answer() *answer {
 		Device:      numbers.OfDevice(t.plan, t.pacer, t.report),
 	}
 	if t.record == nil {
-		a.Warnings = append(a.Warnings, fmt.Sprintf("Leads are computed for strips of up to %.0f min; this one has its ladder alone.", leadsUpTo.Seconds()/60))
+		a.Warnings = append(a.Warnings, numbers.NoLeads)
 	}
 	for i := range t.report.Findings {
 		f := &t.report.Findings[i]
