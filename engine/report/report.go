@@ -27,9 +27,12 @@ type Case struct {
 	Plan    *plan.Plan
 	Device  *plan.Device // nil: none
 	Log     *event.Log
-	Record  *lead.Record // nil for a strip longer than [numbers.LeadsUpTo]
+	Record  *lead.Record // nil for a strip longer than LeadsUpTo
 	Measure *measure.Report
 }
+
+// LeadsUpTo is the longest strip that has leads.
+const LeadsUpTo = numbers.LeadsUpTo
 
 // Run computes a plan. Errors are those of [plan.Plan.Compile] and [sim.Play].
 func Run(p *plan.Plan) (*Case, error) { return RunWith(p, field.New()) }
@@ -45,7 +48,7 @@ func RunWith(p *plan.Plan, f *field.Field) (*Case, error) {
 		return nil, err
 	}
 	c := &Case{Plan: p, Device: prog.Device, Log: log}
-	if log.Span <= numbers.LeadsUpTo {
+	if log.Span <= LeadsUpTo {
 		c.Record = f.Record(log)
 	}
 	c.Measure = measure.Of(log, c.Record)
