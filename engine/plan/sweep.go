@@ -413,3 +413,12 @@ func (a *Axis) section() *object {
 	o.put("values", values)
 	return o
 }
+
+// Encode is the sweep as it stands under "sweep" in a plan file.
+func (s *Sweep) Encode() []byte {
+	b, err := json.Marshal(s.section())
+	if err != nil {
+		panic("plan: a sweep that does not encode: " + err.Error())
+	}
+	return b
+}

@@ -69,7 +69,7 @@ func (w *Worker) Boundaries(ctx context.Context, q Question) ([]Boundary, []Form
 		return nil, nil, err
 	}
 	alone := s.compare()
-	return s.found, alone, nil
+	return append([]Boundary{}, s.found...), append([]Form{}, alone...), nil
 }
 
 // search is a question being answered.

@@ -32,6 +32,8 @@ const usage = `escapement: conduction timelines of the whole heart
                                 F.csv (events) or F.json (plan, events, measures, findings)
   escapement settings PLAN      the device's settings as a table in open nomenclature, as CSV;
                                 with -read TABLE, the plan with the device of a table
+  escapement sweep PLAN ...     a grid of runs and its outcomes, or the boundaries between behaviours;
+                                escapement sweep PLAN -h lists the flags
   escapement presets            names, titles and notes of the built-in plans, as JSON
   escapement link PLAN          the plan as the end of a web address: #plan=...
   escapement serve              the built site on a loopback port
@@ -90,6 +92,8 @@ func command(args []string, in io.Reader, out io.Writer) error {
 		return settings(args, in, out, os.Stderr)
 	case "link":
 		return writeLink(args, in, out)
+	case "sweep":
+		return runSweep(args, in, out, os.Stderr)
 	case "presets":
 		return writeJSON(out, presets.List())
 	case "serve":
