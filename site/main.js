@@ -1,16 +1,26 @@
 // Wires the page: one store, one engine, the views. Nothing else knows all three.
 
-import { append, el, fill } from "./base/dom.js";
 import { nextFrame } from "./base/frame.js";
+import { keepDark, wantsDark } from "./base/sheet.js";
 import { startEngine } from "./engine/client.js";
 import { conduct } from "./engine/conductor.js";
+import { EMPTY } from "./model/document.js";
+import { openShelf } from "./model/kept.js";
+import { decodeLink, PREFIX } from "./model/link.js";
 import { createStore } from "./model/store.js";
 import { FIRST_VIEW } from "./model/view.js";
+import { takeUp } from "./model/work.js";
 import { accountView } from "./views/account.js";
 import { drawersView } from "./views/drawers.js";
+import { faultView, tellAbsent } from "./views/fault.js";
+import { fileView } from "./views/file.js";
 import { headView } from "./views/head.js";
+import { keepWork } from "./views/keeping.js";
+import { keptDialog } from "./views/kept.js";
 import { globalKeys, keysDialog } from "./views/keys.js";
 import { listingView } from "./views/listing.js";
+import { menu } from "./views/menu.js";
+import { noticeView } from "./views/notice.js";
 import { overviewView } from "./views/overview.js";
 import { presetsDialog } from "./views/presets.js";
 import { settingsView } from "./views/settings.js";
@@ -21,14 +31,13 @@ import { toolbarView } from "./views/toolbar.js";
 /** @typedef {import("./model/store.js").State} State */
 /** @typedef {import("./engine/wire.js").Catalogue} Catalogue */
 
-const SHEET = "escapement.sheet"; // where the choice of a light or dark sheet is kept
-
 /** @param {string} id */
 const part = (id) => /** @type {HTMLElement} */ (document.getElementById(id));
 
 const store = createStore({
-  plan: { format: "escapement-plan/1" },
+  plan: EMPTY,
   preset: "",
+  kept: null,
   view: FIRST_VIEW,
   answer: null,
   scene: null,
@@ -48,13 +57,14 @@ const engine = startEngine(new URL("engine/worker.js", import.meta.url), (busy) 
 
 const { ask, compute, request } = conduct(store, engine);
 
-function wantsDark() {
-  const chosen = localStorage.getItem(SHEET);
-  return chosen ? chosen === "dark" : matchMedia("(prefers-color-scheme: dark)").matches;
-}
+const shelf = openShelf(() => localStorage);
 
-/** @param {Catalogue} catalogue */
-function build(catalogue) {
+/** @param {Catalogue} catalogue @param {import("./model/work.js").Found} found */
+function build(catalogue, found) {
+  const notices = noticeView(part("notices"));
+  const file = fileView(store, notices);
+  const kept = keptDialog(store, shelf, found.tab, notices);
+  keepWork(store, shelf, found, notices, catalogue.presets, { saveFile: file.save, openKept: kept.open });
   const keys = keysDialog();
   const presets = presetsDialog(store, catalogue);
   const settings = settingsView(part("settings"), store, catalogue, tableView(store, ask));
@@ -66,8 +76,17 @@ function build(catalogue) {
       settings.focusWrong();
     },
   };
+  const files = menu("File", [
+    { id: "file-new", label: "New", key: "N", act: file.fresh },
+    { id: "file-open", label: "Open file…", key: "Ctrl O", act: file.open },
+    { id: "file-save", label: "Save file", key: "S", act: file.save },
+    { id: "file-keep", label: "Keep in this browser", key: "Ctrl S", act: kept.keep },
+    { id: "file-kept", label: "Kept plans", key: "K", act: kept.open },
+    { id: "file-link", label: "Copy link", key: "L", act: file.copyLink },
+  ]);
   const views = [
-    headView(part("head"), store, catalogue.presets, open),
+    faultView(part("fault"), store, compute),
+    headView(part("head"), store, catalogue.presets, open, [files.node]),
     settings,
     toolbarView(part("centre"), store),
     timelineView(part("centre"), store, engine, catalogue),
@@ -83,6 +102,12 @@ function build(catalogue) {
     },
     "?": open.keys,
     p: open.presets,
+    n: file.fresh,
+    "ctrl o": file.open,
+    s: file.save,
+    "ctrl s": kept.keep,
+    k: kept.open,
+    l: file.copyLink,
   });
 
   const pending = new Set(Object.keys(store.get())); // the first time everything is new
@@ -91,37 +116,37 @@ function build(catalogue) {
     pending.clear();
     const state = store.get();
     if (changed.has("dark")) document.documentElement.dataset.sheet = state.dark ? "dark" : "light";
-    if (changed.has("fault")) showFault(state.fault);
     for (const v of views) v.update(state, changed);
   }
   store.subscribe((state, changed) => {
     for (const k of changed) pending.add(k);
-    if (changed.has("dark")) localStorage.setItem(SHEET, state.dark ? "dark" : "light");
+    if (changed.has("dark")) keepDark(state.dark);
     request(changed);
     nextFrame(refresh);
   });
   nextFrame(refresh);
   compute();
+  file.follow();
 }
 
-/** @param {string} fault */
-function showFault(fault) {
-  const box = part("fault");
-  box.hidden = fault === "";
-  if (fault === "") return;
-  fill(box, el("strong", null, "The engine failed. "), store.get().answer ? "Your values are kept; the sheet shows the last that could be computed. Change a value or " : "Change a value or ",
-    el("button", { type: "button", class: "link", onclick: compute }, "try again"), ".", el("pre", null, fault));
+/** What this tab goes on with: the plan of its link, else its working copy. */
+async function opening() {
+  const linked = location.hash.startsWith(PREFIX) ? await decodeLink(location.hash).then((read) => read.plan, () => null) : null;
+  const found = await takeUp(shelf, () => sessionStorage, navigator.locks, linked);
+  const { work } = found;
+  const kept = work?.kept ? shelf.read("kept", work.kept.id) : null;
+  if (work) store.set({ plan: work.plan, preset: work.preset, kept: work.kept && kept && "plan" in kept ? { ...work.kept, title: kept.title } : null });
+  return found;
 }
 
 async function main() {
   document.documentElement.dataset.sheet = store.get().dark ? "dark" : "light";
   try {
-    const reply = await engine.ask("catalogue");
-    if (reply) build(reply.json);
+    const [reply, found] = await Promise.all([engine.ask("catalogue"), opening()]);
+    part("fault").hidden = true;
+    if (reply) build(reply.json, found);
   } catch (err) {
-    const box = part("fault");
-    box.hidden = false;
-    append(box, [el("strong", null, "The engine could not be started. "), "Reload the page to try again.", el("pre", null, String(err instanceof Error ? err.message : err))]);
+    tellAbsent(part("fault"), err, main);
   }
 }
 

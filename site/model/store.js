@@ -15,6 +15,7 @@
  * @typedef {object} State
  * @property {Plan} plan what the user has typed, right or wrong
  * @property {string} preset name of the preset the plan came from, or ""
+ * @property {{id: string, stamp: string, title: string} | null} kept the kept plan it came from
  * @property {View} view
  * @property {Answer | null} answer of the last plan that could be computed
  * @property {Scene | null} scene of that answer, as last laid out
@@ -33,7 +34,7 @@
 const HISTORY = 200; // steps kept
 
 /** Keys of the state that a step can take back. A view belongs here by its choices. */
-const UNDOABLE = ["plan", "preset", "before", "calipers", "view"];
+const UNDOABLE = ["plan", "preset", "kept", "before", "calipers", "view"];
 
 /** What of a view is not a choice: where one looks, and how much room there is. */
 const PASSING = ["t0_ms", "width_mm", "height_mm", "mm_per_s"];

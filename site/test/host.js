@@ -37,19 +37,20 @@ export async function serveSite() {
 }
 
 export async function openBrowser() {
-  const profile = mkdtempSync(join(tmpdir(), "escapement-profile-"));
   const executablePath = process.env.CHROMIUM ?? PLACES.find((p) => existsSync(p));
   if (!executablePath) throw new Error("no Chromium found; set CHROMIUM to its path");
-  const context = await chromium.launchPersistentContext(profile, {
-    executablePath, headless: true, args: QUIET, viewport: { width: 1280, height: 800 }, reducedMotion: "reduce", colorScheme: "light",
-  });
-  return {
-    context,
-    async stop() {
-      await context.close();
-      rmSync(profile, { recursive: true, force: true });
-    },
-  };
+  const browser = await chromium.launch({ executablePath, headless: true, args: QUIET });
+  return { browser, stop: () => browser.close() };
+}
+
+/**
+ * A person's browser, with nothing kept in it yet. What works offline is left out unless
+ * it is asked for: the tests put their own words into what is served.
+ * @param {import("playwright-core").Browser} browser
+ * @param {import("playwright-core").BrowserContextOptions} [about]
+ */
+export function newPerson(browser, about) {
+  return browser.newContext({ viewport: { width: 1280, height: 800 }, reducedMotion: "reduce", colorScheme: "light", serviceWorkers: "block", ...about });
 }
 
 /**
@@ -63,14 +64,15 @@ export async function openPage(context, url, size = { width: 1280, height: 800 }
   await page.setViewportSize(size);
   /** @type {string[]} */
   const faults = [];
-  page.on("console", (m) => faults.push(`console ${m.type()}: ${m.text()}`));
+  page.on("console", (m) => !m.text().includes("Service Worker registration blocked") && faults.push(`console ${m.type()}: ${m.text()}`));
   page.on("pageerror", (e) => faults.push(`error: ${e.message}`));
   page.on("request", (r) => {
-    if (!r.url().startsWith(url) && !r.url().startsWith("data:")) faults.push(`request to ${r.url()}`);
+    if (!r.url().startsWith(new URL("/", url).href) && !/^(data|blob):/.test(r.url())) faults.push(`request to ${r.url()}`);
   });
   page.on("response", (r) => {
     if (r.status() >= 400) faults.push(`${r.status()} for ${r.url()}`);
   });
+  await page.addInitScript(() => document.addEventListener("securitypolicyviolation", (e) => console.error(`against the policy: ${e.violatedDirective} ${e.blockedURI}`)));
   await page.goto(url);
   return { page, faults };
 }

@@ -3,7 +3,7 @@
 
 import assert from "node:assert/strict";
 import { after, before } from "node:test";
-import { openBrowser, openPage, serveSite, settled } from "./host.js";
+import { newPerson, openBrowser, openPage, serveSite, settled } from "./host.js";
 
 /** @typedef {import("playwright-core").Page} Page */
 
@@ -28,7 +28,10 @@ export function stage() {
 }
 
 /** A page of its own, for a walk that expects faults. */
-export const barePage = () => openPage(browser.context, site.url);
+export const barePage = async () => openPage(await newPerson(browser.browser), site.url);
+
+/** A person's browser, and the address of the page. @param {import("playwright-core").BrowserContextOptions} [about] */
+export const person = async (about) => ({ context: await newPerson(browser.browser, about), url: site.url });
 
 /**
  * Runs a walk on a fresh page and demands that the console stayed empty and that
@@ -37,13 +40,13 @@ export const barePage = () => openPage(browser.context, site.url);
  * @param {{width: number, height: number}} [size]
  */
 export async function onPage(walk, size) {
-  const { page, faults } = await openPage(browser.context, site.url, size);
+  const { page, faults } = await openPage(await newPerson(browser.browser), site.url, size);
   try {
     await settled(page);
     await walk(page);
     assert.deepEqual(faults, []);
   } finally {
-    await page.close();
+    await page.context().close();
   }
 }
 

@@ -16,8 +16,9 @@ import { reveal } from "../model/view.js";
  * @param {Store} store
  * @param {import("../engine/wire.js").Preset[]} presets
  * @param {{presets: () => void, keys: () => void, wrong: () => void}} open
+ * @param {Node[]} menus what stands before Undo
  */
-export function headView(root, store, presets, open) {
+export function headView(root, store, presets, open, menus) {
   const title = el("span", { class: "title" }, "Opening");
   const pick = el("span", { class: "pick" });
   const says = el("p", { class: "says", id: "statement" });
@@ -33,7 +34,7 @@ export function headView(root, store, presets, open) {
     el("div", { class: "tools" },
       el("span", { class: "busy", "aria-hidden": "true" }, "computing"),
       el("span", { class: "name" }, "escapement"),
-      undo, redo, sheet,
+      menus, undo, redo, sheet,
       el("button", { type: "button", id: "keys", onclick: open.keys, title: "?", "aria-haspopup": "dialog" }, "Keys")),
     warnings,
   );
@@ -71,10 +72,10 @@ export function headView(root, store, presets, open) {
     update(state, changed) {
       undo.disabled = !store.canUndo();
       redo.disabled = !store.canRedo();
-      if (changed.has("plan") || changed.has("answer")) {
+      if (changed.has("plan") || changed.has("answer") || changed.has("kept")) {
         say(title, String(state.plan.title || state.answer?.title || "A heart of your own"));
         const preset = presets.find((p) => p.name === state.preset);
-        say(pick, `${preset && preset.plan !== state.plan ? "changed; " : ""}choose a preset ▾`);
+        say(pick, `${preset && preset.plan !== state.plan ? "changed; " : ""}${state.kept ? "kept; " : ""}choose a preset ▾`);
       }
       if (changed.has("selected")) warnings.classList.toggle("selected", state.selected !== 0);
       if (changed.has("dark")) say(sheet, state.dark ? "Light" : "Dark");

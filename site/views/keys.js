@@ -27,6 +27,12 @@ export const KEYS = [
   ["Anywhere", [
     ["/", "search the settings"],
     ["P", "choose a preset"],
+    ["N", "new plan: a healthy adult"],
+    ["Ctrl O", "open a plan file; or drop one on the page"],
+    ["S", "save the plan as a file"],
+    ["Ctrl S", "keep the plan in this browser"],
+    ["K", "kept plans"],
+    ["L", "copy a link with the plan in it"],
     ["Ctrl Z", "undo; with Shift, or Ctrl Y, redo"],
     ["?", "this list"],
   ]],
@@ -99,6 +105,12 @@ export function globalKeys(store, acts) {
       e.preventDefault();
       if (key === "y" || e.shiftKey) store.redo();
       else store.undo();
+      return;
+    }
+    const act = acts[`ctrl ${key}`];
+    if ((e.ctrlKey || e.metaKey) && !e.altKey && !e.shiftKey && act && !document.querySelector("dialog[open]")) {
+      e.preventDefault();
+      act();
       return;
     }
     if (e.ctrlKey || e.metaKey || e.altKey || typing(e.target) || document.querySelector("dialog[open]")) return;

@@ -57,5 +57,5 @@ export function presetsDialog(store, catalogue) {
  * @param {Preset} p
  */
 export function openPreset(store, p) {
-  store.edit(p.plan, "", { preset: p.name, selected: 0, lit: [], view: { ...store.get().view, t0_ms: 0 } });
+  store.edit(p.plan, "", { preset: p.name, kept: null, selected: 0, lit: [], view: { ...store.get().view, t0_ms: 0 } });
 }
