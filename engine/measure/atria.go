@@ -111,7 +111,7 @@ func (f *finder) otherAtrial() {
 	var all []gathered
 	for i := 0; i < len(f.p); {
 		j := i + 1
-		for j < len(f.p) && f.sameSource(j, i) && f.descending(i) {
+		for j < len(f.p) && f.sameSource(j, i) && f.descending(j) {
 			j++
 		}
 		if j-i >= 3 && f.pOrigin(i) != fromSinus && f.descending(i) {

@@ -85,8 +85,9 @@ func (d *device) seen(stimulus, signal int32) (paced bool, id event.ID) {
 
 // va is the time from the first ventricular activation to the right atrium
 // (design: VA time). For a P that came up without passing the ventricles, as in
-// re-entry in the AV node, it is counted from the latest QRS up to half a second
-// before.
+// re-entry in the AV node, it is counted from the QRS of the same activation of the
+// AV junction, which may come after it, or else from the latest QRS up to half a
+// second before.
 func (s *strip) va(i int) *float64 {
 	w := &s.p[i]
 	if !w.retrograde {
@@ -98,6 +99,9 @@ func (s *strip) va(i int) *float64 {
 	}
 	if w.from >= 0 {
 		return s.since(s.v[w.from].id, end)
+	}
+	if j := s.sister(i); j >= 0 {
+		return s.since(s.v[j].id, end)
 	}
 	at := s.log.At(end).T
 	j, _ := slices.BinarySearchFunc(s.v, at, func(v vwave, t tick.Time) int { return int(v.t - t) })

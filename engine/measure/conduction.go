@@ -7,31 +7,24 @@ import (
 	"escapement/engine/tick"
 )
 
-// retrograde: P waves that entered the atria from below after a beat from below;
-// echoes came back to the atria they had started from.
+// retrograde: P waves that entered the atria from below after a beat from below.
+// Those that came back to the atria they had started from are re-entry.
 func (f *finder) retrograde() {
-	var up, echo, circus []event.ID
+	var up []event.ID
 	var va []tick.Dur
-	nu, ne, nc := 0, 0, 0
+	nu := 0
 	for i := range f.p {
 		w := &f.p[i]
-		switch {
-		case !w.retrograde:
-		case w.echo:
-			echo = append(echo, w.id)
-			ne++
-		case w.from >= 0 && !f.own(int(w.from)):
-			circus = append(circus, w.id, f.v[w.from].id)
-			nc++
-		default:
-			up = append(up, w.id)
-			nu++
-			if w.from >= 0 {
-				up = append(up, f.v[w.from].id)
-			}
-			if t := f.va(i); t != nil {
-				va = append(va, tick.MS(*t))
-			}
+		if !w.retrograde || f.roundBy(i) != 0 {
+			continue
+		}
+		up = append(up, w.id)
+		nu++
+		if w.from >= 0 {
+			up = append(up, f.v[w.from].id)
+		}
+		if t := f.va(i); t != nil {
+			va = append(va, tick.MS(*t))
 		}
 	}
 	if nu > 0 {
@@ -45,28 +38,7 @@ func (f *finder) retrograde() {
 			clause: "retrograde conduction" + times,
 		})
 	}
-	if ne > 0 {
-		slug, name := "av_nodal_echo", "echo beats in the AV node"
-		if ne >= 3 {
-			slug, name = "av_nodal_reentry", "re-entry in the AV node"
-		}
-		f.add(orderConduction, Finding{
-			Slug: slug, Evidence: echo, Count: ne, clause: name,
-			Text:   fmt.Sprintf("%s back to the atria without passing the ventricles: consistent with %s.", plural(ne, "impulse comes", "impulses come"), name),
-			Rivals: []string{"atrioventricular re-entry over an accessory pathway", "atrial tachycardia"},
-		})
-	}
-	if nc > 0 {
-		slug, name := "av_reentrant_beat", "reciprocal beats through the ventricles"
-		if nc >= 3 {
-			slug, name = "av_reentry", "atrioventricular re-entry"
-		}
-		f.add(orderConduction, Finding{
-			Slug: slug, Evidence: circus, Count: nc, clause: name,
-			Text:   fmt.Sprintf("%s up from a QRS that had come from a P: consistent with %s.", plural(nc, "P comes", "P waves come"), name),
-			Rivals: []string{"re-entry in the AV node"},
-		})
-	}
+	f.reentry()
 }
 
 // concealed: an impulse that entered a path of the conduction system, did not
@@ -151,14 +123,10 @@ func (f *finder) usualDelays() []tick.Dur {
 }
 
 func (f *finder) fusion() {
-	var ids, pre []event.ID
-	n, np := 0, 0
+	var ids []event.ID
+	n := 0
 	for j := range f.v {
-		switch {
-		case f.v[j].accessory && !f.own(j):
-			np++
-			pre = append(append(pre, f.v[j].id), f.v[j].roots...)
-		case f.v[j].fusion:
+		if f.v[j].fusion && !(f.v[j].accessory && !f.own(j)) {
 			n++
 			ids = append(append(ids, f.v[j].id), f.v[j].roots...)
 		}
@@ -169,12 +137,7 @@ func (f *finder) fusion() {
 			Text: fmt.Sprintf("%s depolarised from two origins: consistent with fusion.", plural(n, "QRS is", "QRS complexes are")),
 		})
 	}
-	if np > 0 {
-		f.add(orderConduction, Finding{
-			Slug: "pre_excitation", Evidence: pre, Count: np, clause: "pre-excitation",
-			Text: fmt.Sprintf("%s entered over an accessory pathway as well: consistent with pre-excitation.", plural(np, "QRS is", "QRS complexes are")),
-		})
-	}
+	f.preExcitation()
 }
 
 // qt names a prolonged QT from the median of the Fridericia values; it stays

@@ -46,6 +46,7 @@ func (f *finder) all() {
 	f.shapes()
 	f.aberrant()
 	f.retrograde()
+	f.ventricularOverdrive()
 	f.concealed()
 	f.fusion()
 	f.qt()

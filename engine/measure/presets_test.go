@@ -56,6 +56,14 @@ var expected = map[string][]string{
 	"alternating-bbb":        {"sinus_rhythm", RBBB, LBBB, "alternating_bundle_branch_block"},
 	"long-short":             {"sinus_rhythm", "premature_atrial", "aberrant_conduction"},
 
+	// Re-entry.
+	"avnrt-typical":    {"sinus_rhythm", "premature_atrial", "av_nodal_reentry"},
+	"avrt-orthodromic": {"sinus_rhythm", "premature_atrial", "orthodromic_reentry"},
+	"wpw-sinus":        {"sinus_rhythm", "pre_excitation"},
+	"avrt-antidromic":  {"sinus_rhythm", "premature_atrial", "antidromic_reentry", "pre_excitation"},
+	"avnrt-overdrive":  {"sinus_rhythm", "ventricular_stimulation", "premature_atrial", "retrograde_conduction", "av_nodal_reentry", "ventricular_overdrive", "fusion_beat"},
+	"avrt-overdrive":   {"sinus_rhythm", "ventricular_stimulation", "premature_atrial", "retrograde_conduction", "orthodromic_reentry", "ventricular_overdrive", "fusion_beat"},
+
 	// With a device.
 	"dual-treadmill-two-to-one":       {"upper_rate_two_to_one", "p_synchronous_pacing", "sinus_tachycardia"},
 	"dual-one-to-one-to-140":          {"upper_rate_wenckebach", "p_synchronous_pacing", "sinus_tachycardia"},

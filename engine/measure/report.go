@@ -39,6 +39,7 @@ type Report struct {
 	Clauses    []Clause     `json:"clauses"`
 	Morphology []Morphology `json:"morphologies"` // distinct QRS shapes, Beat.Shape points here
 	Device     *Device      `json:"device"`       // null without a pacemaker
+	Overdrive  []Overdrive  `json:"overdrive"`    // ventricular trains during a tachycardia
 }
 
 // Beat is one P or one QRS.
@@ -147,6 +148,7 @@ func Of(log *event.Log, rec *lead.Record) *Report {
 	r.Beats = s.beats(surf)
 	r.Summary = s.summarise(r.Beats)
 	r.Device = s.deviceReport()
+	r.Overdrive = s.overdrives()
 	f := &finder{strip: s, surf: surf, report: r}
 	f.all()
 	r.Statement, r.Clauses = statement(f.found)
