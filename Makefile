@@ -3,7 +3,12 @@
 GO      ?= go
 SITE    := site/dist
 WASM    := $(SITE)/engine/escapement.wasm
+PRESS   := $(SITE)/engine/press/build
+EDGE    := wasm/press/edge/build
 PORT    ?= 8017
+# The print service runs in the page's worker and at the edge through this library;
+# its version is the one in go.mod.
+WORKERS := $(GO) run github.com/syumai/workers/cmd/workers-assets-gen -mode=go
 # Pinned; the tool runs from the module cache and leaves go.mod alone.
 STATICCHECK := honnef.co/go/tools/cmd/staticcheck@v0.7.0
 PARTS   := index.html icon.svg main.js base css engine model views
@@ -23,10 +28,20 @@ site: need-go ## build site/dist, ready for any static host
 	@cd site && cp -R $(PARTS) dist/
 	@cp "$$($(GO) env GOROOT)/lib/wasm/wasm_exec.js" $(SITE)/engine/
 	@GOOS=js GOARCH=wasm $(GO) build -trimpath -ldflags="-s -w" -o $(WASM) ./wasm/live
-	@printf '%-34s %9d bytes, %8d gzipped\n' $(WASM) "$$(wc -c < $(WASM))" "$$(gzip -9 -c $(WASM) | wc -c)"
+	@$(WORKERS) -runtime=browser -o $(PRESS)
+	@cd $(PRESS) && for m in worker runtime; do sed 's/\.mjs"/.js"/' $$m.mjs >$$m.js && rm $$m.mjs; done # not every static host knows the type of .mjs
+	@GOOS=js GOARCH=wasm $(GO) build -trimpath -ldflags="-s -w" -o $(PRESS)/app.wasm ./wasm/press
+	@for f in $(WASM) $(PRESS)/app.wasm; do printf '%-34s %9d bytes, %8d gzipped\n' $$f "$$(wc -c <$$f)" "$$(gzip -9 -c $$f | wc -c)"; \
+		if command -v brotli >/dev/null; then printf '%-34s %26d as brotli\n' "" "$$(brotli -q 9 -c $$f | wc -c)"; fi; done
 	@printf '%-34s %9d bytes, %8d gzipped\n' "the rest of the page" \
 		"$$(find $(SITE) -type f ! -name '*.wasm' -exec cat {} + | wc -c)" \
 		"$$(find $(SITE) -type f ! -name '*.wasm' -exec gzip -9 -c {} \; | wc -c)"
+
+.PHONY: edge
+edge: need-go ## build the print service for an edge host, into wasm/press/edge/build
+	@$(WORKERS) -runtime=cloudflare -o $(EDGE)
+	@GOOS=js GOARCH=wasm $(GO) build -trimpath -ldflags="-s -w" -o $(EDGE)/app.wasm ./wasm/press
+	@printf '%-34s %9d bytes, %8d gzipped\n' $(EDGE)/app.wasm "$$(wc -c <$(EDGE)/app.wasm)" "$$(gzip -9 -c $(EDGE)/app.wasm | wc -c)"
 
 .PHONY: test
 test: need-go need-browser need-edf lint site ## everything a contributor must pass (installs what it needs)

@@ -3,6 +3,7 @@ module escapement
 go 1.26
 
 require (
+	github.com/syumai/workers v0.31.0
 	github.com/tdewolff/canvas v0.0.0-20250728095813-50d4cb1eee71
 	golang.org/x/image v0.27.0
 	gonum.org/v1/gonum v0.17.0

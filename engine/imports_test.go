@@ -53,7 +53,7 @@ var allowed = map[string][]string{
 }
 
 // top are the programs: they wire everything, and nothing imports them.
-var top = []string{"engine/cmd/escapement", "wasm/live"}
+var top = []string{"engine/cmd/escapement", "wasm/live", "wasm/press"}
 
 const module = "escapement/"
 

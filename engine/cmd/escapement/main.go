@@ -36,7 +36,8 @@ const usage = `escapement: conduction timelines of the whole heart
                                 escapement sweep PLAN -h lists the flags
   escapement presets            names, titles and notes of the built-in plans, as JSON
   escapement link PLAN          the plan as the end of a web address: #plan=...
-  escapement serve              the built site on a loopback port
+  escapement serve              the built site on a loopback port, and under /press/
+                                the print service: POST /press/strip.pdf {"plan":{...}}
 
 PLAN is a file, "-" for standard input, the name of a preset, or a link with a plan in it.
 Planning and teaching aid, not a medical device; not for treating a patient.

@@ -11,10 +11,13 @@ import (
 	"path/filepath"
 	"strings"
 	"time"
+
+	"escapement/wasm/press/service"
 )
 
 // serve puts the built site on a loopback port, so that it can be used from a
-// clone. It serves files and nothing else; nothing is ever sent to it.
+// clone. Beside the files it answers the print service's routes under /press/, for
+// programs: the page itself sends nothing and prints in its own worker.
 //
 //	escapement serve [-port 8017] [-dir site/dist]
 //
@@ -34,11 +37,20 @@ func serve(args []string) error {
 		return fmt.Errorf("port %d cannot be had (%w): name another with -port, or 0 for any", *port, err)
 	}
 	fmt.Printf("http://%s/\n", listener.Addr())
-	server := &http.Server{Handler: files(*dir), ReadHeaderTimeout: 10 * time.Second}
+	server := &http.Server{Handler: site(*dir), ReadHeaderTimeout: 10 * time.Second}
 	if err := server.Serve(listener); !errors.Is(err, http.ErrServerClosed) {
 		return err
 	}
 	return nil
+}
+
+// site is the files and the print service. Other pages in the browser cannot make it
+// work: their requests are told by where they come from.
+func site(dir string) http.Handler {
+	mux := http.NewServeMux()
+	mux.Handle(service.Prefix, http.NewCrossOriginProtection().Handler(service.New()))
+	mux.Handle("/", files(dir))
+	return mux
 }
 
 // files serves a folder as a static host would, with the types a browser insists

@@ -20,7 +20,7 @@ func TestServeHandsOutFilesAsABrowserWantsThem(t *testing.T) {
 			t.Fatal(err)
 		}
 	}
-	host := files(dir)
+	host := site(dir)
 	for _, c := range []struct {
 		name, method, path string
 		status             int
@@ -35,6 +35,8 @@ func TestServeHandsOutFilesAsABrowserWantsThem(t *testing.T) {
 		{"nothing outside", "GET", "/../serve.go", 404, ""},
 		{"what is not there", "GET", "/b.js", 404, ""},
 		{"nothing is taken", "POST", "/", 405, ""},
+		{"a print", "GET", "/press/ladder.svg?plan=normal&to_ms=2000", 200, "image/svg+xml"},
+		{"no such print", "GET", "/press/poster.svg?plan=normal", 404, ""},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			w := httptest.NewRecorder()
@@ -53,5 +55,29 @@ func TestServeSaysWhatToDoWithoutASite(t *testing.T) {
 	err := serve([]string{"-port", "0", "-dir", t.TempDir()})
 	if err == nil || !strings.Contains(err.Error(), "make site") {
 		t.Errorf("got %v, want a word about make site", err)
+	}
+}
+
+// A page of another origin cannot make this server compute.
+func TestServePrintsForItsOwnPageAlone(t *testing.T) {
+	for _, c := range []struct {
+		name, site string
+		status     int
+	}{
+		{"a program", "", 200},
+		{"its own page", "same-origin", 200},
+		{"another page", "cross-site", 403},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			r := httptest.NewRequest("POST", "http://127.0.0.1/press/ladder.svg", strings.NewReader(`{"plan":"normal","to_ms":2000}`))
+			if c.site != "" {
+				r.Header.Set("Sec-Fetch-Site", c.site)
+			}
+			w := httptest.NewRecorder()
+			site(t.TempDir()).ServeHTTP(w, r)
+			if w.Code != c.status {
+				t.Errorf("%d, want %d: %s", w.Code, c.status, w.Body)
+			}
+		})
 	}
 }
