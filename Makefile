@@ -75,6 +75,7 @@ need-node:
 
 need-browser: need-node
 	@bash .ci/need browser
+	@bash .ci/need ruler
 
 need-edf:
 	@bash .ci/need edf
