@@ -2,6 +2,8 @@
 // worker. The library answers a Request with a Response and starts a fresh Go
 // instance for each; what is added here is how a failure is told.
 
+export {}; // a module, with names of its own
+
 const scope = /** @type {any} */ (self);
 
 /** The last lines the instance wrote: a failure that ends it is told in them. */
@@ -13,7 +15,7 @@ let fail = () => {};
 // The runtime compiles while its module loads. A server that does not have the file,
 // or names its type wrongly, is no reason for a bare TypeError.
 const streaming = WebAssembly.compileStreaming;
-WebAssembly.compileStreaming = async (source) => {
+WebAssembly.compileStreaming = async (/** @type {Response | PromiseLike<Response>} */ source) => {
   const response = await source;
   if (!response.ok) throw new Error(`${new URL(response.url).pathname}: the server answered ${response.status}`);
   const type = response.headers.get("Content-Type") ?? "";
