@@ -1,8 +1,12 @@
 package report
 
 import (
+	"strconv"
+	"strings"
+
 	"escapement/engine/contrast"
 	"escapement/engine/numbers"
+	"escapement/engine/plan"
 	"escapement/engine/scene"
 )
 
@@ -14,12 +18,8 @@ func Differences(before, after *Case) []scene.Difference {
 		if r.Sign == contrast.Same {
 			continue
 		}
-		label := r.Name
-		switch r.Part {
-		case "Findings", "Warnings", "Settings":
-			label = r.Part[:len(r.Part)-1] + ": " + r.Name
-		}
-		out = append(out, scene.Difference{Label: label, Before: r.Before, After: r.After, Change: r.By})
+		name := named(r.Place, r.Name)
+		out = append(out, scene.Difference{Group: r.Part, Label: name, Before: r.Before, After: r.After, Change: r.By})
 	}
 	return out
 }
@@ -30,4 +30,21 @@ func (c *Case) side() contrast.Side {
 		s.Warnings = d.Warnings
 	}
 	return s
+}
+
+// named is the name of a setting together with the part that it belongs to, or the
+// given name of anything else.
+func named(place, name string) string {
+	list, rest, of := strings.Cut(place, "[")
+	if n, _, ok := strings.Cut(rest, "]."); of && ok {
+		if i, err := strconv.Atoi(n); err == nil {
+			return strings.TrimSuffix(strings.TrimPrefix(list, "heart."), "s") + " " + strconv.Itoa(i+1) + ", " + name
+		}
+	}
+	for _, f := range plan.Catalogue() {
+		if f.Path == place {
+			return label(&f)
+		}
+	}
+	return name
 }

@@ -93,8 +93,11 @@ func Build(c *Case, o Options) ([]*scene.Scene, error) {
 }
 
 // Compare lays out two plans one above the other, named as given ("before", "after"),
-// with the lines in which they differ.
+// with the lines in which they differ; nil are those of [Differences].
 func Compare(cases [2]*Case, names [2]string, differences []scene.Difference, o Options) ([]*scene.Scene, error) {
+	if differences == nil {
+		differences = Differences(cases[0], cases[1])
+	}
 	title := first(names[0]) + " and " + names[1]
 	if t := cases[1].title(); t == cases[0].title() {
 		title += ": " + t

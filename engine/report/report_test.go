@@ -224,6 +224,22 @@ func TestTwoStripsOnOnePage(t *testing.T) {
 	}
 }
 
+// Left alone, a comparison finds its differences, under names that say what they
+// belong to.
+func TestDifferencesAreFound(t *testing.T) {
+	pages, err := Compare([2]*Case{preset(t, "dual-treadmill-two-to-one"), preset(t, "dual-one-to-one-to-140")}, [2]string{"before", "after"}, nil, Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	sound(t, pages)
+	all := places(pages)
+	for _, want := range []string{"upper tracking rate", "adaptive AV, to", "intervention 1, to", "Warnings", "QRS rate, median"} {
+		if !strings.Contains(all, " "+want+"\n") {
+			t.Errorf("the pages lack %q", want)
+		}
+	}
+}
+
 func TestPagesPrint(t *testing.T) {
 	pages, err := Build(preset(t, "dual-upper-rate-wenckebach"), Options{})
 	if err != nil {

@@ -115,7 +115,10 @@ type (
 	// Sum is a number that follows from settings, with how it was reached.
 	Sum struct{ Label, Value, Unit, Formula, Numbers string }
 	// Difference is a line of a comparison.
-	Difference struct{ Label, Before, After, Change, Unit string }
+	Difference struct {
+		Group                              string // a new one begins with its name
+		Label, Before, After, Change, Unit string
+	}
 )
 
 // Report is what a report of one plan says. Nothing in it names a person. Date and
@@ -146,13 +149,13 @@ func (r *Report) Pages(p Paper) ([]*Scene, error) {
 	b.heading(r.Statement, r.Note)
 	rows := r.rows(b.columnWidth())
 	if r.Strip.In.Log == nil {
-		b.flow(rows)
+		b.flow(rows, b.columns())
 		return b.close(), nil
 	}
 	late := !b.has(r.Strip)
 	if late { // a page with a title alone would be a waste
 		b.explainStrip(r.Strip)
-		b.flow(rows)
+		b.flow(rows, b.columns())
 		b.page()
 	}
 	if err := b.excerpt(r.Strip); err != nil {
@@ -160,7 +163,7 @@ func (r *Report) Pages(p Paper) ([]*Scene, error) {
 	}
 	if !late {
 		b.explainStrip(r.Strip)
-		b.flow(rows)
+		b.flow(rows, b.columns())
 	}
 	return b.close(), nil
 }

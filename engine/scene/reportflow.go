@@ -15,20 +15,20 @@ func (b *book) columnWidth() float64 {
 	return (b.paper.body() - (n-1)*columnGap) / n
 }
 
-// flow sets rows in columns of equal height, and goes on over further pages.
-func (b *book) flow(lines []rowLine) {
+// flow sets rows in so many columns of equal height, and goes on over further pages.
+func (b *book) flow(lines []rowLine, columns int) {
 	for len(lines) > 0 {
 		room := b.bottom - b.y
-		height, n := room, packed(lines, room, b.columns())
+		height, n := room, packed(lines, room, columns)
 		if n == 0 && !b.fresh() {
 			b.page()
 			continue
 		}
 		if n == len(lines) {
-			height = b.level(lines, room)
+			height = level(lines, room, columns)
 		}
 		n = max(n, 1) // a row higher than a page is cut rather than lost
-		b.set(lines[:n], height)
+		b.set(lines[:n], height, columns)
 		if lines = lines[n:]; len(lines) > 0 {
 			b.page()
 		}
@@ -36,10 +36,10 @@ func (b *book) flow(lines []rowLine) {
 }
 
 // level is the least height of columns that holds all rows, to half a millimetre.
-func (b *book) level(lines []rowLine, room float64) float64 {
+func level(lines []rowLine, room float64, columns int) float64 {
 	low, high := 0.0, room
 	for high-low > 0.5 {
-		if mid := (low + high) / 2; packed(lines, mid, b.columns()) == len(lines) {
+		if mid := (low + high) / 2; packed(lines, mid, columns) == len(lines) {
 			high = mid
 		} else {
 			low = mid
@@ -79,19 +79,18 @@ func column(lines []rowLine, height float64) int {
 	return n
 }
 
-func (b *book) set(lines []rowLine, height float64) {
+func (b *book) set(lines []rowLine, height float64, columns int) {
 	low := b.y
-	for c := range b.columns() {
+	for c := range columns {
 		n := column(lines, height)
 		if c == 0 {
 			n = max(n, 1)
 		}
 		y := b.y
-		for i, l := range lines[:min(n, len(lines))] {
+		for _, l := range lines[:min(n, len(lines))] {
 			if l.gap && y == b.y {
 				continue
 			}
-			_ = i
 			for _, m := range l.marks {
 				m.X += b.paper.Margin + float64(c)*(b.columnWidth()+columnGap)
 				m.Y += y

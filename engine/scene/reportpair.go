@@ -28,7 +28,7 @@ func (c *Comparison) Pages(p Paper) ([]*Scene, error) {
 	if err := b.pair(&c.Parts); err != nil {
 		return nil, err
 	}
-	b.flow(differences(b.columnWidth(), c.Parts[0].Name, c.Parts[1].Name, c.Differences))
+	b.flow(differences(b.paper.body(), c.Parts[0].Name, c.Parts[1].Name, c.Differences), 1)
 	return b.close(), nil
 }
 
@@ -120,27 +120,34 @@ func head(p *Part, w float64) rowLine {
 	return l
 }
 
+// differences are set over the whole width: they hold sentences.
 func differences(w float64, before, after string, ds []Difference) []rowLine {
-	const label, each = 0.40, 0.19
+	const label, each = 0.46, 0.19
 	row := func(c Class, name, a, b, change string) rowLine {
 		return rowOf(cell{class: Body, text: name, w: label*w - partGap},
-			cell{class: c, text: a, x: label * w, w: each*w - partGap, right: true},
-			cell{class: c, text: b, x: (label + each) * w, w: each*w - partGap, right: true},
-			cell{class: Strong, text: change, x: (label + 2*each) * w, w: (1 - label - 2*each) * w, right: true})
+			cell{class: c, text: a, x: label * w, w: each*w - 2*partGap},
+			cell{class: c, text: b, x: (label + each) * w, w: each*w - 2*partGap},
+			cell{class: Strong, text: change, x: (label + 2*each) * w, w: (1 - label - 2*each) * w})
 	}
-	rows := []rowLine{}
+	var rows []rowLine
+	group := ""
 	for _, d := range ds {
+		if d.Group != group {
+			group = d.Group
+			head := rowOf(cell{class: Strong, text: group, w: w})
+			head.keep = true
+			rows = append(rows, rowLine{height: 0.8, gap: true}, head)
+		}
 		name := d.Label
 		if d.Unit != "" {
 			name += ", " + d.Unit
 		}
 		rows = append(rows, row(Body, name, d.Before, d.After, d.Change))
 	}
-	out := section(w, "Differences", "", rows)
-	if len(out) > 0 {
-		names := row(Note, "", before, after, "")
-		names.keep = true
-		out = append(out[:2:2], append([]rowLine{names}, out[2:]...)...)
+	if len(rows) == 0 {
+		return nil
 	}
-	return out
+	names := row(Note, "", before, after, "")
+	names.keep = true
+	return section(w, "Differences", "", append([]rowLine{names}, rows...))
 }
