@@ -17,8 +17,9 @@ type turn struct {
 }
 
 // turns lists the turns of endless loops in order of time.
-func (f *finder) turns() []turn {
-	var out []turn
+func (f *finder) turns() []turn { return f.turnsInto(nil) }
+
+func (f *finder) turnsInto(out []turn) []turn {
 	for i := range f.dev.markers {
 		m := &f.dev.markers[i]
 		if !m.paced() || m.e.Channel != 'V' {

@@ -54,8 +54,13 @@ func channel(ch byte) int {
 }
 
 // readDevice gathers a device's events, or returns nil for a strip without any.
-func (s *strip) readDevice() *device {
-	d := &device{site: [2]event.SiteID{event.None, event.None}, looped: map[event.ID]bool{}}
+func (s *strip) readDevice() *device { return s.readDeviceInto(&device{looped: map[event.ID]bool{}}) }
+
+// readDeviceInto does so in the room that the device before it took.
+func (s *strip) readDeviceInto(d *device) *device {
+	clear(d.looped)
+	*d = device{site: [2]event.SiteID{event.None, event.None}, looped: d.looped, markers: d.markers[:0], windows: d.windows[:0], changes: d.changes[:0],
+		of: d.of, vp: d.vp, ap: d.ap, vs: d.vs, as: d.as}
 	for i := range s.log.Events {
 		switch e := &s.log.Events[i]; e.Kind {
 		case event.Window:
@@ -156,8 +161,8 @@ func natureOf(l *event.Log, e *event.Event) nature {
 	return ofBeat
 }
 
-func filled(n int) []int32 {
-	v := make([]int32, n)
+func filled(old []int32, n int) []int32 {
+	v := room(old, n)
 	for i := range v {
 		v[i] = -1
 	}
@@ -166,7 +171,8 @@ func filled(n int) []int32 {
 
 // link joins markers with each other and with the waves.
 func (d *device) link(s *strip) {
-	d.of, d.vp, d.ap, d.vs, d.as = filled(len(s.mark)), filled(len(s.v)), filled(len(s.p)), filled(len(s.v)), filled(len(s.p))
+	d.of = filled(d.of, len(s.mark))
+	d.vp, d.ap, d.vs, d.as = filled(d.vp, len(s.v)), filled(d.ap, len(s.p)), filled(d.vs, len(s.v)), filled(d.as, len(s.p))
 	last := [2]int32{-1, -1}
 	first := func(list []int32, w, m int32) {
 		if w >= 0 && int(w) < len(list) && list[w] < 0 {

@@ -51,13 +51,21 @@ var loopEnds = [...]string{"none", "brief", "ended", "sustained"}
 
 func (e LoopEnd) String() string { return loopEnds[e] }
 
-// Reader tallies many logs one after the other.
-type Reader struct{ flags []bool }
+// Reader tallies many logs one after the other, in the same memory. The zero Reader is
+// ready. Use it from one goroutine.
+type Reader struct {
+	tracer tracer
+	device device
+	flags  []bool // by P from above
+	led    []bool // by P: the device gave a ventricular stimulus for it
+	turns  []turn
+	cycle  []tick.Dur
+}
 
 // Tally reads a log that [event.Validate] accepts.
 func (r *Reader) Tally(l *event.Log) Tally {
-	s := read(l)
-	s.dev = s.readDevice()
+	s := r.tracer.read(l)
+	s.dev = s.readDeviceInto(&r.device)
 	t := Tally{QRSs: len(s.v)}
 	for i := range s.p {
 		if s.descending(i) {
@@ -70,7 +78,7 @@ func (r *Reader) Tally(l *event.Log) Tally {
 	if s.dev != nil {
 		t.device(s)
 		f := &finder{strip: s}
-		t.loop(f)
+		r.loop(f, &t)
 		t.synchrony(f)
 	}
 	return t
@@ -84,7 +92,9 @@ func (s *strip) answered(i int, byDevice []bool) bool {
 
 // settled finds the row that repeats.
 func (r *Reader) settled(s *strip, t *Tally) {
-	led := make([]bool, len(s.p)) // the device gave a ventricular stimulus for the P
+	led := room(r.led, len(s.p))
+	r.led = led
+	clear(led)
 	if s.dev != nil {
 		for i := range s.dev.markers {
 			m := &s.dev.markers[i]
@@ -182,8 +192,9 @@ func (t *Tally) device(s *strip) {
 }
 
 // loop tells of the longest endless loop; of two as long, the later.
-func (t *Tally) loop(f *finder) {
-	all := f.turns()
+func (r *Reader) loop(f *finder, t *Tally) {
+	r.turns = f.turnsInto(r.turns[:0])
+	all := r.turns
 	for i := 0; i < len(all); {
 		j := i + 1
 		for j < len(all) && all[j].from >= 0 && f.madeBy(all[j-1].vp, all[j].from) {
@@ -191,11 +202,11 @@ func (t *Tally) loop(f *finder) {
 		}
 		if n := j - i; n >= t.LoopTurns {
 			t.LoopTurns = n
-			var cycle []tick.Dur
+			cycle := r.cycle[:0]
 			for k := i + 1; k < j; k++ {
 				cycle = append(cycle, all[k].vp.e.T.Sub(all[k-1].vp.e.T))
 			}
-			t.LoopCycle = medianDur(cycle)
+			t.LoopCycle, r.cycle = medianDur(cycle), cycle
 			switch how, _ := f.loopEnd(all[j-1]); {
 			case n < leastTurns:
 				t.LoopEnd = LoopBrief

@@ -89,14 +89,17 @@ type tracer struct {
 }
 
 // read walks the log once.
-func read(l *event.Log) *strip {
-	t := &tracer{
-		strip:   strip{log: l, mark: make([]mark, len(l.Events)+1)},
-		pathUse: make([]event.ID, len(l.Paths)),
-		pending: make([]event.ID, len(l.Paths)),
-		siteUse: make([]event.ID, len(l.Sites)),
-		in:      make([]int32, len(l.Sites)),
-	}
+func read(l *event.Log) *strip { return new(tracer).read(l) }
+
+// read walks a log in the room that the one before it took.
+func (t *tracer) read(l *event.Log) *strip {
+	t.strip = strip{log: l, mark: room(t.mark, len(l.Events)+1), p: t.p[:0], v: t.v[:0], exits: t.exits[:0], sinus: t.strip.sinus[:0]}
+	t.mark[0] = mark{}
+	t.pathUse, t.pending, t.siteUse = room(t.pathUse, len(l.Paths)), room(t.pending, len(l.Paths)), room(t.siteUse, len(l.Sites))
+	clear(t.pathUse)
+	clear(t.pending)
+	clear(t.siteUse)
+	t.in = room(t.in, len(l.Sites))
 	t.rightAtrium, t.septum, t.his = l.Site("right_atrium"), l.Site("atrial_septum"), l.Site("his")
 	for i := range t.in {
 		t.in[i] = -1
@@ -105,6 +108,31 @@ func read(l *event.Log) *strip {
 		t.event(&l.Events[i])
 	}
 	return &t.strip
+}
+
+// room is a slice of n entries, in the memory of an old one where that is enough; what
+// stands in them is to be overwritten.
+func room[T any](old []T, n int) []T {
+	if cap(old) < n {
+		return make([]T, n)
+	}
+	return old[:n]
+}
+
+// addP and addV append a wave, with the lists of one that stood there before.
+func (t *tracer) addP(w pwave) {
+	if n := len(t.p); n < cap(t.p) {
+		old := &t.p[:n+1][n]
+		w.roots, w.blocks = old.roots[:0], old.blocks[:0]
+	}
+	t.p = append(t.p, w)
+}
+
+func (t *tracer) addV(w vwave) {
+	if n := len(t.v); n < cap(t.v) {
+		w.roots = t.v[:n+1][n].roots[:0]
+	}
+	t.v = append(t.v, w)
 }
 
 func (t *tracer) event(e *event.Event) {
@@ -226,7 +254,7 @@ func (t *tracer) atrial(e *event.Event, m *mark) {
 	g := t.chosen(e, latest, func(i int32) tick.Time { return t.p[i].t }, atrialSpread)
 	if g < 0 {
 		g = latest + 1
-		t.p = append(t.p, pwave{id: e.ID, t: e.T, from: -1, to: -1})
+		t.addP(pwave{id: e.ID, t: e.T, from: -1, to: -1})
 		w := &t.p[g]
 		w.retrograde = t.fromBelow(e)
 		w.circling = t.causeWave(e) >= 0
@@ -272,7 +300,7 @@ func (t *tracer) ventricular(e *event.Event, m *mark) {
 	g := t.chosen(e, latest, func(i int32) tick.Time { return t.v[i].t }, ventricularSpread)
 	if g < 0 {
 		g = latest + 1
-		t.v = append(t.v, vwave{id: e.ID, t: e.T, his: m.his, p: m.p, retro: -1, circling: m.v >= 0})
+		t.addV(vwave{id: e.ID, t: e.T, his: m.his, p: m.p, retro: -1, circling: m.v >= 0})
 	}
 	w := &t.v[g]
 	if t.causeWave(e) != g && m.v != g {

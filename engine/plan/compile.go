@@ -156,9 +156,13 @@ func (c *compiler) faults() {
 
 // changes prepares a heart for every moment at which a number changes.
 func (c *compiler) changes() {
+	sets := c.sets()
+	if len(sets) == 0 {
+		return
+	}
 	now := c.plan.Clone()
 	steps := 0
-	for _, it := range c.sets() {
+	for _, it := range sets {
 		field := it["field"].Text
 		name, item := itemPath(field)
 		ch := Change{T: it.at(), Field: field, To: c.to(it)}

@@ -47,51 +47,52 @@ var (
 
 // settings gathers the device's numbers.
 func (p *Plan) settings() pacer.Settings {
-	ms := func(name string) tick.Dur { return tick.MS(p.number(device + "." + name)) }
-	bpm := func(name string) float64 { return p.number(device + "." + name) }
-	count := func(name string) int { return int(p.number(device + "." + name)) }
-	seconds := func(name string) tick.Dur { return tick.MS(1000 * p.number(device+"."+name)) }
-	at := func(name string) tick.Time { return tick.Time(ms(name)) }
-	on := func(name string) bool { return p.on(device + "." + name) }
+	const d = device + "." // paths are put together when the program is built: a sweep is here for every run
+	ms := func(path string) tick.Dur { return tick.MS(p.number(path)) }
+	bpm := func(path string) float64 { return p.number(path) }
+	count := func(path string) int { return int(p.number(path)) }
+	seconds := func(path string) tick.Dur { return tick.MS(1000 * p.number(path)) }
+	at := func(path string) tick.Time { return tick.Time(ms(path)) }
+	on := func(path string) bool { return p.on(path) }
 	s := pacer.Settings{
-		Mode: p.mode("mode"), LowerRate: bpm("lower_rate_bpm"), UpperRate: bpm("max_tracking_rate_bpm"), Base: bases[p.word(device+".base_timing")],
-		PacedAV: ms("paced_av_ms"), SensedAV: ms("sensed_av_ms"),
-		PVARP: ms("pvarp_ms"), PVAB: ms("pvab_ms"), AtrialBlanking: ms("atrial_blanking_ms"), AtrialRefractory: ms("atrial_refractory_ms"),
-		PAVB: ms("pavb_ms"), Crosstalk: ms("crosstalk_window_ms"), SafetyStimulus: on("safety_stimulus"), VentricularRefractory: ms("ventricular_refractory_ms"),
-		PostPVC: ms("post_pvc_pvarp_ms"), RefractoryCounts: on("refractory_p_counts"), PastLowerRate: on("av_past_lower_rate"), AtrialDelay: ms("atrial_delay_ms"),
-		AdaptiveAV:    pacer.Adaptive{From: bpm("adaptive_av.from_bpm"), To: bpm("adaptive_av.to_bpm"), Shortest: ms("adaptive_av.shortest_ms")},
-		AdaptivePVARP: pacer.Adaptive{From: bpm("adaptive_pvarp.from_bpm"), To: bpm("adaptive_pvarp.to_bpm"), Shortest: ms("adaptive_pvarp.shortest_ms")},
-		Hysteresis:    pacer.Hysteresis{Rate: bpm("hysteresis.rate_bpm"), Every: count("hysteresis.every"), Cycles: count("hysteresis.cycles")},
-		LongerAV:      pacer.LongerAV{By: ms("longer_av.by_ms"), Longest: ms("longer_av.longest_ms"), Every: count("longer_av.every"), Misses: count("longer_av.misses")},
-		ShorterAV:     pacer.ShorterAV{By: ms("shorter_av.by_ms"), Shortest: ms("shorter_av.shortest_ms"), Beats: count("shorter_av.beats")},
-		Noise:         pacer.Noise{Window: ms("noise.window_ms"), Inhibits: on("noise.inhibits")},
-		Sensor:        pacer.Sensor{Slope: bpm("sensor.slope_bpm"), Limit: bpm("max_sensor_rate_bpm"), Rise: seconds("sensor.rise_s"), Fall: seconds("sensor.fall_s"), Activity: p.activity()},
-		ChangeLimit:   pacer.ChangeLimit{Longer: bpm("change_limit.longer_percent"), Shorter: bpm("change_limit.shorter_percent")},
-		Night:         pacer.Night{Rate: bpm("night.rate_bpm"), From: at("night.from_ms"), To: at("night.to_ms")},
-		Switch: pacer.Switch{Rate: bpm("mode_switch.rate_bpm"), Short: count("mode_switch.short"), Of: count("mode_switch.of"),
-			Mode: p.mode("mode_switch.mode"), Return: count("mode_switch.return"), Ramp: ms("mode_switch.ramp_ms")},
-		Loop:      pacer.Loop{Beats: count("loop.beats"), RateMargin: ms("loop.rate_margin_ms"), Margin: ms("loop.margin_ms"), PVARP: ms("loop.pvarp_ms"), Withhold: on("loop.withhold")},
-		Fall:      pacer.Fall{From: bpm("rate_fall.from_bpm"), Within: ms("rate_fall.within_ms"), Beats: count("rate_fall.beats"), Rate: bpm("rate_fall.rate_bpm"), For: ms("rate_fall.for_ms")},
-		Stabilise: pacer.Stabilise{By: ms("stabilise.by_ms"), Rate: bpm("stabilise.rate_bpm"), OnlySwitched: on("stabilise.only_switched")},
-		Backup:    pacer.Backup{Misses: count("backup.misses"), Of: count("backup.of"), Delay: ms("backup.delay_ms"), Retest: ms("backup.retest_ms"), RetestMax: ms("backup.retest_max_ms")},
-		Magnet:    pacer.Magnet{Mode: p.mode("magnet.mode"), Rate: bpm("magnet.rate_bpm"), AV: ms("magnet.av_ms"), From: at("magnet.from_ms"), To: at("magnet.to_ms")},
+		Mode: p.mode(d + "mode"), LowerRate: bpm(d + "lower_rate_bpm"), UpperRate: bpm(d + "max_tracking_rate_bpm"), Base: bases[p.word(device+".base_timing")],
+		PacedAV: ms(d + "paced_av_ms"), SensedAV: ms(d + "sensed_av_ms"),
+		PVARP: ms(d + "pvarp_ms"), PVAB: ms(d + "pvab_ms"), AtrialBlanking: ms(d + "atrial_blanking_ms"), AtrialRefractory: ms(d + "atrial_refractory_ms"),
+		PAVB: ms(d + "pavb_ms"), Crosstalk: ms(d + "crosstalk_window_ms"), SafetyStimulus: on(d + "safety_stimulus"), VentricularRefractory: ms(d + "ventricular_refractory_ms"),
+		PostPVC: ms(d + "post_pvc_pvarp_ms"), RefractoryCounts: on(d + "refractory_p_counts"), PastLowerRate: on(d + "av_past_lower_rate"), AtrialDelay: ms(d + "atrial_delay_ms"),
+		AdaptiveAV:    pacer.Adaptive{From: bpm(d + "adaptive_av.from_bpm"), To: bpm(d + "adaptive_av.to_bpm"), Shortest: ms(d + "adaptive_av.shortest_ms")},
+		AdaptivePVARP: pacer.Adaptive{From: bpm(d + "adaptive_pvarp.from_bpm"), To: bpm(d + "adaptive_pvarp.to_bpm"), Shortest: ms(d + "adaptive_pvarp.shortest_ms")},
+		Hysteresis:    pacer.Hysteresis{Rate: bpm(d + "hysteresis.rate_bpm"), Every: count(d + "hysteresis.every"), Cycles: count(d + "hysteresis.cycles")},
+		LongerAV:      pacer.LongerAV{By: ms(d + "longer_av.by_ms"), Longest: ms(d + "longer_av.longest_ms"), Every: count(d + "longer_av.every"), Misses: count(d + "longer_av.misses")},
+		ShorterAV:     pacer.ShorterAV{By: ms(d + "shorter_av.by_ms"), Shortest: ms(d + "shorter_av.shortest_ms"), Beats: count(d + "shorter_av.beats")},
+		Noise:         pacer.Noise{Window: ms(d + "noise.window_ms"), Inhibits: on(d + "noise.inhibits")},
+		Sensor:        pacer.Sensor{Slope: bpm(d + "sensor.slope_bpm"), Limit: bpm(d + "max_sensor_rate_bpm"), Rise: seconds(d + "sensor.rise_s"), Fall: seconds(d + "sensor.fall_s"), Activity: p.activity()},
+		ChangeLimit:   pacer.ChangeLimit{Longer: bpm(d + "change_limit.longer_percent"), Shorter: bpm(d + "change_limit.shorter_percent")},
+		Night:         pacer.Night{Rate: bpm(d + "night.rate_bpm"), From: at(d + "night.from_ms"), To: at(d + "night.to_ms")},
+		Switch: pacer.Switch{Rate: bpm(d + "mode_switch.rate_bpm"), Short: count(d + "mode_switch.short"), Of: count(d + "mode_switch.of"),
+			Mode: p.mode(d + "mode_switch.mode"), Return: count(d + "mode_switch.return"), Ramp: ms(d + "mode_switch.ramp_ms")},
+		Loop:      pacer.Loop{Beats: count(d + "loop.beats"), RateMargin: ms(d + "loop.rate_margin_ms"), Margin: ms(d + "loop.margin_ms"), PVARP: ms(d + "loop.pvarp_ms"), Withhold: on(d + "loop.withhold")},
+		Fall:      pacer.Fall{From: bpm(d + "rate_fall.from_bpm"), Within: ms(d + "rate_fall.within_ms"), Beats: count(d + "rate_fall.beats"), Rate: bpm(d + "rate_fall.rate_bpm"), For: ms(d + "rate_fall.for_ms")},
+		Stabilise: pacer.Stabilise{By: ms(d + "stabilise.by_ms"), Rate: bpm(d + "stabilise.rate_bpm"), OnlySwitched: on(d + "stabilise.only_switched")},
+		Backup:    pacer.Backup{Misses: count(d + "backup.misses"), Of: count(d + "backup.of"), Delay: ms(d + "backup.delay_ms"), Retest: ms(d + "backup.retest_ms"), RetestMax: ms(d + "backup.retest_max_ms")},
+		Magnet:    pacer.Magnet{Mode: p.mode(d + "magnet.mode"), Rate: bpm(d + "magnet.rate_bpm"), AV: ms(d + "magnet.av_ms"), From: at(d + "magnet.from_ms"), To: at(d + "magnet.to_ms")},
 	}
 	if p.word(device+".leads.ventricular.site") == "his" {
 		s.Sites.Right = pacer.HisLead
 	}
 	if s.Mode.Multisite == 'V' {
-		s.Sites.Left, s.Sites.Only, s.Sites.ToRV = true, on("left.only"), on("left.av_to_right")
-		s.Sites.Offset, s.Sites.Point = ms("left.offset_ms"), ms("left.second_point_ms")
+		s.Sites.Left, s.Sites.Only, s.Sites.ToRV = true, on(d+"left.only"), on(d+"left.av_to_right")
+		s.Sites.Offset, s.Sites.Point = ms(d+"left.offset_ms"), ms(d+"left.second_point_ms")
 	}
 	return s
 }
 
 var bases = map[string]pacer.Base{"ventricular": pacer.VentricularBase, "atrial": pacer.AtrialBase, "modified_atrial": pacer.ModifiedBase}
 
-// mode is the mode at a field of the device; the zero mode where there is none. The
+// mode is the mode at the path of a field of the device; the zero mode where there is none. The
 // decoder has judged it.
-func (p *Plan) mode(name string) pacer.Mode {
-	code := p.word(device + "." + name)
+func (p *Plan) mode(path string) pacer.Mode {
+	code := p.word(path)
 	if code == "" {
 		return pacer.Mode{}
 	}
@@ -147,23 +148,34 @@ func (p *Plan) device(h *heart.Heart) *Device {
 }
 
 func (p *Plan) lead(h *heart.Heart, name string) Lead {
-	at := device + ".leads." + name
-	site := p.word(at + ".site")
-	l := Lead{Site: h.Site(site), Muscle: event.None, Amplitude: p.number(at + ".amplitude_v"), Latency: tick.MS(p.number(at + ".latency_ms")), Delay: tick.MS(p.number(at + ".sensing_delay_ms"))}
+	at := leads[name]
+	site := p.word(at.site)
+	l := Lead{Site: h.Site(site), Muscle: event.None, Amplitude: p.number(at.amplitude), Latency: tick.MS(p.number(at.latency)), Delay: tick.MS(p.number(at.delay))}
 	// Lapicque in volts: V(t) = b (1 + c/t), rheobase b and chronaxie c (Geddes, IEEE
 	// TBME 2004).
-	shape := 1 + p.number(at+".chronaxie_ms")/p.number(at+".width_ms")
-	l.Threshold = p.number(at+".rheobase_v") * shape
-	l.Senses = p.number(at+".signal_mv") >= p.number(at+".sensitivity_mv")
+	shape := 1 + p.number(at.chronaxie)/p.number(at.width)
+	l.Threshold = p.number(at.rheobase) * shape
+	l.Senses = p.number(at.signal) >= p.number(at.sensitivity)
 	l.Sensing = l.Site
 	if t := h.Sites[l.Site].Tissue; t != event.Atrium && t != event.Ventricle {
 		// A lead on the conduction system senses the muscle beside it.
 		l.Sensing = h.Site(beside[site])
-		if p.given(at + ".muscle_rheobase_v") {
-			l.Muscle, l.MuscleThreshold = l.Sensing, p.number(at+".muscle_rheobase_v")*shape
+		if p.given(at.muscle) {
+			l.Muscle, l.MuscleThreshold = l.Sensing, p.number(at.muscle)*shape
 		}
 	}
 	return l
 }
+
+// leadPaths are the paths of a lead's fields.
+type leadPaths struct{ site, amplitude, latency, delay, chronaxie, width, rheobase, signal, sensitivity, muscle string }
+
+func pathsOfLead(name string) leadPaths {
+	at := device + ".leads." + name + "."
+	return leadPaths{at + "site", at + "amplitude_v", at + "latency_ms", at + "sensing_delay_ms", at + "chronaxie_ms", at + "width_ms", at + "rheobase_v",
+		at + "signal_mv", at + "sensitivity_mv", at + "muscle_rheobase_v"}
+}
+
+var leads = map[string]leadPaths{"atrial": pathsOfLead("atrial"), "ventricular": pathsOfLead("ventricular"), "left": pathsOfLead("left")}
 
 var beside = map[string]string{"his": "rv_septum", "right_bundle": "rv_septum", "left_bundle": "lv_septum", "left_septal": "lv_septum"}

@@ -17,6 +17,8 @@ type Variants struct {
 	reaches []bool // by field: the heart depends on it
 	hearts  map[string]*heart.Heart
 	key     []byte
+	judged  bool // what numbers together must hold does
+	rejudge bool // it may not with other values of the fields
 	extra   bool // the last intervention is an extra stimulus
 }
 
@@ -29,6 +31,11 @@ func NewVariants(p *Plan, fields ...string) *Variants {
 	v.plan.Sweep = nil
 	for _, f := range fields {
 		v.reaches = append(v.reaches, v.plan.reachesHeart(f))
+		// Numbers exclude each other by being there, not by their values; items and whole
+		// parts of the heart are judged by what they are.
+		if field := byPath[general(f)]; strings.Contains(f, "[") || field.Kind != Number || field.Nullable {
+			v.rejudge = true
+		}
 	}
 	return v
 }
@@ -75,9 +82,12 @@ func (p *Plan) Seed() uint64 { return uint64(p.number("seed")) }
 // cannot be.
 func (v *Variants) Program(values []Value, seed uint64, extra Item) (*Program, error) {
 	p := v.Plan(values, seed, extra)
-	d := decoder{p: p}
-	if d.together(); len(d.ds) > 0 {
-		return nil, d.ds
+	if !v.judged || v.rejudge {
+		d := decoder{p: p}
+		if d.together(); len(d.ds) > 0 {
+			return nil, d.ds
+		}
+		v.judged = true
 	}
 	v.key = v.key[:0]
 	for i, reaches := range v.reaches {
