@@ -2,6 +2,7 @@
 
 import { nextFrame } from "./base/frame.js";
 import { keepDark, wantsDark } from "./base/sheet.js";
+import { note } from "./base/timing.js";
 import { startEngine } from "./engine/client.js";
 import { conduct } from "./engine/conductor.js";
 import { EMPTY } from "./model/document.js";
@@ -116,7 +117,9 @@ function build(catalogue, found) {
     pending.clear();
     const state = store.get();
     if (changed.has("dark")) document.documentElement.dataset.sheet = state.dark ? "dark" : "light";
+    const began = performance.now();
     for (const v of views) v.update(state, changed);
+    if (changed.has("answer")) note("paint", performance.now() - began);
   }
   store.subscribe((state, changed) => {
     for (const k of changed) pending.add(k);

@@ -1,7 +1,6 @@
 package plan
 
 import (
-	"regexp"
 	"strconv"
 	"strings"
 )
@@ -60,7 +59,7 @@ func (p *Plan) Absent(path string) bool { return p.null(path) }
 // FieldAt describes the value at a path with the places in lists filled in, such as
 // "heart.foci[0].rate_bpm".
 func FieldAt(path string) (Field, bool) {
-	name := inList.ReplaceAllString(path, "[]")
+	name, _ := itemPath(path)
 	for _, name := range [...]string{name, strings.TrimSuffix(name, "[]")} { // the second: a place in a list of numbers
 		if f := byPath[name]; f != nil {
 			return *f, true
@@ -68,5 +67,3 @@ func FieldAt(path string) (Field, bool) {
 	}
 	return Field{}, false
 }
-
-var inList = regexp.MustCompile(`\[\d+\]`)

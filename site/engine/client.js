@@ -5,6 +5,8 @@
 // engine fail, its own words come back as a Fault and a fresh worker is started;
 // should a computation run long while a newer one waits, it is ended.
 
+import { note } from "../base/timing.js";
+
 /** The engine failed in a way that no input should make it fail. */
 export class Fault extends Error {}
 
@@ -57,7 +59,7 @@ export function startEngine(url, onBusy = () => {}) {
     worker = null;
   }
 
-  /** @param {{number: number, json?: string, points?: Float32Array, fault?: string, dead?: boolean}} reply */
+  /** @param {{number: number, json?: string, points?: Float32Array, ms?: number, fault?: string, dead?: boolean}} reply */
   function receive(reply) {
     if (reply.fault !== undefined) {
       fail(new Fault(reply.fault));
@@ -66,7 +68,15 @@ export function startEngine(url, onBusy = () => {}) {
     const r = running;
     if (!r || reply.number !== r.number) return; // stale
     running = null;
-    r.resolve({ json: JSON.parse(reply.json ?? "null"), points: reply.points ?? null });
+    const came = performance.now();
+    const json = JSON.parse(reply.json ?? "null");
+    if (r.op === "compute") {
+      note("engine", reply.ms ?? 0);
+      note("compute", json?.answer?.took_ms ?? 0);
+      note("transfer", came - since - (reply.ms ?? 0));
+      note("read", performance.now() - came);
+    }
+    r.resolve({ json, points: reply.points ?? null });
     next();
   }
 

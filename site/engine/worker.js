@@ -49,13 +49,15 @@ scope.onmessage = async (/** @type {MessageEvent} */ e) => {
   const { number, op, json } = e.data;
   try {
     await ready;
+    const began = performance.now();
     const reply = scope.call(op, json);
+    const ms = performance.now() - began;
     if (reply.fault) {
       scope.postMessage({ number, fault: reply.fault });
       return;
     }
     const points = reply.points ?? null;
-    scope.postMessage({ number, json: reply.json, points }, points ? [points.buffer] : []);
+    scope.postMessage({ number, json: reply.json, points, ms }, points ? [points.buffer] : []);
   } catch (err) {
     const words = err instanceof Error ? err.message : String(err);
     scope.postMessage({ number, fault: output || words });

@@ -90,3 +90,25 @@ export async function walkTo(page, words) {
   }
   assert.fail(`no event whose account speaks of ${words}`);
 }
+
+/**
+ * A place in a ring of a stimulus, in pixels of the window: the only thing in the
+ * device's colour on a strip without a device.
+ * @param {Page} page
+ */
+export async function ringAt(page) {
+  const box = await page.locator("#timeline canvas").boundingBox();
+  const ring = await page.evaluate(() => {
+    const from = /** @type {HTMLCanvasElement} */ (document.querySelector("#timeline canvas"));
+    const copy = new OffscreenCanvas(from.width, from.height);
+    const g = /** @type {OffscreenCanvasRenderingContext2D} */ (copy.getContext("2d", { willReadFrequently: true }));
+    g.drawImage(from, 0, 0);
+    const d = g.getImageData(0, 0, copy.width, copy.height).data;
+    for (let i = 0; i < d.length; i += 4) {
+      if (d[i] === 0x34 && d[i + 1] === 0x47 && d[i + 2] === 0xb5) return { x: (i / 4) % copy.width, y: Math.floor(i / 4 / copy.width) };
+    }
+    return null;
+  });
+  assert.ok(box && ring, "no ring was found");
+  return { x: box.x + ring.x, y: box.y + ring.y + 2 };
+}
