@@ -63,8 +63,9 @@ golden: need-go ## rewrite the goldens and show what changed
 	@git --no-pager diff -- '*testdata*.txt' '*testdata*.json' '*testdata*.svg'
 
 .PHONY: bench
-bench: need-go ## benchmarks: work per second and ratios taken in one run
+bench: need-go need-browser site ## benchmarks: work per second and ratios taken in one run
 	$(GO) test -run '^$$' -bench . ./...
+	node site/test/frame.bench.js
 
 .PHONY: need-go need-node need-browser need-edf
 need-go:
