@@ -5,7 +5,7 @@
 //
 //     node site/test/frame.bench.js
 
-import { openBrowser, openPage, serveSite, settled } from "./host.js";
+import { newPerson, openBrowser, openPage, serveSite, settled } from "./host.js";
 import { ringAt } from "./walk.js";
 
 const STEPS = 200;
@@ -26,7 +26,7 @@ const timings = (page) => page.evaluate(async () => {
 const site = await serveSite();
 const browser = await openBrowser();
 try {
-  const { page } = await openPage(browser.context, site.url, { width: 1440, height: 900 });
+  const { page } = await openPage(await newPerson(browser.browser), site.url, { width: 1440, height: 900 });
   await settled(page);
   await page.fill('[data-field="span_ms"]', "30000");
   await page.keyboard.press("Enter");
