@@ -132,7 +132,7 @@ func (m *Machine) cross(x *exit, against *transit, cause event.ID, from event.Si
 	recovery := event.Unknown
 	if used {
 		recovery = m.now.Sub(left)
-		if recovery < w.theta || recovery < w.turn && !met && st.went != x.dir {
+		if recovery < w.theta || recovery < w.turn && !met && st.went == other(x.dir) {
 			return
 		}
 	}
