@@ -39,6 +39,7 @@ var allowed = map[string][]string{
 	"engine/sweep":          {"engine/tick", "engine/event", "engine/pacer", "engine/plan", "engine/sim", "engine/measure"},
 	"engine/scene":          {"engine/tick", "engine/event", "engine/lead", "engine/ladder"},
 	"engine/press":          {"engine/scene"},
+	"engine/study":          {"engine/tick", "engine/event", "engine/plan", "engine/sim"},
 	"engine/numbers":        {"engine/tick", "engine/event", "engine/pacer", "engine/plan", "engine/measure"},
 	"engine/report": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
 		"engine/contrast", "engine/numbers", "engine/scene"},
@@ -47,7 +48,7 @@ var allowed = map[string][]string{
 		"engine/numbers", "engine/scene", "engine/export/edf"},
 	"presets": {},
 	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
-		"engine/contrast", "engine/account", "engine/handle", "engine/nomenclature", "engine/numbers", "engine/scene", "presets",
+		"engine/contrast", "engine/account", "engine/handle", "engine/nomenclature", "engine/numbers", "engine/scene", "engine/study", "presets",
 		"engine/sweep"},
 	"wasm/press/service": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/ladder", "engine/report", "engine/scene", "engine/press", "presets"},
 }

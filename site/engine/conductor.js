@@ -51,7 +51,7 @@ export function conduct(store, engine) {
     }
     const { view, selected } = store.get();
     store.set({
-      answer, diagnoses: [], fault: "",
+      answer, computed: asked.plan, diagnoses: [], fault: "",
       scene: readScene(scene, reply.points),
       view: onStrip(view, answer.span_ms),
       selected: selected <= answer.events ? selected : 0,

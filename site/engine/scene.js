@@ -1,6 +1,8 @@
 // The wire form of a scene, read. The engine lays out in millimetres; what each
 // number means is told in the package comment of engine/scene.
 
+import { readHandles } from "../model/handle.js";
+
 /**
  * @typedef {object} Mark
  * @property {number} shape 1 line, 2 polyline, 3 rectangle, 4 disc, 5 ring, 6 text
@@ -18,6 +20,7 @@
  */
 
 /** @typedef {{name: string, label: string, y0: number, y1: number}} Lane */
+/** @typedef {import("../model/handle.js").Handle} Handle */
 
 /**
  * @typedef {object} Scene
@@ -30,6 +33,8 @@
  * @property {Float32Array} points x, y of the points of polylines, from a mark's `from` on
  * @property {[number, number, number][]} times of every event that has a mark: id, milliseconds,
  *   and the place, from 1, of the intervention that made it, 0 for none
+ * @property {Handle[]} handles what can be moved
+ * @property {{name: string, y0: number, y1: number}[]} tiers of the ladder, in millimetres
  */
 
 export const LINE = 1;
@@ -59,7 +64,7 @@ export function readScene(meta, numbers) {
     };
     from += 2 * points;
   }
-  return { times: [], ...rest, marks, points: n };
+  return { times: [], tiers: [], ...rest, handles: readHandles(rest.handles), marks, points: n };
 }
 
 /**
@@ -131,18 +136,28 @@ export function nearest(s, x, y, reach) {
 }
 
 /**
- * The intervention whose ring lies at a place, as its place in the plan's list, or -1.
+ * The handle at a place: the one whose upright stands nearest, within reach.
  * @param {Scene} s
  * @param {number} x
  * @param {number} y
  * @param {number} reach mm
+ * @returns {Handle | null}
  */
 export function handleAt(s, x, y, reach) {
-  for (const [id, , made] of s.times) {
-    if (made === 0) continue;
-    for (const m of s.marks) {
-      if (m.event === id && m.shape === RING && distance(m, x, y) <= reach) return made - 1;
+  let best = null;
+  let least = reach;
+  for (const h of s.handles) {
+    const across = Math.abs(placeOf(s, h.t_ms) - x);
+    const off = Math.max(h.y0 - y, 0, y - h.y1);
+    const bar = h.end; // its neighbours above and below have handles of their own
+    const d = bar && off > Math.min(reach, ROW_MM) ? Infinity : Math.hypot(across, off) - (h.path.startsWith("interventions") ? STIMULUS_FIRST_MM : 0);
+    if (d < least) {
+      least = d;
+      best = h;
     }
   }
-  return -1;
+  return best;
 }
+
+const ROW_MM = 0.3; // how far beside its bar a window's end can be taken hold of
+const STIMULUS_FIRST_MM = 0.5; // a ring may stand on what it depolarised

@@ -71,7 +71,7 @@
  */
 
 /** @typedef {{name: string, label: string, value: number | null, unit: string, normal: [number, number] | null, help: string, source: string}} Measured */
-/** @typedef {{text: string, events: number[], t_ms: number, note: string, rivals: string[]}} Finding */
+/** @typedef {{slug: string, ratio: string, text: string, events: number[], t_ms: number, note: string, rivals: string[]}} Finding */
 
 /** @typedef {{name: string, label: string, text: string, unit: string, formula: string, numbers: string, source: string}} Sum */
 /** @typedef {{name: string, count: number, median_ms: number | null, least_ms: number, longest_ms: number}} Interval */

@@ -18,6 +18,7 @@
  * @property {{id: string, stamp: string, title: string} | null} kept the kept plan it came from
  * @property {View} view
  * @property {Answer | null} answer of the last plan that could be computed
+ * @property {Plan | null} computed the plan of that answer
  * @property {Scene | null} scene of that answer, as last laid out
  * @property {Diagnosis[]} diagnoses of the plan as it stands; empty when it is good
  * @property {string} fault what went wrong inside the engine, or ""

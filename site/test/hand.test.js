@@ -96,7 +96,7 @@ describe("the hand on the timeline", () => {
     await page.mouse.down();
     await page.mouse.move(x - 60, y, { steps: 6 });
     await settled(page);
-    assert.match(await page.innerText(".hair-time"), /^at \d+ ms$/);
+    assert.match(await page.innerText(".tip"), /^stimulus at \d+ ms, \d+ ms after the last beat there$/);
     await page.mouse.up();
     assert.notEqual(await settled(page), first);
     assert.ok(Number(await at()) < Number(began));

@@ -1,12 +1,14 @@
-// The hand on the timeline. One pointer that moves pans, or moves what has a
-// handle; one that does not move picks; two pinch.
+// The pointers on the timeline. One that moves pans, or moves what has a handle; one
+// that does not move picks; two pinch.
 
-import { clamp, PX_PER_MM } from "../base/scale.js";
+import { PX_PER_MM } from "../base/scale.js";
 import { handleAt, timeAt } from "../engine/scene.js";
-import { put } from "../model/path.js";
 import { pan, zoomTo } from "../model/view.js";
 
-/** @typedef {import("../model/store.js").Store} Store */
+/**
+ * @typedef {import("../model/store.js").Store} Store
+ * @typedef {import("../model/handle.js").Handle} Handle
+ */
 
 /**
  * @typedef {object} On
@@ -14,10 +16,13 @@ import { pan, zoomTo } from "../model/view.js";
  * @property {() => void} hideHair
  * @property {(e: PointerEvent) => void} pick
  * @property {(e: PointerEvent) => {x: number, y: number}} place in millimetres
- * @property {(ms: number) => void} showMoved
+ * @property {(h: Handle, at: {x: number, y: number}) => void} take a handle has begun to move, taken hold of at a place
+ * @property {(e: PointerEvent) => void} drag it to the pointer
+ * @property {(back: boolean) => void} drop it there, or put it back
  */
 
 const STILL_PX = 4; // a pointer that moved less has not moved
+const FINGER_PX = 16; // how near a finger must be to a handle
 
 /**
  * @param {HTMLCanvasElement} canvas
@@ -29,9 +34,9 @@ export function grip(canvas, store, on, reach) {
   /** @type {Map<number, {x: number, y: number}>} */
   const down = new Map();
   let moved = false;
-  let held = -1; // place of an intervention in its list
-  let before = /** @type {any} */ (null); // the plan, to put it back
+  let held = /** @type {Handle | null} */ (null);
   let from = { x: 0, t0: 0 };
+  let pressed = { x: 0, y: 0 }; // mm
   let pinch = { gap: 0, speed: 0, t: 0 };
 
   const gap = () => {
@@ -42,19 +47,20 @@ export function grip(canvas, store, on, reach) {
   /** @param {PointerEvent} e */
   function press(e) {
     if (e.button !== 0) return;
-    const { view, scene, plan } = store.get();
+    const { view, scene } = store.get();
     if (!scene) return;
     canvas.setPointerCapture(e.pointerId);
     down.set(e.pointerId, { x: e.clientX, y: e.clientY });
     const { x, y } = on.place(e);
     if (down.size === 1) {
+      pressed = { x, y };
       moved = false;
       from = { x: e.clientX, t0: view.t0_ms };
-      held = handleAt(scene, x, y, reach / PX_PER_MM);
-      before = plan;
+      held = handleAt(scene, x, y, (e.pointerType === "touch" ? FINGER_PX : reach) / PX_PER_MM);
     } else if (down.size === 2) {
+      if (held && moved) on.drop(true);
       moved = true;
-      held = -1;
+      held = null;
       pinch = { gap: gap(), speed: view.mm_per_s, t: timeAt(scene, x) };
     }
   }
@@ -75,26 +81,18 @@ export function grip(canvas, store, on, reach) {
     }
     const dx = e.clientX - from.x;
     if (!moved && Math.abs(dx) < STILL_PX) return;
-    if (!moved) store.settle();
-    moved = true;
-    if (held >= 0) {
-      shift(e);
+    if (held) {
+      if (!moved) on.take(held, pressed);
+      moved = true;
+      on.drag(e);
       return;
     }
+    if (!moved) store.settle();
+    moved = true;
     canvas.classList.add("grabbed");
     on.hideHair();
     const t0_ms = from.t0 - (dx / PX_PER_MM / view.mm_per_s) * 1000;
     store.set({ view: pan({ ...view, t0_ms }, 0, answer.span_ms) });
-  }
-
-  /** Moves the held intervention to the pointer. @param {PointerEvent} e */
-  function shift(e) {
-    const { scene, answer, plan } = store.get();
-    if (!scene || !answer) return;
-    const step = scene.axis.mm_per_s < 40 ? 5 : scene.axis.mm_per_s < 150 ? 2 : 1;
-    const ms = clamp(Math.round(timeAt(scene, on.place(e).x) / step) * step, 0, answer.span_ms);
-    on.showMoved(ms);
-    store.edit(put(plan, `interventions[${held}].at_ms`, ms), `move ${held}`);
   }
 
   /** @param {PointerEvent} e */
@@ -102,22 +100,17 @@ export function grip(canvas, store, on, reach) {
     const was = down.delete(e.pointerId);
     canvas.classList.remove("grabbed");
     if (was && !moved && e.type === "pointerup") on.pick(e);
-    if (held >= 0 && moved) {
-      store.settle();
-      on.hideHair();
-    }
-    held = -1;
+    if (held && moved) on.drop(e.type === "pointercancel");
+    held = null;
     if (down.size === 1) from = { x: [...down.values()][0].x, t0: store.get().view.t0_ms };
   }
 
   /** Escape puts back what is being moved. @param {KeyboardEvent} e */
   function escape(e) {
-    if (e.key !== "Escape" || held < 0 || !moved) return;
+    if (e.key !== "Escape" || !held || !moved) return;
     e.stopPropagation();
-    store.edit(before, `move ${held}`);
-    store.settle();
-    held = -1;
-    on.hideHair();
+    on.drop(true);
+    held = null;
   }
 
   canvas.addEventListener("pointerdown", press);

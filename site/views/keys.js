@@ -13,6 +13,8 @@ export const KEYS = [
     ["Home End", "start and end of the strip"],
     [", .", "previous and next event"],
     ["C", "from the selected event to its cause"],
+    ["Alt ← →", "move the selected stimulus, window, P or discharge by a step; with Shift by ten"],
+    ["B, Shift B", "try an atrial or a ventricular beat: at the pointer, or after the selected event"],
     ["Esc", "select nothing"],
     ["+ −", "stretch and squeeze time"],
     ["1 2 0", "25 mm/s, 50 mm/s, whole strip"],

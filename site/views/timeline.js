@@ -4,29 +4,30 @@ import { el, say } from "../base/dom.js";
 import { nextFrame } from "../base/frame.js";
 import { seconds } from "../base/format.js";
 import { PX_PER_MM } from "../base/scale.js";
-import { handleAt, nearest, placeOf, timeAt } from "../engine/scene.js";
+import { nearest, placeOf, timeAt } from "../engine/scene.js";
 import { ladderFor, pan, zoomTo } from "../model/view.js";
 import { grip } from "./grip.js";
-import { halo, outline, paint } from "./paint.js";
+import { handView } from "./hand.js";
 import { timelineKeys } from "./keys.js";
+import { halo, outline, paint } from "./paint.js";
 
 /**
  * @typedef {import("../model/store.js").Store} Store
  * @typedef {import("../model/store.js").State} State
- * @typedef {import("../engine/client.js").Engine} Engine
  * @typedef {import("../engine/wire.js").Catalogue} Catalogue
  */
 
 const REACH_PX = 9; // how near a press must be to a mark
+const HANDLE_PX = 7; // and to a handle
 const SNAP_PX = 7; // how near the hair line must be to an event to jump to it
 
 /**
  * @param {HTMLElement} root
  * @param {Store} store
- * @param {Engine} _engine
+ * @param {import("./hand.js").Ask} ask
  * @param {Catalogue} catalogue
  */
-export function timelineView(root, store, _engine, catalogue) {
+export function timelineView(root, store, ask, catalogue) {
   const canvas = el("canvas", { role: "img" });
   const hairTime = el("span", { class: "hair-time" });
   const hair = el("div", { class: "hair", hidden: true, "aria-hidden": "true" }, hairTime);
@@ -34,8 +35,8 @@ export function timelineView(root, store, _engine, catalogue) {
   const paper = el("div", { class: "paper" }, canvas, pin, hair);
   const pane = el("div", {
     id: "timeline", class: "timeline", tabIndex: 0, role: "group",
-    "aria-label": "Timeline. Arrow keys pan, comma and full stop walk the events, question mark lists all keys.",
-    onkeydown: (/** @type {KeyboardEvent} */ e) => timelineKeys(e, store),
+    "aria-label": "Timeline. Arrow keys pan, comma and full stop walk the events, Alt with an arrow moves the selected one, B tries a beat, question mark lists all keys.",
+    onkeydown: (/** @type {KeyboardEvent} */ e) => hand.keys(e) || timelineKeys(e, store),
     onscroll: () => hideHair(),
   }, paper);
   root.append(pane);
@@ -79,9 +80,10 @@ export function timelineView(root, store, _engine, catalogue) {
 
   function hideHair() {
     hair.hidden = true;
+    hand.leave();
   }
 
-  /** @param {PointerEvent | WheelEvent} e */
+  /** @param {MouseEvent} e */
   function place(e) {
     const box = canvas.getBoundingClientRect();
     return { x: (e.clientX - box.left) / PX_PER_MM, y: (e.clientY - box.top) / PX_PER_MM };
@@ -118,19 +120,7 @@ export function timelineView(root, store, _engine, catalogue) {
     hairTime.classList.toggle("left", px > width - 80);
     say(hairTime, seconds(t));
     pane.classList.toggle("over-mark", hit !== null);
-    pane.classList.toggle("over-handle", handleAt(scene, x, y, REACH_PX / PX_PER_MM) >= 0);
-  }
-
-  /** The value at the pointer while something is moved. @param {number} ms */
-  function showMoved(ms) {
-    const { scene } = store.get();
-    if (!scene) return;
-    const px = placeOf(scene, ms) * PX_PER_MM;
-    hair.hidden = false;
-    hair.classList.add("snapped");
-    hair.style.transform = `translateX(${px}px)`;
-    hairTime.classList.toggle("left", px > width - 80);
-    say(hairTime, `at ${Math.round(ms)} ms`);
+    pane.classList.toggle("over-handle", hand.hover(e) !== null);
   }
 
   /** @param {PointerEvent} e */
@@ -139,10 +129,12 @@ export function timelineView(root, store, _engine, catalogue) {
     if (!scene) return;
     const { x, y } = place(e);
     const hit = nearest(scene, x, y, REACH_PX / PX_PER_MM);
+    hand.press(e);
     store.set({ selected: hit?.event ?? 0, drawer: hit && narrow() ? "account" : store.get().drawer });
   }
 
-  const hand = grip(canvas, store, { moveHair, hideHair, pick, place, showMoved }, REACH_PX);
+  const hand = handView(paper, store, ask, place, HANDLE_PX);
+  const pointers = grip(canvas, store, { moveHair, hideHair, pick, place, take: hand.take, drag: hand.drag, drop: hand.drop }, HANDLE_PX);
 
   pane.addEventListener("wheel", (e) => {
     const { scene, answer, view } = store.get();
@@ -189,11 +181,13 @@ export function timelineView(root, store, _engine, catalogue) {
         canvas.setAttribute("aria-label", `Leads and ladder diagram. ${state.answer.statement.map((c) => c.text).join("")}`);
         document.body.dataset.fingerprint = state.answer.fingerprint;
       }
+      hand.update(state, changed);
       if (changed.has("tab")) pane.hidden = state.tab !== "timeline";
     },
     destroy() {
       watch.disconnect();
       hand.destroy();
+      pointers.destroy();
       pane.remove();
     },
   };

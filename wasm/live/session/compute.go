@@ -44,6 +44,7 @@ type clause struct {
 
 type finding struct {
 	Slug   string     `json:"slug"`
+	Ratio  string     `json:"ratio"`
 	Text   string     `json:"text"`
 	Events []event.ID `json:"events"`
 	T      float64    `json:"t_ms"`
@@ -117,7 +118,7 @@ func (t *timeline) answer() *answer {
 	}
 	for i := range t.report.Findings {
 		f := &t.report.Findings[i]
-		out := finding{Slug: f.Slug, Text: f.Text, Events: list(f.Evidence), T: f.FromUS.MS(), Note: f.Note, Rivals: f.Rivals}
+		out := finding{Slug: f.Slug, Ratio: f.Ratio, Text: f.Text, Events: list(f.Evidence), T: f.FromUS.MS(), Note: f.Note, Rivals: f.Rivals}
 		if len(f.Evidence) > 0 {
 			out.T = t.log.At(f.Evidence[0]).T.MS()
 		}

@@ -8,6 +8,7 @@
 //	contrast   {}                      how the timeline differs from the one before
 //	account    {event}                 why an event came
 //	listing    {from_ms, to_ms}        events as text
+//	flip       {plan, path, low, high, step}  between which values of a number the outcome changes
 //	table      {plan, read}            the device's settings as a table, or the plan with a table read
 //	sweep      {plan, points}          some points of the plan's sweep, in columns; or its diagnoses
 //	sweep_plan {plan, point, seed}     the plan of one point
@@ -80,6 +81,8 @@ func (s *Session) Call(op string, args []byte) (reply []byte, points []float32) 
 		return s.sweep(args), nil
 	case "sweep_plan":
 		return s.sweptPlan(args), nil
+	case "flip":
+		return flip(args), nil
 	}
 	panic("session: there is no operation " + op)
 }

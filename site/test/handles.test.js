@@ -1,0 +1,134 @@
+// What is taken hold of on the timeline: handles, their values, flips, extra beats.
+
+import assert from "node:assert/strict";
+import { describe, test } from "node:test";
+import { settled } from "./host.js";
+import { onPage, openPreset, stage } from "./walk.js";
+
+/** @typedef {import("playwright-core").Page} Page */
+
+/**
+ * Moves the pointer over a part of the sheet until the tip begins with some words.
+ * @param {Page} page @param {string} words @param {{from?: number, to?: number, top?: number}} [where] in shares of the sheet
+ */
+async function findHandle(page, words, { from = 0.45, to = 0.8, top = 0.4 } = {}) {
+  const box = await page.locator("#timeline canvas").boundingBox();
+  assert.ok(box);
+  const spot = await page.evaluate(({ words, from, to, top }) => {
+    const canvas = /** @type {HTMLCanvasElement} */ (document.querySelector("#timeline canvas"));
+    const tip = /** @type {HTMLElement} */ (document.querySelector(".tip"));
+    const b = canvas.getBoundingClientRect();
+    const foot = Math.min(b.bottom, innerHeight) - 3;
+    for (let y = foot; y > b.top + top * b.height; y -= 3) {
+      for (let x = b.left + from * b.width; x < b.left + to * b.width; x += 4) {
+        canvas.dispatchEvent(new PointerEvent("pointermove", { clientX: x, clientY: y, pointerType: "mouse", pointerId: 1, bubbles: true }));
+        if (!tip.hidden && tip.textContent?.startsWith(words)) return { x, y };
+      }
+    }
+    return null;
+  }, { words, from, to, top });
+  assert.ok(spot, `nothing on the sheet moves ${words}`);
+  await page.mouse.move(spot.x, spot.y);
+  assert.ok((await page.innerText(".tip")).startsWith(words));
+  return spot;
+}
+
+/** @param {Page} page @param {string} path */
+const value = (page, path) => page.inputValue(`[data-field="${path}"]`);
+
+describe("handles", () => {
+  stage();
+
+  test("the end of PVARP is dragged: value at the pointer, one step to undo, the flip is found to 1 ms", () => onPage(async (page) => {
+    await openPreset(page, "dual-treadmill-two-to-one");
+    const first = await settled(page);
+    const at = await findHandle(page, "PVARP");
+    assert.equal(await page.locator(".over-handle").count(), 1);
+    await page.mouse.down();
+    for (let i = 1; i <= 8; i++) {
+      await page.mouse.move(at.x - 2 * i, at.y);
+      await settled(page);
+    }
+    assert.match(await page.innerText(".tip"), /^PVARP \d+ ms/);
+    await page.waitForFunction(() => {
+      const f = /** @type {HTMLElement | null} */ (document.querySelector(".flip:not(.rough)"));
+      return f && Number(f.dataset.high) - Number(f.dataset.low) === 1;
+    });
+    await page.mouse.up();
+    assert.notEqual(await settled(page), first);
+    const moved = Number(await value(page, "pacemaker.pvarp_ms"));
+    assert.ok(moved < 300 && moved >= 100, `PVARP ${moved}`);
+    assert.match(await page.innerText("#account h2"), /PVARP/);
+    await page.keyboard.press("Control+z");
+    assert.equal(await settled(page), first);
+  }));
+
+  test("Escape puts back what is being dragged and leaves nothing to undo", () => onPage(async (page) => {
+    await openPreset(page, "dual-one-to-one-to-140");
+    const first = await settled(page);
+    const at = await findHandle(page, "sensed AV delay");
+    await page.mouse.down();
+    await page.mouse.move(at.x + 12, at.y, { steps: 4 });
+    assert.notEqual(await settled(page), first);
+    await page.keyboard.press("Escape");
+    assert.equal(await settled(page), first);
+    await page.mouse.up();
+    assert.equal(await settled(page), first);
+  }));
+
+  test("a P dragged to the right slows the sinus, and the same P stays under the pointer", () => onPage(async (page) => {
+    await settled(page);
+    const at = await findHandle(page, "sinus rate", { from: 0.5, to: 0.9, top: 0.2 });
+    await page.mouse.down();
+    await page.mouse.move(at.x + 30, at.y, { steps: 6 });
+    await settled(page);
+    const sign = await page.locator(".grip-sign").boundingBox();
+    assert.ok(sign && Math.abs(sign.x + sign.width / 2 - at.x - 30) < 9, "the handle follows the pointer");
+    await page.mouse.up();
+    await settled(page);
+    assert.ok(Number(await value(page, "heart.sinus.rate_bpm")) < 75);
+  }));
+
+  test("a value at the end of its range says so", () => onPage(async (page) => {
+    await openPreset(page, "dual-one-to-one-to-140");
+    const at = await findHandle(page, "sensed AV delay", { from: 0.3, to: 0.6 });
+    await page.mouse.down();
+    await page.mouse.move(at.x + 200, at.y, { steps: 4 });
+    await settled(page);
+    assert.match(await page.innerText(".tip"), /400 ms, the most that is allowed/);
+    await page.keyboard.press("Escape");
+    await page.mouse.up();
+  }));
+
+  test("a finger drags too", () => onPage(async (page) => {
+    await openPreset(page, "dual-one-to-one-to-140");
+    const first = await settled(page);
+    const at = await findHandle(page, "PVARP");
+    const touch = await page.context().newCDPSession(page);
+    const points = (/** @type {number} */ x) => [{ x, y: at.y }];
+    await touch.send("Input.dispatchTouchEvent", { type: "touchStart", touchPoints: points(at.x) });
+    for (let i = 1; i <= 6; i++) await touch.send("Input.dispatchTouchEvent", { type: "touchMove", touchPoints: points(at.x + 4 * i) });
+    await touch.send("Input.dispatchTouchEvent", { type: "touchEnd", touchPoints: [] });
+    assert.notEqual(await settled(page), first);
+    assert.ok(Number(await value(page, "pacemaker.pvarp_ms")) > 250);
+  }));
+
+  test("Alt with an arrow moves the selected window by steps, and Shift by ten", () => onPage(async (page) => {
+    await openPreset(page, "dual-one-to-one-to-140");
+    const before = Number(await value(page, "pacemaker.pvarp_ms"));
+    const at = await findHandle(page, "PVARP");
+    await page.mouse.click(at.x - 6, at.y);
+    await settled(page);
+    assert.match(await page.innerText("#account h2"), /PVARP/);
+    await page.focus("#timeline");
+    await page.keyboard.press("Alt+ArrowRight");
+    await settled(page);
+    assert.equal(Number(await value(page, "pacemaker.pvarp_ms")), before + 5);
+    await page.keyboard.press("Alt+Shift+ArrowLeft");
+    await settled(page);
+    assert.equal(Number(await value(page, "pacemaker.pvarp_ms")), before - 45);
+    await page.keyboard.press("Control+z");
+    await settled(page);
+    assert.equal(Number(await value(page, "pacemaker.pvarp_ms")), before);
+  }));
+});
