@@ -24,6 +24,15 @@ type accountReply struct {
 	Chain     []line   `json:"chain"`             // the event, then its causes
 	Led       []line   `json:"led"`               // what it caused directly
 	Against   string   `json:"against,omitempty"` // how it differs from its partner before or after
+	Settings  []linked `json:"settings"`
+	Not       *notThat `json:"not"` // why the device did not follow a P; null elsewhere
+}
+
+// notThat is why something did not happen.
+type notThat struct {
+	Title     string   `json:"title"`
+	Sentences []string `json:"sentences"`
+	Lines     []line   `json:"lines"`
 }
 
 func (s *Session) account(args []byte) []byte {
@@ -49,7 +58,25 @@ func (s *Session) account(args []byte) []byte {
 	if a.Margin != nil {
 		r.Margin = a.Margin.Text
 	}
+	r.Settings, r.Not = t.link([]linked{}, id), t.notTracked(id, sign)
 	return encode(r)
+}
+
+// notTracked answers for a depolarisation of the atria; of a signal the account itself
+// tells it.
+func (t *timeline) notTracked(id, sign event.ID) *notThat {
+	if t.log.At(id).Kind != event.Activate || t.pacer == nil || !t.pacer.Settings.Mode.Tracks() {
+		return nil
+	}
+	w := account.WhyNotTracked(t.log, id)
+	if w == nil || len(w.Sentences) == 0 {
+		return nil
+	}
+	lines := t.lines(w.Evidence)
+	for i := range lines {
+		lines[i].ID *= sign
+	}
+	return &notThat{"Why it was not tracked", w.Sentences, lines}
 }
 
 func steps(from []account.Step, sign event.ID) []line {

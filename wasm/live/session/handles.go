@@ -35,13 +35,18 @@ type handled struct {
 // narrowest is the least width of a window on the sheet whose end has a handle, mm.
 const narrowest = 1.2
 
-func (t *timeline) handles(s *scene.Scene, o *scene.Options) handles {
-	out := handles{Values: []handled{}, List: [][]float64{}}
+// moves reads once what the events hang on.
+func (t *timeline) moves() *handle.Mover {
 	if t.mover == nil {
 		t.mover = handle.New(t.plan, t.pacer, t.log)
 	}
+	return t.mover
+}
+
+func (t *timeline) handles(s *scene.Scene, o *scene.Options) handles {
+	out := handles{Values: []handled{}, List: [][]float64{}}
 	var found []handle.Handle
-	for _, h := range t.mover.In(o.From, o.To) {
+	for _, h := range t.moves().In(o.From, o.To) {
 		if !h.End || s.Axis.X(h.T)-s.Axis.X(h.From) >= narrowest {
 			found = append(found, h)
 		}

@@ -8,6 +8,9 @@
 //	contrast   {}                      how the timeline differs from the one before
 //	account    {event}                 why an event came
 //	listing    {from_ms, to_ms}        events as text
+//	extra      {event}                 what came of a planned stimulus
+//	scan       {item, start, tries}    the coupling of one swept through the cycle, in slices
+//	gap        {t_ms}                  why the device gave no stimulus between two QRS complexes
 //	flip       {plan, path, low, high, step}  between which values of a number the outcome changes
 //	table      {plan, read}            the device's settings as a table, or the plan with a table read
 //	sweep      {plan, points}          some points of the plan's sweep, in columns; or its diagnoses
@@ -31,6 +34,7 @@ import (
 	"escapement/engine/lead"
 	"escapement/engine/measure"
 	"escapement/engine/plan"
+	"escapement/engine/study"
 )
 
 // Session is one page's engine. Use it from one goroutine.
@@ -40,6 +44,7 @@ type Session struct {
 	sweeping *sweeping // nil until a plan was swept
 	before   *timeline // nil: there is nothing to compare with
 	differs  *compared // the two, compared when first asked for
+	scanned  *study.Scan
 }
 
 // timeline is a computed plan.
@@ -81,6 +86,12 @@ func (s *Session) Call(op string, args []byte) (reply []byte, points []float32) 
 		return s.sweep(args), nil
 	case "sweep_plan":
 		return s.sweptPlan(args), nil
+	case "extra":
+		return s.extra(args), nil
+	case "scan":
+		return s.scan(args), nil
+	case "gap":
+		return s.gap(args), nil
 	case "flip":
 		return flip(args), nil
 	}

@@ -1,0 +1,85 @@
+package session
+
+import (
+	"fmt"
+	"slices"
+
+	"escapement/engine/account"
+	"escapement/engine/event"
+	"escapement/engine/tick"
+)
+
+// gapReply is why the device gave no stimulus between two QRS complexes.
+type gapReply struct {
+	From      float64  `json:"from_ms"`
+	To        float64  `json:"to_ms"`
+	Long      bool     `json:"long"` // longer than the lower-rate interval
+	Title     string   `json:"title"`
+	Sentences []string `json:"sentences"`
+	Lines     []line   `json:"lines"` // the events it rests on
+	Settings  []linked `json:"settings"`
+}
+
+// linked is a setting that had a part in something.
+type linked struct {
+	Path  string  `json:"path"`
+	Label string  `json:"label"`
+	Unit  string  `json:"unit"`
+	Value float64 `json:"value"`
+}
+
+// gap answers for the stretch between the QRS complexes around an instant; null without
+// a device that paces the ventricles, and before the first complex.
+func (s *Session) gap(args []byte) []byte {
+	var q struct {
+		T float64 `json:"t_ms"`
+	}
+	decode(args, &q)
+	t := s.current
+	if t == nil || t.pacer == nil || !t.pacer.Settings.Mode.PacesV() {
+		return none
+	}
+	at := tick.Time(tick.MS(q.T))
+	from, to := tick.Time(-1), t.log.Span
+	for i := range t.report.Beats {
+		b := &t.report.Beats[i]
+		if b.Kind == "P" {
+			continue
+		}
+		if b.T > at {
+			to = b.T
+			break
+		}
+		from = b.T
+	}
+	if from < 0 {
+		return none
+	}
+	w := account.WhyGap(t.log, from, to)
+	if w == nil {
+		return none
+	}
+	r := gapReply{From: from.MS(), To: to.MS(), Sentences: w.Sentences, Settings: []linked{},
+		Title: fmt.Sprintf("Why no stimulus for %.0f ms", to.Sub(from).MS()),
+		Long:  to.Sub(from).MS() > 60000/t.pacer.Settings.LowerRate+1}
+	evidence := slices.Clone(w.Evidence)
+	slices.Sort(evidence)
+	evidence = slices.Compact(evidence)
+	r.Lines = t.lines(evidence)
+	for _, id := range evidence {
+		if t.log.At(id).Kind == event.Window {
+			r.Settings = t.link(r.Settings, id)
+		}
+	}
+	return encode(r)
+}
+
+// link adds the settings of an event that are not yet in a list.
+func (t *timeline) link(list []linked, id event.ID) []linked {
+	for _, s := range t.moves().Settings(id) {
+		if !slices.ContainsFunc(list, func(l linked) bool { return l.Path == s.Path }) {
+			list = append(list, linked{s.Path, s.Label, s.Unit, s.Value})
+		}
+	}
+	return list
+}
