@@ -110,6 +110,13 @@ var expected = map[string][]string{
 	"his-output-steps":                {"ventricular_pacing", "sinus_rhythm", "complete_av_block", "av_dissociation", "loss_of_capture"},
 	"vdd-mechanical-sensing":          {"upper_rate_wenckebach", "upper_rate_two_to_one", "p_synchronous_pacing", "sinus_tachycardia", "complete_av_block"},
 
+	// With a sweep: the strip is one point of it.
+	"map-upper-rate":       {"upper_rate_wenckebach", "p_synchronous_pacing", "sinus_tachycardia"},
+	"map-endless-loop":     {"endless_loop_tachycardia", "p_synchronous_pacing", "sinus_rhythm", "premature_ventricular", "retrograde_conduction"},
+	"map-premature-beat":   {"p_synchronous_pacing", "sinus_rhythm"},
+	"map-pacing-site":      {"p_synchronous_pacing", "sinus_rhythm", "fusion_beat"},
+	"map-wenckebach-steps": {"atrial_stimulation", "functional_av_block"},
+
 	// Whether the definitions apply depends on the rate the preset is given: from
 	// 100/min the finding is functional block.
 	"two-to-one-nodal": nil,
