@@ -6,6 +6,7 @@ WASM    := $(SITE)/engine/escapement.wasm
 PRESS   := $(SITE)/engine/press/build
 EDGE    := wasm/press/edge/build
 PORT    ?= 8017
+VERSION := $(shell git describe --tags --always 2>/dev/null)
 # The print service runs in the page's worker and at the edge through this library;
 # its version is the one in go.mod.
 WORKERS := $(GO) run github.com/syumai/workers/cmd/workers-assets-gen -mode=go
@@ -25,7 +26,7 @@ run: site ## build the site and serve it on this machine
 .PHONY: site
 site: need-go ## build site/dist, ready for any static host
 	@rm -rf $(SITE) && mkdir -p $(SITE)
-	@cd site && cp -R $(PARTS) dist/
+	@cd site && cp -R $(PARTS) dist/ && sed 's/name="version" content=""/name="version" content="$(VERSION)"/' index.html >dist/index.html
 	@cp "$$($(GO) env GOROOT)/lib/wasm/wasm_exec.js" $(SITE)/engine/
 	@GOOS=js GOARCH=wasm $(GO) build -trimpath -ldflags="-s -w" -o $(WASM) ./wasm/live
 	@$(WORKERS) -runtime=browser -o $(PRESS)

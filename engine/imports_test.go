@@ -50,7 +50,7 @@ var allowed = map[string][]string{
 	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
 		"engine/contrast", "engine/account", "engine/handle", "engine/nomenclature", "engine/numbers", "engine/scene", "engine/study", "presets",
 		"engine/sweep"},
-	"wasm/press/service": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/ladder", "engine/report", "engine/scene", "engine/press", "presets"},
+	"wasm/press/service": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/ladder", "engine/numbers", "engine/export", "engine/report", "engine/scene", "engine/press", "presets"},
 }
 
 // top are the programs: they wire everything, and nothing imports them.

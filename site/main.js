@@ -5,6 +5,7 @@ import { keepDark, wantsDark } from "./base/sheet.js";
 import { note } from "./base/timing.js";
 import { startEngine } from "./engine/client.js";
 import { conduct } from "./engine/conductor.js";
+import { startPress } from "./engine/press.js";
 import { EMPTY } from "./model/document.js";
 import { openShelf } from "./model/kept.js";
 import { decodeLink, PREFIX } from "./model/link.js";
@@ -24,6 +25,7 @@ import { menu } from "./views/menu.js";
 import { noticeView } from "./views/notice.js";
 import { overviewView } from "./views/overview.js";
 import { presetsDialog } from "./views/presets.js";
+import { printDialog } from "./views/print.js";
 import { settingsView } from "./views/settings.js";
 import { tableView } from "./views/table.js";
 import { timelineView } from "./views/timeline.js";
@@ -57,6 +59,10 @@ const engine = startEngine(new URL("engine/worker.js", import.meta.url), (busy) 
   document.body.dataset.busy = String(busy);
 });
 
+/** The print service, which starts when it is first asked. @type {import("./engine/press.js").Press | null} */
+let press = null;
+const pressing = () => (press ??= startPress(new URL("engine/press/worker.js", import.meta.url)));
+
 const { ask, compute, request } = conduct(store, engine);
 
 const shelf = openShelf(() => localStorage);
@@ -69,6 +75,7 @@ function build(catalogue, found) {
   keepWork(store, shelf, found, notices, catalogue.presets, { saveFile: file.save, openKept: kept.open });
   const keys = keysDialog();
   const presets = presetsDialog(store, catalogue);
+  const print = printDialog(store, pressing);
   const settings = settingsView(part("settings"), store, catalogue, tableView(store, ask));
   const open = {
     presets: presets.open,
@@ -88,7 +95,7 @@ function build(catalogue, found) {
   ]);
   const views = [
     faultView(part("fault"), store, compute),
-    headView(part("head"), store, catalogue.presets, open, [files.node]),
+    headView(part("head"), store, catalogue.presets, open, [files.node, print.button]),
     settings,
     toolbarView(part("centre"), store),
     timelineView(part("centre"), store, ask, catalogue),
@@ -110,6 +117,7 @@ function build(catalogue, found) {
     "ctrl s": kept.keep,
     k: kept.open,
     l: file.copyLink,
+    "ctrl p": print.open,
   });
 
   const pending = new Set(Object.keys(store.get())); // the first time everything is new

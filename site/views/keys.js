@@ -35,6 +35,7 @@ export const KEYS = [
     ["Ctrl S", "keep the plan in this browser"],
     ["K", "kept plans"],
     ["L", "copy a link with the plan in it"],
+    ["Ctrl P", "print or export; in that dialog: save"],
     ["Ctrl Z", "undo; with Shift, or Ctrl Y, redo"],
     ["?", "this list"],
   ]],

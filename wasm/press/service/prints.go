@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"maps"
 	"net/http"
 	"slices"
 	"strings"
@@ -30,7 +31,7 @@ type maker func(*Request) (*printed, error)
 
 // routes are the answers by name and format.
 var routes = map[string]map[string]maker{
-	"strip":  drawings(strip),
+	"strip":  also(drawings(strip), exports),
 	"ladder": drawings(ladderAlone),
 	"twelve": drawings(twelve),
 
@@ -48,6 +49,11 @@ func Routes() []string {
 	}
 	slices.Sort(all)
 	return all
+}
+
+func also(a, b map[string]maker) map[string]maker {
+	maps.Copy(a, b)
+	return a
 }
 
 // drawings are the formats in which pages can be had.

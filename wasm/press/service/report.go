@@ -39,7 +39,7 @@ func comparison(r *Request) ([]*scene.Scene, error) {
 	if err != nil {
 		return nil, err
 	}
-	pages, err := report.Compare(cases, [2]string{"before", "after"}, nil, o)
+	pages, err := report.Compare(cases, [2]string{"before", "after"}, report.Differences(cases[0], cases[1]), o)
 	return pages, r.room(err)
 }
 

@@ -45,7 +45,7 @@ func refused(t *testing.T, w *httptest.ResponseRecorder) told {
 // Every print in every format, from a preset: the status, the kind of file by its
 // first bytes, a length that is true.
 func TestEveryRouteAnswers(t *testing.T) {
-	begins := map[string]string{"pdf": "%PDF", "png": "\x89PNG", "svg": "<svg"}
+	begins := map[string]string{"pdf": "%PDF", "png": "\x89PNG", "svg": "<svg", "edf": "0       ", "csv": "event", "json": "{"}
 	for _, route := range Routes() {
 		t.Run(route, func(t *testing.T) {
 			w := ask(t, route+"?plan=dual-upper-rate-wenckebach&before=normal&dots_mm=3&to_ms=5000&date=2026-12-01&version=0.9", "")
