@@ -82,8 +82,11 @@ export function printDialog(store, press) {
   /** @param {Partial<Choice>} patch */
   function set(patch) {
     choice = { ...choice, page: 1, ...patch };
-    if ("print" in patch) choice.format = FORMATS[choice.print === "data" ? "data" : "drawing"][0][0];
-    if ("print" in patch) choice.paper = usualPaper(choice.print);
+    if ("print" in patch) {
+      choice.format = FORMATS[choice.print === "data" ? "data" : "drawing"][0][0];
+      choice.paper = usualPaper(choice.print);
+      choice.ladder = choice.print === "twelve" ? "none" : store.get().view.ladder;
+    }
     paint();
     clearTimeout(timer);
     timer = window.setTimeout(preview, QUIET_MS);
@@ -105,6 +108,7 @@ export function printDialog(store, press) {
     gain.row.hidden = data || choice.print === "ladder";
     leadsRow.hidden = choice.print === "ladder" || choice.print === "twelve" || (data && choice.format !== "edf");
     deviceRow.hidden = data || !answer?.device || choice.ladder === "none";
+    frame.hidden = data;
     say(leads, data ? "all twelve" : view.leads.length === 12 ? "all twelve, as on the timeline" : view.leads.length ? `${view.leads.join(", ")}, as on the timeline` : "none, as on the timeline");
     say(save, `Save ${FORMATS.drawing.concat(FORMATS.data).find(([f]) => f === choice.format)?.[1] ?? ""}`);
   }
@@ -201,7 +205,7 @@ export function printDialog(store, press) {
     choice = {
       ...choice, page: 1, paper: choice.paper || usualPaper(choice.print),
       speed: SPEEDS.includes(view.mm_per_s) ? view.mm_per_s : 25, gain: GAINS.includes(view.mm_per_mv) ? view.mm_per_mv : 10,
-      ladder: view.ladder, device: !view.no_device,
+      ladder: choice.print === "twelve" ? "none" : view.ladder, device: !view.no_device,
     };
     if (choice.print === "comparison" && !(/** @type {any} */ (store.get()).before)) choice.print = "strip";
     paint();
