@@ -97,7 +97,7 @@ function build(catalogue, found) {
     faultView(part("fault"), store, compute),
     headView(part("head"), store, catalogue.presets, open, [files.node, print.button]),
     settings,
-    toolbarView(part("centre"), store),
+    toolbarView(part("centre"), store, catalogue),
     timelineView(part("centre"), store, ask, catalogue),
     listingView(part("centre"), store, engine),
     accountView(part("account"), store),

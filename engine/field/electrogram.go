@@ -43,6 +43,9 @@ var electrodes = []Electrode{
 	{"LV", "left ventricular lateral vein", "lv_lateral"},
 }
 
+// Shapes are the action potentials of the ventricles and the atria.
+func Shapes() (ventricles, atria tissue.Shape) { return parts()[0].Shape, parts()[1].Shape }
+
 // Electrodes lists the pairs in the usual order of a recording.
 func Electrodes() []Electrode { return append([]Electrode(nil), electrodes...) }
 

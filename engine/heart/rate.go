@@ -75,3 +75,23 @@ func (r Rate) Next(from tick.Time, cycles float64) tick.Time {
 		return t.Add(tick.Dur(math.RoundToEven(2 * cycles / (rate + root) * float64(tick.Minute))))
 	}
 }
+
+// Cycles is the integral of the rate between two instants: how many cycles the focus
+// runs through.
+func (r Rate) Cycles(from, to tick.Time) float64 {
+	sum := 0.0
+	for t := from; t < to; {
+		i := r.after(t)
+		end := to
+		if i < len(r) {
+			end = min(end, r[i].T)
+		}
+		last := r.At(t)
+		if i > 0 && i < len(r) {
+			last = along(r[i-1], r[i], end)
+		}
+		sum += float64(float64(end.Sub(t)) / float64(tick.Minute) * float64(0.5*(r.At(t)+last)))
+		t = end
+	}
+	return sum
+}

@@ -17,6 +17,7 @@ type Sampled struct {
 	Label   string    // for the margin
 	MV      []float32 // at the leads' sampling times
 	MMPerMV float64
+	ClipMM  float64 // nothing is drawn further from zero, as recorders do it; 0 for no limit
 	Levels  []Level // potentials marked by a line through the lane
 	Arrows  []Arrow
 }
@@ -66,7 +67,7 @@ func (s *sheet) lanes(page []row) (rows []row, rest []string) {
 		default:
 			if i := slices.IndexFunc(s.in.Signals, func(g Sampled) bool { return g.Name == name }); i >= 0 {
 				g := &s.in.Signals[i]
-				part := segment{name: g.Label, mv: g.MV, gain: g.MMPerMV, from: s.o.From, to: s.o.To}
+				part := segment{name: g.Label, mv: g.MV, gain: g.MMPerMV, clip: g.ClipMM, from: s.o.From, to: s.o.To}
 				rows, rest = append(rows, row{parts: []segment{part}, signal: g}), append(rest, name)
 			}
 		}
@@ -98,6 +99,9 @@ func (r *row) measure(o *Options) {
 			r.up, r.down = max(r.up, 0.5*p.gain), max(r.down, 0.3*p.gain)
 		}
 		low, high := extent(p.mv)
+		if p.clip > 0 {
+			low, high = max(low, -p.clip/p.gain), min(high, p.clip/p.gain)
+		}
 		r.up, r.down = max(r.up, high*p.gain), max(r.down, -low*p.gain)
 	}
 	r.up, r.down = math.Ceil(r.up+0.5), math.Ceil(r.down+0.5)
@@ -146,14 +150,14 @@ func (s *sheet) scales() string {
 	if s.in.Record != nil && slices.ContainsFunc(s.Lanes, func(l Lane) bool { return strings.HasPrefix(l.Name, "lead:") }) {
 		text += ", " + trim(s.o.MMPerMV) + " mm/mV"
 	}
-	for _, k := range [...]struct{ prefix, name string }{{"egm:", "electrograms"}, {"membrane:", "action potentials"}} {
-		for i := range s.in.Signals {
-			g := &s.in.Signals[i]
-			if strings.HasPrefix(g.Name, k.prefix) && slices.ContainsFunc(s.Lanes, func(l Lane) bool { return l.Name == g.Name }) {
-				text += ", " + k.name + " " + trim(g.MMPerMV) + " mm/mV"
-				break
-			}
+	for i := range s.in.Signals {
+		g := &s.in.Signals[i]
+		if slices.ContainsFunc(s.Lanes, func(l Lane) bool { return l.Name == g.Name }) {
+			text += ", " + g.Label + " " + g.scale()
 		}
 	}
 	return text + ". Numbers in ms."
 }
+
+// scale is the lane's own scale in words.
+func (g *Sampled) scale() string { return trim(g.MMPerMV) + " mm/mV" }

@@ -17,6 +17,7 @@ type segment struct {
 	name     string
 	mv       []float32
 	gain     float64 // mm a millivolt
+	clip     float64 // nothing is drawn further from zero, mm; 0 for no limit
 	from, to tick.Time
 }
 
@@ -162,6 +163,9 @@ func (s *sheet) placeName(r *row) {
 		y = (r.lane.Y0 + r.lane.Y1) / 2
 	}
 	s.place(Mark{Shape: Text, Class: LaneLabel, X: pad, Y: y + 0.35*h, Text: r.signal.Label})
+	if small := TierLabel.height(h); len(r.signal.Levels) == 0 && r.lane.Y1-y > 0.35*h+leading*small {
+		s.place(Mark{Shape: Text, Class: TierLabel, X: pad, Y: y + 0.35*h + leading*small, Text: r.signal.scale()})
+	}
 }
 
 // waves lays the areas of P and QRS-T for hit testing, and the halo of the
@@ -198,7 +202,11 @@ func (s *sheet) trace(c Class, p segment, zero float64, from, to tick.Time, id e
 	perSample := s.o.MMPerS * lead.Step.MS() / 1000 / s.o.ColumnMM
 	point := func(k int) Point {
 		x := s.Axis.X(tick.Time(k) * tick.Time(lead.Step))
-		return Point{float32(x), float32(zero - float64(float64(mv[k])*p.gain))}
+		up := float64(float64(mv[k]) * p.gain)
+		if p.clip > 0 {
+			up = min(max(up, -p.clip), p.clip)
+		}
+		return Point{float32(x), float32(zero - up)}
 	}
 	points := make([]Point, 0, min(last-first+1, 2*int(perSample*float64(last-first+1))+8))
 	points = append(points, point(first))

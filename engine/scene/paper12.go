@@ -1,6 +1,8 @@
 package scene
 
 import (
+	"strings"
+
 	"escapement/engine/lead"
 	"escapement/engine/tick"
 )
@@ -11,6 +13,18 @@ import (
 type Form12 struct {
 	Columns int
 	Rhythm  bool // the leads of [Options.Leads] below, each over the whole window
+}
+
+// ParseForm12 reads a form as the trade says it, rows by columns, "3x4", "6x2" or "12x1",
+// with " + rhythm" after it or not.
+func ParseForm12(name string) (Form12, bool) {
+	rows, rhythm := strings.CutSuffix(name, " + rhythm")
+	for columns, n := range [...]string{4: "3x4", 2: "6x2", 1: "12x1"} {
+		if n == rows && n != "" {
+			return Form12{Columns: columns, Rhythm: rhythm}, true
+		}
+	}
+	return Form12{}, false
 }
 
 // order of the twelve leads on paper, column by column (common practice).

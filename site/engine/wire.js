@@ -51,6 +51,7 @@
  * @property {Field[]} fields
  * @property {Preset[]} presets
  * @property {SiteName[]} sites
+ * @property {SiteName[]} lanes electrograms and action potentials that a view may show
  * @property {string[]} modes of pacing, without the letters for rate modulation and multisite pacing
  * @property {{light: Styles, dark: Styles}} styles
  * @property {{plain: number, full: number}} margins_mm what a scene needs beside its time axis

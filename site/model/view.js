@@ -9,7 +9,10 @@ import { clamp } from "../base/scale.js";
  * @property {number} height_mm room from top to bottom
  * @property {number} mm_per_s paper speed
  * @property {number} mm_per_mv gain
- * @property {string[]} leads shown, in the usual order
+ * @property {string[]} lanes shown, from top to bottom: "lead:II", "egm:HISd", "membrane:his", "axis", "ladder", "device"
+ * @property {string[]} leads those among the lanes, in the usual order
+ * @property {string} paper the twelve leads in a form of paper instead of the lanes' leads, "3x4 + rhythm"; "" for none
+ * @property {number} egm_gain of electrograms, mm a millivolt
  * @property {"plain" | "full"} ladder
  * @property {boolean} ladder_chosen by hand; else it goes by the room there is
  * @property {boolean} no_device the device's lane is left out
@@ -17,6 +20,8 @@ import { clamp } from "../base/scale.js";
 
 export const SPEEDS = [25, 50];
 export const GAINS = [5, 10, 20];
+/** The twelve leads on paper, rows by columns. */
+export const PAPERS = ["3x4 + rhythm", "3x4", "6x2", "6x2 + rhythm", "12x1"];
 export const LEADS = ["I", "II", "III", "aVR", "aVL", "aVF", "V1", "V2", "V3", "V4", "V5", "V6"];
 
 /** Slowest and fastest free zoom, in mm/s. */
@@ -24,7 +29,7 @@ const MIN_SPEED = 1;
 const MAX_SPEED = 800;
 
 /** @type {View} */
-export const FIRST_VIEW = { t0_ms: 0, width_mm: 200, height_mm: 140, mm_per_s: 25, mm_per_mv: 10, leads: ["I", "II", "V1", "V6"], ladder: "plain", ladder_chosen: false, no_device: false };
+export const FIRST_VIEW = { t0_ms: 0, width_mm: 200, height_mm: 140, mm_per_s: 25, mm_per_mv: 10, lanes: ["lead:I", "lead:II", "lead:V1", "lead:V6", "axis", "ladder", "device"], leads: ["I", "II", "V1", "V6"], paper: "", egm_gain: 10, ladder: "plain", ladder_chosen: false, no_device: false };
 
 /** A sheet as high as this, in CSS pixels, has room for every level of the ladder. */
 const FULL_FROM_PX = 760;

@@ -2,7 +2,9 @@
 
 import { el, fill, say } from "../base/dom.js";
 import { num } from "../base/format.js";
-import { fitSpeed, GAINS, LEADS, shown, SPEEDS, zoomTo } from "../model/view.js";
+import { arrange, withLeads } from "../model/lanes.js";
+import { fitSpeed, GAINS, LEADS, PAPERS, shown, SPEEDS, zoomTo } from "../model/view.js";
+import { lanesPop } from "./lanes.js";
 
 /**
  * @typedef {import("../model/store.js").Store} Store
@@ -21,8 +23,9 @@ const SETS = [
 /**
  * @param {HTMLElement} root
  * @param {Store} store
+ * @param {import("../engine/wire.js").Catalogue} catalogue
  */
-export function toolbarView(root, store) {
+export function toolbarView(root, store, catalogue) {
   const view = () => store.get().view;
   /** @param {Partial<import("../model/view.js").View>} patch */
   const set = (patch) => store.change({ view: { ...view(), ...patch } }, "");
@@ -35,24 +38,33 @@ export function toolbarView(root, store) {
     store.set({ view: zoomTo(v, mm_per_s, v.t0_ms + shown(v) / 2, answer.span_ms) });
   }
 
+  /** Shows exactly these leads, as strips. @param {string[]} leads */
+  const pick = (leads) => store.change({ view: { ...arrange(view(), withLeads(view().lanes, leads)), paper: "" } }, "");
+
   const boxes = LEADS.map((lead) => el("input", {
     type: "checkbox", value: lead,
     onchange: () => {
-      const leads = LEADS.filter((l, i) => boxes[i].checked);
-      set({ leads });
+      pick(LEADS.filter((l, i) => boxes[i].checked));
     },
   }));
+  const papers = PAPERS.map((p) => press(p, () => set({ paper: view().paper === p ? "" : p }), `Rows by columns that follow one another in time: ${p}`));
   const leadsName = el("span", { class: "chosen" });
   const leads = el("details", { class: "pop" },
     el("summary", null, "Leads ", leadsName),
     el("div", { class: "pop-body" },
-      el("div", { class: "choices" }, SETS.map(([name, list]) => el("button", { type: "button", onclick: () => set({ leads: list }) }, name))),
-      el("div", { class: "boxes" }, boxes.map((b) => el("label", null, b, b.value)))));
-  const closeLeads = (/** @type {Event} */ e) => {
-    if (e instanceof KeyboardEvent ? e.key === "Escape" : !leads.contains(/** @type {Node} */ (e.target))) leads.open = false;
+      el("div", { class: "choices" }, SETS.map(([name, list]) => el("button", { type: "button", onclick: () => pick(list) }, name))),
+      el("div", { class: "boxes" }, boxes.map((b) => el("label", null, b, b.value))),
+      el("h3", null, "All twelve as on paper"),
+      el("div", { class: "choices", id: "papers" }, papers)));
+  const lanes = lanesPop(store, catalogue);
+  const pops = [leads, lanes.root];
+  const closePops = (/** @type {Event} */ e) => {
+    for (const p of pops) {
+      if (e instanceof KeyboardEvent ? e.key === "Escape" && p.contains(/** @type {Node} */ (e.target)) : !p.contains(/** @type {Node} */ (e.target))) p.open = false;
+    }
   };
-  document.addEventListener("pointerdown", closeLeads);
-  leads.addEventListener("keydown", closeLeads);
+  document.addEventListener("pointerdown", closePops);
+  for (const p of pops) p.addEventListener("keydown", closePops);
 
   const speeds = SPEEDS.map((s) => press(String(s), () => speed(s), `${s} millimetres a second`));
   const fit = press("whole", () => {
@@ -62,9 +74,6 @@ export function toolbarView(root, store) {
   const current = el("span", { class: "reading" });
   const gains = GAINS.map((gain) => press(String(gain), () => set({ mm_per_mv: gain }), `${gain} millimetres a millivolt`));
   const ladders = /** @type {const} */ (["plain", "full"]).map((l) => press(l, () => set({ ladder: l, ladder_chosen: true }), l === "plain" ? "Atria, node, ventricles" : "Every level of the conduction system"));
-  const lane = press("Device", () => set({ no_device: !view().no_device }), "What the device sensed, gave and waited for");
-  lane.id = "device-lane";
-  const device = el("div", { class: "group" }, lane);
   const tabs = /** @type {const} */ (["timeline", "listing"]).map((t) => el("button", {
     type: "button", role: "tab", id: `tab-${t}`, onclick: () => store.set({ tab: t }),
   }, t === "timeline" ? "Timeline" : "Listing"));
@@ -73,14 +82,14 @@ export function toolbarView(root, store) {
     el("button", { type: "button", class: "drawer-open", id: "open-settings", onclick: () => store.set({ drawer: "settings" }) }, "Settings"),
     el("div", { class: "tabs", role: "tablist", "aria-label": "Timeline or listing" }, tabs),
     leads,
+    lanes.root,
     group("Speed", speeds, fit, el("button", { type: "button", onclick: () => speed(view().mm_per_s / 1.25), "aria-label": "Squeeze time" }, "−"),
       el("button", { type: "button", onclick: () => speed(view().mm_per_s * 1.25), "aria-label": "Stretch time" }, "+"), current),
     group("Gain", gains),
     group("Ladder", ladders),
-    device,
     el("button", { type: "button", class: "drawer-open last", id: "open-account", onclick: () => store.set({ drawer: "account" }) }, "Account"));
   root.append(bar);
-  const drawing = [leads, ...bar.querySelectorAll(".group")]; // of no use to the listing
+  const drawing = [leads, lanes.root, ...bar.querySelectorAll(".group")]; // of no use to the listing
 
   return {
     /** @param {State} state @param {Set<string>} changed */
@@ -89,23 +98,23 @@ export function toolbarView(root, store) {
         tabs.forEach((b) => b.setAttribute("aria-selected", String(b.id === `tab-${state.tab}`)));
         for (const d of drawing) d.toggleAttribute("hidden", state.tab !== "timeline");
       }
-      device.hidden = state.tab !== "timeline" || !state.answer?.device;
       if (!changed.has("view") && !changed.has("answer")) return;
       const v = state.view;
       boxes.forEach((b) => {
         b.checked = v.leads.includes(b.value);
       });
-      say(leadsName, v.leads.length === 12 ? "all" : v.leads.length === 0 ? "none" : v.leads.length > 4 ? `${v.leads.length} of 12` : v.leads.join(", "));
+      lanes.update(state);
+      papers.forEach((b) => mark(b, b.textContent === v.paper));
+      say(leadsName, v.paper !== "" ? v.paper : v.leads.length === 12 ? "all" : v.leads.length === 0 ? "none" : v.leads.length > 4 ? `${v.leads.length} of 12` : v.leads.join(", "));
       speeds.forEach((b, i) => mark(b, Math.abs(v.mm_per_s - SPEEDS[i]) < 0.01));
       mark(fit, state.answer !== null && Math.abs(v.mm_per_s - fitSpeed(v, state.answer.span_ms)) < 0.01);
       const named = [...speeds, fit].some((b) => b.getAttribute("aria-pressed") === "true");
       say(current, named ? "" : num(v.mm_per_s, v.mm_per_s < 10 ? 1 : 0));
       gains.forEach((b, i) => mark(b, v.mm_per_mv === GAINS[i]));
       ladders.forEach((b) => mark(b, b.textContent === v.ladder));
-      mark(lane, !v.no_device);
     },
     destroy() {
-      document.removeEventListener("pointerdown", closeLeads);
+      document.removeEventListener("pointerdown", closePops);
       fill(bar);
       bar.remove();
     },

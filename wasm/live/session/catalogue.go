@@ -3,6 +3,7 @@ package session
 import (
 	"encoding/json"
 
+	"escapement/engine/field"
 	"escapement/engine/heart"
 	"escapement/engine/pacer"
 	"escapement/engine/plan"
@@ -14,6 +15,7 @@ type catalogueReply struct {
 	Fields  []plan.Field `json:"fields"`
 	Presets []preset     `json:"presets"`
 	Sites   []site       `json:"sites"`
+	Lanes   []site       `json:"lanes"` // electrograms and action potentials that a view may show
 	Modes   []string     `json:"modes"` // of a device, without letters IV and V
 	Styles  struct {
 		Light json.RawMessage `json:"light"`
@@ -46,6 +48,13 @@ func catalogue() *catalogueReply {
 		r.Presets = append(r.Presets, preset{e, file})
 	}
 	r.Sites = sites()
+	for _, e := range field.Electrodes() {
+		r.Lanes = append(r.Lanes, site{"egm:" + e.Name, e.Label})
+	}
+	r.Lanes = append(r.Lanes, site{"egm:A", "the device's atrial lead"}, site{"egm:V", "the device's ventricular lead"})
+	for _, s := range r.Sites {
+		r.Lanes = append(r.Lanes, site{"membrane:" + s.Name, s.Label})
+	}
 	r.Styles.Light = scene.StylesJSON(false)
 	r.Styles.Dark = scene.StylesJSON(true)
 	return r

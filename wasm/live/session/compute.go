@@ -10,6 +10,7 @@ import (
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
 	"escapement/engine/measure"
+	"escapement/engine/membrane"
 	"escapement/engine/numbers"
 	"escapement/engine/plan"
 	"escapement/engine/sim"
@@ -101,7 +102,8 @@ func (s *Session) run(file []byte) (*timeline, error) {
 	if log.Span <= numbers.LeadsUpTo {
 		rec = s.field.Record(log)
 	}
-	return &timeline{file: file, plan: p, pacer: prog.Device, log: log, record: rec, drawn: pressed(log, rec), report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{}, field: s.field, signals: map[string][]float32{}}, nil
+	return &timeline{file: file, plan: p, pacer: prog.Device, log: log, record: rec, drawn: pressed(log, rec), report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{},
+		field: s.field, hearts: inForce(prog), signals: map[string][]float32{}, membrane: map[string]*membrane.Trace{}}, nil
 }
 
 func (t *timeline) answer() *answer {

@@ -33,6 +33,7 @@ import (
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
 	"escapement/engine/measure"
+	"escapement/engine/membrane"
 	"escapement/engine/plan"
 	"escapement/engine/study"
 )
@@ -59,7 +60,9 @@ type timeline struct {
 	diagrams map[ladder.Form]*ladder.Diagram // made when first drawn
 	mover    *handle.Mover                   // likewise
 	field    *field.Field
-	signals  map[string][]float32 // electrograms, made when first drawn
+	hearts   []membrane.InForce
+	signals  map[string][]float32       // electrograms, made when first drawn
+	membrane map[string]*membrane.Trace // likewise, by site
 }
 
 // New is a session without a timeline.

@@ -32,10 +32,9 @@ type view struct {
 
 		NoDevice bool `json:"no_device"` // leave the device's lane out
 
-		Lanes   []string `json:"lanes"`     // from top to bottom; none: the leads, axis, ladder, device
-		EGMGain float64  `json:"egm_gain"`  // of electrograms, mm a millivolt; 0: 10
-		Paper   string   `json:"paper"`     // "3x4", "6x2" or "12x1": the twelve leads as on paper, above the other lanes
-		Rhythm  bool     `json:"no_rhythm"` // leave out the rhythm strip of a paper form
+		Lanes   []string `json:"lanes"`    // from top to bottom; none: the leads, axis, ladder, device
+		EGMGain float64  `json:"egm_gain"` // of electrograms, mm a millivolt; 0: 10
+		Paper   string   `json:"paper"`    // "3x4 + rhythm" and the like: the twelve leads as on paper, above the other lanes
 	} `json:"view"`
 	Selected event.ID `json:"selected"`
 }
@@ -69,9 +68,8 @@ func (t *timeline) scene(q *view) ([]byte, []float32) {
 	o.Margin = margin
 	in.Signals = t.sampled(o.Lanes, q.View.EGMGain)
 	lay := scene.Strip
-	if columns, ok := papers[q.View.Paper]; ok {
-		lay, o.Paper = scene.Paper12, scene.Form12{Columns: columns, Rhythm: !q.View.Rhythm}
-		o.Leads = []lead.Name{lead.II}
+	if form, ok := scene.ParseForm12(q.View.Paper); ok {
+		lay, o.Paper, o.Leads = scene.Paper12, form, nil
 	}
 	o.LadderMM, o.Closer = fit(lay, in, o, q.View.Height)
 	drawn := lay(in, o)
@@ -96,10 +94,6 @@ const (
 	leastTier = 9.5
 	mostTier  = 26
 )
-
-// papers are the forms of twelve leads by their name, rows by columns as said in the
-// trade, with their columns.
-var papers = map[string]int{"3x4": 4, "6x2": 2, "12x1": 1}
 
 // fit shares the page's room out: the ladder takes what the other lanes leave. Where that is
 // too little for it, the lanes of signals move closer. A strip of no length tells how
