@@ -62,7 +62,9 @@ func (s *sheet) signals(rows []row) {
 		r := &rows[i]
 		s.levels(r)
 		for j, p := range r.parts {
-			s.spikes(r, p)
+			if r.signal == nil || len(r.signal.Levels) == 0 { // a membrane shows no artefact
+				s.spikes(r, p)
+			}
 			s.trace(Trace, p, r.zero, p.from, p.to, 0)
 			if len(r.parts) > 1 {
 				s.heading12(r, p, j > 0)
@@ -164,7 +166,11 @@ func (s *sheet) placeName(r *row) {
 	}
 	s.place(Mark{Shape: Text, Class: LaneLabel, X: pad, Y: y + 0.35*h, Text: r.signal.Label})
 	if small := TierLabel.height(h); len(r.signal.Levels) == 0 && r.lane.Y1-y > 0.35*h+leading*small {
-		s.place(Mark{Shape: Text, Class: TierLabel, X: pad, Y: y + 0.35*h + leading*small, Text: r.signal.scale()})
+		text := r.signal.scale()
+		if TierLabel.Width(text, h) > s.Axis.X0-pad-0.5 {
+			text = trim(r.signal.MMPerMV) + "/mV"
+		}
+		s.place(Mark{Shape: Text, Class: TierLabel, X: pad, Y: y + 0.35*h + leading*small, Text: text})
 	}
 }
 

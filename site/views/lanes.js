@@ -49,7 +49,7 @@ export function lanesPop(store, catalogue) {
           part("fixed", "Besides the leads", ""),
           part("egm", "Electrograms", "Between two electrodes within the heart, through a recorder's 30 Hz high pass, cut off at 9 mm. HIS at twice the gain."),
           el("div", { class: "group", role: "group", "aria-label": "Gain of electrograms, mm a millivolt" }, el("span", { class: "label" }, "mm/mV"), gains),
-          part("membrane", "Action potentials", "Of a site: phases 0 to 4 at its own times. A barred arrow is an impulse that came too early. Dashed: 0 mV and a focus's threshold.")))));
+          part("membrane", "Action potentials", "Of a site: phases 0 to 4 at its own times. A barred line is an impulse that came too early; the AV node stays refractory beyond its action potential. Dashed: 0 mV and a focus's threshold.")))));
 
   /** @param {string} lane @param {number} by */
   function move(lane, by) {
