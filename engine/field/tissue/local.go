@@ -105,8 +105,8 @@ func (l *Local) Signal(p *Part, row *Row, at, until []int32) []float32 {
 	n := LeadIn + fallBin*len(l.repol) + fallAfter
 	l.sum = append(l.sum[:0], make([]float64, n)...)
 	scale := float64(row.Step) / (farParts * farParts * localShare)
-	spreadOne(l.sum, l.depol, scale/riseBin, l.rise, LeadIn-riseReach, riseBin)
-	spreadOne(l.sum, l.repol, scale/fallBin, l.fall, LeadIn-fallBefore, fallBin)
+	spreadOne(l.sum, l.depol, scale, l.rise, LeadIn-riseReach, riseBin)
+	spreadOne(l.sum, l.repol, scale, l.fall, LeadIn-fallBefore, fallBin)
 	out := make([]float32, n)
 	v := 0.0
 	for i, d := range l.sum {
