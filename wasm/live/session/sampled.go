@@ -58,7 +58,7 @@ func (t *timeline) sampled(lanes []string, gain float64) []scene.Sampled {
 }
 
 func (t *timeline) membraneLane(name, site string, m *membrane.Trace) scene.Sampled {
-	g := scene.Sampled{Name: name, Label: short(site), MV: m.MV, MMPerMV: membraneGain, Levels: []scene.Level{{MV: 0, Text: "0"}}}
+	g := scene.Sampled{Name: name, Label: inMargin(site), MV: m.MV, MMPerMV: membraneGain, Levels: []scene.Level{{MV: 0, Text: "0"}}}
 	if m.Focus {
 		g.Levels = append(g.Levels, scene.Level{MV: m.Threshold})
 	}
@@ -68,8 +68,8 @@ func (t *timeline) membraneLane(name, site string, m *membrane.Trace) scene.Samp
 	return g
 }
 
-// short is a site's name for a margin: the trade's abbreviations.
-func short(site string) string {
+// inMargin is a site's name for a margin: the trade's abbreviations.
+func inMargin(site string) string {
 	names := map[string]string{"sinus": "sinus", "right_atrium": "RA", "left_atrium": "LA", "atrial_septum": "septum A", "av_junction": "AV node", "his": "His",
 		"right_bundle": "RBB", "left_bundle": "LBB", "left_anterior": "LAF", "left_posterior": "LPF", "left_septal": "LSF"}
 	if n, ok := names[site]; ok {
