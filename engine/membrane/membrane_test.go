@@ -99,7 +99,9 @@ func TestPhase4ReachesThresholdAtEveryDischarge(t *testing.T) {
 	})
 }
 
-func itoa(n int) string { return string([]byte{byte('0' + n/100), byte('0' + n/10%10), byte('0' + n%10)})[btoi(n < 100):] }
+func itoa(n int) string {
+	return string([]byte{byte('0' + n/100), byte('0' + n/10%10), byte('0' + n%10)})[btoi(n < 100):]
+}
 
 func btoi(b bool) int {
 	if b {
