@@ -73,7 +73,7 @@ func (s *sheet) lanes(page []row) (rows []row, rest []string) {
 		}
 	}
 	for i := range rows {
-		rows[i].measure(&s.o)
+		rows[i].measure(&s.o, s.in.Extents)
 	}
 	return rows, rest
 }
@@ -93,12 +93,12 @@ func (s *sheet) lead(n lead.Name, from, to tick.Time) segment {
 
 // measure finds how much room a row's signals need above and below zero: by the
 // whole record, so that it does not change as the window moves.
-func (r *row) measure(o *Options) {
+func (r *row) measure(o *Options, known *Extents) {
 	for _, p := range r.parts {
 		if r.signal == nil {
 			r.up, r.down = max(r.up, 0.5*p.gain), max(r.down, 0.3*p.gain)
 		}
-		low, high := extent(p.mv)
+		low, high := known.of(p.mv)
 		if p.clip > 0 {
 			low, high = max(low, -p.clip/p.gain), min(high, p.clip/p.gain)
 		}

@@ -118,22 +118,6 @@ func (s *sheet) heading12(r *row, p segment, follows bool) {
 	}
 }
 
-func extent(mv []float32) (low, high float64) {
-	var l, h float32
-	for _, v := range mv {
-		if v < l {
-			l = v
-		}
-		if v > h {
-			h = v
-		}
-	}
-	if math.IsInf(float64(l), 0) || math.IsInf(float64(h), 0) {
-		return 0, 0
-	}
-	return float64(l), float64(h)
-}
-
 // margin writes the name of a row's only lead before its zero line, and the pulse
 // of 1 mV where the lane has room for it: on the zero line, or lower where the
 // lane ends too soon above it.

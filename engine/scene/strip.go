@@ -21,6 +21,10 @@ type Input struct {
 	Record  *lead.Record
 	Diagram *ladder.Diagram
 	Signals []Sampled // electrograms and action potentials that [Options.Lanes] may name
+
+	// Extents remembers how far signals reach from one drawing of the same input to the
+	// next; nil looks anew each time. A signal must not change while it is remembered.
+	Extents *Extents
 }
 
 // Options say what of it is drawn, and how large. Zero means the default where

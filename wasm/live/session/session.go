@@ -35,6 +35,7 @@ import (
 	"escapement/engine/measure"
 	"escapement/engine/membrane"
 	"escapement/engine/plan"
+	"escapement/engine/scene"
 	"escapement/engine/study"
 )
 
@@ -63,6 +64,7 @@ type timeline struct {
 	hearts   []membrane.InForce
 	signals  map[string][]float32       // electrograms, made when first drawn
 	membrane map[string]*membrane.Trace // likewise, by site
+	extents  scene.Extents
 }
 
 // New is a session without a timeline.

@@ -85,7 +85,7 @@ func (t *timeline) wire(drawn *scene.Scene, o *scene.Options, times [][3]float64
 }
 
 func (t *timeline) input(form ladder.Form) scene.Input {
-	return scene.Input{Log: t.log, Record: t.drawn, Diagram: t.diagram(form)}
+	return scene.Input{Log: t.log, Record: t.drawn, Diagram: t.diagram(form), Extents: &t.extents}
 }
 
 // A tier is between so many millimetres high: readable, and not stretched beyond
