@@ -11,6 +11,7 @@ import { ink, onPage, openPreset, RATE, stage } from "./walk.js";
 
 const field = (/** @type {string} */ name) => `[data-field="pacemaker.${name}"]`;
 const row = (/** @type {string} */ name) => `[data-path="pacemaker.${name}"]`;
+const DEVICE_LANE = '#lanes input[value="device"]';
 const OFF = '.row.group[data-path="pacemaker"] input';
 
 /** @param {Page} page */
@@ -34,7 +35,7 @@ describe("the pacemaker", () => {
     const first = await settled(page);
     const before = (await ink(page)).marks;
     assert.equal(await page.isVisible(field("pvarp_ms")), false);
-    assert.equal(await page.isVisible("#device-lane"), false);
+    assert.equal(await page.isDisabled(DEVICE_LANE), true);
     const paced = await withDevice(page);
     assert.notEqual(paced, first);
     assert.ok((await ink(page)).marks > before + 20);
@@ -53,11 +54,11 @@ describe("the pacemaker", () => {
   test("its lane can be hidden", () => onPage(async (page) => {
     const print = await withDevice(page);
     const before = (await ink(page)).marks;
-    await page.click("#device-lane");
+    await page.click("#lanes summary");
+    await page.uncheck(DEVICE_LANE);
     await settled(page);
     assert.ok((await ink(page)).marks < before);
-    assert.equal(await page.getAttribute("#device-lane", "aria-pressed"), "false");
-    await page.click("#device-lane");
+    await page.check(DEVICE_LANE);
     assert.equal(await settled(page), print);
     assert.equal((await ink(page)).marks, before);
   }));
@@ -172,7 +173,7 @@ describe("the pacemaker", () => {
       for (const name of names) {
         await openPreset(page, name);
         await page.screenshot({ path: join(ROOT, "site", "test", "shots", `device-${size.width}-${name}.png`) });
-        assert.equal(await page.isVisible("#device-lane"), true, name);
+        assert.equal(await page.isDisabled(DEVICE_LANE), false, name);
         assert.equal(await page.evaluate(() => document.documentElement.scrollWidth - document.documentElement.clientWidth), 0);
         const wide = await page.evaluate(() => {
           const c = /** @type {HTMLElement} */ (document.querySelector("#timeline canvas"));
