@@ -29,6 +29,7 @@ import { printDialog } from "./views/print.js";
 import { settingsView } from "./views/settings.js";
 import { tableView } from "./views/table.js";
 import { timelineView } from "./views/timeline.js";
+import { trialView } from "./views/trial.js";
 import { toolbarView } from "./views/toolbar.js";
 
 /** @typedef {import("./model/store.js").State} State */
@@ -44,6 +45,9 @@ const store = createStore({
   view: FIRST_VIEW,
   answer: null,
   computed: null,
+  extra: null,
+  scan: null,
+  gap: null,
   scene: null,
   diagnoses: [],
   fault: "",
@@ -100,7 +104,8 @@ function build(catalogue, found) {
     toolbarView(part("centre"), store, catalogue),
     timelineView(part("centre"), store, ask, catalogue),
     listingView(part("centre"), store, engine),
-    accountView(part("account"), store),
+    accountView(part("account"), store, settings.focusSetting),
+    trialView(part("account"), store, ask),
     overviewView(part("overview"), store),
     drawersView(part("settings"), part("account"), store),
   ];

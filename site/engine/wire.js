@@ -111,6 +111,31 @@
  * @property {string} margin how close it came to going the other way, or ""
  * @property {Line[]} chain the event, then its causes, to the focus or stimulus
  * @property {Line[]} led what it caused directly
+ * @property {Linked[]} settings that had a part in it
+ * @property {{title: string, sentences: string[], lines: Line[]} | null} not why the device did not follow it
  */
+
+/** @typedef {{path: string, label: string, unit: string, value: number}} Linked a setting that had a part in something */
+
+/** @typedef {{event: number, item: number, single: boolean, slug: string, text: string, sentences: string[], lines: Line[]}} Extra */
+
+/** @typedef {{from: number, to: number, slug: string, text: string, passage_ms: [number, number], ah_ms: [number, number]}} Segment */
+
+/**
+ * @typedef {object} Scan
+ * @property {number} item place in the list of interventions
+ * @property {number} from_ms couplings count from here
+ * @property {number} last the longest, ms
+ * @property {number} done
+ * @property {number} of
+ * @property {boolean} finished
+ * @property {Segment[]} segments
+ * @property {{coupling: number, by_ms: number} | null} jump
+ * @property {string} fault
+ * @property {string} key the plan it holds for
+ * @property {string} site
+ */
+
+/** @typedef {{from_ms: number, to_ms: number, long: boolean, title: string, sentences: string[], lines: Line[], settings: Linked[]}} Gap */
 
 export {};

@@ -24,6 +24,9 @@
  * @property {string} fault what went wrong inside the engine, or ""
  * @property {number} selected id of an event, or 0
  * @property {Account | null} account of the selected event
+ * @property {import("../engine/wire.js").Extra | null} extra what came of the selected extra beat
+ * @property {import("../engine/wire.js").Scan | null} scan of an extra beat, as far as it has come
+ * @property {import("../engine/wire.js").Gap | null} gap in which no stimulus came, that was asked about
  * @property {number[]} lit events pointed at by a clause or a finding
  * @property {string} drawer "settings", "account" or "": what lies open over the sheet on a narrow screen
  * @property {"timeline" | "listing"} tab

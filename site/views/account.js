@@ -22,10 +22,11 @@ const MOST_LED = 12; // consequences listed
 /**
  * @param {HTMLElement} root
  * @param {Store} store
+ * @param {(path: string) => void} focusSetting
  */
-export function accountView(root, store) {
+export function accountView(root, store, focusSetting) {
   const title = el("h2", { "aria-live": "polite" }, "Measured");
-  const back = el("button", { type: "button", id: "deselect", onclick: () => store.set({ selected: 0 }) }, "Measured");
+  const back = el("button", { type: "button", id: "deselect", onclick: () => store.set({ selected: 0, gap: null, lit: [] }) }, "Measured");
   const shut = el("button", { type: "button", class: "drawer-close", onclick: () => store.set({ drawer: "" }) }, "Close");
   const body = el("div", { class: "account-body" });
   const device = deviceParts();
@@ -44,12 +45,42 @@ export function accountView(root, store) {
     const [own, ...causes] = a.chain;
     fill(body,
       el("p", { class: "when" }, seconds(a.t_ms)),
-      el("div", { class: "sentences" }, a.sentences.map((s) => el("p", null, s))),
+      el("div", { class: "sentences" }, a.sentences.map(sentence)),
       a.margin && !a.sentences.some((s) => s.includes(a.margin)) && el("p", { class: "margin" }, a.margin),
+      a.not && el("h3", null, a.not.title),
+      a.not && el("div", { class: "sentences" }, a.not.sentences.map(sentence)),
+      a.not && el("ol", { class: "led" }, a.not.lines.map(step)),
+      involved(a.settings),
       causes.length > 0 && el("h3", null, "How it came about"),
       causes.length > 0 && el("ol", { class: "chain" }, el("li", { class: "own" }, el("span", { class: "at" }, seconds(own.t_ms)), el("span", null, own.text)), causes.map(step)),
       a.led.length > 0 && el("h3", null, "What it led to"),
       a.led.length > 0 && el("ol", { class: "led" }, a.led.slice(0, MOST_LED).map(step)));
+  }
+
+  /** Why no stimulus came. @param {import("../engine/wire.js").Gap} g */
+  function gap(g) {
+    title.textContent = g.title;
+    back.hidden = false;
+    fill(body,
+      el("p", { class: "when" }, `${seconds(g.from_ms)} to ${seconds(g.to_ms)}`),
+      el("div", { class: "sentences" }, g.sentences.map(sentence)),
+      involved(g.settings),
+      el("h3", null, "What this rests on"),
+      el("ol", { class: "led" }, g.lines.map(step)));
+  }
+
+  /** A sentence, in which an event that is named by its number is a link. @param {string} text */
+  function sentence(text) {
+    return el("p", null, text.split(/(event \d+)/).map((piece) => {
+      const id = Number(/^event (\d+)$/.exec(piece)?.[1] ?? 0);
+      return id ? el("button", { type: "button", class: "link", "data-event": String(id), onclick: () => store.set({ selected: id, lit: [] }) }, piece) : piece;
+    }));
+  }
+
+  /** Settings that had a part, each a way to its row. @param {import("../engine/wire.js").Linked[]} list */
+  function involved(list) {
+    return (list ?? []).length > 0 && el("p", { class: "involved" }, "Settings: ", list.map((s) =>
+      el("button", { type: "button", class: "link", "data-setting": s.path, onclick: () => focusSetting(s.path) }, `${s.label} ${num(s.value, 1)} ${s.unit}`.trim())));
   }
 
   /** @param {Line} s */
@@ -112,10 +143,11 @@ export function accountView(root, store) {
   return {
     /** @param {State} state @param {Set<string>} changed */
     update(state, changed) {
-      if (!["answer", "account", "selected"].some((k) => changed.has(k))) return;
+      if (!["answer", "account", "selected", "gap"].some((k) => changed.has(k))) return;
       if (state.selected !== 0) {
         if (state.account && state.account.event === state.selected) event(state.account);
-      } else if (state.answer) measured(state.answer, state);
+      } else if (state.gap) gap(state.gap);
+      else if (state.answer) measured(state.answer, state);
       if (changed.has("selected")) body.scrollTop = 0;
     },
     destroy() {

@@ -6,6 +6,7 @@ import { handleAt, nearest, timeAt } from "../engine/scene.js";
 import { handleOf, later, stepFor, timeOf, told, valueAt } from "../model/handle.js";
 import { get, put } from "../model/path.js";
 import { shown } from "../model/view.js";
+import { bandView } from "./band.js";
 import { moves } from "./move.js";
 import { overlay } from "./overlay.js";
 
@@ -32,6 +33,7 @@ const TIERS = { a: "A", atria: "A", v: "V", ventricles: "V" };
  */
 export function handView(paper, store, ask, place, reach) {
   const over = overlay(paper, drop);
+  const band = bandView(over.layer, putAt);
   const move = moves(store, ask, showFlips);
   let keyed = 0; // timer that ends a move by keys
   let pointer = /** @type {Spot | null} */ (null); // where a beat could be tried
@@ -66,6 +68,24 @@ export function handView(paper, store, ask, place, reach) {
     wanted = list.length;
     store.edit(put(plan, `interventions[${list.length}]`, { at_ms: Math.round(ms), do: "stimulate", site: SITES[chamber] }), "");
     store.settle();
+  }
+
+  /** Puts the scanned beat at a coupling. @param {number} coupling */
+  function putAt(coupling) {
+    const { scan, plan } = store.get();
+    if (!scan) return;
+    store.settle();
+    wanted = scan.item;
+    store.edit(put(plan, `interventions[${scan.item}].at_ms`, Number((scan.from_ms + coupling).toFixed(3))), "");
+    store.settle();
+  }
+
+  /** Asks why no stimulus came around an instant. @param {number} ms @param {boolean} any else only a gap longer than the lower-rate interval */
+  async function whyGap(ms, any) {
+    const reply = await ask("gap", { t_ms: ms });
+    const gap = reply?.json;
+    if (gap && (any || gap.long)) store.set({ gap, selected: 0, lit: gap.lines.map((/** @type {any} */ l) => l.id) });
+    return Boolean(gap);
   }
 
   /** Selects the stimulus of a new intervention once it stands on the sheet. */
@@ -182,10 +202,22 @@ export function handView(paper, store, ask, place, reach) {
       if (!move.held() && keyed === 0) over.quiet();
     },
 
-    /** A press that moved nothing: an empty place in a tier offers a beat. @param {PointerEvent} e */
-    press(e) {
-      const { scene } = store.get();
-      if (scene) over.offer(scene, spot(e));
+    /**
+     * A press that moved nothing: an empty place in a tier offers a beat, and tells why no
+     * stimulus came if the gap is long; the measure of an RR interval tells it always.
+     * @param {PointerEvent} e
+     * @param {import("../engine/scene.js").Mark | null} hit
+     */
+    press(e, hit) {
+      const { scene, answer, gap } = store.get();
+      if (!scene || !answer) return;
+      const at = spot(e);
+      over.offer(scene, at);
+      if (gap) store.set({ gap: null, lit: [] });
+      if (!answer.device) return;
+      const { x } = place(e);
+      if (hit?.cls.startsWith("dim") && isCycle(scene, hit)) whyGap(timeAt(scene, x), true);
+      else if (at?.chamber === "V") whyGap(at.ms, false);
     },
 
     /** @param {KeyboardEvent} e @returns {boolean} whether the key was for the hand */
@@ -194,6 +226,12 @@ export function handView(paper, store, ask, place, reach) {
       if (e.altKey && (e.key === "ArrowLeft" || e.key === "ArrowRight")) {
         e.preventDefault();
         nudge((e.key === "ArrowRight" ? 1 : -1) * (e.shiftKey ? 10 : 1));
+        return true;
+      }
+      if (!e.altKey && e.key.toLowerCase() === "w") {
+        const { account, selected, view } = store.get();
+        e.preventDefault();
+        whyGap(hairAt ?? (selected && account ? account.t_ms : view.t0_ms + shown(view) / 2), true);
         return true;
       }
       if (!e.altKey && e.key.toLowerCase() === "b") {
@@ -208,6 +246,8 @@ export function handView(paper, store, ask, place, reach) {
     update(state, changed) {
       move.update(state, changed);
       if (changed.has("view") || changed.has("plan")) over.offer(/** @type {any} */ (state.scene), null);
+      if (changed.has("plan") && state.gap) store.set({ gap: null, lit: [] });
+      if (state.scene && ["scene", "extra", "scan", "selected"].some((k) => changed.has(k))) band.update(state.scene, store.get(), changed.has("scene"));
       if (changed.has("scene")) {
         selectWanted();
         showFlips();
@@ -221,4 +261,11 @@ export function handView(paper, store, ask, place, reach) {
       over.destroy();
     },
   };
+}
+
+/** Whether the mark belongs to the lowest row of measures: from QRS to QRS. @param {Scene} scene @param {import("../engine/scene.js").Mark} mark */
+function isCycle(scene, mark) {
+  const foot = Math.max(...scene.tiers.map((t) => t.y1));
+  const rows = scene.marks.filter((m) => m.cls === "dim" && m.event > 0 && m.y === m.y2 && m.y > foot).map((m) => m.y);
+  return mark.event > 0 && Math.abs(mark.y - Math.max(...rows)) < 2 && mark.y > foot;
 }

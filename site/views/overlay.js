@@ -130,6 +130,7 @@ export function overlay(paper, drop) {
       place(plus, placeOf(scene, at.ms) * PX_PER_MM, (at.chamber === "A" ? at.tier.y0 : at.tier.y1) * PX_PER_MM);
     },
 
+    layer,
     offered: () => offer,
     hideGhost() {
       ghost.hidden = true;

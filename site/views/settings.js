@@ -211,6 +211,18 @@ export function settingsView(root, store, catalogue, table) {
       search.focus();
       search.select();
     },
+    /** Brings the row of a value to the eye and the hand. @param {string} path */
+    focusSetting(path) {
+      store.set({ drawer: "settings" });
+      search.value = "";
+      only.checked = false;
+      for (const s of sections) s.open ||= s.rows.some((r) => r.path === path);
+      sift();
+      const row = root.querySelector(`.row[data-path="${CSS.escape(path)}"]`) ?? root.querySelector(`.row[data-path="${CSS.escape(path.replace(/\[\d+\]$/, ""))}"]`);
+      for (let d = row?.closest("details"); d; d = d.parentElement?.closest("details") ?? null) d.open = true;
+      row?.scrollIntoView({ block: "center" });
+      /** @type {HTMLElement | null} */ (row?.querySelector("input, select"))?.focus();
+    },
     focusWrong() {
       /** @type {HTMLElement | null} */ (root.querySelector(".row.wrong input, .row.wrong select"))?.focus();
     },

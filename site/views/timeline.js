@@ -129,7 +129,7 @@ export function timelineView(root, store, ask, catalogue) {
     if (!scene) return;
     const { x, y } = place(e);
     const hit = nearest(scene, x, y, REACH_PX / PX_PER_MM);
-    hand.press(e);
+    hand.press(e, hit);
     store.set({ selected: hit?.event ?? 0, drawer: hit && narrow() ? "account" : store.get().drawer });
   }
 
