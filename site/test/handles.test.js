@@ -132,3 +132,80 @@ describe("handles", () => {
     assert.equal(Number(await value(page, "pacemaker.pvarp_ms")), before);
   }));
 });
+
+/** Presses twice on an empty place in the upper part of the ladder. @param {Page} page @param {number} share of the sheet's width */
+async function tryBeat(page, share) {
+  const box = await page.locator("#timeline canvas").boundingBox();
+  assert.ok(box);
+  const spot = await page.evaluate(({ share }) => {
+    const canvas = /** @type {HTMLCanvasElement} */ (document.querySelector("#timeline canvas"));
+    const ghost = /** @type {HTMLElement} */ (document.querySelector(".ghost"));
+    const b = canvas.getBoundingClientRect();
+    const x = b.left + share * b.width;
+    for (let y = b.top + 0.3 * b.height; y < b.bottom; y += 6) {
+      canvas.dispatchEvent(new PointerEvent("pointermove", { clientX: x, clientY: y, pointerType: "mouse", pointerId: 1, bubbles: true }));
+      if (!ghost.hidden) return { x, y };
+    }
+    return null;
+  }, { share });
+  assert.ok(spot, "no empty place in a tier");
+  await page.mouse.click(spot.x, spot.y);
+  await settled(page);
+  assert.equal(await page.isVisible("#deselect"), false, "one press selects nothing and tries nothing");
+  await page.mouse.click(spot.x, spot.y);
+  await settled(page);
+  await page.waitForSelector(".outcome:not([hidden])");
+}
+
+describe("an extra beat", () => {
+  stage();
+
+  test("two presses try a beat, its outcome is told, and undo takes it away", () => onPage(async (page) => {
+    const first = await settled(page);
+    await tryBeat(page, 0.62);
+    assert.notEqual(await settled(page), first);
+    assert.match(await page.innerText(".outcome"), /captur|conducted|blocked/);
+    assert.match(await page.innerText(".trial"), /\d+ ms/);
+    await page.keyboard.press("Control+z");
+    assert.equal(await settled(page), first);
+  }));
+
+  test("its coupling is scanned, and a press on a segment puts the beat there", () => onPage(async (page) => {
+    await tryBeat(page, 0.62);
+    await page.click("#scan");
+    await page.waitForFunction(() => document.querySelector("#scan")?.textContent === "Scan the coupling" && document.querySelectorAll(".segment").length > 2);
+    const segments = await page.locator(".segment .at").allInnerTexts();
+    const last = segments.map((s) => Number(s.match(/\d+/g)?.at(-1)));
+    const from = segments.map((s) => Number(s.match(/\d+/g)?.[0]));
+    for (let i = 1; i < from.length; i++) assert.equal(from[i] - last[i - 1], 1, `${segments}`);
+    await page.locator(".segment[data-slug^=conducted]").last().click();
+    await settled(page);
+    await page.waitForFunction(() => document.querySelector(".outcome")?.textContent?.startsWith("conducted"));
+  }));
+
+  test("B tries an atrial beat without a pointer, Shift B a ventricular one", () => onPage(async (page) => {
+    await page.focus("#timeline");
+    await page.keyboard.press("b");
+    await settled(page);
+    await page.waitForSelector(".outcome:not([hidden])");
+    await page.keyboard.press("Shift+B");
+    await settled(page);
+    assert.equal(await page.locator('[data-field$=".at_ms"]').count(), 2);
+  }));
+});
+
+describe("why not", () => {
+  stage();
+
+  test("the measure of a long gap tells which interval ran and what began it", () => onPage(async (page) => {
+    await openPreset(page, "vvi-hysteresis");
+    await page.focus("#timeline");
+    await page.keyboard.press("0");
+    await settled(page);
+    await page.keyboard.press("w");
+    await page.waitForFunction(() => document.querySelector("#account h2")?.textContent?.startsWith("Why no stimulus"));
+    assert.match(await page.innerText(".account-body"), /lower-rate interval began/i);
+    await page.locator("[data-setting]").first().click();
+    assert.match(await page.evaluate(() => document.activeElement?.getAttribute("data-field") ?? ""), /^pacemaker\./);
+  }));
+});

@@ -15,7 +15,7 @@ const TALL_PX = 24;
  * @param {(coupling: number) => void} pick
  */
 export function bandView(layer, pick) {
-  const band = el("div", { class: "band", role: "group", "aria-label": "Outcomes by coupling: press one to put the beat there" });
+  const band = el("div", { class: "scan-band", role: "group", "aria-label": "Outcomes by coupling: press one to put the beat there" });
   const outcome = el("div", { class: "outcome", hidden: true });
   layer.append(band, outcome);
   let drawn = /** @type {any} */ (null);

@@ -16,7 +16,7 @@ import { overlay } from "./overlay.js";
  * @typedef {import("../model/handle.js").Handle} Handle
  * @typedef {import("../engine/scene.js").Scene} Scene
  * @typedef {(op: import("../engine/client.js").Op, args: any) => Promise<any>} Ask
- * @typedef {{chamber: "A" | "V", ms: number, tier: import("./overlay.js").Tier}} Spot
+ * @typedef {{chamber: "A" | "V", ms: number, tier: import("./overlay.js").Tier, y: number}} Spot
  */
 
 /** Where an extra beat of a chamber is put. */
@@ -57,7 +57,7 @@ export function handView(paper, store, ask, place, reach) {
     const ms = Math.round(timeAt(scene, x));
     const tier = scene.tiers.find((t) => TIERS[t.name] && y >= t.y0 && y <= t.y1);
     if (!tier || x < scene.axis.x0 || ms < 0 || ms > answer.span_ms) return null;
-    return nearest(scene, x, y, reach / PX_PER_MM) ? null : { chamber: TIERS[tier.name], ms, tier };
+    return nearest(scene, x, y, reach / PX_PER_MM) ? null : { chamber: TIERS[tier.name], ms, tier, y };
   }
 
   /** Puts an extra beat into the plan and selects it. @param {"A" | "V"} chamber @param {number} ms */

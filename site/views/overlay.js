@@ -107,7 +107,7 @@ export function overlay(paper, drop) {
       });
     },
 
-    /** The ghost of a beat under the pointer. @param {Scene} scene @param {{chamber: "A" | "V", ms: number, tier: Tier} | null} at */
+    /** The ghost of a beat under the pointer. @param {Scene} scene @param {{chamber: "A" | "V", ms: number, tier: Tier, y: number} | null} at */
     ghost(scene, at) {
       ghost.hidden = at === null;
       if (!at) return;
@@ -118,7 +118,7 @@ export function overlay(paper, drop) {
       place(tip, x, (at.chamber === "A" ? at.tier.y0 : at.tier.y1) * PX_PER_MM - 30);
     },
 
-    /** Offers an extra beat at an instant, as a button. @param {Scene} scene @param {{chamber: "A" | "V", ms: number, tier: Tier} | null} at */
+    /** Offers an extra beat at an instant, as a button. @param {Scene} scene @param {{chamber: "A" | "V", ms: number, tier: Tier, y: number} | null} at */
     offer(scene, at) {
       if (!at) return clearOffer();
       offer = { chamber: at.chamber, ms: at.ms };
@@ -127,7 +127,7 @@ export function overlay(paper, drop) {
       const words = `Try ${at.chamber === "A" ? "an atrial" : "a ventricular"} beat at ${seconds(at.ms)}`;
       plus.title = words;
       plus.setAttribute("aria-label", words);
-      place(plus, placeOf(scene, at.ms) * PX_PER_MM, (at.chamber === "A" ? at.tier.y0 : at.tier.y1) * PX_PER_MM);
+      place(plus, placeOf(scene, at.ms) * PX_PER_MM, at.y * PX_PER_MM); // under the pointer, so that a second press takes it
     },
 
     layer,
