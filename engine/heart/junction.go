@@ -46,7 +46,7 @@ func (b *builder) pathway(part string, n *NodeNumbers) (down, up Conduct, err er
 			return down, Conduct{Curve: curve, Reach: thousandths(n.UpReach)}, nil
 		}
 	} else {
-		if curve, err = solveNode(part, n, b.n.AHCycleMS, b.n.ERPCycleMS, b.n.Lower.MinMS); err != nil {
+		if curve, err = b.n.Solved.node(part, n, b.n.AHCycleMS, b.n.ERPCycleMS, b.n.Lower.MinMS); err != nil {
 			return down, up, err
 		}
 		down = Conduct{Open: true, Curve: curve}

@@ -36,7 +36,8 @@ type Numbers struct {
 	VentricERP Cycled
 	Foci       []FocusNumbers
 	Pathways   []PathwayNumbers
-	QuantumUS  tick.Dur // 0 is 1 microsecond
+	QuantumUS  tick.Dur   // 0 is 1 microsecond
+	Solved     *Solutions // of nodes met before; nil: none
 }
 
 // SinusNumbers describe the sinus node and its exit path.

@@ -20,13 +20,16 @@ const maxSteps = 5000
 
 // Compile makes the plan ready to run. The error, a [Diagnoses], says which
 // numbers cannot hold together.
-func (p *Plan) Compile() (*Program, error) { return p.compile(nil) }
+func (p *Plan) Compile() (*Program, error) { return p.compile(nil, nil) }
 
-// compile takes the heart that was solved for the same numbers, where there is one.
-func (p *Plan) compile(known *heart.Heart) (*Program, error) {
+// compile takes the heart that was made of the same numbers, where there is one, and
+// the nodes that were solved before.
+func (p *Plan) compile(known *heart.Heart, solved *heart.Solutions) (*Program, error) {
 	c := &compiler{plan: p, prog: &Program{Span: p.span(), Seed: uint64(p.number("seed"))}}
 	c.heart = func(q *Plan) *heart.Heart {
-		h, err := heart.New(q.numbers(c.rate))
+		n := q.numbers(c.rate)
+		n.Solved = solved
+		h, err := heart.New(n)
 		var u *heart.Unmet
 		if errors.As(err, &u) {
 			c.ds.add("heart."+u.Part, u.Text, "", u.Note)

@@ -16,6 +16,7 @@ type Variants struct {
 	fields  []string
 	reaches []bool // by field: the heart depends on it
 	hearts  map[string]*heart.Heart
+	solved  heart.Solutions
 	key     []byte
 	judged  bool // what numbers together must hold does
 	rejudge bool // it may not with other values of the fields
@@ -96,7 +97,7 @@ func (v *Variants) Program(values []Value, seed uint64, extra Item) (*Program, e
 		}
 	}
 	h, met := v.hearts[string(v.key)]
-	prog, err := p.compile(h)
+	prog, err := p.compile(h, &v.solved)
 	if prog != nil && !met && len(v.hearts) < mostHearts {
 		v.hearts[string(v.key)] = prog.Heart
 	}
