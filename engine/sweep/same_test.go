@@ -103,7 +103,8 @@ func TestWhatDoesNotBelongIsNotJoined(t *testing.T) {
 		{"another file", `{"format":"escapement-plan/1"}`, `format is "escapement-plan/1"; allowed: "escapement-sweep/1"`},
 		{"another sweep", written(t, all(t, other, Settings{})), "a table of another plan or sweep"},
 		{"a point too far", strings.Replace(whole, `"points":[0,`, `"points":[999,`, 1), "point 999; allowed: 0 to 55"},
-		{"a list too short", strings.Replace(whole, `"points":[0,`, `"points":[0,0,`, 1), "columns that do not have an entry"},
+		{"a list too short", strings.Replace(whole, `"points":[0,`, `"points":[0,0,`, 1), "do not have an entry"},
+		{"another column", strings.Replace(whole, `"name":"pattern"`, `"name":"patern"`, 1), "columns that are not this sweep's"},
 		{"other outcomes", strings.Replace(whole, `"refused":{"list":["heart`, `"refused":{"list":["art`, 1), "is there already, with other outcomes"},
 	} {
 		t.Run(c.name, func(t *testing.T) {
