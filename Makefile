@@ -12,7 +12,7 @@ VERSION := $(shell git describe --tags --always 2>/dev/null)
 WORKERS := $(GO) run github.com/syumai/workers/cmd/workers-assets-gen -mode=go
 # Pinned; the tool runs from the module cache and leaves go.mod alone.
 STATICCHECK := honnef.co/go/tools/cmd/staticcheck@v0.7.0
-PARTS   := index.html icon.svg main.js base css engine model views
+PARTS   := index.html icon.svg icons manifest.webmanifest main.js offline.js base css engine model views
 
 .PHONY: help
 help: ## list what can be run
@@ -32,6 +32,7 @@ site: need-go ## build site/dist, ready for any static host
 	@$(WORKERS) -runtime=browser -o $(PRESS)
 	@cd $(PRESS) && for m in worker runtime; do sed 's/\.mjs"/.js"/' $$m.mjs >$$m.js && rm $$m.mjs; done # not every static host knows the type of .mjs
 	@GOOS=js GOARCH=wasm $(GO) build -trimpath -ldflags="-s -w" -o $(PRESS)/app.wasm ./wasm/press
+	@$(GO) run ./site/stamp $(SITE)
 	@for f in $(WASM) $(PRESS)/app.wasm; do printf '%-34s %9d bytes, %8d gzipped\n' $$f "$$(wc -c <$$f)" "$$(gzip -9 -c $$f | wc -c)"; \
 		if command -v brotli >/dev/null; then printf '%-34s %26d as brotli\n' "" "$$(brotli -q 9 -c $$f | wc -c)"; fi; done
 	@printf '%-34s %9d bytes, %8d gzipped\n' "the rest of the page" \

@@ -55,7 +55,7 @@ var allowed = map[string][]string{
 }
 
 // top are the programs: they wire everything, and nothing imports them.
-var top = []string{"engine/cmd/escapement", "wasm/live", "wasm/press"}
+var top = []string{"site/stamp", "engine/cmd/escapement", "wasm/live", "wasm/press"}
 
 const module = "escapement/"
 

@@ -5,6 +5,7 @@ import { keepDark, wantsDark } from "./base/sheet.js";
 import { note } from "./base/timing.js";
 import { startEngine } from "./engine/client.js";
 import { conduct } from "./engine/conductor.js";
+import { workOffline } from "./engine/install.js";
 import { startPress } from "./engine/press.js";
 import { EMPTY } from "./model/document.js";
 import { openShelf } from "./model/kept.js";
@@ -24,6 +25,8 @@ import { listingView } from "./views/listing.js";
 import { menu } from "./views/menu.js";
 import { noticeView } from "./views/notice.js";
 import { overviewView } from "./views/overview.js";
+import { pictureView } from "./views/picture.js";
+import { presentView } from "./views/present.js";
 import { presetsDialog } from "./views/presets.js";
 import { printDialog } from "./views/print.js";
 import { settingsView } from "./views/settings.js";
@@ -57,6 +60,7 @@ const store = createStore({
   drawer: "",
   tab: "timeline",
   dark: wantsDark(),
+  present: null,
 });
 
 const engine = startEngine(new URL("engine/worker.js", import.meta.url), (busy) => {
@@ -89,6 +93,8 @@ function build(catalogue, found) {
       settings.focusWrong();
     },
   };
+  const picture = pictureView(store, catalogue, notices);
+  const present = presentView(part("present"), store, picture.fullScreen);
   const files = menu("File", [
     { id: "file-new", label: "New", key: "N", act: file.fresh },
     { id: "file-open", label: "Open file…", key: "Ctrl O", act: file.open },
@@ -96,11 +102,15 @@ function build(catalogue, found) {
     { id: "file-keep", label: "Keep in this browser", key: "Ctrl S", act: kept.keep },
     { id: "file-kept", label: "Kept plans", key: "K", act: kept.open },
     { id: "file-link", label: "Copy link", key: "L", act: file.copyLink },
+    { id: "file-picture", label: "Copy picture", key: "I", act: picture.copy },
+    { id: "file-present", label: "Present", key: "T", act: present.toggle },
+    { id: "file-screen", label: "Full screen", key: "W", act: picture.fullScreen },
   ]);
   const views = [
     faultView(part("fault"), store, compute),
     headView(part("head"), store, catalogue.presets, open, [files.node, print.button]),
     settings,
+    present,
     toolbarView(part("centre"), store, catalogue),
     timelineView(part("centre"), store, ask, catalogue),
     listingView(part("centre"), store, engine),
@@ -123,6 +133,9 @@ function build(catalogue, found) {
     k: kept.open,
     l: file.copyLink,
     "ctrl p": print.open,
+    i: picture.copy,
+    t: present.toggle,
+    w: picture.fullScreen,
   });
 
   const pending = new Set(Object.keys(store.get())); // the first time everything is new
@@ -144,6 +157,7 @@ function build(catalogue, found) {
   nextFrame(refresh);
   compute();
   file.follow();
+  workOffline((takeOver) => notices.tell("newer", "A newer version of the page is ready.", { acts: [{ label: "Reload", act: takeOver }] }));
 }
 
 /** What this tab goes on with: the plan of its link, else its working copy. */
@@ -156,10 +170,13 @@ async function opening() {
   return found;
 }
 
+/** @type {Promise<import("./model/work.js").Found> | undefined} */
+let opened;
+
 async function main() {
   document.documentElement.dataset.sheet = store.get().dark ? "dark" : "light";
   try {
-    const [reply, found] = await Promise.all([engine.ask("catalogue"), opening()]);
+    const [reply, found] = await Promise.all([engine.ask("catalogue"), opened ??= opening()]);
     part("fault").hidden = true;
     if (reply) build(reply.json, found);
   } catch (err) {

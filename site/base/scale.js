@@ -1,7 +1,15 @@
 // The page's only map between time and pixels. Imports nothing.
 
 /** CSS pixels a millimetre, by the standard's 96 a printed inch. */
-export const PX_PER_MM = 96 / 25.4;
+export let PX_PER_MM = 96 / 25.4;
+
+/**
+ * Draws everything larger, for a room; 1 is the printed size.
+ * @param {number} times
+ */
+export function magnify(times) {
+  PX_PER_MM = (times * 96) / 25.4;
+}
 
 /**
  * A linear map from milliseconds of the strip to pixels.

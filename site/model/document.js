@@ -50,6 +50,15 @@ export function writePlan(plan) {
 }
 
 /**
+ * What a plan is called.
+ * @param {Plan} plan
+ * @param {{title: string} | null} answer
+ */
+export function titleOf(plan, answer) {
+  return String(plan.title || answer?.title || "A heart of your own");
+}
+
+/**
  * A name for the plan's file: its title in plain letters.
  * @param {Plan} plan
  * @param {string} title where the plan has none

@@ -31,6 +31,7 @@
  * @property {string} drawer "settings", "account" or "": what lies open over the sheet on a narrow screen
  * @property {"timeline" | "listing"} tab
  * @property {boolean} dark
+ * @property {{until_ms: number} | null} present what comes after an instant is covered
  */
 
 /** @typedef {ReturnType<typeof createStore>} Store */

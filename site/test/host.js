@@ -16,12 +16,15 @@ const QUIET = [
   "--disable-sync", "--disable-quic", "--disable-default-apps", "--disable-domain-reliability",
 ];
 
-/** The site as `escapement serve` serves it. */
-export async function serveSite() {
+/**
+ * The site as `escapement serve` serves it.
+ * @param {{dir?: string, port?: string}} [from]
+ */
+export async function serveSite({ dir = join("site", "dist"), port = "0" } = {}) {
   const folder = mkdtempSync(join(tmpdir(), "escapement-serve-"));
   const program = join(folder, "escapement");
   execFileSync("go", ["build", "-o", program, "./engine/cmd/escapement"], { cwd: ROOT, stdio: "inherit" });
-  const server = spawn(program, ["serve", "-port", "0"], { cwd: ROOT, stdio: ["ignore", "pipe", "inherit"] });
+  const server = spawn(program, ["serve", "-port", port, "-dir", dir], { cwd: ROOT, stdio: ["ignore", "pipe", "inherit"] });
   /** @type {string} */
   const url = await new Promise((resolve, reject) => {
     server.stdout.once("data", (d) => resolve(String(d).trim().split("\n")[0]));

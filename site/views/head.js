@@ -3,6 +3,7 @@
 
 import { el, fill, say } from "../base/dom.js";
 import { count } from "../base/format.js";
+import { titleOf } from "../model/document.js";
 import { reveal } from "../model/view.js";
 
 /**
@@ -73,7 +74,7 @@ export function headView(root, store, presets, open, menus) {
       undo.disabled = !store.canUndo();
       redo.disabled = !store.canRedo();
       if (changed.has("plan") || changed.has("answer") || changed.has("kept")) {
-        say(title, String(state.plan.title || state.answer?.title || "A heart of your own"));
+        say(title, titleOf(state.plan, state.answer));
         const preset = presets.find((p) => p.name === state.preset);
         say(pick, `${preset && preset.plan !== state.plan ? "changed; " : ""}${state.kept ? "kept; " : ""}choose a preset ▾`);
       }

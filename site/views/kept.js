@@ -2,7 +2,8 @@
 // deletion back. A plan that another tab kept meanwhile is never written over unasked.
 
 import { el, fill } from "../base/dom.js";
-import { fileName } from "../model/document.js";
+import { count } from "../base/format.js";
+import { fileName, titleOf } from "../model/document.js";
 import { fresh } from "../model/kept.js";
 import { put } from "../model/path.js";
 import { living } from "../model/work.js";
@@ -38,7 +39,7 @@ export function keptDialog(store, shelf, tab, notices) {
   const list = el("div", null);
   const box = dialog("Kept plans", "kept", el("p", { class: "hint" }, "Kept in this browser, on this machine. The title is free text: no names of patients."), form, asked, said, list);
 
-  const name = () => String(store.get().plan.title || store.get().answer?.title || "A heart of your own").slice(0, MOST_LETTERS);
+  const name = () => titleOf(store.get().plan, store.get().answer).slice(0, MOST_LETTERS);
   const when = (/** @type {number} */ ms) => new Date(ms).toLocaleString("en-GB", { dateStyle: "medium", timeStyle: "short" });
 
   /** @param {string} text @param {import("./notice.js").Act} [act] */
@@ -148,7 +149,7 @@ export function keptDialog(store, shelf, tab, notices) {
   /** @param {Unreadable} k @param {Kind} kind */
   function broken(k, kind) {
     return el("li", { class: "broken", "data-kept": k.id },
-      el("span", { class: "kept-open" }, el("strong", null, "Cannot be read"), el("span", null, `${k.raw.length} letters, as they stand in the storage`)),
+      el("span", { class: "kept-open" }, el("strong", null, "Cannot be read"), el("span", null, `${count(k.raw.length, "letter")}, as they stand in the storage`)),
       el("button", { type: "button", onclick: () => download(new Blob([k.raw], { type: "text/plain" }), fileName({ title: `unreadable ${k.id}` }, "").replace(".json", ".txt")) }, "Save its text"),
       el("button", { type: "button", class: "kept-delete", onclick: () => remove(kind, k) }, "Delete"));
   }

@@ -21,6 +21,12 @@ export const KEYS = [
     ["1 2 0", "25 mm/s, 50 mm/s, whole strip"],
     ["F", "plain or full ladder"],
   ]],
+  ["While presenting", [
+    ["Space →", "reveal the next beat; Shift → one wave"],
+    ["←", "cover the last beat again; Shift ← one wave"],
+    ["Home End", "cover all but the first beat; reveal all"],
+    ["Esc", "leave"],
+  ]],
   ["In a setting", [
     ["↑ ↓", "one step up or down; with Shift ten"],
     ["Enter", "take the value and stay"],
@@ -37,6 +43,9 @@ export const KEYS = [
     ["K", "kept plans"],
     ["L", "copy a link with the plan in it"],
     ["Ctrl P", "print or export; in that dialog: save"],
+    ["I", "copy the sheet as a picture"],
+    ["T", "present: cover what comes next"],
+    ["W", "full screen"],
     ["Ctrl Z", "undo; with Shift, or Ctrl Y, redo"],
     ["?", "this list"],
   ]],

@@ -68,6 +68,34 @@ export function halo(g, scene, styles, events) {
   }
 }
 
+/**
+ * Covers the sheet from a place on to the right; grid and time axis stay.
+ * @param {CanvasRenderingContext2D} g
+ * @param {Scene} scene
+ * @param {Styles} styles
+ * @param {string} family
+ * @param {{hairMM: number, from: number}} device
+ */
+export function cover(g, scene, styles, family, device) {
+  const from = Math.max(device.from, scene.axis.x0);
+  if (from >= scene.width) return;
+  g.fillStyle = styles.paper;
+  g.fillRect(from, 0, scene.width - from, scene.height);
+  g.save();
+  g.beginPath();
+  g.rect(from, 0, scene.width - from, scene.height);
+  g.clip();
+  paint(g, { ...scene, marks: scene.marks.filter((m) => m.cls.startsWith("grid") || m.cls.startsWith("axis")) }, styles, family, device);
+  g.restore();
+  g.strokeStyle = styles.device;
+  g.lineWidth = 0.7;
+  g.setLineDash([]);
+  g.beginPath();
+  g.moveTo(from, 0);
+  g.lineTo(from, scene.height);
+  g.stroke();
+}
+
 /** How far an outline stands off, in millimetres, by the class it is drawn around. @type {Record<string, number>} */
 const AROUND = { block: 0.9, window: 0.3, "window-edge": 0.3 };
 

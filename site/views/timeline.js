@@ -5,11 +5,12 @@ import { nextFrame } from "../base/frame.js";
 import { seconds } from "../base/format.js";
 import { PX_PER_MM } from "../base/scale.js";
 import { nearest, placeOf, timeAt } from "../engine/scene.js";
+import { covered } from "../model/cover.js";
 import { ladderFor, pan, zoomTo } from "../model/view.js";
 import { grip } from "./grip.js";
 import { handView } from "./hand.js";
 import { timelineKeys } from "./keys.js";
-import { halo, outline, paint } from "./paint.js";
+import { cover, halo, outline, paint } from "./paint.js";
 
 /**
  * @typedef {import("../model/store.js").Store} Store
@@ -46,8 +47,9 @@ export function timelineView(root, store, ask, catalogue) {
   const family = getComputedStyle(pane).fontFamily;
 
   function draw() {
-    const { scene, dark, lit, selected } = store.get();
-    if (!scene || width === 0) return;
+    const { scene: whole, dark, lit, selected, present } = store.get();
+    if (!whole || width === 0) return;
+    const scene = present ? covered(whole, present.until_ms) : whole;
     const dpr = window.devicePixelRatio || 1;
     const styles = dark ? catalogue.styles.dark : catalogue.styles.light;
     const w = Math.round(scene.width * PX_PER_MM);
@@ -66,6 +68,7 @@ export function timelineView(root, store, ask, catalogue) {
     halo(g, scene, styles, new Set(lit));
     paint(g, scene, styles, family, { hairMM: 1 / k });
     outline(g, scene, styles, new Set([...lit, selected]));
+    if (present) cover(g, scene, styles, family, { hairMM: 1 / k, from: placeOf(scene, present.until_ms) });
     canvas.dataset.marks = String(scene.marks.length);
     stick();
   }
@@ -91,8 +94,8 @@ export function timelineView(root, store, ask, catalogue) {
 
   /** @param {PointerEvent} e */
   function moveHair(e) {
-    const { scene, answer } = store.get();
-    if (!scene || !answer) return;
+    const { scene, answer, present } = store.get();
+    if (!scene || !answer || present) return;
     const { x, y } = place(e);
     let t = timeAt(scene, x);
     let snapped = false;
@@ -125,8 +128,8 @@ export function timelineView(root, store, ask, catalogue) {
 
   /** @param {PointerEvent} e */
   function pick(e) {
-    const { scene } = store.get();
-    if (!scene) return;
+    const { scene, present } = store.get();
+    if (!scene || present) return;
     const { x, y } = place(e);
     const hit = nearest(scene, x, y, REACH_PX / PX_PER_MM);
     hand.press(e, hit);
@@ -171,14 +174,15 @@ export function timelineView(root, store, ask, catalogue) {
   return {
     /** @param {State} state @param {Set<string>} changed */
     update(state, changed) {
-      if (["scene", "dark", "lit"].some((k) => changed.has(k))) draw();
+      if (["scene", "dark", "lit", "present"].some((k) => changed.has(k))) draw();
       else if (changed.has("selected")) draw();
       if (changed.has("view")) {
         hideHair();
         fit();
       }
-      if (changed.has("answer") && state.answer) {
-        canvas.setAttribute("aria-label", `Leads and ladder diagram. ${state.answer.statement.map((c) => c.text).join("")}`);
+      if ((changed.has("answer") || changed.has("present")) && state.answer) {
+        const rest = state.present ? `Covered from ${seconds(state.present.until_ms)} on.` : state.answer.statement.map((c) => c.text).join("");
+        canvas.setAttribute("aria-label", `Leads and ladder diagram. ${rest}`);
         document.body.dataset.fingerprint = state.answer.fingerprint;
       }
       hand.update(state, changed);

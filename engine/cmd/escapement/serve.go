@@ -53,11 +53,15 @@ func site(dir string) http.Handler {
 	return mux
 }
 
+// policy is what index.html says in its meta element, and who may frame the page,
+// which only a header can say. Workers have only the header.
+const policy = "default-src 'none'; script-src 'self' 'wasm-unsafe-eval'; worker-src 'self'; connect-src 'self'; style-src 'self'; img-src 'self' data:; manifest-src 'self'; base-uri 'none'; form-action 'none'; frame-ancestors 'none'"
+
 // files serves a folder as a static host would, with the types a browser insists
 // on and without lists of folders.
 func files(dir string) http.Handler {
 	// Machines differ in their tables of types; the page needs these to be right.
-	for ext, typ := range map[string]string{".js": "text/javascript; charset=utf-8", ".wasm": "application/wasm", ".css": "text/css; charset=utf-8", ".svg": "image/svg+xml"} {
+	for ext, typ := range map[string]string{".js": "text/javascript; charset=utf-8", ".wasm": "application/wasm", ".css": "text/css; charset=utf-8", ".svg": "image/svg+xml", ".webmanifest": "application/manifest+json"} {
 		if err := mime.AddExtensionType(ext, typ); err != nil {
 			panic("serve: " + err.Error())
 		}
@@ -73,6 +77,8 @@ func files(dir string) http.Handler {
 			return
 		}
 		w.Header().Set("Cache-Control", "no-cache") // asked again each time, answered 304 where nothing changed
+		w.Header().Set("Content-Security-Policy", policy)
+		w.Header().Set("Referrer-Policy", "no-referrer")
 		w.Header().Set("X-Content-Type-Options", "nosniff")
 		host.ServeHTTP(w, r)
 	})

@@ -81,3 +81,24 @@ func TestServePrintsForItsOwnPageAlone(t *testing.T) {
 		})
 	}
 }
+
+// The header says what the page says of itself, so that both are tested by either.
+func TestThePolicyOfTheHeaderIsThatOfThePage(t *testing.T) {
+	page, err := os.ReadFile(filepath.Join("..", "..", "..", "site", "index.html"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	own, _, ok := strings.Cut(policy, "; frame-ancestors")
+	if !ok || !strings.Contains(string(page), `content="`+own+`"`) {
+		t.Errorf("index.html does not hold %q", own)
+	}
+	dir := t.TempDir()
+	if err := os.WriteFile(filepath.Join(dir, "index.html"), []byte("x"), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	w := httptest.NewRecorder()
+	files(dir).ServeHTTP(w, httptest.NewRequest("GET", "http://127.0.0.1/", nil))
+	if got := w.Header().Get("Content-Security-Policy"); got != policy {
+		t.Errorf("header %q", got)
+	}
+}
