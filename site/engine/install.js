@@ -42,6 +42,7 @@ export async function workOffline(onNewer) {
     if (e.data === "whole") document.documentElement.dataset.offline = "whole";
   });
   const { active } = await serviceWorker.ready;
+  if (/** @type {any} */ (navigator).connection?.saveData) return; // large files only when they are needed
   const idle = window.requestIdleCallback ?? ((/** @type {() => void} */ act) => setTimeout(act, 3000));
   idle(() => active?.postMessage("idle"));
 }
