@@ -7,6 +7,7 @@ import { startEngine } from "./engine/client.js";
 import { conduct } from "./engine/conductor.js";
 import { workOffline } from "./engine/install.js";
 import { startPress } from "./engine/press.js";
+import { NO_CALIPERS } from "./model/calipers.js";
 import { EMPTY } from "./model/document.js";
 import { openShelf } from "./model/kept.js";
 import { decodeLink, PREFIX } from "./model/link.js";
@@ -14,6 +15,8 @@ import { createStore } from "./model/store.js";
 import { FIRST_VIEW } from "./model/view.js";
 import { takeUp } from "./model/work.js";
 import { accountView } from "./views/account.js";
+import { beforeView } from "./views/before.js";
+import { calipersView } from "./views/calipers.js";
 import { drawersView } from "./views/drawers.js";
 import { faultView, tellAbsent } from "./views/fault.js";
 import { fileView } from "./views/file.js";
@@ -61,6 +64,10 @@ const store = createStore({
   tab: "timeline",
   dark: wantsDark(),
   present: null,
+  before: null,
+  contrast: null,
+  panel: "contrast",
+  calipers: NO_CALIPERS,
 });
 
 const engine = startEngine(new URL("engine/worker.js", import.meta.url), (busy) => {
@@ -96,27 +103,30 @@ function build(catalogue, found) {
   const picture = pictureView(store, catalogue, notices);
   const present = presentView(part("present"), store, picture.fullScreen);
   const files = menu("File", [
-    { id: "file-new", label: "New", key: "N", act: file.fresh },
+    { id: "file-new", label: "New", act: file.fresh },
     { id: "file-open", label: "Open file…", key: "Ctrl O", act: file.open },
     { id: "file-save", label: "Save file", key: "S", act: file.save },
     { id: "file-keep", label: "Keep in this browser", key: "Ctrl S", act: kept.keep },
-    { id: "file-kept", label: "Kept plans", key: "K", act: kept.open },
+    { id: "file-kept", label: "Kept plans", key: "Shift K", act: kept.open },
     { id: "file-link", label: "Copy link", key: "L", act: file.copyLink },
     { id: "file-picture", label: "Copy picture", key: "I", act: picture.copy },
     { id: "file-present", label: "Present", key: "T", act: present.toggle },
     { id: "file-screen", label: "Full screen", key: "W", act: picture.fullScreen },
   ]);
+  const before = beforeView(store);
+  const calipers = calipersView(store);
+  const overview = overviewView(part("overview"), store);
   const views = [
     faultView(part("fault"), store, compute),
     headView(part("head"), store, catalogue.presets, open, [files.node, print.button]),
     settings,
     present,
-    toolbarView(part("centre"), store, catalogue),
-    timelineView(part("centre"), store, ask, catalogue),
+    toolbarView(part("centre"), store, catalogue, [calipers.tool, before.tool]),
+    timelineView(part("centre"), store, ask, catalogue, [calipers.over]),
     listingView(part("centre"), store, engine),
-    accountView(part("account"), store, settings.focusSetting),
+    accountView(part("account"), store, settings.focusSetting, before, overview.jump),
     trialView(part("account"), store, ask),
-    overviewView(part("overview"), store),
+    overview, calipers, before,
     drawersView(part("settings"), part("account"), store),
   ];
   globalKeys(store, {
@@ -126,16 +136,17 @@ function build(catalogue, found) {
     },
     "?": open.keys,
     p: open.presets,
-    n: file.fresh,
     "ctrl o": file.open,
     s: file.save,
     "ctrl s": kept.keep,
-    k: kept.open,
+    k: (e) => (e.shiftKey ? kept.open() : before.toggle()),
     l: file.copyLink,
     "ctrl p": print.open,
     i: picture.copy,
     t: present.toggle,
     w: picture.fullScreen,
+    m: calipers.toggle,
+    n: overview.jump,
   });
 
   const pending = new Set(Object.keys(store.get())); // the first time everything is new

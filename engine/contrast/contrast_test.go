@@ -212,7 +212,7 @@ func TestTheTableOfAFasterSinusRate(t *testing.T) {
 	heart := `{"format":"escapement-plan/1","span_ms":10000,"heart":{"sinus":{"rate_bpm":%d}}}`
 	c := Of(side(t, fmt.Sprintf(heart, 60)), side(t, fmt.Sprintf(heart, 75)))
 	for _, want := range []Row{
-		{"Rates", "QRS rate, median", "60/min", "75/min", "+15/min", Later, ""},
+		{"Rates", "QRS rate", "60/min", "75/min", "+15/min", Later, ""},
 		{"Intervals", "RR, shortest", "1000 ms", "800 ms", "−200 ms", Earlier, ""},
 		{"Intervals", "RR, longest", "1000 ms", "800 ms", "−200 ms", Earlier, ""},
 		{"Settings", "sinus rate", "60/min", "75/min", "changed", Altered, "heart.sinus.rate_bpm"},

@@ -54,14 +54,15 @@ type number struct {
 	value            *float64
 }
 
-// gauge measures one side: the same list, in the same order, for both.
+// gauge measures one side: the same list, in the same order, for both. Rates, VA and
+// the device's intervals are medians.
 func gauge(r *measure.Report, s Side) []number {
 	s0 := &r.Summary
 	pr, rr := spread(r, "P", func(b *measure.Beat) *float64 { return b.PR }), spread(r, "QRS", func(b *measure.Beat) *float64 { return b.RR })
 	longest := without(r, s.Log.Span.MS())
 	out := []number{
-		{"Rates", "P rate, median", "/min", s0.PRate},
-		{"Rates", "QRS rate, median", "/min", s0.VRate},
+		{"Rates", "P rate", "/min", s0.PRate},
+		{"Rates", "QRS rate", "/min", s0.VRate},
 	}
 	d := r.Device
 	if d == nil {
@@ -75,7 +76,7 @@ func gauge(r *measure.Report, s Side) []number {
 		number{"Intervals", "PR, mean", "ms", pr.mean},
 		number{"Intervals", "PR, longest", "ms", pr.most})
 	for _, name := range [...]string{"AS-VP", "AP-VP", "AP-VS", "VP-AS", "VP-AP", "VS-AP"} {
-		n := number{"Intervals", name + ", median", "ms", nil}
+		n := number{"Intervals", name, "ms", nil}
 		for i := range d.Intervals {
 			if d.Intervals[i].Name == name {
 				n.value = d.Intervals[i].Median
@@ -84,7 +85,7 @@ func gauge(r *measure.Report, s Side) []number {
 		out = append(out, n)
 	}
 	return append(out,
-		number{"Intervals", "VA, median", "ms", s0.VA},
+		number{"Intervals", "VA", "ms", s0.VA},
 		number{"Intervals", "RR, shortest", "ms", rr.least},
 		number{"Intervals", "RR, mean", "ms", rr.mean},
 		number{"Intervals", "RR, longest", "ms", rr.most},

@@ -40,22 +40,29 @@ export function conduct(store, engine) {
     }
   }
 
+  /** What the engine was last given to compare with. @type {State["before"]} */
+  let drawnWith = null;
+
   async function compute() {
     const asked = store.get();
-    const reply = await ask("compute", { plan: asked.plan, ...drawing(asked) });
+    const reply = await ask("compute", { plan: asked.plan, before: asked.before?.plan ?? null, ...drawing(asked) });
     if (!reply) return;
     const { ok, diagnoses, answer, scene } = reply.json;
     if (!ok) {
       store.set({ diagnoses, fault: "" });
+      if (asked.before !== drawnWith) layout();
+      drawnWith = asked.before;
       return;
     }
+    drawnWith = asked.before;
     const { view, selected } = store.get();
     store.set({
       answer, computed: asked.plan, diagnoses: [], fault: "",
       scene: readScene(scene, reply.points),
       view: onStrip(view, answer.span_ms),
-      selected: selected <= answer.events ? selected : 0,
+      selected: selected <= answer.events && (selected >= 0 || asked.before) ? selected : 0,
     });
+    differ();
     if (selected) explain();
     if (view !== asked.view || selected !== asked.selected) layout(); // it was drawn for what was asked
   }
@@ -66,6 +73,17 @@ export function conduct(store, engine) {
     const reply = await ask("layout", drawing(s));
     if (reply?.json) store.set({ scene: readScene(reply.json, reply.points) });
     else if (reply) compute(); // a restarted engine has no timeline yet
+  }
+
+  /** How the timeline differs from the one before, or nothing. */
+  async function differ() {
+    const { before } = store.get();
+    if (!before) {
+      store.set({ contrast: null });
+      return;
+    }
+    const reply = await ask("contrast", {});
+    if (reply && store.get().before === before) store.set({ contrast: reply.json });
   }
 
   async function explain() {
@@ -83,7 +101,7 @@ export function conduct(store, engine) {
 
     /** Asks for all that a change of the state calls for. @param {Set<string>} changed */
     request(changed) {
-      if (changed.has("plan")) compute();
+      if (changed.has("plan") || changed.has("before")) compute();
       else if (DRAWN.some((k) => changed.has(k))) layout();
       if (changed.has("selected")) explain();
     },

@@ -31,8 +31,9 @@ import { readHandles } from "../model/handle.js";
  * @property {Lane[]} lanes
  * @property {Mark[]} marks
  * @property {Float32Array} points x, y of the points of polylines, from a mark's `from` on
- * @property {[number, number, number][]} times of every event that has a mark: id, milliseconds,
- *   and the place, from 1, of the intervention that made it, 0 for none
+ * @property {[number, number, number, number][]} times of every event that has a mark: id (below 0 before a
+ *   change), milliseconds, the place, from 1, of the intervention that made it, 0 for none, and 1 for
+ *   one that people measure from
  * @property {Handle[]} handles what can be moved
  * @property {{name: string, y0: number, y1: number}[]} tiers of the ladder, in millimetres
  */

@@ -69,7 +69,13 @@
  * @property {number[]} paced_atrium stimuli of the device
  * @property {number[]} paced_ventricle
  * @property {number[]} lost those of the device that did not capture
+ * @property {Trend | null} trend where there are too many beats to show each
+ * @property {Spot[]} flags where the findings are, in order of time
  */
+
+/** Rates a minute in parts of equal length, 0 where there is none; percent paced. @typedef {{least: number[], mean: number[], most: number[], paced: number[]}} Rates */
+/** @typedef {{step_ms: number, atrium: Rates, ventricle: Rates, blocks: number[]}} Trend */
+/** @typedef {{finding: number, event: number, t_ms: number, until_ms: number, shape: "block" | "pause" | "premature" | "device" | "rhythm"}} Spot */
 
 /** @typedef {{name: string, label: string, value: number | null, unit: string, normal: [number, number] | null, help: string, source: string}} Measured */
 /** @typedef {{slug: string, ratio: string, text: string, events: number[], t_ms: number, note: string, rivals: string[]}} Finding */
@@ -113,6 +119,20 @@
  * @property {Line[]} led what it caused directly
  * @property {Linked[]} settings that had a part in it
  * @property {{title: string, sentences: string[], lines: Line[]} | null} not why the device did not follow it
+ * @property {string} [against] how it differs from its partner, where two timelines are compared
+ */
+
+/** @typedef {{part: string, name: string, before: string, after: string, by: string, sign: "same" | "gone" | "new" | "earlier" | "later" | "altered", place?: string}} ContrastRow */
+
+/**
+ * @typedef {object} Contrast
+ * @property {string} title of the plan before
+ * @property {string} statement
+ * @property {string} after title of the present plan
+ * @property {number} shared_ms the length that both strips have
+ * @property {ContrastRow[]} rows
+ * @property {{gone: number, new: number, moved: number, altered: number}} events
+ * @property {number} first event at which the two part, 0 for none
  */
 
 /** @typedef {{path: string, label: string, unit: string, value: number}} Linked a setting that had a part in something */

@@ -8,6 +8,8 @@
  * @typedef {import("../engine/wire.js").Catalogue} Catalogue
  * @typedef {import("../engine/wire.js").Diagnosis} Diagnosis
  * @typedef {import("../engine/wire.js").Account} Account
+ * @typedef {import("../engine/wire.js").Contrast} Contrast
+ * @typedef {import("./calipers.js").Calipers} Calipers
  * @typedef {import("../engine/scene.js").Scene} Scene
  */
 
@@ -32,7 +34,13 @@
  * @property {"timeline" | "listing"} tab
  * @property {boolean} dark
  * @property {{until_ms: number} | null} present what comes after an instant is covered
+ * @property {Before | null} before the plan to compare with
+ * @property {Contrast | null} contrast how the answer differs from that of the plan before
+ * @property {"contrast" | "measured"} panel what the Account holds where nothing is selected and there is a plan before
+ * @property {Calipers} calipers
  */
+
+/** @typedef {{plan: Plan, preset: string, title: string}} Before */
 
 /** @typedef {ReturnType<typeof createStore>} Store */
 

@@ -72,7 +72,7 @@ describe("the working copy", () => {
     const c = (await openPage(context, url)).page;
     await settled(c);
     assert.equal(await c.inputValue(AH), "132", "the newest that no tab holds");
-    await c.keyboard.press("k");
+    await c.keyboard.press("Shift+K");
     await c.waitForSelector("dialog.kept[open] .kept-list");
     assert.match(await c.innerText("dialog.kept"), /Left open in a tab that was closed/);
     await c.click("dialog.kept .kept-open");
@@ -154,7 +154,7 @@ describe("kept plans", () => {
     assert.equal(await page.inputValue(AH), "132", "undo brings back the plan before");
 
     await page.focus("#timeline");
-    await page.keyboard.press("k");
+    await page.keyboard.press("Shift+K");
     await page.click('[data-kept]:has-text("First") .kept-rename');
     await page.keyboard.type("Third");
     await page.keyboard.press("Enter");
@@ -166,7 +166,7 @@ describe("kept plans", () => {
     await page.keyboard.press("Escape");
     await page.reload();
     await settled(page);
-    await page.keyboard.press("k");
+    await page.keyboard.press("Shift+K");
     await page.waitForSelector(".kept-list");
     assert.deepEqual((await page.locator(".kept-list strong").allInnerTexts()).sort(), ["Second", "Third"]);
   }));
@@ -190,7 +190,7 @@ describe("kept plans", () => {
     await a.keyboard.press("Escape");
     const b = (await openPage(context, url)).page;
     await settled(b);
-    await b.keyboard.press("k");
+    await b.keyboard.press("Shift+K");
     await b.click('[data-kept]:has-text("Shared") .kept-open');
     await settled(b);
     await b.fill(AH, "150");
@@ -211,7 +211,7 @@ describe("kept plans", () => {
     await keepAs(page, "Good");
     await page.evaluate(() => localStorage.setItem("escapement.kept.bad", "\u0000nonsense"));
     await page.keyboard.press("Escape");
-    await page.keyboard.press("k");
+    await page.keyboard.press("Shift+K");
     await page.waitForSelector(".kept-list .broken");
     assert.match(await page.innerText(".broken"), /Cannot be read/);
     const saving = page.waitForEvent("download");
@@ -234,7 +234,8 @@ describe("files and links", () => {
     const file = await saving;
     assert.match(file.suggestedFilename(), /^[a-z0-9-]+\.json$/);
     const text = readFileSync(await file.path(), "utf8");
-    await page.keyboard.press("n");
+    await page.click("summary:has-text('File')");
+    await page.click("#file-new");
     assert.notEqual(await settled(page), print);
     await openFile(page, "mine.json", text);
     assert.equal(await settled(page), print);

@@ -23,8 +23,10 @@ const MOST_LED = 12; // consequences listed
  * @param {HTMLElement} root
  * @param {Store} store
  * @param {(path: string) => void} focusSetting
+ * @param {import("./before.js").BeforeView} before
+ * @param {(way: {shiftKey: boolean}, finding?: number) => void} jump goes to the next place of a finding
  */
-export function accountView(root, store, focusSetting) {
+export function accountView(root, store, focusSetting, before, jump) {
   const title = el("h2", { "aria-live": "polite" }, "Measured");
   const back = el("button", { type: "button", id: "deselect", onclick: () => store.set({ selected: 0, gap: null, lit: [] }) }, "Measured");
   const shut = el("button", { type: "button", class: "drawer-close", onclick: () => store.set({ drawer: "" }) }, "Close");
@@ -46,6 +48,7 @@ export function accountView(root, store, focusSetting) {
     fill(body,
       el("p", { class: "when" }, seconds(a.t_ms)),
       el("div", { class: "sentences" }, a.sentences.map(sentence)),
+      a.against && el("p", { class: "against" }, a.against),
       a.margin && !a.sentences.some((s) => s.includes(a.margin)) && el("p", { class: "margin" }, a.margin),
       a.not && el("h3", null, a.not.title),
       a.not && el("div", { class: "sentences" }, a.not.sentences.map(sentence)),
@@ -92,10 +95,16 @@ export function accountView(root, store, focusSetting) {
 
   /** @param {Answer} answer @param {State} state */
   function measured(answer, state) {
-    title.textContent = "Measured";
     back.hidden = true;
+    if (before.shown(state)) {
+      title.textContent = "Differences";
+      fill(body, before.panel(state));
+      return;
+    }
+    title.textContent = "Measured";
     const note = String(state.plan.note || answer.note || "");
     fill(body,
+      before.tabs(state),
       note && el("section", { class: "look" }, el("h3", null, "Look for"), el("p", null, note)),
       answer.device && device.sums(answer.device),
       answer.device && device.counts(answer.device),
@@ -122,9 +131,10 @@ export function accountView(root, store, focusSetting) {
     ];
   }
 
-  /** @param {Finding} f */
-  function finding(f) {
+  /** @param {Finding} f @param {number} at */
+  function finding(f, at) {
     const first = f.events[0] ?? 0;
+    const places = (store.get().answer?.overview.flags ?? []).filter((p) => p.finding === at).length;
     /** @param {number[]} lit */
     const light = (lit) => store.set({ lit });
     return el("li", null,
@@ -136,6 +146,7 @@ export function accountView(root, store, focusSetting) {
             onclick: () => go(first, f.t_ms),
           }, f.text)
         : el("span", null, f.text),
+      places > 1 && el("button", { type: "button", class: "places", "aria-label": `Next of ${places} places: ${f.text}`, title: "Goes to the next place on the strip", onclick: () => jump({ shiftKey: false }, at) }, `next of ${places} places`),
       f.note && el("p", { class: "aside" }, f.note),
       f.rivals.length > 0 && el("p", { class: "aside" }, `Fits as well: ${f.rivals.join("; ")}.`));
   }
@@ -143,7 +154,7 @@ export function accountView(root, store, focusSetting) {
   return {
     /** @param {State} state @param {Set<string>} changed */
     update(state, changed) {
-      if (!["answer", "account", "selected", "gap"].some((k) => changed.has(k))) return;
+      if (!["answer", "account", "selected", "gap", "contrast", "panel", "before"].some((k) => changed.has(k))) return;
       if (state.selected !== 0) {
         if (state.account && state.account.event === state.selected) event(state.account);
       } else if (state.gap) gap(state.gap);

@@ -20,6 +20,14 @@ export const KEYS = [
     ["+ −", "stretch and squeeze time"],
     ["1 2 0", "25 mm/s, 50 mm/s, whole strip"],
     ["F", "plain or full ladder"],
+    ["N", "next finding; with Shift the previous one"],
+    ["K", "keep the strip as before, to compare; again lets it go"],
+    ["M", "calipers on and off"],
+  ]],
+  ["On a leg of the calipers", [
+    ["← →", "to the next event; with Shift by 1 ms, with Alt by 10 ms"],
+    ["Enter", "march the interval along the strip"],
+    ["Esc", "calipers off"],
   ]],
   ["While presenting", [
     ["Space →", "reveal the next beat; Shift → one wave"],
@@ -36,11 +44,10 @@ export const KEYS = [
   ["Anywhere", [
     ["/", "search the settings"],
     ["P", "choose a preset"],
-    ["N", "new plan: a healthy adult"],
     ["Ctrl O", "open a plan file; or drop one on the page"],
     ["S", "save the plan as a file"],
     ["Ctrl S", "keep the plan in this browser"],
-    ["K", "kept plans"],
+    ["Shift K", "kept plans"],
     ["L", "copy a link with the plan in it"],
     ["Ctrl P", "print or export; in that dialog: save"],
     ["I", "copy the sheet as a picture"],
@@ -94,7 +101,13 @@ export function timelineKeys(e, store) {
 function step(store, way) {
   const { scene, selected, answer } = store.get();
   if (!scene || !answer || answer.events === 0) return;
-  const drawn = scene.times.map((s) => s[0]).sort((a, b) => a - b);
+  if (selected < 0) { // an event before the change
+    const upper = scene.times.map((s) => -s[0]).filter((id) => id > 0).sort((a, b) => a - b);
+    const other = way > 0 ? upper.find((id) => id > -selected) : upper.findLast((id) => id < -selected);
+    if (other) store.set({ selected: -other });
+    return;
+  }
+  const drawn = scene.times.map((s) => s[0]).filter((id) => id > 0).sort((a, b) => a - b);
   if (selected === 0) {
     const first = way > 0 ? drawn[0] : drawn[drawn.length - 1];
     if (first) store.set({ selected: first });
@@ -108,7 +121,7 @@ function step(store, way) {
 /**
  * Keys that work wherever the focus is, except while text is typed.
  * @param {Store} store
- * @param {Record<string, () => void>} acts
+ * @param {Record<string, (e: KeyboardEvent) => void>} acts
  */
 export function globalKeys(store, acts) {
   /** @param {KeyboardEvent} e */
@@ -123,13 +136,13 @@ export function globalKeys(store, acts) {
     const act = acts[`ctrl ${key}`];
     if ((e.ctrlKey || e.metaKey) && !e.altKey && !e.shiftKey && act && !document.querySelector("dialog[open]")) {
       e.preventDefault();
-      act();
+      act(e);
       return;
     }
     if (e.ctrlKey || e.metaKey || e.altKey || typing(e.target) || document.querySelector("dialog[open]")) return;
     if (!acts[key]) return;
     e.preventDefault();
-    acts[key]();
+    acts[key](e);
   }
   document.addEventListener("keydown", listen);
   return () => document.removeEventListener("keydown", listen);

@@ -27,13 +27,14 @@ const SNAP_PX = 7; // how near the hair line must be to an event to jump to it
  * @param {Store} store
  * @param {import("./hand.js").Ask} ask
  * @param {Catalogue} catalogue
+ * @param {HTMLElement[]} over what other views lay over the paper
  */
-export function timelineView(root, store, ask, catalogue) {
+export function timelineView(root, store, ask, catalogue, over) {
   const canvas = el("canvas", { role: "img" });
   const hairTime = el("span", { class: "hair-time" });
   const hair = el("div", { class: "hair", hidden: true, "aria-hidden": "true" }, hairTime);
   const pin = el("div", { class: "pin", hidden: true, "aria-hidden": "true" });
-  const paper = el("div", { class: "paper" }, canvas, pin, hair);
+  const paper = el("div", { class: "paper" }, canvas, pin, hair, over);
   const pane = el("div", {
     id: "timeline", class: "timeline", tabIndex: 0, role: "group",
     "aria-label": "Timeline. Arrow keys pan, comma and full stop walk the events, Alt with an arrow moves the selected one, B tries a beat, question mark lists all keys.",
@@ -160,8 +161,8 @@ export function timelineView(root, store, ask, catalogue) {
   function fit() {
     if (pane.clientWidth === 0) return;
     width = pane.clientWidth;
-    const { view } = store.get();
-    const ladder = ladderFor(view, pane.clientHeight);
+    const { view, before } = store.get();
+    const ladder = ladderFor(view, before ? pane.clientHeight / 2 : pane.clientHeight);
     const width_mm = Math.max(20, width / PX_PER_MM - catalogue.margins_mm[ladder]);
     const height_mm = Math.floor(pane.clientHeight / PX_PER_MM);
     if (view.width_mm === width_mm && view.height_mm === height_mm && view.ladder === ladder) return;
@@ -176,7 +177,7 @@ export function timelineView(root, store, ask, catalogue) {
     update(state, changed) {
       if (["scene", "dark", "lit", "present"].some((k) => changed.has(k))) draw();
       else if (changed.has("selected")) draw();
-      if (changed.has("view")) {
+      if (changed.has("view") || changed.has("before")) {
         hideHair();
         fit();
       }

@@ -24,8 +24,9 @@ const SETS = [
  * @param {HTMLElement} root
  * @param {Store} store
  * @param {import("../engine/wire.js").Catalogue} catalogue
+ * @param {HTMLElement[]} tools of other views
  */
-export function toolbarView(root, store, catalogue) {
+export function toolbarView(root, store, catalogue, tools) {
   const view = () => store.get().view;
   /** @param {Partial<import("../model/view.js").View>} patch */
   const set = (patch) => store.change({ view: { ...view(), ...patch } }, "");
@@ -87,6 +88,7 @@ export function toolbarView(root, store, catalogue) {
       el("button", { type: "button", onclick: () => speed(view().mm_per_s * 1.25), "aria-label": "Stretch time" }, "+"), current),
     group("Gain", gains),
     group("Ladder", ladders),
+    el("div", { class: "group" }, tools),
     el("button", { type: "button", class: "drawer-open last", id: "open-account", onclick: () => store.set({ drawer: "account" }) }, "Account"));
   root.append(bar);
   const drawing = [leads, lanes.root, ...bar.querySelectorAll(".group")]; // of no use to the listing

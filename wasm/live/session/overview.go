@@ -8,6 +8,7 @@ import (
 // overview is the strip on one line a chamber: milliseconds at which a wave
 // began, an impulse was blocked, a stimulus was given. A device's stimuli stand apart
 // from those of the plan's interventions, each with the chamber it was meant for.
+// Where there are too many beats for a line, Trend has their rates instead.
 type overview struct {
 	Atrium    []float64 `json:"atrium"`
 	Ventricle []float64 `json:"ventricle"`
@@ -16,6 +17,8 @@ type overview struct {
 	PacedA    []float64 `json:"paced_atrium"`
 	PacedV    []float64 `json:"paced_ventricle"`
 	Lost      []float64 `json:"lost"` // those of the device that did not capture, of both chambers
+	Trend     *trend    `json:"trend"`
+	Flags     []spot    `json:"flags"`
 }
 
 // The overview is a thousand or so pixels wide: marks nearer to each other than a
@@ -23,7 +26,7 @@ type overview struct {
 const overviewMarks = 4000
 
 func (t *timeline) overview() overview {
-	o := overview{[]float64{}, []float64{}, []float64{}, []float64{}, []float64{}, []float64{}, []float64{}}
+	o := overview{[]float64{}, []float64{}, []float64{}, []float64{}, []float64{}, []float64{}, []float64{}, t.trend(), t.flags()}
 	gap := tick.Dur(t.log.Span) / overviewMarks
 	var last [7]tick.Time
 	put := func(line int, into *[]float64, at tick.Time) {

@@ -51,7 +51,8 @@ type Session struct {
 
 // timeline is a computed plan.
 type timeline struct {
-	file     []byte // the plan as it came
+	file     []byte     // the plan as it came
+	begun    []event.ID // see first
 	plan     *plan.Plan
 	pacer    *plan.Device // nil: none
 	log      *event.Log

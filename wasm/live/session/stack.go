@@ -47,7 +47,7 @@ const leastStacked = 6.5
 const changesRoom = 14
 
 // fitHalves leaves out leads until both halves have room, and lets the ladders take
-// what is left.
+// what is left. Where one lead a half is still too much, its lane is made lower.
 func fitHalves(o *scene.Options, before, after scene.Half, room float64) {
 	units := max(before.Diagram.Height(), after.Diagram.Height())
 	least := leastStacked * units
@@ -59,6 +59,7 @@ func fitHalves(o *scene.Options, before, after scene.Half, room float64) {
 	for rest()+2*least > room && fewer(o) {
 	}
 	o.LadderMM = math.Min(math.Max((room-rest())/2, least), mostTier*units)
+	o.Closer = math.Max(rest()+2*least-room, 0) / 2
 }
 
 // fewer leaves out the lead that says least about rhythm: the last that is neither II
@@ -111,13 +112,14 @@ func weakest[T any](list []T, of func(T) (lead.Name, bool)) int {
 }
 
 // bothTimes is times for a sheet of two: no event of the upper half can be moved.
-func (s *Session) bothTimes(drawn *scene.Scene) [][3]float64 {
+func (s *Session) bothTimes(drawn *scene.Scene) [][4]float64 {
 	out := s.current.times(drawn)
 	seen := map[event.ID]bool{}
 	for i := range drawn.Marks {
 		if id := drawn.Marks[i].Event; id < 0 && !seen[id] {
 			seen[id] = true
-			out = append(out, [3]float64{float64(id), s.before.log.At(-id).T.MS(), 0})
+			e := s.before.log.At(-id)
+			out = append(out, [4]float64{float64(id), e.T.MS(), 0, s.before.measured(e)})
 		}
 	}
 	return out

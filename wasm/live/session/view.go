@@ -2,6 +2,7 @@ package session
 
 import (
 	"math"
+	"slices"
 
 	"escapement/engine/event"
 	"escapement/engine/ladder"
@@ -77,7 +78,7 @@ func (t *timeline) scene(q *view) ([]byte, []float32) {
 }
 
 // wire is a scene with the times of its events, what of it can be moved, and its tiers.
-func (t *timeline) wire(drawn *scene.Scene, o *scene.Options, times [][3]float64) ([]byte, []float32) {
+func (t *timeline) wire(drawn *scene.Scene, o *scene.Options, times [][4]float64) ([]byte, []float32) {
 	meta, points := scene.Encode(drawn)
 	meta = append(append(meta[:len(meta)-1], `,"times":`...), encode(times)...)
 	meta = append(append(meta, `,"handles":`...), encode(t.handles(drawn, o))...)
@@ -142,11 +143,12 @@ func (t *timeline) diagram(f ladder.Form) *ladder.Diagram {
 	return d
 }
 
-// times gives, for every event that has a mark, its id, its milliseconds and the
-// place, from 1, of the intervention that made it; 0 for none.
-func (t *timeline) times(s *scene.Scene) [][3]float64 {
+// times gives, for every event that has a mark, its id, its milliseconds, the place,
+// from 1, of the intervention that made it, 0 for none, and 1 for one that people
+// measure from: the beginning of a P or a QRS, a stimulus, a signal of the device.
+func (t *timeline) times(s *scene.Scene) [][4]float64 {
 	seen := map[event.ID]bool{}
-	out := [][3]float64{}
+	out := [][4]float64{}
 	for i := range s.Marks {
 		id := s.Marks[i].Event
 		if id <= 0 || seen[id] { // those below 0 belong to the timeline before
@@ -154,7 +156,7 @@ func (t *timeline) times(s *scene.Scene) [][3]float64 {
 		}
 		seen[id] = true
 		e := t.log.At(id)
-		out = append(out, [3]float64{float64(id), e.T.MS(), float64(t.intervention(e))})
+		out = append(out, [4]float64{float64(id), e.T.MS(), float64(t.intervention(e)), t.measured(e)})
 	}
 	return out
 }
@@ -175,4 +177,29 @@ func (t *timeline) intervention(e *event.Event) int {
 		}
 	}
 	return 0
+}
+
+// measured is 1 for an event that people measure from, else 0.
+func (t *timeline) measured(e *event.Event) float64 {
+	switch e.Kind {
+	case event.Stimulus, event.Sense:
+		return 1
+	case event.Activate:
+		if _, found := slices.BinarySearch(t.first(), e.ID); found {
+			return 1
+		}
+	}
+	return 0
+}
+
+// first lists the first activation of every P and QRS, in order.
+func (t *timeline) first() []event.ID {
+	if t.begun == nil {
+		t.begun = make([]event.ID, len(t.report.Beats))
+		for i := range t.report.Beats {
+			t.begun[i] = t.report.Beats[i].ID
+		}
+		slices.Sort(t.begun)
+	}
+	return t.begun
 }
