@@ -36,7 +36,7 @@ const LONGEST = 46;
 
 /** @param {string} text */
 function brief(text) {
-  const short = text.split(/[:;(]|, /)[0].trim();
+  const short = text.split(/: |[;(]|, /)[0].trim();
   return short.length > LONGEST ? `${short.slice(0, LONGEST - 1)}…` : short;
 }
 

@@ -5,6 +5,8 @@ import { test } from "node:test";
 import { num, typed } from "../base/format.js";
 import { timeScale, tOf, xOf } from "../base/scale.js";
 import { nearest, placeOf, readScene, timeAt } from "../engine/scene.js";
+import { flipLog } from "../model/flips.js";
+import * as handles from "../model/handle.js";
 import { covers, drop, dropWithin, get, put, steps } from "../model/path.js";
 import { createStore } from "../model/store.js";
 import { FIRST_VIEW, fitSpeed, ladderFor, onStrip, pan, reveal, shown, zoomTo } from "../model/view.js";
@@ -240,4 +242,36 @@ test("the bar puts the normal range in its middle third", () => {
   assert.ok(Math.abs(valueAt(fraction(75, normal), normal) - 75) < 1e-9);
   assert.equal(verdict(100, normal), "normal");
   assert.equal(verdict(101, normal), "high");
+});
+
+/** A handle as the engine gives it. @param {Partial<import("../model/handle.js").Handle>} about @returns {import("../model/handle.js").Handle} */
+const handle = (about) => ({ event: 9, marks: [], end: true, fixed: false, t_ms: 2000, from_ms: 1750, per: 1, coupling_ms: -1, y0: 0, y1: 1, path: "pacemaker.pvarp_ms", label: "PVARP", unit: "ms", value: 250, min: 0, max: 600, step: 5, ...about });
+
+test("a handle's value follows the pointer in steps, and stops at the end of its range", () => {
+  const h = handle({});
+  assert.deepEqual(handles.valueAt(h, 2013), { value: 265, limit: "" });
+  assert.deepEqual(handles.valueAt(h, 9000), { value: 600, limit: "most" });
+  assert.deepEqual(handles.valueAt(h, 0), { value: 0, limit: "least" });
+  assert.equal(handles.timeOf(h, 300), 2050);
+  assert.equal(handles.later(h, -10), 200);
+});
+
+test("a rate's handle goes by its interval: ten cycles of 800 ms, 100 ms later, are 810 ms each", () => {
+  const h = handle({ path: "heart.sinus.rate_bpm", label: "sinus rate", unit: "/min", value: 75, min: 10, max: 220, step: 1, per: 10, end: false });
+  assert.equal(handles.valueAt(h, 2100, 0.1).value, 74.1); // 60000/810 = 74.07
+  assert.ok(Math.abs(handles.timeOf(h, 60000 / 810) - 2100) < 1e-6);
+  assert.equal(handles.later(h, 1), 74); // later in time is a slower rate
+  assert.equal(handles.stepFor(h, 0.0945), 0.1); // one whole step would leap 10 px
+});
+
+test("an outcome's flip stands between two values that were seen, and is then known exactly", () => {
+  const finding = (/** @type {string} */ slug, /** @type {string} */ text) => ({ slug, ratio: "", text, events: [], t_ms: 0, note: "", rivals: [] });
+  const log = flipLog();
+  const [one, two] = [[finding("tracked", "Tracked 1:1 (AV 160 ms)")], [finding("pvarp", "Every other P in PVARP: 2:1")]];
+  log.note(300, two);
+  log.note(260, one);
+  log.note(280, two);
+  assert.deepEqual(log.flips().map((f) => [f.low, f.high, f.below, f.above, f.exact]), [[260, 280, "Tracked 1:1", "Every other P in PVARP", false]]);
+  log.found(260, 280, 274, 275);
+  assert.deepEqual(log.known().map((f) => [f.low, f.high, f.exact]), [[274, 275, true]]);
 });

@@ -55,6 +55,7 @@ func (s *Session) gap(args []byte) []byte {
 	if from < 0 {
 		return none
 	}
+	from, to = t.noticed(from), t.noticed(to)
 	w := account.WhyGap(t.log, from, to)
 	if w == nil {
 		return none
@@ -72,6 +73,24 @@ func (s *Session) gap(args []byte) []byte {
 		}
 	}
 	return encode(r)
+}
+
+// late is how long after the start of a QRS complex a lead may notice it.
+const late = 150 * tick.Millisecond
+
+// noticed is when the device paced or sensed the QRS complex that began at a time; that
+// time where it did neither.
+func (t *timeline) noticed(qrs tick.Time) tick.Time {
+	for i := range t.log.Events {
+		e := &t.log.Events[i]
+		if e.T > qrs.Add(late) {
+			break
+		}
+		if e.T >= qrs && e.Channel == 'V' && (e.Kind == event.Sense && e.Use != event.Blanked || e.Kind == event.Stimulus) {
+			return e.T
+		}
+	}
+	return qrs
 }
 
 // link adds the settings of an event that are not yet in a list.
