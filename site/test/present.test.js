@@ -142,7 +142,7 @@ describe("a picture", () => {
     const got = await page.evaluate(async () => {
       const [item] = await navigator.clipboard.read();
       const bitmap = await createImageBitmap(await item.getType("image/png"));
-      const g = /** @type {OffscreenCanvasRenderingContext2D} */ (new OffscreenCanvas(bitmap.width, bitmap.height).getContext("2d"));
+      const g = /** @type {OffscreenCanvasRenderingContext2D} */ (new OffscreenCanvas(bitmap.width, bitmap.height).getContext("2d", { willReadFrequently: true }));
       g.drawImage(bitmap, 0, 0);
       /** @param {number} from @param {number} to */
       const ink = (from, to) => {
