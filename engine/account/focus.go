@@ -10,6 +10,10 @@ import (
 // discharge: what began the cycle, how long it lasted, and whether it ran
 // undisturbed, was reset or was delayed.
 func (w *writer) discharge(e *event.Event) {
+	if e.Rule != event.Phase4 {
+		w.driver(e)
+		return
+	}
 	w.a.Title = upper(w.site(e.Site)) + " discharged"
 	w.say(fmt.Sprintf("%s reached threshold by itself at %s.", upper(w.site(e.Site)), clock(e.T)))
 	began := w.log.At(e.Cause)
@@ -116,4 +120,26 @@ func (w *writer) stimulus(e *event.Event) {
 func (w *writer) change(e *event.Event) {
 	w.a.Title = "Planned change"
 	w.say(fmt.Sprintf("From %s on the plan sets %s to %s.", clock(e.T), e.Field, e.To))
+}
+
+// driver: a turn of the flutter circuit, or a wave of fibrillation.
+func (w *writer) driver(e *event.Event) {
+	began := w.log.At(e.Cause)
+	if e.Rule == event.Arrival {
+		w.a.Title = "A wave of fibrillation at " + w.site(e.Site)
+		w.say(fmt.Sprintf("A wave of fibrillation arrived at %s at %s. When it comes is drawn at random by the plan's seed; no front crosses the atria.", w.site(e.Site), clock(e.T)))
+		if began != nil {
+			w.number("since the last one here", e.T.Sub(began.T))
+		}
+		return
+	}
+	w.a.Title = "The flutter circuit passed " + w.site(e.Site)
+	w.say(fmt.Sprintf("The flutter circuit came round to %s at %s.", w.site(e.Site), clock(e.T)))
+	if began == nil {
+		return
+	}
+	w.number("cycle", e.T.Sub(began.T))
+	if began.Kind != event.Discharge {
+		w.say(fmt.Sprintf("%s had entered the circuit %s before: one turn (event %d).", upper(w.began(began.ID)), span(e.T.Sub(began.T)), began.ID))
+	}
 }

@@ -90,6 +90,10 @@ func (w *writer) began(id event.ID) string {
 	switch {
 	case o == nil:
 		return "an impulse of unknown origin"
+	case o.Kind == event.Discharge && o.Rule == event.Circuit:
+		return fmt.Sprintf("the impulse of the flutter circuit (%s)", clock(o.T))
+	case o.Kind == event.Discharge && o.Rule == event.Arrival:
+		return fmt.Sprintf("the impulse of a wave of fibrillation at %s (%s)", w.site(o.Site), clock(o.T))
 	case o.Kind == event.Discharge:
 		return fmt.Sprintf("the impulse of %s (%s)", w.site(o.Site), clock(o.T))
 	case o.Kind == event.Stimulus && o.Rule == event.Timed:
@@ -104,6 +108,12 @@ func (w *writer) began(id event.ID) string {
 func (w *writer) short(e *event.Event) string {
 	switch e.Kind {
 	case event.Discharge:
+		switch e.Rule {
+		case event.Circuit:
+			return fmt.Sprintf("The flutter circuit passed %s.", w.site(e.Site))
+		case event.Arrival:
+			return fmt.Sprintf("A wave of fibrillation arrived at %s.", w.site(e.Site))
+		}
 		return upper(w.site(e.Site)) + " discharged by itself."
 	case event.Activate:
 		switch e.Rule {

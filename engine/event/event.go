@@ -60,6 +60,8 @@ const (
 	Signal              // a signal above sensitivity arrived (Sense)
 	Opened              // the device began to wait for something, or to be deaf (Window)
 	Switched            // the device changed its mode (Mode)
+	Circuit             // a re-entrant driver came round (Discharge)
+	Arrival             // a wave of fibrillation arrived (Discharge)
 )
 
 // Dir is the direction along a path. Down is from [Path.From] to [Path.To],

@@ -12,7 +12,7 @@ var ruleNames = [...]string{
 	Phase4: "phase4", Fired: "fired", Captured: "captured", Conducted: "conducted",
 	PathRefractory: "path_refractory", SiteRefractory: "site_refractory", Collision: "collision",
 	OneWay: "one_way", Dropped: "dropped", Premature: "premature", Train: "train", Planned: "planned",
-	Timed: "timed", Signal: "signal", Opened: "opened", Switched: "switched",
+	Timed: "timed", Signal: "signal", Opened: "opened", Switched: "switched", Circuit: "circuit", Arrival: "arrival",
 }
 
 var dirNames = [...]string{Down: "down", Up: "up"}

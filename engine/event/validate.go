@@ -63,7 +63,7 @@ func (v *validator) event(i int) {
 	}
 	switch e.Kind {
 	case Discharge:
-		v.want(e, e.Rule == Phase4 && v.site(e.Site) && e.Path == None)
+		v.want(e, (e.Rule == Phase4 || e.Rule == Circuit || e.Rule == Arrival) && v.site(e.Site) && e.Path == None)
 	case Activate:
 		v.activate(e)
 	case Block:

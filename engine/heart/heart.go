@@ -124,7 +124,23 @@ type Focus struct {
 	// and frequency of forced beats set the suppression. The formula is our own.)
 	OverdriveGain float64
 	OverdriveTau  tick.Dur
+
+	// Driver is what discharges instead of phase 4; 0 for phase 4.
+	Driver      Driver
+	From, Until tick.Time // a driver acts from From and before Until; Until 0 is without end
+
+	EndsBelow   tick.Dur // Reentry: another impulse that comes sooner after the last turn ends it
+	Least, Mean tick.Dur // Arrivals: shortest and mean interval
 }
+
+// Driver is an atrial rhythm that no single site makes.
+type Driver uint8
+
+const (
+	_        Driver = iota
+	Reentry         // a circuit that passes the site once a cycle: flutter
+	Arrivals        // waves from anywhere: fibrillation
+)
 
 // Heart is the whole network. Sites and Paths are indexed by event.SiteID and
 // event.PathID.
@@ -132,6 +148,11 @@ type Heart struct {
 	Sites []Site
 	Paths []Path
 	Foci  []Focus
+
+	// Apart is the time in which the atria fibrillate: no front crosses them, and a
+	// path of atrial muscle lets nothing in from From and before Until. Until 0 where
+	// they do not.
+	Apart struct{ From, Until tick.Time }
 
 	// Basic is the cycle that the heart is taken to have had before the strip: the
 	// preceding cycle of every first beat.

@@ -104,6 +104,7 @@ func (b *builder) foci() {
 	for _, f := range b.n.Foci {
 		b.focus(f)
 	}
+	b.drivers()
 }
 
 func (b *builder) focus(n FocusNumbers) {

@@ -64,6 +64,9 @@ const (
 // New makes the heart of the numbers. The error, an *Unmet, says which numbers
 // cannot hold together.
 func New(n *Numbers) (*Heart, error) {
+	if err := n.Rhythm.check(n.AtriumERP); err != nil {
+		return nil, err
+	}
 	b := &builder{n: n, h: &Heart{Quantum: max(n.QuantumUS, 1)}}
 	b.h.Basic = tick.PerMinute(n.Sinus.Rate.At(0))
 	b.sites()
@@ -99,6 +102,9 @@ func (b *builder) sites() {
 			r = constant(sinusERP)
 		case event.Atrium:
 			r = b.n.AtriumERP
+			if b.n.Rhythm.Driver == Arrivals {
+				r = constant(b.n.Rhythm.LeastMS)
+			}
 		case event.Node:
 			r = constant(junctionERP)
 		case event.His:

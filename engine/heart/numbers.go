@@ -36,6 +36,7 @@ type Numbers struct {
 	VentricERP Cycled
 	Foci       []FocusNumbers
 	Pathways   []PathwayNumbers
+	Rhythm     AtrialRhythm
 	QuantumUS  tick.Dur   // 0 is 1 microsecond
 	Solved     *Solutions // of nodes met before; nil: none
 }

@@ -121,11 +121,15 @@ func (f *finder) otherAtrial() {
 	}
 	for _, g := range all {
 		cycle := medianDur(g.paces)
-		f.add(orderAtria, Finding{
+		x := Finding{
 			Slug: g.slug, Evidence: g.ids, Count: g.beats,
 			Text:   fmt.Sprintf("%s in a row from one place in the atria, %s: consistent with %s.", plural(g.beats, "P wave", "P waves"), perMinute(cycle), g.words),
 			clause: g.words + " " + perMinute(cycle),
-		})
+		}
+		if g.slug == "atrial_flutter" {
+			f.conductedFlutter(&x, g.ids)
+		}
+		f.add(orderAtria, x)
 	}
 	f.fibrillation()
 }
@@ -136,6 +140,9 @@ func (f *finder) atrialRun(all []gathered, i, j int) []gathered {
 		d = append(d, f.pp(k))
 	}
 	cycle := medianDur(d)
+	if f.arrival(i) {
+		return all // fibrillation has a name of its own
+	}
 	slug, name := "ectopic_atrial_rhythm", "ectopic atrial rhythm"
 	switch {
 	case f.byDevice(f.p[i].id):
@@ -146,6 +153,9 @@ func (f *finder) atrialRun(all []gathered, i, j int) []gathered {
 		return all // echoes and junctional beats have findings of their own
 	case cycle.BPM() >= 240:
 		slug, name = "atrial_flutter", "a regular atrial driver in the range of flutter"
+		if f.driven(i) {
+			name = "atrial flutter"
+		}
 	case cycle.BPM() > 100:
 		slug, name = "atrial_tachycardia", "atrial tachycardia"
 	}
@@ -156,32 +166,4 @@ func (f *finder) atrialRun(all []gathered, i, j int) []gathered {
 		g.ids = append(g.ids, f.p[k].id)
 	}
 	return all
-}
-
-// fibrillation: atrial waves above 350/min whose intervals differ by more than a
-// quarter of their median (texts, from memory; 147-227 ms measured by Petrutiu
-// et al. 2007). Runs from one place were named already.
-func (f *finder) fibrillation() {
-	var ids []event.ID
-	var d []tick.Dur
-	lo, hi := tick.Dur(0), tick.Dur(0)
-	for i := 1; i < len(f.p); i++ {
-		if f.descending(i) && f.pOrigin(i) != fromSinus {
-			d = append(d, f.pp(i))
-			ids = append(ids, f.p[i].id)
-			if lo == 0 || f.pp(i) < lo {
-				lo = f.pp(i)
-			}
-			hi = max(hi, f.pp(i))
-		}
-	}
-	m := medianDur(d)
-	if len(d) < 10 || m.BPM() < 350 || 4*(hi-lo) < m {
-		return
-	}
-	f.add(orderAtria, Finding{
-		Slug: "atrial_fibrillation", Evidence: ids, Count: len(ids),
-		Text:   fmt.Sprintf("Atrial waves at %s with irregular intervals: consistent with atrial fibrillation.", perMinute(m)),
-		clause: "atrial fibrillation",
-	})
 }

@@ -18,7 +18,7 @@ const unsettled = 600 * tick.Millisecond
 func (s *strip) token(i int) token {
 	w := &s.p[i]
 	switch {
-	case w.retrograde || w.premature:
+	case w.retrograde || w.premature || s.arrival(i):
 		return apart
 	case w.to >= 0 && s.begunByDevice(int(w.to)):
 		return apart // it met a beat that the device had begun

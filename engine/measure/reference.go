@@ -236,7 +236,7 @@ func (s *strip) anyConducted() bool {
 // prematureP: a P that is not the sinus node's own and comes early, against the
 // run it belongs to where there is one, else against the sinus cycle.
 func (s *strip) prematureP(i int, sinus tick.Dur) bool {
-	if i == 0 || !s.descending(i) || s.pOrigin(i) == fromSinus || s.byDevice(s.p[i].id) {
+	if i == 0 || !s.descending(i) || s.pOrigin(i) == fromSinus || s.byDevice(s.p[i].id) || s.driven(i) {
 		return false
 	}
 	if i >= 2 && s.sameSource(i, i-1) && s.sameSource(i, i-2) {

@@ -127,7 +127,7 @@ func sinusFields() []*Field {
 	fs = append(fs, pattern(at+".exit.drop", "dropped exits"),
 		num("heart.atria.erp_ms", "atrial ERP", "ms", 220, 20, 600).normal(160, 260, alboni).help("Effective refractory period of the atria at a drive of 600 ms."),
 		num("heart.atria.erp_per_cycle", "atrial ERP by cycle", "ms/ms", heart.SlopeAtrium, -1, 1).help("Slope: "+denes).advanced())
-	return fs
+	return append(fs, rhythmFields()...)
 }
 
 func nodeFields() []*Field {

@@ -31,6 +31,7 @@ func (p *Plan) numbers(rate func(path string, bpm float64) heart.Rate) *heart.Nu
 		Anterior:   p.bundle("left_anterior"),
 		Posterior:  p.bundle("left_posterior"),
 		Septal:     p.bundle("left_septal"),
+		Rhythm:     p.rhythm(),
 	}
 	for i, it := range p.Foci {
 		at := func(name string) float64 { return it.number("heart.foci", name) }

@@ -27,6 +27,9 @@ func (p *Plan) Patient() pacer.Patient {
 			out.Flutter = d
 		}
 	}
+	if r := p.rhythm(); r.Driver != 0 {
+		fast("right_atrium", tick.MS(r.CycleMS))
+	}
 	for _, f := range p.Foci {
 		fast(f["site"].Text, tick.PerMinute(f.number("heart.foci", "rate_bpm")))
 	}

@@ -4,6 +4,7 @@ import (
 	"math/rand/v2"
 
 	"escapement/engine/event"
+	"escapement/engine/heart"
 	"escapement/engine/portmath"
 	"escapement/engine/tick"
 )
@@ -17,10 +18,17 @@ type focusState struct {
 	suppression float64  // S: the next cycle lasts 1+S times as long
 	at          tick.Time
 	random      *rand.Rand // nil until it is needed
+	begun       bool       // a driver that has discharged and not ended
 }
 
 func (s *focusState) init(m *Machine, i int) {
 	f := &m.h.Foci[i]
+	if f.Driver != 0 {
+		if s.due = tick.Time(m.quantise(tick.Dur(f.From))); f.Until == 0 || s.due < f.Until {
+			m.push(s.due, classDischarge, i, 0, s.gen)
+		}
+		return
+	}
 	if f.First > 0 {
 		s.due = tick.Time(m.quantise(f.First))
 		s.start = s.due.Add(-tick.PerMinute(f.Rate.At(s.due)))
@@ -37,21 +45,35 @@ func (m *Machine) cycle(i int, cause event.ID) {
 	s.start, s.cause = m.now, cause
 	length := f.Rate.Next(m.now, 1+s.suppression).Sub(m.now)
 	if f.Jitter > 0 {
-		if s.random == nil {
-			s.random = rand.New(rand.NewPCG(m.prog.Seed, uint64(i)<<1|1))
-		}
-		length += tick.Dur((2*s.random.Float64() - 1) * float64(f.Jitter))
+		length += tick.Dur((2*s.stream(m, i).Float64() - 1) * float64(f.Jitter))
+	}
+	if f.Driver == heart.Arrivals {
+		length = f.Least + tick.Dur(float64(f.Mean-f.Least)*-portmath.Log(1-s.stream(m, i).Float64()))
 	}
 	s.due = m.now.Add(max(m.quantise(length), m.h.Quantum))
-	m.push(s.due, classDischarge, i, 0, s.gen)
+	if f.Driver == 0 || f.Until == 0 || s.due < f.Until {
+		m.push(s.due, classDischarge, i, 0, s.gen)
+	}
 }
+
+// stream is the focus's own random numbers.
+func (s *focusState) stream(m *Machine, i int) *rand.Rand {
+	if s.random == nil {
+		s.random = rand.New(rand.NewPCG(m.prog.Seed, uint64(i)<<1|1))
+	}
+	return s.random
+}
+
+// discharges names the rule by which a focus discharges.
+var discharges = [...]event.Rule{0: event.Phase4, heart.Reentry: event.Circuit, heart.Arrivals: event.Arrival}
 
 // discharge fires a focus. The tissue around it may be refractory: then nothing
 // leaves it, and its next cycle begins all the same.
 func (m *Machine) discharge(i int) {
 	f, s := &m.h.Foci[i], &m.foci[i]
-	id := m.record(event.Event{Kind: event.Discharge, Rule: event.Phase4, Site: f.Site, Path: event.None, Cause: s.cause})
+	id := m.record(event.Event{Kind: event.Discharge, Rule: discharges[f.Driver], Site: f.Site, Path: event.None, Cause: s.cause})
 	s.decay(f.OverdriveTau, m.now)
+	s.begun = true
 	m.cycle(i, id)
 	st := &m.sites[f.Site]
 	if st.id == 0 || m.now >= st.until {
@@ -69,6 +91,15 @@ func (m *Machine) reset(w *wave, id event.ID) {
 		f, s := &m.h.Foci[i], &m.foci[i]
 		if f.Site != w.site || f.Protected || w.rule == event.Fired && s.cause == w.cause {
 			continue
+		}
+		if f.Driver != 0 {
+			if !s.begun {
+				continue
+			}
+			if m.now.Sub(s.start) < f.EndsBelow {
+				s.gen, s.begun = s.gen+1, false
+				continue
+			}
 		}
 		s.decay(f.OverdriveTau, m.now)
 		if f.OverdriveGain > 0 {

@@ -42,6 +42,9 @@ func (d dice) network() *plan.Program {
 	}
 	prog.Stimuli = d.stimuli(len(prog.Heart.Sites), span, grain)
 	if d.chance(0.3) {
+		d.driven(prog.Heart, span, grain)
+	}
+	if d.chance(0.3) {
 		h := prog.Heart
 		for i := range d.int(1, 3) {
 			c := plan.Change{T: d.time(span, grain), Field: d.word("field"), To: strconv.Itoa(i)}
@@ -56,6 +59,22 @@ func (d dice) network() *plan.Program {
 		}
 	}
 	return prog
+}
+
+// driven gives a heart a driver, and a time in which atrial muscle is apart.
+func (d dice) driven(h *heart.Heart, span tick.Time, grain float64) {
+	f := heart.Focus{Site: event.SiteID(d.IntN(len(h.Sites))), Driver: heart.Driver(d.int(1, 2)), Rate: heart.Constant(60000 / d.ms(30, 400, grain)), From: d.time(span, grain)}
+	if d.chance(0.5) {
+		f.Until = d.time(span, grain)
+	}
+	f.Protected = f.Driver == heart.Arrivals
+	f.EndsBelow = tick.MS(d.either(0.5, 0, d.ms(1, 200, grain)))
+	f.Least = tick.MS(d.ms(1, 150, grain))
+	f.Mean = f.Least + tick.MS(d.ms(1, 150, grain))
+	h.Foci = append(h.Foci, f)
+	if d.chance(0.5) {
+		h.Apart.From, h.Apart.Until = d.time(span, grain), d.time(span, grain)
+	}
 }
 
 func (d dice) word(s string) string {
@@ -270,6 +289,10 @@ func (d dice) clinical() *plan.Program {
 	}
 	for d.chance(0.5) && len(n.Pathways) < 3 {
 		n.Pathways = append(n.Pathways, d.pathway())
+	}
+	if d.chance(0.3) {
+		n.Rhythm = heart.AtrialRhythm{Driver: heart.Driver(d.int(1, 2)), CycleMS: d.between(170, 350), EndsBelowMS: d.either(0.5, 0, d.between(100, 300)),
+			LeastMS: d.between(60, 160), FromMS: d.between(0, 800), UntilMS: d.either(0.5, 0, d.between(100, 2000))}
 	}
 	h, err := heart.New(n)
 	if err != nil {

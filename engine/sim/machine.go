@@ -42,12 +42,19 @@
 //     a cycle begins. A reset after the share x of the focus's own cycle (S = 0) adds
 //     gain*(1-x) to S, if positive. Where First is given, the cycle under way at the
 //     start counts as begun one cycle before it, and a reset before that as x = 0.
+//  9. A focus with a driver has its first discharge at From (at once, if From is 0)
+//     and none at Until or later. Reentry comes round by rule 8 without suppression;
+//     other impulses reset it only after its first discharge, and one that comes less
+//     than EndsBelow after the last discharge or reset ends it for good. Arrivals are
+//     never reset: an interval is Least and an exponential one of mean Mean-Least, by
+//     one uniform number each. While the atria are Apart, a path of atrial muscle lets
+//     nothing in and records nothing.
 //
 // Ties are decided by the class table in queue.go; an impulse that stops where and
 // when it enters is recorded at once. A change of parameters holds for what begins
 // after it: impulses and cycles under way keep theirs. Random numbers come from one
 // PCG stream for each focus and path, of the plan's seed and 2*number+1 or 2*number,
-// and are drawn only where there is jitter or a chance of dropping.
+// and are drawn only where there is jitter, a chance of dropping, or arrivals.
 package sim
 
 import (

@@ -20,6 +20,7 @@ type way struct {
 	plain    bool // silent muscle: open, all or none, no depth; see cross
 	turn     tick.Dur
 	drops    bool  // a drop pattern stands in it
+	atrial   bool  // through atrial muscle
 	class    class // of arrivals
 	exit     event.SiteID
 }
@@ -30,6 +31,7 @@ func (m *Machine) compile(p *heart.Path, d event.Dir) way {
 	if w.fixed {
 		w.theta = m.quantise(c.Refractory(0))
 	}
+	w.atrial = p.Tissue == event.Atrium
 	w.drops = d == event.Down && (p.Drop.Of > 0 || p.Drop.Chance > 0)
 	w.plain = w.silent && w.open && w.fixed && !w.decrease && !w.drops && c.Inner >= 1
 	switch m.h.Sites[w.exit].Tissue {
@@ -88,6 +90,9 @@ func (m *Machine) delay(w *way, recovery tick.Dur) tick.Dur {
 // enter offers the impulse of a depolarised site to a path.
 func (m *Machine) enter(x *exit, cause event.ID, from event.SiteID) {
 	w, st, p, d := x.way, x.st, x.path, x.dir
+	if w.atrial && m.now >= m.h.Apart.From && m.now < m.h.Apart.Until {
+		return
+	}
 	against := &st.transit[other(d)]
 	if w.plain {
 		m.cross(x, against, cause, from)

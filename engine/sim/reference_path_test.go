@@ -11,6 +11,9 @@ import (
 // enter offers the impulse of a depolarised site to a path.
 func (r *reference) enter(id event.PathID, d event.Dir, cause event.ID) {
 	p, h := &r.paths[id], &r.heart.Paths[id]
+	if h.Tissue == event.Atrium && r.now >= r.heart.Apart.From && r.now < r.heart.Apart.Until { // rule 9
+		return
+	}
 	c, same, other := h.Dir(d), &p.inside[d], &p.inside[event.Down+event.Up-d]
 	e := event.Event{Kind: event.Block, Cause: cause, Dir: d, Site: h.Entry(d), Path: id}
 

@@ -62,6 +62,7 @@ type refFocus struct {
 	s          float64   // overdrive suppression
 	at         tick.Time // as it was at this time
 	random     *rand.Rand
+	over       bool // a driver that has not begun or has ended
 }
 
 // refStop is an impulse that will stop inside a path.
@@ -221,13 +222,26 @@ func (r *reference) begin(i int, cause event.ID) {
 	if h.Jitter > 0 {
 		cycle += tick.Dur((2*f.random.Float64() - 1) * float64(h.Jitter))
 	}
+	if h.Driver == heart.Arrivals { // rule 9
+		cycle = h.Least + tick.Dur(float64(h.Mean-h.Least)*-portmath.Log(1-f.random.Float64()))
+	}
 	f.due = r.now.Add(max(r.up(cycle), r.heart.Quantum))
+	if h.Driver != 0 && h.Until > 0 && f.due >= h.Until {
+		f.due = tick.Never
+	}
 }
 
 // first sets up the first discharge of a focus; where it is given, the cycle
 // before it began one cycle earlier.
 func (r *reference) first(i int) {
 	f, h := &r.foci[i], &r.heart.Foci[i]
+	if h.Driver != 0 {
+		f.due, f.over, f.made = tick.Time(r.up(tick.Dur(h.From))), true, r.setUp()
+		if h.Until > 0 && f.due >= h.Until {
+			f.due = tick.Never
+		}
+		return
+	}
 	if h.First == 0 {
 		r.begin(i, 0)
 		return
@@ -238,7 +252,15 @@ func (r *reference) first(i int) {
 
 func (r *reference) discharge(i int) {
 	site := r.heart.Foci[i].Site
-	id := r.record(event.Event{Kind: event.Discharge, Rule: event.Phase4, Cause: r.foci[i].cause, Site: site, Path: event.None})
+	rule := event.Phase4
+	switch r.heart.Foci[i].Driver {
+	case heart.Reentry:
+		rule = event.Circuit
+	case heart.Arrivals:
+		rule = event.Arrival
+	}
+	r.foci[i].over = false
+	id := r.record(event.Event{Kind: event.Discharge, Rule: rule, Cause: r.foci[i].cause, Site: site, Path: event.None})
 	r.fade(i)
 	r.begin(i, id)
 	if r.excitable(site) {
@@ -255,6 +277,13 @@ func (r *reference) discharge(i int) {
 func (r *reference) reset(i int, e *event.Event) {
 	f, h := &r.foci[i], &r.heart.Foci[i]
 	if h.Site != e.Site || h.Protected || e.Rule == event.Fired && f.cause == e.Cause {
+		return
+	}
+	if h.Driver != 0 && f.over {
+		return
+	}
+	if h.Driver != 0 && r.now.Sub(f.began) < h.EndsBelow {
+		f.due, f.over = tick.Never, true
 		return
 	}
 	r.fade(i)
