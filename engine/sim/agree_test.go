@@ -136,10 +136,17 @@ func TestTimeShift(t *testing.T) {
 func shift(prog *plan.Program, by tick.Dur) {
 	prog.Span = prog.Span.Add(by)
 	for _, h := range hearts(prog) {
+		if h.Apart.Until > 0 {
+			h.Apart.From, h.Apart.Until = h.Apart.From.Add(by), h.Apart.Until.Add(by)
+		}
 		h.Foci = slices.Clone(h.Foci)
 		for i := range h.Foci {
 			f := &h.Foci[i]
 			f.First += by
+			f.From = f.From.Add(by)
+			if f.Until > 0 {
+				f.Until = f.Until.Add(by)
+			}
 			f.Rate = slices.Clone(f.Rate)
 			for k := range f.Rate {
 				f.Rate[k].T = f.Rate[k].T.Add(by)
