@@ -294,6 +294,23 @@ var deviceFacts = map[string]func(strip){
 			}
 		}
 	},
+	"map-upper-rate": func(s strip) {
+		av := s.delays("AS tracked", "VP")
+		const grow = 500 - 60000/130.0
+		for i, want := range []float64{150, 150 + grow, 150 + 2*grow, 150} {
+			near(s.t, "AV delay", av[i], want, exact)
+		}
+	},
+	"map-endless-loop": func(s strip) {
+		s.every("cycle", diffs(after(s.at("VP"), 5000)), 600) // the upper-rate interval, for 320 + 200 is less
+		s.every("VP to AS", tail(s.delays("VP", "AS tracked"), 6), 320)
+	},
+	"map-premature-beat": func(s strip) {
+		s.every("AV delay", s.delays("AS tracked", "VP"), 150)
+	},
+	"map-pacing-site": func(s strip) {
+		s.every("AV delay", s.delays("AS tracked", "VP"), 150)
+	},
 	"vdd-mechanical-sensing": func(s strip) {
 		near(s.t, "P to stimulus", s.at("VP")[3]-s.times("right_atrium")[3], 140, exact)
 		if n := len(after(s.at("AS refractory"), 8000)); n == 0 {
