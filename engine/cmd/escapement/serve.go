@@ -55,7 +55,7 @@ func site(dir string) http.Handler {
 
 // policy is what index.html says in its meta element, and who may frame the page,
 // which only a header can say. Workers have only the header.
-const policy = "default-src 'none'; script-src 'self' 'wasm-unsafe-eval'; worker-src 'self'; connect-src 'self'; style-src 'self'; img-src 'self' data:; manifest-src 'self'; base-uri 'none'; form-action 'none'; frame-ancestors 'none'"
+const policy = "default-src 'none'; script-src 'self' 'wasm-unsafe-eval'; worker-src 'self'; connect-src 'self'; style-src 'self'; img-src 'self' data: blob:; manifest-src 'self'; base-uri 'none'; form-action 'none'; frame-ancestors 'none'"
 
 // files serves a folder as a static host would, with the types a browser insists
 // on and without lists of folders.
