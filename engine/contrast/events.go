@@ -18,20 +18,29 @@ func placeOf(l *event.Log, e *event.Event) place {
 	p := place{kind: e.Kind}
 	switch e.Kind {
 	case event.Discharge, event.Activate:
-		p.name = l.Sites[e.Site].Name
+		p.name = siteName(l, e.Site)
 	case event.Block:
-		p.name, p.dir = l.Paths[e.Path].Name, e.Dir
-	case event.Stimulus:
-		p.name, p.planned, p.channel = l.Sites[e.Site].Name, e.Rule != event.Timed, e.Channel
-	case event.Sense:
-		p.channel = e.Channel
-		if e.Site != event.None {
-			p.name = l.Sites[e.Site].Name
+		p.dir = e.Dir
+		if e.Path != event.None {
+			p.name = l.Paths[e.Path].Name
 		}
+	case event.Stimulus:
+		p.name, p.planned, p.channel = siteName(l, e.Site), e.Rule != event.Timed, e.Channel
+	case event.Sense:
+		p.name, p.channel = siteName(l, e.Site), e.Channel
 	case event.Window, event.Change:
 		p.name = e.Field
 	}
 	return p
+}
+
+// siteName is empty for what belongs to no site, as the discharges of a rhythm that
+// drives the atria.
+func siteName(l *event.Log, id event.SiteID) string {
+	if id == event.None {
+		return ""
+	}
+	return l.Sites[id].Name
 }
 
 // series is the events of one place on both sides.
