@@ -38,6 +38,7 @@ var allowed = map[string][]string{
 	"engine/contrast":       {"engine/tick", "engine/event", "engine/measure", "engine/plan"},
 	"engine/account":        {"engine/tick", "engine/event"},
 	"engine/sweep":          {"engine/tick", "engine/event", "engine/pacer", "engine/plan", "engine/sim", "engine/measure"},
+	"engine/search":         {"engine/tick", "engine/event", "engine/pacer", "engine/plan", "engine/sim", "engine/measure", "engine/sweep"},
 	"engine/scene":          {"engine/tick", "engine/event", "engine/lead", "engine/ladder"},
 	"engine/press":          {"engine/scene"},
 	"engine/study":          {"engine/tick", "engine/event", "engine/plan", "engine/sim"},
@@ -50,7 +51,7 @@ var allowed = map[string][]string{
 	"presets": {},
 	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/membrane", "engine/measure",
 		"engine/contrast", "engine/account", "engine/handle", "engine/nomenclature", "engine/numbers", "engine/scene", "engine/study", "presets",
-		"engine/sweep"},
+		"engine/sweep", "engine/search"},
 	"wasm/press/service": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/ladder", "engine/numbers", "engine/export", "engine/report", "engine/scene", "engine/press", "presets"},
 }
 

@@ -64,10 +64,19 @@ func (d *decoder) axisField(at string, m map[string]any, a *Axis) *Field {
 	if _, given := m["after_ms"]; given {
 		d.ds.add(at+".after_ms", show(m["after_ms"]), "with premature only", "")
 	}
+	if f := d.variable(at+".field", m["field"]); f != nil {
+		a.Field = m["field"].(string)
+		return f
+	}
+	return nil
+}
+
+// variable judges the path of a value of the plan that may take others.
+func (d *decoder) variable(at string, raw any) *Field {
 	const allowed = "the path of a field of the plan, such as heart.sinus.rate_bpm or interventions[0].at_ms"
-	path, ok := m["field"].(string)
+	path, ok := raw.(string)
 	if !ok {
-		d.ds.add(at+".field", show(m["field"]), allowed, "")
+		d.ds.add(at, show(raw), allowed, "")
 		return nil
 	}
 	field, item := itemPath(path)
@@ -75,13 +84,12 @@ func (d *decoder) axisField(at string, m map[string]any, a *Axis) *Field {
 	items, what := d.p.list(field)
 	switch {
 	case f == nil || f.Kind == List || f.Kind == Group && path == device || (item >= 0) != strings.Contains(field, "[]"):
-		d.ds.add(at+".field", show(path), allowed, meant(path, sweepable()))
+		d.ds.add(at, show(path), allowed, meant(path, sweepable()))
 	case item >= len(items):
-		d.ds.add(at+".field", show(path), fmt.Sprintf("one of the %d %s of this plan", len(items), what), "")
+		d.ds.add(at, show(path), fmt.Sprintf("one of the %d %s of this plan", len(items), what), "")
 	case strings.HasPrefix(path, device+".") && d.p.null(device):
-		d.ds.add(at+".field", show(path), "a field of the heart: this plan has no pacemaker", `"pacemaker": {} adds one`)
+		d.ds.add(at, show(path), "a field of the heart: this plan has no pacemaker", `"pacemaker": {} adds one`)
 	default:
-		a.Field = path
 		return f
 	}
 	return nil

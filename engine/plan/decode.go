@@ -49,6 +49,9 @@ func Decode(data []byte) (*Plan, error) {
 	if len(d.ds) == 0 {
 		d.together()
 	}
+	if len(d.ds) == 0 {
+		d.situationsTogether()
+	}
 	if len(d.ds) > 0 {
 		return nil, d.ds
 	}
@@ -93,9 +96,12 @@ func (d *decoder) top(m map[string]any) {
 	}
 	d.p.Title = d.line(m, "title", 200)
 	d.p.Note = d.line(m, "note", 4000)
-	d.object("", m, []string{"format", "title", "note", "sweep"})
+	d.object("", m, []string{"format", "title", "note", "sweep", "goals"})
 	if raw, ok := m["sweep"]; ok {
 		d.p.Sweep = d.sweep(raw)
+	}
+	if raw, ok := m["goals"]; ok {
+		d.p.Goals = d.goals(raw)
 	}
 }
 
@@ -168,7 +174,7 @@ func below(at string) []string {
 		}
 	}
 	if at == "" {
-		names = append(names, "format", "title", "note", "sweep")
+		names = append(names, "format", "title", "note", "sweep", "goals")
 	}
 	return names
 }

@@ -40,6 +40,9 @@ func (p *Plan) Encode() []byte {
 	if p.Sweep != nil {
 		root.put("sweep", p.Sweep.section())
 	}
+	if p.Goals != nil {
+		root.put("goals", p.Goals.section())
+	}
 	var b bytes.Buffer
 	enc := json.NewEncoder(&b)
 	enc.SetEscapeHTML(false)

@@ -40,6 +40,7 @@ type Plan struct {
 	Pathways      []Item
 	Interventions []Item
 	Sweep         *Sweep // nil: none
+	Goals         *Goals // nil: none
 }
 
 // Default is a healthy adult without interventions.

@@ -132,7 +132,7 @@ func (d *decoder) sweep(raw any) *Sweep {
 		case "y":
 			s.Y = d.axis("sweep.y", m[k])
 		case "seeds":
-			s.Seeds = d.seeds(m[k])
+			s.Seeds = d.seeds("sweep.seeds", m[k])
 		case "outcomes":
 			s.Outcomes = d.outcomes(m[k])
 		default:
@@ -167,11 +167,11 @@ func (s *Sweep) runs() int {
 }
 
 // seeds are a list, or a number of them from 1 on.
-func (d *decoder) seeds(raw any) []uint64 {
+func (d *decoder) seeds(at string, raw any) []uint64 {
 	f := byPath["seed"]
 	if n, ok := number(raw); ok {
 		if n < 1 || n > MaxSeeds || n != math.Trunc(n) {
-			d.ds.add("sweep.seeds", show(raw), fmt.Sprintf("a list of seeds, or how many from 1 on: 1 to %d", MaxSeeds), "")
+			d.ds.add(at, show(raw), fmt.Sprintf("a list of seeds, or how many from 1 on: 1 to %d", MaxSeeds), "")
 			return nil
 		}
 		out := make([]uint64, int(n))
@@ -182,12 +182,12 @@ func (d *decoder) seeds(raw any) []uint64 {
 	}
 	list, ok := raw.([]any)
 	if !ok || len(list) == 0 || len(list) > MaxSeeds {
-		d.ds.add("sweep.seeds", show(raw), fmt.Sprintf("a list of 1 to %d seeds, or how many from 1 on", MaxSeeds), "")
+		d.ds.add(at, show(raw), fmt.Sprintf("a list of 1 to %d seeds, or how many from 1 on", MaxSeeds), "")
 		return nil
 	}
 	var out []uint64
 	for i, v := range list {
-		if value, ok := d.leaf(fmt.Sprintf("sweep.seeds[%d]", i), f, v); ok {
+		if value, ok := d.leaf(fmt.Sprintf("%s[%d]", at, i), f, v); ok {
 			out = append(out, uint64(value.Number))
 		}
 	}

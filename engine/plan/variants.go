@@ -29,7 +29,7 @@ const mostHearts = 2000
 // NewVariants prepares variants of a plan in the values at the fields.
 func NewVariants(p *Plan, fields ...string) *Variants {
 	v := &Variants{plan: p.Clone(), fields: fields, hearts: map[string]*heart.Heart{}}
-	v.plan.Sweep = nil
+	v.plan.Sweep, v.plan.Goals = nil, nil
 	for _, f := range fields {
 		v.reaches = append(v.reaches, v.plan.reachesHeart(f))
 		// Numbers exclude each other by being there, not by their values; items and whole

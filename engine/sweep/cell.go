@@ -150,3 +150,9 @@ func (v *Reduced) count(w string) {
 	}
 	v.Words = append(v.Words, Count{w, 1})
 }
+
+// Number gives an outcome that is a number in one run, and whether the run has one.
+func Number(outcome string, t *measure.Tally) (float64, bool) { return numbers[outcome](t) }
+
+// Word gives an outcome that is one word in one run.
+func Word(outcome string, t *measure.Tally) string { return word[outcome](t) }

@@ -81,7 +81,7 @@ func (w *Worker) run(at []plan.Value, seed uint64) run {
 	}
 	r := run{tally: w.reader.Tally(log)}
 	if w.g.slow {
-		r.findings = slugs(measure.Of(log, nil))
+		r.findings = Slugs(measure.Of(log, nil))
 	}
 	if w.g.warns && prog.Device != nil {
 		patient := w.variants.Patient()
@@ -92,7 +92,8 @@ func (w *Worker) run(at []plan.Value, seed uint64) run {
 	return r
 }
 
-func slugs(r *measure.Report) []string {
+// Slugs are the stable names of a report's findings, with the channel where they are of one.
+func Slugs(r *measure.Report) []string {
 	var out []string
 	for i := range r.Findings {
 		s := r.Findings[i].Slug

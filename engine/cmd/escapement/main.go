@@ -34,6 +34,8 @@ const usage = `escapement: conduction timelines of the whole heart
                                 with -read TABLE, the plan with the device of a table
   escapement sweep PLAN ...     a grid of runs and its outcomes, or the boundaries between behaviours;
                                 escapement sweep PLAN -h lists the flags
+  escapement search PLAN ...    the settings that reach the plan's goals, or which goals conflict;
+                                escapement search PLAN -h lists the flags
   escapement presets            names, titles and notes of the built-in plans, as JSON
   escapement link PLAN          the plan as the end of a web address: #plan=...
   escapement serve              the built site on a loopback port, and under /press/
@@ -95,6 +97,8 @@ func command(args []string, in io.Reader, out io.Writer) error {
 		return writeLink(args, in, out)
 	case "sweep":
 		return runSweep(args, in, out, os.Stderr)
+	case "search":
+		return runSearch(args, in, out, os.Stderr)
 	case "presets":
 		return writeJSON(out, presets.List())
 	case "serve":

@@ -41,12 +41,13 @@ import (
 
 // Session is one page's engine. Use it from one goroutine.
 type Session struct {
-	field    *field.Field
-	current  *timeline // nil until a plan was computed
-	sweeping *sweeping // nil until a plan was swept
-	before   *timeline // nil: there is nothing to compare with
-	differs  *compared // the two, compared when first asked for
-	scanned  *study.Scan
+	field     *field.Field
+	current   *timeline  // nil until a plan was computed
+	sweeping  *sweeping  // nil until a plan was swept
+	searching *searching // nil until goals were searched for
+	before    *timeline  // nil: there is nothing to compare with
+	differs   *compared  // the two, compared when first asked for
+	scanned   *study.Scan
 }
 
 // timeline is a computed plan.
@@ -92,6 +93,10 @@ func (s *Session) Call(op string, args []byte) (reply []byte, points []float32) 
 		return s.sweep(args), nil
 	case "sweep_plan":
 		return s.sweptPlan(args), nil
+	case "search":
+		return s.search(args), nil
+	case "search_plan":
+		return s.searchPlan(args), nil
 	case "extra":
 		return s.extra(args), nil
 	case "scan":
