@@ -25,6 +25,7 @@ import { keepWork } from "./views/keeping.js";
 import { keptDialog } from "./views/kept.js";
 import { globalKeys, keysDialog } from "./views/keys.js";
 import { listingView } from "./views/listing.js";
+import { mapView } from "./views/map.js";
 import { menu } from "./views/menu.js";
 import { noticeView } from "./views/notice.js";
 import { overviewView } from "./views/overview.js";
@@ -124,6 +125,7 @@ function build(catalogue, found) {
     toolbarView(part("centre"), store, catalogue, [calipers.tool, before.tool]),
     timelineView(part("centre"), store, ask, catalogue, [calipers.over]),
     listingView(part("centre"), store, engine),
+    mapView(part("centre"), store, catalogue, new URL("engine/worker.js", import.meta.url)),
     accountView(part("account"), store, settings.focusSetting, before, overview.jump),
     trialView(part("account"), store, ask),
     overview, calipers, before,

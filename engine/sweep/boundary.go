@@ -16,6 +16,7 @@ type Question struct {
 	Along     int      // 0: along x, 1: along y
 	At        int      // which value of the other axis; 0 on a line
 	Tolerance float64  // in the unit of the axis; 0: 0.1 for rates, else 1
+	After     []int    // look only between these values and the next ones, in order; nil: everywhere
 }
 
 // Boundary is where one behaviour gives way to another: Low is the last value found
@@ -53,6 +54,16 @@ func (w *Worker) Boundaries(ctx context.Context, q Question) ([]Boundary, []Form
 	if err != nil {
 		return nil, nil, err
 	}
+	if q.After != nil {
+		for _, i := range q.After {
+			if err := ctx.Err(); err != nil {
+				return nil, nil, err
+			}
+			s.after(i)
+		}
+		alone := s.compare()
+		return append([]Boundary{}, s.found...), append([]Form{}, alone...), nil
+	}
 	values := s.axis.Values
 	last := ""
 	for i, v := range values {
@@ -70,6 +81,14 @@ func (w *Worker) Boundaries(ctx context.Context, q Question) ([]Boundary, []Form
 	}
 	alone := s.compare()
 	return append([]Boundary{}, s.found...), append([]Form{}, alone...), nil
+}
+
+// after looks between a value and the next.
+func (s *search) after(i int) {
+	low, high := s.axis.Values[i].Number, s.axis.Values[i+1].Number
+	if before, after := s.word(low), s.word(high); before != after {
+		s.between(low, before, high, after)
+	}
 }
 
 // search is a question being answered.
@@ -107,6 +126,11 @@ func (w *Worker) search(q Question) (*search, error) {
 			return nil, plan.Diagnoses{{Path: "sweep." + [...]string{"y", "x"}[q.Along], Found: fmt.Sprintf("value %d", q.At), Allowed: fmt.Sprintf("0 to %d", len(other.Values)-1)}}
 		}
 		s.at[1-q.Along] = other.Values[q.At]
+	}
+	for _, i := range q.After {
+		if i < 0 || i >= len(s.axis.Values)-1 {
+			return nil, plan.Diagnoses{{Path: "sweep." + [...]string{"x", "y"}[q.Along], Found: fmt.Sprintf("value %d", i), Allowed: fmt.Sprintf("0 to %d", len(s.axis.Values)-2)}}
+		}
 	}
 	if q.Tolerance <= 0 {
 		s.q.Tolerance = 1

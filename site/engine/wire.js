@@ -25,6 +25,7 @@
 
 /** @typedef {{name: string, title: string, note: string, plan: any}} Preset */
 /** @typedef {{name: string, label: string}} SiteName */
+/** @typedef {{name: string, label: string, unit?: string, kind: "number" | "word" | "words", help: string, source?: string, slow?: boolean}} Outcome what a run comes to; see engine/plan */
 
 /**
  * @typedef {object} Style
@@ -52,6 +53,7 @@
  * @property {Preset[]} presets
  * @property {SiteName[]} sites
  * @property {SiteName[]} lanes electrograms and action potentials that a view may show
+ * @property {Outcome[]} outcomes of a run, which a sweep may ask for
  * @property {string[]} modes of pacing, without the letters for rate modulation and multisite pacing
  * @property {{light: Styles, dark: Styles}} styles
  * @property {{plain: number, full: number}} margins_mm what a scene needs beside its time axis

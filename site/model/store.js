@@ -31,7 +31,7 @@
  * @property {import("../engine/wire.js").Gap | null} gap in which no stimulus came, that was asked about
  * @property {number[]} lit events pointed at by a clause or a finding
  * @property {string} drawer "settings", "account" or "": what lies open over the sheet on a narrow screen
- * @property {"timeline" | "listing"} tab
+ * @property {"timeline" | "listing" | "map"} tab
  * @property {boolean} dark
  * @property {{until_ms: number} | null} present what comes after an instant is covered
  * @property {Before | null} before the plan to compare with

@@ -75,13 +75,13 @@ export function toolbarView(root, store, catalogue, tools) {
   const current = el("span", { class: "reading" });
   const gains = GAINS.map((gain) => press(String(gain), () => set({ mm_per_mv: gain }), `${gain} millimetres a millivolt`));
   const ladders = /** @type {const} */ (["plain", "full"]).map((l) => press(l, () => set({ ladder: l, ladder_chosen: true }), l === "plain" ? "Atria, node, ventricles" : "Every level of the conduction system"));
-  const tabs = /** @type {const} */ (["timeline", "listing"]).map((t) => el("button", {
+  const tabs = /** @type {const} */ (["timeline", "listing", "map"]).map((t) => el("button", {
     type: "button", role: "tab", id: `tab-${t}`, onclick: () => store.set({ tab: t }),
-  }, t === "timeline" ? "Timeline" : "Listing"));
+  }, `${t[0].toUpperCase()}${t.slice(1)}`));
 
   const bar = el("div", { class: "toolbar" },
     el("button", { type: "button", class: "drawer-open", id: "open-settings", onclick: () => store.set({ drawer: "settings" }) }, "Settings"),
-    el("div", { class: "tabs", role: "tablist", "aria-label": "Timeline or listing" }, tabs),
+    el("div", { class: "tabs", role: "tablist", "aria-label": "Timeline, listing or map" }, tabs),
     leads,
     lanes.root,
     group("Speed", speeds, fit, el("button", { type: "button", onclick: () => speed(view().mm_per_s / 1.25), "aria-label": "Squeeze time" }, "−"),

@@ -15,6 +15,7 @@
 //	table      {plan, read}            the device's settings as a table, or the plan with a table read
 //	sweep      {plan, points}          some points of the plan's sweep, in columns; or its diagnoses
 //	sweep_plan {plan, point, seed}     the plan of one point
+//	boundary   {plan, outcome, from, along, at, after}  where along an axis of the sweep an outcome changes
 //
 // compute may name a plan to compare with. Its timeline is kept and drawn above the
 // present one until compute names another or none; its events have negative ids.
@@ -97,6 +98,8 @@ func (s *Session) Call(op string, args []byte) (reply []byte, points []float32) 
 		return s.search(args), nil
 	case "search_plan":
 		return s.searchPlan(args), nil
+	case "boundary":
+		return s.boundary(args), nil
 	case "extra":
 		return s.extra(args), nil
 	case "scan":
