@@ -120,6 +120,11 @@ var expected = map[string][]string{
 	"map-pacing-site":      {"p_synchronous_pacing", "sinus_rhythm", "fusion_beat"},
 	"map-wenckebach-steps": {"atrial_stimulation", "functional_av_block"},
 
+	// With goals: the strip is the plan as it stands.
+	"goals-treadmill-conflict":       {"p_synchronous_pacing", "sinus_rhythm"},
+	"goals-treadmill-shorter-av":     {"p_synchronous_pacing", "sinus_rhythm"},
+	"goals-least-ventricular-pacing": {"av_sequential_pacing"},
+
 	// Whether the definitions apply depends on the rate the preset is given: from
 	// 100/min the finding is functional block.
 	"two-to-one-nodal": nil,

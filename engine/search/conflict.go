@@ -95,19 +95,14 @@ func (s *Search) conflict(w *worker, st *State, set uint) Conflict {
 	for _, k := range c.Goals {
 		names = append(names, `"`+s.Goals.Must[k].Text()+`"`)
 	}
-	lead := strings.Join(names, " and ") + " cannot hold together: "
+	c.Text = strings.Join(names, " and ") + " cannot hold together."
 	if len(names) == 1 {
-		lead = names[0] + " cannot hold: "
+		c.Text = names[0] + " cannot hold."
 	}
-	if why := s.explain(w, c.Goals); why != "" {
-		c.Forms, c.Text = true, lead+why
-		return c
-	}
-	var parts []string
+	c.Forms = s.explain(w, &c)
 	for i := range c.Reach {
-		parts = append(parts, c.Reach[i].Text)
+		c.Text += " " + c.Reach[i].Text
 	}
-	c.Text = lead + strings.Join(parts, "; ") + "."
 	return c
 }
 
@@ -138,14 +133,11 @@ func (s *Search) reach(st *State, set uint, goal int) Reach {
 			got += " " + o.Unit
 		}
 	}
-	where := "the best"
-	if len(others) > 0 {
-		where = "where the rest hold, the best"
-	}
-	out.Text = fmt.Sprintf("%s for %s is %s, with %s", where, o.Label, got, s.describe(best.Combination))
+	out.Text = fmt.Sprintf("%s %s is %s, with %s", lead(len(others)), o.Label, got, s.describe(best.Combination))
 	if out.At != "" {
 		out.Text += " (" + out.At + ")"
 	}
+	out.Text += "."
 	return out
 }
 
@@ -163,23 +155,31 @@ func nearer(a, b *Mark) bool {
 // mostForms bounds how many closed forms an explanation works out.
 const mostForms = 300000
 
-// explain shows by closed forms alone why no combination holds some goals, or gives ""
-// where they do not show it. For each goal it looks for the combination that comes
-// nearest to it while the forms of the others hold.
-func (s *Search) explain(w *worker, goals []int) string {
-	if s.total*len(goals)*s.Goals.Runs() > mostForms {
-		return ""
+// lead leads over to the best of a goal.
+func lead(others int) string {
+	if others == 0 {
+		return "At best"
 	}
-	best := make([]*Form, len(goals))
-	at := make([]int, len(goals))
-	for c := range s.total {
-		settings := s.At(c)
-		forms := make([]Form, len(goals))
+	return "Where the rest hold, at best"
+}
+
+// explain shows by closed forms alone why no combination holds the goals of a
+// conflict, and puts the forms where it had the best that was simulated; false where
+// they do not show it. For each goal it looks for the combination that comes nearest to
+// it while the forms of the others hold.
+func (s *Search) explain(w *worker, c *Conflict) bool {
+	if s.total*len(c.Goals)*s.Goals.Runs() > mostForms {
+		return false
+	}
+	best := make([]*Form, len(c.Goals))
+	at := make([]int, len(c.Goals))
+	for k := range s.total {
+		forms := make([]Form, len(c.Goals))
 		failing, which := 0, 0
-		for i, g := range goals {
-			f, ok := w.slack(g, settings)
+		for i, g := range c.Goals {
+			f, ok := w.slack(g, s.At(k))
 			if !ok {
-				return ""
+				return false
 			}
 			if forms[i] = f; !f.holds() {
 				failing, which = failing+1, i
@@ -187,26 +187,19 @@ func (s *Search) explain(w *worker, goals []int) string {
 		}
 		switch failing {
 		case 0:
-			return "" // the forms would allow it: the heart does otherwise than they suppose
+			return false // the forms would allow it: the heart does otherwise than they suppose
 		case 1:
 			if f := &forms[which]; best[which] == nil || f.Slack > best[which].Slack {
-				best[which], at[which] = f, c
+				best[which], at[which] = f, k
 			}
 		}
 	}
-	var parts []string
+	if slices.Contains(best, nil) {
+		return false
+	}
 	for i, f := range best {
-		if f == nil {
-			continue
-		}
-		where := "at best"
-		if len(goals) > 1 {
-			where = "where the rest hold, at best"
-		}
-		parts = append(parts, fmt.Sprintf("%s %s (%s; %s)", where, f.Text, s.describe(at[i]), f.Source))
+		c.Reach[i].Form = f
+		c.Reach[i].Text = fmt.Sprintf("%s %s, with %s.", lead(len(best)-1), f.Text, s.describe(at[i]))
 	}
-	if len(parts) == 0 {
-		return ""
-	}
-	return strings.Join(parts, "; ") + "."
+	return true
 }

@@ -311,6 +311,15 @@ var deviceFacts = map[string]func(strip){
 	"map-pacing-site": func(s strip) {
 		s.every("AV delay", s.delays("AS tracked", "VP"), 150)
 	},
+	"goals-treadmill-conflict": func(s strip) {
+		s.every("AV delay", s.delays("AS tracked", "VP"), 120)
+	},
+	"goals-treadmill-shorter-av": func(s strip) {
+		s.every("AV delay at rest", s.delays("AS tracked", "VP"), 120)
+	},
+	"goals-least-ventricular-pacing": func(s strip) {
+		s.every("paced at the lower rate", diffs(s.at("VP")), 60000/70.0)
+	},
 	"vdd-mechanical-sensing": func(s strip) {
 		near(s.t, "P to stimulus", s.at("VP")[3]-s.times("right_atrium")[3], 140, exact)
 		if n := len(after(s.at("AS refractory"), 8000)); n == 0 {
