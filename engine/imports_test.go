@@ -41,18 +41,19 @@ var allowed = map[string][]string{
 	"engine/search":         {"engine/tick", "engine/event", "engine/pacer", "engine/plan", "engine/sim", "engine/measure", "engine/sweep"},
 	"engine/scene":          {"engine/tick", "engine/event", "engine/lead", "engine/ladder"},
 	"engine/press":          {"engine/scene"},
+	"engine/signal":         {"engine/event", "engine/lead", "engine/field", "engine/heart", "engine/membrane", "engine/pacer", "engine/plan", "engine/scene"},
 	"engine/study":          {"engine/tick", "engine/event", "engine/plan", "engine/sim"},
 	"engine/numbers":        {"engine/tick", "engine/event", "engine/pacer", "engine/plan", "engine/measure"},
 	"engine/report": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
-		"engine/contrast", "engine/numbers", "engine/scene"},
+		"engine/contrast", "engine/numbers", "engine/scene", "engine/signal"},
 	"engine/export/edf": {"engine/tick"},
 	"engine/export": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/ladder", "engine/measure", "engine/account",
 		"engine/numbers", "engine/scene", "engine/export/edf"},
 	"presets": {},
-	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/membrane", "engine/measure",
-		"engine/contrast", "engine/account", "engine/handle", "engine/nomenclature", "engine/numbers", "engine/scene", "engine/study", "presets",
+	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
+		"engine/contrast", "engine/account", "engine/handle", "engine/nomenclature", "engine/numbers", "engine/scene", "engine/signal", "engine/study", "presets",
 		"engine/sweep", "engine/search"},
-	"wasm/press/service": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/ladder", "engine/numbers", "engine/export", "engine/report", "engine/scene", "engine/press", "presets"},
+	"wasm/press/service": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/ladder", "engine/numbers", "engine/export", "engine/report", "engine/scene", "engine/signal", "engine/press", "presets"},
 }
 
 // top are the programs: they wire everything, and nothing imports them.

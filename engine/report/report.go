@@ -18,6 +18,7 @@ import (
 	"escapement/engine/numbers"
 	"escapement/engine/plan"
 	"escapement/engine/scene"
+	"escapement/engine/signal"
 	"escapement/engine/sim"
 	"escapement/engine/tick"
 )
@@ -29,6 +30,8 @@ type Case struct {
 	Log     *event.Log
 	Record  *lead.Record // nil for a strip longer than LeadsUpTo
 	Measure *measure.Report
+
+	signals *signal.Source
 }
 
 // LeadsUpTo is the longest strip that has leads.
@@ -47,12 +50,21 @@ func RunWith(p *plan.Plan, f *field.Field) (*Case, error) {
 	if err != nil {
 		return nil, err
 	}
-	c := &Case{Plan: p, Device: prog.Device, Log: log}
+	c := &Case{Plan: p, Device: prog.Device, Log: log, signals: signal.Of(prog, log, f)}
 	if log.Span <= LeadsUpTo {
 		c.Record = f.Record(log)
 	}
 	c.Measure = measure.Of(log, c.Record)
 	return c, nil
+}
+
+// Signals are the electrograms and action potentials among the lanes, for a scene; gain
+// is the scale of electrograms, mm a millivolt, 0: 10. A strip without leads has none.
+func (c *Case) Signals(lanes []string, gain float64) []scene.Sampled {
+	if c.Record == nil {
+		return nil
+	}
+	return c.signals.Lanes(lanes, gain)
 }
 
 // Options say what is printed. The zero value is A4 with leads II and V1, the full
@@ -61,9 +73,11 @@ type Options struct {
 	Paper         scene.Paper
 	Date, Version string // as they are to be printed; empty: left out
 	From, To      tick.Time
-	Leads         []lead.Name // nil: II and V1; empty: none
-	Twelve        bool        // four columns of three leads over a rhythm strip
-	Ladder        ladder.Form // 0: full
+	Leads         []lead.Name  // nil: II and V1; empty: none
+	Lanes         []string     // from top to bottom, as in [scene.Options]; nil: the leads, axis, ladder, device
+	EGMGain       float64      // of electrograms among the lanes, mm a millivolt; 0: 10
+	Form          scene.Form12 // the twelve leads as on paper, above the other lanes; without columns: not so
+	Ladder        ladder.Form  // 0: full
 	NoLadder      bool
 	NoDevice      bool    // leave the device's lane out
 	MMPerS        float64 // 0: 25
@@ -138,15 +152,16 @@ func (c *Case) excerpt(o *Options) (scene.Excerpt, error) {
 	if o.From < 0 || o.From >= span || o.To != 0 && (o.To <= o.From || o.To > span) {
 		return scene.Excerpt{}, fmt.Errorf("report: the window from %v to %v ms does not lie in the strip of %v ms", o.From, o.To, span)
 	}
-	e := scene.Excerpt{In: scene.Input{Log: c.Log, Record: c.Record}, Twelve: o.Twelve}
+	e := scene.Excerpt{In: scene.Input{Log: c.Log, Record: c.Record}}
 	leads := o.Leads
 	if leads == nil {
 		leads = []lead.Name{lead.II, lead.V1}
-		if o.Twelve {
+		if o.Form.Columns > 0 {
 			leads = []lead.Name{lead.II}
 		}
 	}
-	e.O = scene.Options{From: o.From, To: o.To, MMPerS: o.MMPerS, MMPerMV: o.MMPerMV, Leads: leads, NoDevice: o.NoDevice}
+	e.O = scene.Options{From: o.From, To: o.To, MMPerS: o.MMPerS, MMPerMV: o.MMPerMV, Leads: leads, Lanes: o.Lanes, Paper: o.Form, NoDevice: o.NoDevice}
+	e.In.Signals = c.Signals(o.Lanes, o.EGMGain)
 	if !o.NoLadder {
 		form := o.Ladder
 		if form == 0 {

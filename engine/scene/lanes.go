@@ -75,7 +75,39 @@ func (s *sheet) lanes(page []row) (rows []row, rest []string) {
 	for i := range rows {
 		rows[i].measure(&s.o, s.in.Extents)
 	}
+	if s.o.Pulse {
+		s.pulse(rows)
+	}
 	return rows, rest
+}
+
+// has tells whether a lane that is no signal is asked for.
+func (o *Options) has(lane string) bool { return o.Lanes == nil || slices.Contains(o.Lanes, lane) }
+
+// tiersOf is the height of the ladder in tiers; 0 where none is drawn.
+func tiersOf(in *Input, o *Options) float64 {
+	if in.Diagram == nil || !o.has("ladder") {
+		return 0
+	}
+	return in.Diagram.Height()
+}
+
+// pulse makes room for the pulse of 1 mV: where no lane of leads is high enough for it,
+// the highest of them becomes so.
+func (s *sheet) pulse(rows []row) {
+	best := -1
+	for i := range rows {
+		r := &rows[i]
+		if r.signal == nil && (best < 0 || r.up+r.down > rows[best].up+rows[best].down) {
+			best = i
+		}
+	}
+	if best < 0 {
+		return
+	}
+	if short := math.Ceil(s.o.MMPerMV + pulseEdge - rows[best].up - rows[best].down); short > 0 {
+		rows[best].up += short
+	}
 }
 
 // alike is how many of the next lanes are rows of one kind that stand together.
@@ -150,13 +182,33 @@ func (s *sheet) scales() string {
 	if s.in.Record != nil && slices.ContainsFunc(s.Lanes, func(l Lane) bool { return strings.HasPrefix(l.Name, "lead:") }) {
 		text += ", " + trim(s.o.MMPerMV) + " mm/mV"
 	}
-	for i := range s.in.Signals {
-		g := &s.in.Signals[i]
-		if slices.ContainsFunc(s.Lanes, func(l Lane) bool { return l.Name == g.Name }) {
-			text += ", " + g.Label + " " + g.scale()
+	shown := func(g *Sampled) bool {
+		return slices.ContainsFunc(s.Lanes, func(l Lane) bool { return l.Name == g.Name })
+	}
+	return text + scalesOf(s.in.Signals, shown) + ". Numbers in ms."
+}
+
+// scalesOf names the scales of signals, those of one scale together.
+func scalesOf(signals []Sampled, shown func(*Sampled) bool) string {
+	type group struct{ labels, scale string }
+	var groups []group
+	for i := range signals {
+		g := &signals[i]
+		if !shown(g) {
+			continue
+		}
+		at := slices.IndexFunc(groups, func(q group) bool { return q.scale == g.scale() })
+		if at < 0 {
+			groups = append(groups, group{g.Label, g.scale()})
+		} else {
+			groups[at].labels += ", " + g.Label
 		}
 	}
-	return text + ". Numbers in ms."
+	text := ""
+	for _, g := range groups {
+		text += "; " + g.labels + " " + g.scale
+	}
+	return text
 }
 
 // scale is the lane's own scale in words.

@@ -82,7 +82,7 @@ func TestTwelveLeadsInThreeForms(t *testing.T) {
 			t.Errorf("%s: %q, want %q", c.form, got, c.want)
 		}
 	}
-	for _, bad := range []string{"", "4x3", "3x4+rhythm", " + rhythm"} {
+	for _, bad := range []string{"", "4x3", "3x4 + II", " + rhythm"} {
 		if f, ok := ParseForm12(bad); ok {
 			t.Errorf("%q is read as %v", bad, f)
 		}

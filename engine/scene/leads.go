@@ -12,6 +12,13 @@ import (
 // pulseRoom is what the calibration pulse needs left of the window, mm.
 const pulseRoom = 6
 
+// The pulse keeps so far from the upper and the lower edge of its lane, mm, together
+// pulseEdge.
+const (
+	pulseAbove, pulseBelow = 0.5, 0.2
+	pulseEdge              = pulseAbove + pulseBelow
+)
+
 // segment is a signal over a part of the window.
 type segment struct {
 	name     string
@@ -132,8 +139,8 @@ func (s *sheet) margin(r *row) {
 		s.place(Mark{Shape: Text, Class: LaneLabel, X: pad, Y: r.zero + 0.35*h, Text: name})
 	}
 	x := s.Axis.X0 - pad - 3
-	foot := max(r.zero, r.lane.Y0+s.o.MMPerMV+0.5)
-	if x < pad+LaneLabel.Width(name, h)+1 || foot > r.lane.Y1-0.2 {
+	foot := max(r.zero, r.lane.Y0+s.o.MMPerMV+pulseAbove)
+	if x < pad+LaneLabel.Width(name, h)+1 || foot > r.lane.Y1-pulseBelow+1e-9 {
 		return
 	}
 	y := foot - s.o.MMPerMV

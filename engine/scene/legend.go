@@ -7,6 +7,13 @@ type sign struct {
 	draw func(x, y float64)
 }
 
+// signs tells whether there is anything for a legend to explain.
+func (s *sheet) signs() bool { return tiersOf(s.in, &s.o) > 0 || s.deviceLane() }
+
+func (s *sheet) deviceLane() bool {
+	return s.in.Diagram != nil && s.in.Diagram.Device != nil && !s.o.NoDevice && s.o.has("device")
+}
+
 // legend explains the signs of the ladder in one or more lines.
 func (s *sheet) legend() {
 	h := Note.height(s.o.FontMM)
@@ -28,7 +35,10 @@ func (s *sheet) legend() {
 		{"left bundle", func(x, y float64) { s.sample(Line, BundleLeft, x+0.8, y-1.2, x+2.4, y+1.2, 0) }},
 		{"right bundle", func(x, y float64) { s.sample(Line, BundleRight, x+0.8, y-1.2, x+2.4, y+1.2, 0) }},
 	}
-	if s.in.Diagram.Device != nil && !s.o.NoDevice {
+	if tiersOf(s.in, &s.o) == 0 {
+		signs = nil
+	}
+	if s.deviceLane() {
 		signs = append(signs, s.deviceSigns()...)
 	}
 	for _, e := range signs {

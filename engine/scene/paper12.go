@@ -16,9 +16,9 @@ type Form12 struct {
 }
 
 // ParseForm12 reads a form as the trade says it, rows by columns, "3x4", "6x2" or "12x1",
-// with " + rhythm" after it or not.
+// with " + rhythm" after it or not. Spaces do not matter.
 func ParseForm12(name string) (Form12, bool) {
-	rows, rhythm := strings.CutSuffix(name, " + rhythm")
+	rows, rhythm := strings.CutSuffix(strings.ReplaceAll(name, " ", ""), "+rhythm")
 	for columns, n := range [...]string{4: "3x4", 2: "6x2", 1: "12x1"} {
 		if n == rows && n != "" {
 			return Form12{Columns: columns, Rhythm: rhythm}, true

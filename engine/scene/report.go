@@ -76,12 +76,11 @@ func (p *Paper) body() float64 { return p.Width - 2*p.Margin }
 
 // Excerpt is a part of a strip on paper. From and To of its options bound it; To 0
 // is as much as one line holds, and what is longer runs on in further lines and on
-// further pages. Margin, FontMM, Title, Statement, Legend, Caution and Grid are the
-// page's and are set by it.
+// further pages. Margin, FontMM, Title, Statement, Legend, Caution, Grid and Pulse are the
+// page's and are set by it. With columns in Paper it is drawn by [Paper12].
 type Excerpt struct {
-	In     Input
-	O      Options
-	Twelve bool // four columns of three leads over a rhythm strip, as in [Page12]
+	In Input
+	O  Options
 }
 
 // State says where the value of a setting comes from.

@@ -137,7 +137,7 @@ func (b *book) has(e Excerpt) bool {
 // fit gives the options of a strip's lines and how much time a line holds.
 func (b *book) fit(e Excerpt) (Options, tick.Dur) {
 	o := e.O
-	o.FontMM, o.Grid = reportFont, true
+	o.FontMM, o.Grid, o.Pulse = reportFont, true, true
 	o.Title, o.Statement, o.Legend, o.Caution = "", "", false, false
 	probe := o
 	probe.fill(&e.In)
@@ -157,11 +157,11 @@ func (b *book) system(e Excerpt, o Options) (*Scene, error) {
 		if s.Height <= room {
 			return s, nil
 		}
-		if e.In.Diagram == nil {
+		if ladderUnits(&e) == 0 {
 			continue
 		}
 		low := o
-		low.LadderMM = max(leastRung*e.In.Diagram.Height(), o.LadderMM-(s.Height-room))
+		low.LadderMM = max(leastRung*ladderUnits(&e), o.LadderMM-(s.Height-room))
 		if t := e.draw(low); t.Height <= room {
 			return t, nil
 		}
@@ -173,16 +173,11 @@ func (b *book) system(e Excerpt, o Options) (*Scene, error) {
 // running is the room that a running title takes, mm.
 const running = 5
 
-func ladderUnits(e *Excerpt) float64 {
-	if e.In.Diagram == nil {
-		return 0
-	}
-	return e.In.Diagram.Height()
-}
+func ladderUnits(e *Excerpt) float64 { return tiersOf(&e.In, &e.O) }
 
 func (e *Excerpt) draw(o Options) *Scene {
-	if e.Twelve {
-		return Page12(e.In, o)
+	if e.O.Paper.Columns > 0 {
+		return Paper12(e.In, o)
 	}
 	return Strip(e.In, o)
 }
@@ -211,17 +206,20 @@ func (b *book) explain(in Input, o Options, part string) {
 	if in.Record != nil {
 		scales += ", " + trim(o.MMPerMV) + " mm/mV"
 	}
-	scales += ". Numbers in ms. This line is " + trim(rulerMM) + " mm long:"
+	scales += scalesOf(in.Signals, func(*Sampled) bool { return true }) + ". Numbers in ms. This line is " + trim(rulerMM) + " mm long:"
 	h := Note.height(reportFont)
-	b.need(3 * leading * h)
-	b.text(Note, scales)
-	x, y := b.paper.Margin+Note.Width(scales, reportFont)+2, b.y-leading*h+0.5*ascent*h
+	lines := wrap(Note, scales, reportFont, b.paper.body()-rulerMM-3)
+	b.need(float64(2+len(lines)) * leading * h)
+	for _, line := range lines {
+		b.text(Note, line)
+	}
+	x, y := b.paper.Margin+Note.Width(lines[len(lines)-1], reportFont)+2, b.y-leading*h+0.5*ascent*h
 	b.put(Mark{Shape: Line, Class: AxisLine, X: x, Y: y, X2: x + rulerMM, Y2: y})
 	for _, at := range [...]float64{x, x + rulerMM} {
 		b.put(Mark{Shape: Line, Class: AxisLine, X: at, Y: y - 1, X2: at, Y2: y + 1})
 	}
-	if in.Diagram != nil {
-		s := &sheet{Scene: &Scene{FontMM: reportFont, Width: b.paper.body() + 2*pad}, in: &in, o: o}
+	s := &sheet{Scene: &Scene{FontMM: reportFont, Width: b.paper.body() + 2*pad}, in: &in, o: o}
+	if s.signs() {
 		s.room = newRoom(s.Width)
 		s.legend()
 		b.need(s.y)

@@ -86,8 +86,8 @@ func (b *book) two(parts *[2]Part, os *[2]Options, room float64) ([2]*Scene, err
 		total, least := 0.0, true
 		for i := range parts {
 			o := os[i]
-			if d := parts[i].Strip.In.Diagram; d != nil {
-				low := leastRung * d.Height()
+			if units := ladderUnits(&parts[i].Strip); units > 0 {
+				low := leastRung * units
 				if share*o.LadderMM > low {
 					o.LadderMM, least = share*o.LadderMM, false
 				} else {

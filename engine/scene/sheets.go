@@ -46,16 +46,24 @@ type Form struct {
 	longest tick.Dur // of one part; 0: as long as the paper is wide
 }
 
-// The forms: leads and ladder on one time axis, and the twelve leads in four columns
-// of 2.5 s (see [Page12]).
+// The forms: leads and ladder on one time axis, and the twelve leads in the form of
+// [Options.Paper] over ten seconds, without one as on [Page12].
 var (
 	StripForm  = Form{draw: Strip}
-	TwelveForm = Form{draw: Page12, longest: 10 * tick.Second}
+	TwelveForm = Form{draw: twelve, longest: 10 * tick.Second}
 )
+
+func twelve(in Input, o Options) *Scene {
+	if o.Paper.Columns == 0 {
+		return Page12(in, o)
+	}
+	return Paper12(in, o)
+}
 
 // Roll draws a window on one sheet that is as large as the drawing. The error is a
 // [*RoomError].
 func Roll(in Input, o Options, f Form) (*Scene, error) {
+	o.Pulse = true
 	s := f.draw(in, o)
 	if longest := max(s.Width, s.Height); longest > RollMM {
 		return nil, &RoomError{"length", longest, RollMM}
@@ -67,6 +75,7 @@ func Roll(in Input, o Options, f Form) (*Scene, error) {
 // below, cut at large squares, and then on the next page. Every page carries the
 // scales and the caution, and the legend where asked for. The error is a [*RoomError] or says what is wrong with the paper.
 func Sheets(in Input, o Options, p Paper, f Form) ([]*Scene, error) {
+	o.Pulse = true
 	o.fill(&in)
 	if p.Margin == 0 {
 		p.Margin = EdgeMM
@@ -146,8 +155,9 @@ func (b *folio) fit(parts [][2]tick.Time) (each int, err error) {
 	}
 	page, end := b.frame(1, 2)
 	room := end - page.y
-	if b.in.Diagram != nil {
-		rest, least = rest-b.o.LadderMM, leastTier*b.in.Diagram.Height()
+	tiers := tiersOf(b.in, &b.o)
+	if tiers > 0 {
+		rest, least = rest-b.o.LadderMM, leastTier*tiers
 	}
 	each = min(int((room+betweenMM)/(rest+least+betweenMM)), len(parts))
 	if each == 0 {
@@ -156,9 +166,9 @@ func (b *folio) fit(parts [][2]tick.Time) (each int, err error) {
 	if n := (len(parts) + each - 1) / each; n > MostPages {
 		return 0, &RoomError{"pages", float64(n), MostPages}
 	}
-	if b.in.Diagram != nil {
+	if tiers > 0 {
 		share := (room+betweenMM)/float64(each) - betweenMM - rest
-		b.o.LadderMM = min(share, mostTier*b.in.Diagram.Height())
+		b.o.LadderMM = min(share, mostTier*tiers)
 	}
 	return each, nil
 }
@@ -196,7 +206,7 @@ func (b *folio) frame(number, of int) (page *sheet, end float64) {
 	page.heading()
 	foot := begin()
 	foot.Lanes = b.lanes
-	if b.o.Legend && b.in.Diagram != nil {
+	if b.o.Legend && foot.signs() {
 		foot.legend()
 	}
 	if of > 1 {

@@ -120,3 +120,58 @@ func TestAStripIsCutAtLargeSquares(t *testing.T) {
 		t.Errorf("a day on A4: %v", err)
 	}
 }
+
+// A print is measured with calipers, so it carries a pulse of 1 mV at its gain, however
+// low its leads are: a print of one low lead alone had none.
+func TestEveryPrintOfLeadsHasAPulseAtItsGain(t *testing.T) {
+	log := logs(t)["device_upper_rate.log"]
+	flat := &lead.Record{}
+	for l := range flat.MV {
+		flat.MV[l] = make([]float32, log.Span/1000)
+		flat.MV[l][100] = 0.2
+	}
+	in := Input{Log: log, Record: flat, Diagram: ladder.Build(log, ladder.Options{})}
+	a4 := Paper{Width: 297, Height: 210}
+	for _, gain := range []float64{5, 10, 20} {
+		for name, o := range map[string]Options{
+			"one lead":   {Leads: []lead.Name{lead.II}},
+			"two leads":  {Leads: []lead.Name{lead.II, lead.V1}},
+			"as a lane":  {Lanes: []string{"ladder", "lead:II"}},
+			"paper form": {Paper: Form12{Columns: 4}},
+		} {
+			o.MMPerMV, o.Caution = gain, true
+			form := StripForm
+			if o.Paper.Columns > 0 {
+				form = TwelveForm
+			}
+			pages, err := Sheets(in, o, a4, form)
+			if err != nil {
+				t.Fatal(err)
+			}
+			r := Report{Title: "x", Strip: Excerpt{In: in, O: o}}
+			reported, err := r.Pages(a4)
+			if err != nil {
+				t.Fatal(err)
+			}
+			for i, p := range append(pages[:1:1], reported[0]) {
+				if got := pulseHeight(p); got < gain-1e-4 || got > gain+1e-4 {
+					t.Errorf("%s, %g mm/mV, print %d: a pulse of %g mm", name, gain, i, got)
+				}
+			}
+		}
+	}
+}
+
+// pulseHeight is the height of the first pulse on a page, mm; 0 where there is none.
+func pulseHeight(s *Scene) float64 {
+	for i := range s.Marks {
+		if m := &s.Marks[i]; m.Class == Calibration && m.Shape == Poly {
+			low, high := m.Points[0].Y, m.Points[0].Y
+			for _, q := range m.Points {
+				low, high = min(low, q.Y), max(high, q.Y)
+			}
+			return float64(high - low)
+		}
+	}
+	return 0
+}

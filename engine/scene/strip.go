@@ -57,6 +57,10 @@ type Options struct {
 	// narrower than its name needs.
 	Closer float64
 
+	// Pulse sees that one lane of leads at least has room for the pulse of 1 mV, as a print
+	// needs it; without, only lanes that are high enough anyway have one.
+	Pulse bool
+
 	// Paper is the form in which [Paper12] sets the twelve leads.
 	Paper Form12
 
@@ -104,14 +108,22 @@ func defaultMargin(in *Input, o *Options) float64 {
 	for _, l := range o.Leads {
 		w = max(w, LaneLabel.Width(l.String(), o.FontMM)+pulseRoom)
 	}
+	for _, lane := range o.Lanes {
+		if name, ok := strings.CutPrefix(lane, "lead:"); ok {
+			w = max(w, LaneLabel.Width(name, o.FontMM)+pulseRoom)
+		}
+	}
 	for i := range in.Signals {
 		w = max(w, LaneLabel.Width(in.Signals[i].Label, o.FontMM))
 	}
 	if in.Diagram != nil {
 		for i := range in.Diagram.Tiers {
+			if !o.has("ladder") {
+				break
+			}
 			w = max(w, TierLabel.Width(in.Diagram.Tiers[i].Label, o.FontMM))
 		}
-		if d := in.Diagram.Device; d != nil && !o.NoDevice {
+		if d := in.Diagram.Device; d != nil && !o.NoDevice && o.has("device") {
 			for i := range d.Rows {
 				w = max(w, TierLabel.Width(d.Rows[i].Label, o.FontMM))
 			}
@@ -171,7 +183,7 @@ func (s *sheet) finish(rows []row) *Scene {
 		}
 		rest = rest[1:]
 	}
-	if s.o.Legend && s.in.Diagram != nil {
+	if s.o.Legend && s.signs() {
 		s.legend()
 	}
 	if s.o.Caution {

@@ -12,11 +12,10 @@ import (
 
 	"escapement/engine/field"
 	"escapement/engine/ladder"
-	"escapement/engine/measure"
 	"escapement/engine/plan"
 	"escapement/engine/press"
+	"escapement/engine/report"
 	"escapement/engine/scene"
-	"escapement/engine/sim"
 	"escapement/engine/tick"
 )
 
@@ -27,11 +26,12 @@ type drawing struct {
 	from, to     float64
 	leads, tiers string
 	dots         float64
+	lanes        laneFlags
 }
 
 // draw lays out the sheet of a plan and prints it by the ending of its file name.
 //
-//	escapement draw PLAN -o F.svg [-speed 25] [-gain 10] [-leads II,V1] [-tiers full] [-from MS] [-to MS]
+//	escapement draw PLAN -o F.svg [-speed 25] [-gain 10] [-leads II,V1] [-lanes lead:II,egm:HISd,axis,ladder] [-paper-form 3x4+rhythm] [-tiers full] [-from MS] [-to MS]
 func draw(args []string, in io.Reader) error {
 	if len(args) == 0 || strings.HasPrefix(args[0], "-") && args[0] != "-" {
 		return &usageError{"draw takes a plan and then -o FILE"}
@@ -47,6 +47,7 @@ func draw(args []string, in io.Reader) error {
 	fs.Float64Var(&d.from, "from", 0, "start of the window, ms")
 	fs.Float64Var(&d.to, "to", 0, "end of the window, ms; 0 is the end of the strip")
 	fs.Float64Var(&d.dots, "dots", 12, "dots a millimetre, for .png")
+	d.lanes.define(fs)
 	if err := fs.Parse(args[1:]); err != nil {
 		return &usageError{"draw: " + err.Error()}
 	}
@@ -82,21 +83,28 @@ func (d *drawing) printer() (func(io.Writer, *scene.Scene) error, error) {
 }
 
 func (d *drawing) scene(p *plan.Plan) (*scene.Scene, error) {
-	o := scene.Options{MMPerS: d.speed, MMPerMV: d.gain, Grid: true, Legend: true, Caution: true, Title: p.Title}
+	o := scene.Options{MMPerS: d.speed, MMPerMV: d.gain, Grid: true, Legend: true, Caution: true, Pulse: true, Title: p.Title}
 	names, err := leadNames("draw", d.leads)
 	if err != nil {
 		return nil, err
 	}
 	o.Leads = names
-	log, err := sim.Run(p)
+	if o.Lanes, o.Paper, err = d.lanes.read("draw"); err != nil {
+		return nil, err
+	}
+	c, err := report.Run(p)
 	if err != nil {
 		return nil, err
 	}
+	log := c.Log
 	if d.from < 0 || d.from >= log.Span.MS() || d.to != 0 && (d.to <= d.from || d.to > log.Span.MS()) {
 		return nil, &usageError{fmt.Sprintf("draw: the window from %g to %g ms does not lie in the strip of %v ms", d.from, d.to, log.Span)}
 	}
 	o.From, o.To = tick.Time(tick.MS(d.from)), tick.Time(tick.MS(d.to))
-	in := scene.Input{Log: log, Record: field.Record(log)}
+	if c.Record == nil { // a report leaves the leads of a long strip out; a drawing shows what it is asked for
+		c.Record = field.Record(log)
+	}
+	in := scene.Input{Log: log, Record: c.Record, Signals: c.Signals(o.Lanes, d.lanes.egmGain)}
 	switch d.tiers {
 	case "full":
 		in.Diagram = ladder.Build(log, ladder.Options{Form: ladder.Full})
@@ -106,7 +114,10 @@ func (d *drawing) scene(p *plan.Plan) (*scene.Scene, error) {
 	default:
 		return nil, &usageError{fmt.Sprintf("draw: tiers %q; they can be full, plain or none", d.tiers)}
 	}
-	o.Statement = measure.Of(log, in.Record).Statement
+	o.Statement = c.Measure.Statement
+	if o.Paper.Columns > 0 {
+		return scene.Paper12(in, o), nil
+	}
 	return scene.Strip(in, o), nil
 }
 

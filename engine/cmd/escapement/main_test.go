@@ -121,6 +121,14 @@ func TestDrawWritesAnSVGAndNothingOnError(t *testing.T) {
 	if !strings.Contains(string(b), "Not a medical device") {
 		t.Error("the caution is missing")
 	}
+	for _, more := range [][]string{{"-lanes", "egm:HISd,lead:II,axis"}, {"-paper-form", "6x2"}} {
+		if _, err := call(t, "", append([]string{"draw", "wenckebach-4-3", "-o", name}, more...)...); err != nil {
+			t.Fatal(err)
+		}
+		if after, err := os.ReadFile(name); err != nil || bytes.Equal(b, after) {
+			t.Errorf("%v changes nothing (%v)", more, err)
+		}
+	}
 	if _, err := call(t, "", "draw", "normal", "-o", filepath.Join(dir, "x.svg"), "-leads", "V9"); err == nil {
 		t.Error("lead V9 was drawn")
 	}
@@ -179,6 +187,8 @@ func TestBadUseIsExplained(t *testing.T) {
 		{"bad plan", []string{"measure", "-"}, `{"format":"escapement-plan/1","heart":{"sinus":{"rate_bpm":0}}}`, "heart.sinus.rate_bpm: 0; allowed: a number from 10 to 220 /min"},
 		{"no file", []string{"draw", "normal"}, "", "draw takes a plan and then -o FILE"},
 		{"ending", []string{"draw", "normal", "-o", "x.gif"}, "", "it can be .svg, .pdf or .png"},
+		{"no such lane", []string{"draw", "normal", "-o", "x.svg", "-lanes", "lead:II,egm:moon"}, "", "\"egm:moon\" is not a lane"},
+		{"no such form", []string{"draw", "normal", "-o", "x.svg", "-paper-form", "4x3"}, "", "\"4x3\" is not a form of paper"},
 		{"window", []string{"draw", "normal", "-o", "x.svg", "-from", "9000", "-to", "8000"}, "", "does not lie in the strip"},
 	} {
 		t.Run(c.name, func(t *testing.T) {

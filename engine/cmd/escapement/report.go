@@ -19,14 +19,14 @@ import (
 type paper struct {
 	out, size, before, leads, tiers string
 	from, to, speed, gain, dots     float64
-	twelve                          bool
 	date                            string
+	lanes                           laneFlags
 }
 
 // onPaper prints a plan's report: as a PDF of all pages, or as one picture a page,
 // F-1.png and so on.
 //
-//	escapement report PLAN -o F.pdf [-paper a4] [-leads II,V1] [-tiers full] [-from MS] [-to MS] [-twelve] [-date TEXT] [-before PLAN]
+//	escapement report PLAN -o F.pdf [-paper a4] [-leads II,V1] [-tiers full] [-from MS] [-to MS] [-lanes LANES] [-paper-form 3x4+rhythm] [-date TEXT] [-before PLAN]
 func onPaper(args []string, in io.Reader) error {
 	if len(args) == 0 || strings.HasPrefix(args[0], "-") && args[0] != "-" {
 		return &usageError{"report takes a plan and then -o FILE"}
@@ -40,7 +40,7 @@ func onPaper(args []string, in io.Reader) error {
 	fs.StringVar(&q.leads, "leads", "II,V1", "leads, with commas")
 	fs.StringVar(&q.tiers, "tiers", "full", "ladder: full, plain or none")
 	fs.StringVar(&q.date, "date", "", "a date to print")
-	fs.BoolVar(&q.twelve, "twelve", false, "twelve leads in four columns")
+	q.lanes.define(fs)
 	fs.Float64Var(&q.speed, "speed", 25, "mm a second")
 	fs.Float64Var(&q.gain, "gain", 10, "mm a millivolt")
 	fs.Float64Var(&q.from, "from", 0, "start of the window, ms")
@@ -87,12 +87,15 @@ func computed(arg string, in io.Reader) (*report.Case, error) {
 }
 
 func (q *paper) options() (report.Options, error) {
-	o := report.Options{Date: q.date, From: tick.Time(tick.MS(q.from)), To: tick.Time(tick.MS(q.to)), MMPerS: q.speed, MMPerMV: q.gain, Twelve: q.twelve, Leads: []lead.Name{}}
+	o := report.Options{Date: q.date, From: tick.Time(tick.MS(q.from)), To: tick.Time(tick.MS(q.to)), MMPerS: q.speed, MMPerMV: q.gain, Leads: []lead.Name{}, EGMGain: q.lanes.egmGain}
 	var err error
 	if o.Paper, err = scene.ParsePaper(q.size); err != nil {
 		return o, &usageError{err.Error()}
 	}
 	if o.Leads, err = leadNames("report", q.leads); err != nil {
+		return o, err
+	}
+	if o.Lanes, o.Form, err = q.lanes.read("report"); err != nil {
 		return o, err
 	}
 	switch q.tiers {

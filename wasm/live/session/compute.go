@@ -10,9 +10,9 @@ import (
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
 	"escapement/engine/measure"
-	"escapement/engine/membrane"
 	"escapement/engine/numbers"
 	"escapement/engine/plan"
+	"escapement/engine/signal"
 	"escapement/engine/sim"
 )
 
@@ -103,7 +103,7 @@ func (s *Session) run(file []byte) (*timeline, error) {
 		rec = s.field.Record(log)
 	}
 	return &timeline{file: file, plan: p, pacer: prog.Device, log: log, record: rec, drawn: pressed(log, rec), report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{},
-		field: s.field, hearts: inForce(prog), signals: map[string][]float32{}, membrane: map[string]*membrane.Trace{}}, nil
+		signals: signal.Of(prog, log, s.field)}, nil
 }
 
 func (t *timeline) answer() *answer {

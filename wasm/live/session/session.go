@@ -34,9 +34,9 @@ import (
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
 	"escapement/engine/measure"
-	"escapement/engine/membrane"
 	"escapement/engine/plan"
 	"escapement/engine/scene"
+	"escapement/engine/signal"
 	"escapement/engine/study"
 )
 
@@ -63,10 +63,7 @@ type timeline struct {
 	report   *measure.Report
 	diagrams map[ladder.Form]*ladder.Diagram // made when first drawn
 	mover    *handle.Mover                   // likewise
-	field    *field.Field
-	hearts   []membrane.InForce
-	signals  map[string][]float32       // electrograms, made when first drawn
-	membrane map[string]*membrane.Trace // likewise, by site
+	signals  *signal.Source                  // electrograms and action potentials, likewise
 	extents  scene.Extents
 }
 

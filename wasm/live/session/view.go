@@ -85,6 +85,15 @@ func (t *timeline) wire(drawn *scene.Scene, o *scene.Options, times [][4]float64
 	return append(append(append(meta, `,"tiers":`...), encode(tiers(drawn))...), '}'), points
 }
 
+// sampled are the electrograms and action potentials among the lanes. A strip too long
+// for leads has none.
+func (t *timeline) sampled(lanes []string, gain float64) []scene.Sampled {
+	if t.record == nil {
+		return nil
+	}
+	return t.signals.Lanes(lanes, gain)
+}
+
 func (t *timeline) input(form ladder.Form) scene.Input {
 	return scene.Input{Log: t.log, Record: t.drawn, Diagram: t.diagram(form), Extents: &t.extents}
 }

@@ -105,6 +105,9 @@ func (r *Request) page(pages []*scene.Scene) (*scene.Scene, error) {
 
 func strip(r *Request) ([]*scene.Scene, error) {
 	leads := r.leads
+	if r.twelve.Columns > 0 {
+		return twelve(r)
+	}
 	if r.Leads == nil {
 		leads = []lead.Name{lead.II, lead.V1}
 	}
@@ -115,12 +118,14 @@ func ladderAlone(r *Request) ([]*scene.Scene, error) {
 	if r.Ladder == "none" {
 		return nil, refuse(http.StatusBadRequest, "ladder", "none", "full, plain", "the ladder is all that this print shows")
 	}
+	r.Lanes = []string{"axis", "ladder", "device"}
 	return sheets(r, nil, scene.StripForm)
 }
 
-// twelve is the page of twelve leads. r.Leads name those that run below.
+// twelve is the page of twelve leads. r.Leads name those that run below, where the form
+// has a rhythm strip.
 func twelve(r *Request) ([]*scene.Scene, error) {
-	if r.Ladder == "" {
+	if r.Ladder == "" && r.Lanes == nil {
 		r.Ladder = "none"
 	}
 	leads := r.leads
@@ -135,18 +140,19 @@ func sheets(r *Request, leads []lead.Name, form scene.Form) ([]*scene.Scene, err
 	if err != nil {
 		return nil, err
 	}
-	if len(leads) > 0 && c.Record == nil {
+	signals := len(leads) > 0 || slices.ContainsFunc(r.Lanes, func(l string) bool { return strings.Contains(l, ":") })
+	if signals && c.Record == nil {
 		return nil, refuse(http.StatusUnprocessableEntity, "plan", fmt.Sprintf("a strip of %.0f min", c.Log.Span.Seconds()/60), fmt.Sprintf("leads for strips of up to %.0f min", report.LeadsUpTo.Seconds()/60), "print the ladder alone")
 	}
-	in := scene.Input{Log: c.Log}
-	if len(leads) > 0 {
+	in := scene.Input{Log: c.Log, Signals: c.Signals(r.Lanes, r.EGMGain)}
+	if signals {
 		in.Record = c.Record
 	}
 	if r.Ladder != "none" {
 		in.Diagram = ladder.Build(c.Log, ladder.Options{Form: r.form()})
 	}
 	o := scene.Options{
-		From: tick.Time(tick.MS(r.From)), To: tick.Time(tick.MS(r.To)), MMPerS: r.Speed, MMPerMV: r.Gain, Leads: leads,
+		From: tick.Time(tick.MS(r.From)), To: tick.Time(tick.MS(r.To)), MMPerS: r.Speed, MMPerMV: r.Gain, Leads: leads, Lanes: r.Lanes, Paper: r.twelve,
 		Grid: true, Legend: true, Caution: true, NoDevice: !r.Device, Title: c.Plan.Title, Statement: c.Measure.Statement, Imprint: r.imprint(),
 	}
 	if o.Title == "" {

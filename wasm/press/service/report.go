@@ -53,6 +53,6 @@ func (r *Request) report() (report.Options, error) {
 	}
 	return report.Options{
 		Paper: r.paper, Date: r.Date, Version: r.Version, From: tick.Time(tick.MS(r.From)), To: tick.Time(tick.MS(r.To)),
-		Leads: leads, Ladder: r.form(), NoLadder: r.Ladder == "none", NoDevice: !r.Device, MMPerS: r.Speed, MMPerMV: r.Gain,
+		Leads: leads, Lanes: r.Lanes, EGMGain: r.EGMGain, Form: r.twelve, Ladder: r.form(), NoLadder: r.Ladder == "none", NoDevice: !r.Device, MMPerS: r.Speed, MMPerMV: r.Gain,
 	}, nil
 }

@@ -13,6 +13,7 @@ import (
 	"escapement/engine/lead"
 	"escapement/engine/plan"
 	"escapement/engine/scene"
+	"escapement/engine/signal"
 	"escapement/presets"
 )
 
@@ -24,21 +25,25 @@ type Request struct {
 	Speed   float64         // mm/s
 	Gain    float64         // mm/mV
 	Leads   []string
-	Ladder  string  // "full", "plain" or "none"; left out: full, and none below twelve leads
-	Device  bool    // its lane, where the plan has one
-	From    float64 // ms
-	To      float64 // ms; 0 is the end of the strip
-	Dots    float64 // a millimetre, for PNG
-	Page    int     // from 1, for SVG and PNG, which hold one
-	Date    string  // as it stands on the print, or ""
-	Version string  // likewise
+	Lanes   []string // from top to bottom, by their names on the page; in place of Leads
+	EGMGain float64  // of electrograms among the lanes, mm/mV
+	Form    string   // the twelve leads as on paper, "3x4 + rhythm"; left out: 3x4 + rhythm for twelve, none elsewhere
+	Ladder  string   // "full", "plain" or "none"; left out: full, and none below twelve leads
+	Device  bool     // its lane, where the plan has one
+	From    float64  // ms
+	To      float64  // ms; 0 is the end of the strip
+	Dots    float64  // a millimetre, for PNG
+	Page    int      // from 1, for SVG and PNG, which hold one
+	Date    string   // as it stands on the print, or ""
+	Version string   // likewise
 
-	leads []lead.Name
-	paper scene.Paper
+	leads  []lead.Name
+	paper  scene.Paper
+	twelve scene.Form12
 }
 
 func usual() *Request {
-	return &Request{Speed: 25, Gain: 10, Device: true, Dots: 12, Page: 1}
+	return &Request{Speed: 25, Gain: 10, EGMGain: 10, Device: true, Dots: 12, Page: 1}
 }
 
 // slot is a name of the request: what may stand there, and where it goes.
@@ -60,6 +65,9 @@ var fields = []slot{
 	{"speed_mm_s", "a number from 2.5 to 400", false, func(r *Request) any { return &r.Speed }, func(r *Request) bool { return r.Speed >= 2.5 && r.Speed <= 400 }},
 	{"gain_mm_mv", "a number from 1 to 80", false, func(r *Request) any { return &r.Gain }, func(r *Request) bool { return r.Gain >= 1 && r.Gain <= 80 }},
 	{"leads", "a list of I, II, III, aVR, aVL, aVF, V1 to V6", true, func(r *Request) any { return &r.Leads }, (*Request).named},
+	{"lanes", "a list of lead:II, egm:HISd, membrane:his and the like, axis, ladder, device", true, func(r *Request) any { return &r.Lanes }, (*Request).laned},
+	{"egm_gain", "a number from 1 to 80", false, func(r *Request) any { return &r.EGMGain }, func(r *Request) bool { return r.EGMGain >= 1 && r.EGMGain <= 80 }},
+	{"paper_form", "3x4, 6x2, 12x1, each also with + rhythm, or nothing", true, func(r *Request) any { return &r.Form }, (*Request).formed},
 	{"ladder", "full, plain, none", true, func(r *Request) any { return &r.Ladder }, func(r *Request) bool { return slices.Contains([]string{"full", "plain", "none"}, r.Ladder) }},
 	{"device", "true, false", false, func(r *Request) any { return &r.Device }, func(r *Request) bool { return true }},
 	{"from_ms", "a number from 0", false, func(r *Request) any { return &r.From }, func(r *Request) bool { return r.From >= 0 }},
@@ -91,6 +99,21 @@ func (r *Request) named() bool {
 		r.leads = append(r.leads, n)
 	}
 	return true
+}
+
+func (r *Request) laned() bool {
+	for _, name := range r.Lanes {
+		if !signal.Named(name) {
+			return false
+		}
+	}
+	return len(r.Lanes) > 0
+}
+
+func (r *Request) formed() bool {
+	var ok bool
+	r.twelve, ok = scene.ParseForm12(r.Form)
+	return ok || r.Form == ""
 }
 
 // fromJSON reads a request, and tells all that is wrong with it at once.
@@ -160,7 +183,7 @@ func value(name, text string) json.RawMessage {
 	switch {
 	case name == "leads" && text == "":
 		return quote([]string{})
-	case name == "leads":
+	case name == "leads" || name == "lanes":
 		return quote(strings.Split(text, ","))
 	case i >= 0 && !fields[i].quoted && json.Valid([]byte(text)):
 		return json.RawMessage(text)

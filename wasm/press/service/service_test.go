@@ -11,6 +11,7 @@ import (
 	"strings"
 	"testing"
 
+	"escapement/engine/scene"
 	"escapement/presets"
 	"escapement/wasm/live/session"
 )
@@ -93,6 +94,10 @@ func TestRefusals(t *testing.T) {
 		{"a comparison with nothing", "POST", "/press/comparison.pdf", good + "}", 400, "before", "two plans"},
 		{"a report on one long sheet", "POST", "/press/report.pdf", good + `,"paper":"roll"}`, 400, "paper", "a4"},
 		{"a ladder without a ladder", "GET", "/press/ladder.pdf?plan=normal&ladder=none", "", 400, "ladder", "full, plain"},
+		{"no such lane", "GET", "/press/strip.pdf?plan=normal&lanes=lead:II,egm:moon", "", 400, "lanes", "egm:HISd"},
+		{"no lanes", "POST", "/press/strip.pdf", good + `,"lanes":[]}`, 400, "lanes", "lead:II"},
+		{"no such form", "POST", "/press/strip.pdf", good + `,"paper_form":"4x3"}`, 400, "paper_form", "3x4"},
+		{"electrograms of a strip that is too long", "POST", "/press/strip.pdf", `{"plan":{"format":"escapement-plan/1","span_ms":1200000},"lanes":["egm:HISd"]}`, 422, "plan", "print the ladder alone"},
 		{"two plans in a query", "GET", "/press/ladder.pdf?plan=normal&plan=lbbb", "", 400, "plan", "2 values"},
 		{"an unreadable query", "GET", "/press/ladder.pdf?plan=%zz", "", 400, "", "name=value"},
 		{"too large", "POST", "/press/strip.pdf", strings.Repeat(" ", MaxBytes+1), 413, "", fmt.Sprint(MaxBytes)},
@@ -163,6 +168,61 @@ func TestAQueryAndABodyGiveTheSamePrint(t *testing.T) {
 	}
 	if c := ask(t, "/press/strip.pdf", strings.Replace(body, "2026-12-01", "2026-12-02", 1)); bytes.Equal(b.Body.Bytes(), c.Body.Bytes()) {
 		t.Error("the date is not on the print")
+	}
+}
+
+// What the page shows is printed: the same lanes in the same order, the forms of paper
+// too, whatever a plan has and has not.
+func TestAPrintHasTheLanesOfThePage(t *testing.T) {
+	for _, c := range []struct{ name, preset, lanes, form string }{
+		{"usual", "dual-upper-rate-wenckebach", "lead:II lead:V1 axis ladder device", ""},
+		{"another order", "dual-upper-rate-wenckebach", "device ladder lead:V1 axis lead:II", ""},
+		{"device check", "dual-upper-rate-wenckebach", "lead:II egm:A egm:V axis ladder device", ""},
+		{"laboratory", "lbbb", "lead:I egm:HRA egm:HISd egm:RVA axis ladder", ""},
+		{"membrane", "wenckebach-4-3", "lead:II membrane:sinus membrane:av_junction axis", ""},
+		{"what the plan has not", "normal", "lead:II egm:V axis device", ""},
+		{"signals alone", "normal", "egm:HISd", ""},
+		{"twelve on paper", "lbbb", "lead:II axis ladder", "3x4 + rhythm"},
+		{"twelve on paper, another form", "lbbb", "lead:II egm:HRA axis", "6x2"},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			lanes := strings.Fields(c.lanes)
+			file, _ := presets.Read(c.preset)
+			view, err := json.Marshal(map[string]any{"plan": json.RawMessage(file), "view": map[string]any{"width_mm": 100, "height_mm": 100, "mm_per_s": 25, "ladder": "full", "lanes": lanes, "paper": c.form}})
+			if err != nil {
+				t.Fatal(err)
+			}
+			reply, _ := session.New().Call("compute", view)
+			var page struct {
+				Scene struct {
+					Lanes []struct {
+						Name string `json:"name"`
+					} `json:"lanes"`
+				} `json:"scene"`
+			}
+			if err := json.Unmarshal(reply, &page); err != nil {
+				t.Fatal(err)
+			}
+			r := usual()
+			r.Plan, r.Lanes, r.Form, r.Paper, r.To, r.Gain = file, lanes, c.form, "a3-landscape", 4000, 5
+			if !r.formed() || !r.laned() || !r.sized() {
+				t.Fatal("the request is refused")
+			}
+			for name, lay := range map[string]func(*Request) ([]*scene.Scene, error){"strip": strip, "report": onePage} {
+				pages, err := lay(r)
+				if err != nil {
+					t.Fatal(name, err)
+				}
+				if len(pages[0].Lanes) != len(page.Scene.Lanes) {
+					t.Fatalf("%s has %+v, the page %+v", name, pages[0].Lanes, page.Scene.Lanes)
+				}
+				for i, l := range page.Scene.Lanes {
+					if got := pages[0].Lanes[i].Name; got != l.Name {
+						t.Errorf("%s: lane %d is %s, on the page %s", name, i, got, l.Name)
+					}
+				}
+			}
+		})
 	}
 }
 
