@@ -64,6 +64,11 @@ type Conduct struct {
 	// Reach is how deep an impulse enters where the direction is not open, in
 	// thousandths; 0 means that it stops at the entrance and leaves nothing behind.
 	Reach uint16
+
+	// Anew tells that what comes out here is a beat of its own, which muscle that the
+	// beat before has just crossed may carry: the sinus node's exit, the AV node,
+	// accessory pathways and a bundle that is climbed. False on silent paths.
+	Anew bool
 }
 
 // Path is a connection between two sites. Down is from From to To.
@@ -75,10 +80,6 @@ type Path struct {
 	// Silent paths (muscle, and the Purkinje endings in it) report no blocks: an
 	// impulse that meets tissue already depolarised by the same beat just ends.
 	Silent bool
-
-	// Turn is how long after an impulse has left an impulse the other way is not let in, nor recorded: muscle that a wave has just crossed does not
-	// carry it back. 0 for none; for silent paths only.
-	Turn tick.Dur
 }
 
 // Dir gives the parameters of a direction.

@@ -128,15 +128,13 @@ func (b *builder) add(name, label string, tissue event.Tissue, from, to string, 
 		panic(fmt.Sprintf("heart: path %s joins %s and %s, one of which is no site", name, from, to))
 	}
 	b.h.Paths = append(b.h.Paths, Path{Path: event.Path{Name: name, Label: label, Tissue: tissue, From: f, To: t}, Down: down, Up: up})
-	return &b.h.Paths[len(b.h.Paths)-1]
+	p := &b.h.Paths[len(b.h.Paths)-1]
+	p.Down.Anew, p.Up.Anew = true, true
+	return p
 }
 
-// muscleTurn is well under every refractory period of muscle and over the time for
-// which two ways round can differ.
-const muscleTurn = 100 * tick.Millisecond
-
-// muscle makes a path one through muscle.
-func (p *Path) muscle() { p.Silent, p.Turn = true, muscleTurn }
+// muscle makes a path one through muscle, in which a beat goes on.
+func (p *Path) muscle() { p.Silent, p.Down.Anew, p.Up.Anew = true, false, false }
 
 // plain is a conduction time without decrement.
 func plain(d tick.Dur, thetaMS float64) Conduct {
@@ -245,7 +243,8 @@ func (b *builder) trunk(name, from, to string, d tick.Dur, n *BundleNumbers) {
 		c.Theta = Cycled{BaseMS: max(n.ERPMS-d.MS(), 1), PerCycle: n.ThetaPerCycle, CycleMS: DriveMS, FloorMS: 1}
 	}
 	c.Open = !n.Closed
-	b.add(name, SiteLabel(to), event.Purkinje, from, to, c, c).Drop = n.Drop
+	p := b.add(name, SiteLabel(to), event.Purkinje, from, to, c, c)
+	p.Drop, p.Down.Anew, p.Up.Anew = n.Drop, false, from == "his"
 }
 
 func (b *builder) muscle() {

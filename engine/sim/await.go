@@ -10,9 +10,11 @@ import (
 // await is what is known of the impulses on their way to a site, so that arrivals
 // that cannot do anything are left out of the queue. In a wave through muscle these
 // are most: nearly every path brings its impulse to tissue that the same wave has
-// depolarised, and on a silent path that leaves no trace. An impulse is known to find
-// the site refractory where
+// depolarised, and on a silent path that leaves no trace. An impulse is known to do
+// nothing at the site where
 //
+//   - the site's last beat began no earlier than its own, since a site's beat only ever
+//     gives way to a later one;
 //   - the period that runs now ends after the arrival, since a period only ever gives
 //     way to a later one; or
 //   - another impulse arrives before it, once the period that runs now is over, and
@@ -58,7 +60,8 @@ func (m *Machine) shortest(site int) tick.Dur {
 func (m *Machine) send(w *way, in *transit, t tick.Time) {
 	in.order = m.queue.place(w.class)
 	st := &m.sites[w.exit]
-	recovered := st.id == 0 || t >= st.until
+	stale := w.silent && st.id != 0 && in.beat <= st.beat
+	recovered := st.id == 0 || t >= st.until && !stale
 	awaited := st.order != 0 && (st.first > m.now || st.first == m.now && st.order > m.order)
 	sooner := awaited && (st.first < t || st.first == t && st.order < in.order)
 	in.unseen = w.silent && t > m.now && (!recovered || sooner && t < m.now.Add(st.least))

@@ -191,7 +191,7 @@ func (v *device) capture(site event.SiteID, stimulus event.ID) {
 		v.outcome(m.at(stimulus), site, captured)
 	}
 	if captured {
-		m.activate(&wave{rule: event.Captured, site: site, path: event.None, cause: stimulus})
+		m.activate(&wave{rule: event.Captured, site: site, path: event.None, cause: stimulus, beat: m.now})
 	}
 }
 

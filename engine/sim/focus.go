@@ -77,7 +77,7 @@ func (m *Machine) discharge(i int) {
 	m.cycle(i, id)
 	st := &m.sites[f.Site]
 	if st.id == 0 || m.now >= st.until {
-		m.activate(&wave{rule: event.Fired, site: f.Site, path: event.None, cause: id})
+		m.activate(&wave{rule: event.Fired, site: f.Site, path: event.None, cause: id, beat: m.now})
 		return
 	}
 	m.record(event.Event{Kind: event.Block, Rule: event.SiteRefractory, Site: f.Site, Path: event.None, Cause: id,

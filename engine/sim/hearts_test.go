@@ -100,8 +100,8 @@ func (d dice) sites(grain float64) *heart.Heart {
 		if d.chance(0.3) {
 			p.Up = p.Down
 		}
-		if p.Silent = d.chance(0.2); p.Silent && d.chance(0.5) {
-			p.Turn = 80 * tick.Millisecond
+		if p.Silent = d.chance(0.2); !p.Silent {
+			p.Down.Anew, p.Up.Anew = d.chance(0.5), d.chance(0.5)
 		}
 		p.Drop = d.drop()
 		h.Paths = append(h.Paths, p)

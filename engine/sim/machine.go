@@ -7,7 +7,12 @@
 //  1. A site that is reached at t is depolarised if t >= the end of its refractory
 //     period; that period then begins anew, its length by the cycle since the
 //     site's depolarisation before (the basic cycle at first). Otherwise the impulse
-//     is blocked (SiteRefractory). No block on a silent path is recorded.
+//     is blocked (SiteRefractory). No block on a silent path is recorded. Every
+//     depolarisation belongs to a beat, known by when it began: at that instant, for
+//     a stimulus, a focus and an impulse that came a way with Anew; otherwise it is
+//     the beat of the site the impulse left, or the site's own last one if that began
+//     later. An impulse on a silent path ends at a site whose last depolarisation is
+//     of a beat that began no earlier than its own.
 //  2. A depolarised site first resets its foci (rule 8), then sends an impulse into
 //     every path that ends there, except the one it came by, in order of path number.
 //  3. Let r be the time since an impulse last left the path, at either end. While
@@ -16,9 +21,6 @@
 //     that one entered. The path has recovered if r >= theta or nothing ever left it.
 //     theta follows the interval between the last two impulses that rule 7 let in,
 //     either way (the basic cycle until there are two).
-//     A path with a Turn lets nothing in, and records nothing, while an impulse that
-//     went the other way left it less than Turn ago and none is being conducted the
-//     other way.
 //  4. A path that does not conduct in that direction blocks the impulse (OneWay): at
 //     the entrance where Reach is 0 or the path has not recovered, otherwise after
 //     Reach of its length, taking that share of the delay of rule 7. The path then
@@ -89,7 +91,8 @@ type Machine struct {
 type siteState struct {
 	last  tick.Time
 	until tick.Time
-	id    event.ID // its last depolarisation; 0 for none
+	beat  tick.Time // when the beat began that it was of
+	id    event.ID  // its last depolarisation; 0 for none
 
 	cycle, period tick.Dur // the last cycle asked for and its refractory period
 	await                  // what is on its way
@@ -106,7 +109,6 @@ type exit struct {
 type pathState struct {
 	left    tick.Time // when an impulse last left or stopped inside; may lie ahead
 	used    bool      // one ever did
-	went    event.Dir // which way; 0 where two met
 	entered tick.Time // last entry that was conducted
 	entries uint8     // how many, up to 2
 	cycle   tick.Dur  // between the last two
@@ -259,7 +261,7 @@ func (m *Machine) stimulate(s *plan.Stimulus) {
 	}
 	id := m.record(e)
 	if e.Captured {
-		m.activate(&wave{rule: event.Captured, site: s.Site, path: event.None, cause: id})
+		m.activate(&wave{rule: event.Captured, site: s.Site, path: event.None, cause: id, beat: m.now})
 	}
 }
 
@@ -270,6 +272,7 @@ type wave struct {
 	site     event.SiteID
 	path     event.PathID // it came by, or None
 	cause    event.ID
+	beat     tick.Time
 	recovery tick.Dur // of that path, as on the event
 	needed   tick.Dur
 }
@@ -285,7 +288,7 @@ func (m *Machine) activate(a *wave) {
 	e.Kind, e.Rule, e.Dir, e.Site, e.Path, e.Cause, e.Recovery, e.Needed = event.Activate, a.rule, a.dir, a.site, a.path, a.cause, a.recovery, a.needed
 	e.Until = m.now.Add(m.refractory(a.site, cycle))
 	id := e.ID
-	st.last, st.until, st.id = m.now, e.Until, id
+	st.last, st.until, st.beat, st.id = m.now, e.Until, a.beat, id
 	st.await.order = 0
 	m.reset(a, id)
 	if m.dev != nil {

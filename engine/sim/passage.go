@@ -17,8 +17,8 @@ type way struct {
 	decrease bool     // the delay depends on recovery
 	open     bool
 	silent   bool
-	plain    bool // silent muscle: open, all or none, no depth; see cross
-	turn     tick.Dur
+	plain    bool  // silent muscle: open, all or none, no depth; see cross
+	anew     bool  // begins a beat
 	drops    bool  // a drop pattern stands in it
 	atrial   bool  // through atrial muscle
 	class    class // of arrivals
@@ -27,7 +27,7 @@ type way struct {
 
 func (m *Machine) compile(p *heart.Path, d event.Dir) way {
 	c := p.Dir(d)
-	w := way{c: c, min: m.quantise(tick.MS(c.MinMS)), open: c.Open, silent: p.Silent, turn: m.quantise(p.Turn), fixed: c.Theta.PerCycle == 0, decrease: c.AlphaMS != 0, exit: p.Exit(d)}
+	w := way{c: c, min: m.quantise(tick.MS(c.MinMS)), open: c.Open, silent: p.Silent, anew: c.Anew, fixed: c.Theta.PerCycle == 0, decrease: c.AlphaMS != 0, exit: p.Exit(d)}
 	if w.fixed {
 		w.theta = m.quantise(c.Refractory(0))
 	}
@@ -61,7 +61,8 @@ type attempt struct {
 	dir      event.Dir
 	from     event.SiteID
 	cause    event.ID
-	recovery tick.Dur // event.Unknown where nothing has left the path yet
+	beat     tick.Time // of the depolarisation it comes from
+	recovery tick.Dur  // event.Unknown where nothing has left the path yet
 	needed   tick.Dur
 }
 
@@ -102,10 +103,7 @@ func (m *Machine) enter(x *exit, cause event.ID, from event.SiteID) {
 	if m.inside(against) {
 		left, used = against.leftBefore, against.usedBefore
 	}
-	if w.turn > 0 && used && !against.active && st.went == other(d) && m.now.Sub(left) < w.turn {
-		return
-	}
-	a := attempt{path: p, dir: d, from: from, cause: cause, recovery: event.Unknown, needed: m.theta(w, st)}
+	a := attempt{path: p, dir: d, from: from, cause: cause, beat: m.sites[from].beat, recovery: event.Unknown, needed: m.theta(w, st)}
 	if used {
 		a.recovery = m.now.Sub(left)
 	}
@@ -137,18 +135,18 @@ func (m *Machine) cross(x *exit, against *transit, cause event.ID, from event.Si
 	recovery := event.Unknown
 	if used {
 		recovery = m.now.Sub(left)
-		if recovery < w.theta || recovery < w.turn && !met && st.went == other(x.dir) {
+		if recovery < w.theta {
 			return
 		}
 	}
 	if !met {
-		m.conduct(w, st, &st.transit[x.dir], attempt{path: x.path, dir: x.dir, from: from, cause: cause, recovery: recovery, needed: w.theta})
+		m.conduct(w, st, &st.transit[x.dir], attempt{path: x.path, dir: x.dir, from: from, cause: cause, beat: m.sites[from].beat, recovery: recovery, needed: w.theta})
 		return
 	}
 	against.active = false
 	against.gen++
 	st.enter(m.now)
-	st.left, st.used, st.went = m.now.Add(m.meeting(max(w.min, 1), against)), true, 0
+	st.left, st.used = m.now.Add(m.meeting(max(w.min, 1), against)), true
 }
 
 // reach is how long an impulse with a delay takes to come as deep as it can in a
@@ -171,7 +169,7 @@ func (m *Machine) block(w *way, t tick.Time, a *attempt, r event.Rule, depth uin
 
 // stopInside lets an impulse come a part of the way; the path counts as left there.
 func (m *Machine) stopInside(w *way, st *pathState, after tick.Dur, a *attempt, r event.Rule, depth uint16) {
-	st.left, st.used, st.went = m.now.Add(after), true, a.dir
+	st.left, st.used = m.now.Add(after), true
 	m.block(w, st.left, a, r, depth)
 }
 
@@ -198,7 +196,7 @@ func (m *Machine) conduct(w *way, st *pathState, in *transit, a attempt) {
 	in.leftBefore, in.usedBefore = st.left, st.used
 	in.attempt = a
 	st.enter(m.now)
-	st.left, st.used, st.went = m.now.Add(in.delay), true, a.dir
+	st.left, st.used = m.now.Add(in.delay), true
 	m.send(w, in, st.left)
 }
 
@@ -230,7 +228,7 @@ func (m *Machine) collide(w *way, st *pathState, a *attempt, against *transit) {
 		x, gone = reach, m.quantise(theirs*tick.Dur(1000-w.c.Reach)/1000)
 		rule, depth = event.OneWay, w.c.Reach
 	}
-	st.left, st.used, st.went = against.start.Add(gone), true, 0
+	st.left, st.used = against.start.Add(gone), true
 	m.block(w, st.left, &against.attempt, event.Collision, uint16(min(gone*1000/theirs, 1000)))
 	m.block(w, m.now.Add(x), a, rule, depth)
 }
@@ -251,8 +249,15 @@ func (m *Machine) arrive(p event.PathID, d event.Dir, gen uint32) {
 	}
 	in.active = false
 	st := &m.sites[w.exit]
+	if w.silent && st.id != 0 && in.beat <= st.beat {
+		return
+	}
 	if st.id == 0 || m.now >= st.until {
-		m.activate(&wave{rule: event.Conducted, site: w.exit, path: p, dir: d, cause: in.cause, recovery: in.recovery, needed: in.needed})
+		beat := max(in.beat, st.beat)
+		if w.anew {
+			beat = m.now
+		}
+		m.activate(&wave{rule: event.Conducted, site: w.exit, path: p, dir: d, cause: in.cause, beat: beat, recovery: in.recovery, needed: in.needed})
 		return
 	}
 	if !w.silent {

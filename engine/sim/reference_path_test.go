@@ -17,9 +17,6 @@ func (r *reference) enter(id event.PathID, d event.Dir, cause event.ID) {
 	c, same, other := h.Dir(d), &p.inside[d], &p.inside[event.Down+event.Up-d]
 	e := event.Event{Kind: event.Block, Cause: cause, Dir: d, Site: h.Entry(d), Path: id}
 
-	if h.Turn > 0 && !other.inside && !same.inside && p.used && p.went == event.Down+event.Up-d && r.now.Sub(p.left) < r.up(h.Turn) { // rule 3
-		return
-	}
 	cycle := r.heart.Basic
 	if n := len(p.letIn); n >= 2 {
 		cycle = p.letIn[n-1].Sub(p.letIn[n-2])
@@ -49,7 +46,7 @@ func (r *reference) enter(id event.PathID, d event.Dir, cause event.ID) {
 		r.meet(p, other, delay, c, e)
 	case !c.Open:
 		e.Rule, e.Depth = event.OneWay, c.Reach
-		p.used, p.left, p.went = true, r.now.Add(r.up(delay*tick.Dur(c.Reach)/1000)), d
+		p.used, p.left = true, r.now.Add(r.up(delay*tick.Dur(c.Reach)/1000))
 		r.stopAt(p.left, e)
 	case !recovered: // rule 5
 		e.Rule, e.Recovery, e.Needed = event.PathRefractory, recovery, theta
@@ -60,7 +57,7 @@ func (r *reference) enter(id event.PathID, d event.Dir, cause event.ID) {
 		}
 		part, whole := recovery-inner, theta-inner
 		e.Depth = uint16(min(max(1000*part/whole, 1), 999))
-		p.used, p.left, p.went = true, r.now.Add(r.up(r.up(c.Delay(theta))*part/whole)), d
+		p.used, p.left = true, r.now.Add(r.up(r.up(c.Delay(theta))*part/whole))
 		r.stopAt(p.left, e)
 	case d == event.Down && r.dropped(p, &h.Drop): // rule 6
 		e.Rule = event.Dropped
@@ -73,7 +70,7 @@ func (r *reference) enter(id event.PathID, d event.Dir, cause event.ID) {
 			return
 		}
 		e.Kind, e.Rule, e.Site = 0, event.Conducted, h.Exit(d)
-		*same = refImpulse{true, r.now, r.now.Add(delay), r.setUp(), e}
+		*same = refImpulse{true, r.now, r.now.Add(delay), r.setUp(), e, r.sites[h.Entry(d)].beat}
 	}
 }
 
@@ -92,7 +89,7 @@ func (r *reference) meet(p *refPath, other *refImpulse, delay tick.Dur, c *heart
 	o.Kind, o.Rule, o.Site = event.Block, event.Collision, r.log.Paths[o.Path].Entry(o.Dir)
 	o.Depth = uint16(1000 * theirs.Sub(other.entered) / their)
 	other.inside = false
-	p.used, p.left, p.went = true, theirs, 0
+	p.used, p.left = true, theirs
 	r.stopAt(theirs, o)
 	r.stopAt(at, e)
 }
@@ -120,9 +117,19 @@ func (r *reference) stop(i int) {
 func (r *reference) arrive(in *refImpulse) {
 	e := in.e
 	in.inside = false
-	r.paths[e.Path].used, r.paths[e.Path].left, r.paths[e.Path].went = true, r.now, e.Dir // rule 7
+	r.paths[e.Path].used, r.paths[e.Path].left = true, r.now // rule 7
+	h, s := &r.heart.Paths[e.Path], &r.sites[e.Site]
+	if h.Silent && s.used && s.beat >= in.beat { // rule 1
+		return
+	}
 	if r.excitable(e.Site) {
-		r.depolarise(e)
+		if in.beat < s.beat {
+			in.beat = s.beat
+		}
+		if h.Dir(e.Dir).Anew {
+			in.beat = r.now
+		}
+		r.depolarise(e, in.beat)
 		return
 	}
 	b := event.Event{Kind: event.Block, Rule: event.SiteRefractory, Cause: e.Cause, Dir: e.Dir, Path: e.Path, Depth: 1000,

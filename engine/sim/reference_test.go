@@ -34,6 +34,7 @@ type reference struct {
 type refSite struct {
 	used   bool // depolarised before
 	last   tick.Time
+	beat   tick.Time // when the beat began that it was of
 	period tick.Dur
 }
 
@@ -41,7 +42,6 @@ type refPath struct {
 	inside [3]refImpulse // by direction
 	used   bool          // an impulse has left, or is stopping inside
 	left   tick.Time     // when; ahead of now for one that is stopping
-	went   event.Dir     // which way; 0 where two met
 	letIn  []tick.Time
 	met    int // impulses that met the drop pattern
 	random *rand.Rand
@@ -53,6 +53,7 @@ type refImpulse struct {
 	entered, arrives tick.Time
 	made             int
 	e                event.Event // the Activate that it will make
+	beat             tick.Time   // when the beat began that it is of
 }
 
 type refFocus struct {
@@ -175,7 +176,7 @@ func (r *reference) stimulate(s *plan.Stimulus) {
 	e.Captured = r.excitable(s.Site)
 	e.Recovery, e.Needed = r.sinceLast(s.Site)
 	if id := r.record(e); e.Captured {
-		r.depolarise(event.Event{Cause: id, Rule: event.Captured, Site: s.Site, Path: event.None})
+		r.depolarise(event.Event{Cause: id, Rule: event.Captured, Site: s.Site, Path: event.None}, r.now)
 	}
 }
 
@@ -193,12 +194,12 @@ func (r *reference) sinceLast(s event.SiteID) (recovery, needed tick.Dur) {
 
 // depolarise records an Activate, begins the refractory period, resets the foci
 // of the site and sends the impulse on.
-func (r *reference) depolarise(e event.Event) {
+func (r *reference) depolarise(e event.Event, beat tick.Time) {
 	s, cycle := &r.sites[e.Site], r.heart.Basic
 	if s.used {
 		cycle = r.now.Sub(s.last)
 	}
-	s.used, s.last, s.period = true, r.now, r.up(r.heart.Sites[e.Site].Refractory.At(cycle))
+	s.used, s.last, s.beat, s.period = true, r.now, beat, r.up(r.heart.Sites[e.Site].Refractory.At(cycle))
 	e.Kind, e.Until = event.Activate, s.last.Add(s.period)
 	id := r.record(e)
 	for i := range r.foci {
@@ -264,7 +265,7 @@ func (r *reference) discharge(i int) {
 	r.fade(i)
 	r.begin(i, id)
 	if r.excitable(site) {
-		r.depolarise(event.Event{Cause: id, Rule: event.Fired, Site: site, Path: event.None})
+		r.depolarise(event.Event{Cause: id, Rule: event.Fired, Site: site, Path: event.None}, r.now)
 		return
 	}
 	b := event.Event{Kind: event.Block, Rule: event.SiteRefractory, Cause: id, Site: site, Path: event.None}

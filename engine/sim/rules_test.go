@@ -1,7 +1,6 @@
 package sim
 
 import (
-	"fmt"
 	"strings"
 	"testing"
 
@@ -146,39 +145,5 @@ func TestSuppressionKnowsThePhaseAtTheStart(t *testing.T) {
 	got := lines(playProgram(t, &plan.Program{Heart: h, Span: 2000 * milli, Stimuli: []plan.Stimulus{{T: 200 * milli, Site: 0, Rule: event.Premature}}}), "discharge")
 	if want := "4 1300000 discharge phase4 from=2 site=a"; got != want {
 		t.Errorf("got\n%s\nwant\n%s", got, want)
-	}
-}
-
-// A premature beat at the edge of ventricular refractoriness must not start
-// re-entry in a healthy ventricle: an ending of a fascicle once carried the impulse
-// back through muscle that the same wave had just crossed.
-func TestNoReentryThroughMuscleJustCrossed(t *testing.T) {
-	for at := 3936.0; at < 3990; at += 2 {
-		s := withDevice(t, 6000, `"sinus":{"rate_bpm":58},"av_node":{"fast":{"ah_ms":null,"va_ms":null}}`, `"mode":"DDD","lower_rate_bpm":50`, stimulus(at, "rv_apex"))
-		for i, d := range diffs(s.times("rv_apex")) {
-			if d < 300 {
-				t.Fatalf("premature beat at %v ms: the apex is depolarised again after %.0f ms (beat %d)", at, d, i+1)
-			}
-		}
-	}
-}
-
-// An extrastimulus after a drive must not start re-entry in a healthy ventricle, from
-// any region: a long way through muscle once refused a premature impulse where two had
-// met near its far end, and was then open to the same impulse coming back round.
-// (With an ERP of 200 ms the first 10 ms after it still do in four of nine regions.)
-func TestNoReentryAfterAnExtrastimulus(t *testing.T) {
-	for _, erp := range []int{230, 280} {
-		h := fmt.Sprintf(`"ventricles":{"erp_ms":%d},"av_node":{"fast":{"ah_ms":null,"va_ms":null}}`, erp)
-		for _, site := range heart.VentricularSites() {
-			for extra := 200.0; extra < 400; extra += 10 {
-				s := play(t, 6500, h, train(500, site, 600, 5, extra, extra))
-				for i, d := range diffs(s.times(site)) {
-					if i > 6 && d < 700 {
-						t.Fatalf("ERP %d, two beats at %v ms from %s: beat %d follows after %.0f ms", erp, extra, site, i+1, d)
-					}
-				}
-			}
-		}
 	}
 }
