@@ -33,7 +33,8 @@ func (f *finder) captures() {
 		if n := len(functional); n > 0 {
 			f.add(orderFault, Finding{
 				Slug: "functional_non_capture", Channel: string(rune(ch)), Evidence: functional, Count: n,
-				Text:   fmt.Sprintf("%s refractory tissue, %s ms too soon (median), and does not capture: consistent with functional non-capture.", plural(n, articled(ch)+" stimulus meets", chamberOf(ch)+" stimuli meet"), whole(medianDur(missed))),
+				Text: fmt.Sprintf("%s refractory tissue, %s ms too soon%s, without capture: consistent with functional non-capture.",
+					plural(n, chamberOf(ch)+" stimulus meets", chamberOf(ch)+" stimuli meet"), whole(medianDur(missed)), oneOr(n, "", " (median)")),
 				Rivals: []string{"loss of capture by threshold or lead"},
 				clause: fmt.Sprintf("%s functional non-capture (%s)", chamberOf(ch), times(n)),
 			})
@@ -97,6 +98,39 @@ func (f *finder) pseudo() {
 		Text:   fmt.Sprintf("%s on a QRS already under way and has no part in it: consistent with pseudofusion, not with undersensing, since the impulse reaches the lead late.", plural(n, "ventricular stimulus falls", "ventricular stimuli fall")),
 		Rivals: []string{"undersensing", "loss of capture"},
 		clause: fmt.Sprintf("pseudofusion (%s)", times(n)),
+	})
+}
+
+// vulnerableTime: stimuli of the device while the ventricles recover unevenly, as one
+// may come that undersensing, an asynchronous mode or noise did not keep back.
+func (f *finder) vulnerableTime() {
+	var ids []event.ID
+	var after []tick.Dur
+	n, captured := 0, 0
+	f.eachVulnerable(func(e *event.Event, wave int32) {
+		if e.Rule != event.Timed || wave < 0 {
+			return
+		}
+		n++
+		ids = append(ids, f.v[wave].id, e.ID)
+		after = append(after, e.T.Sub(f.v[wave].t))
+		if e.Captured {
+			captured++
+		}
+	})
+	if n == 0 {
+		return
+	}
+	capture := "none captures"
+	if captured > 0 {
+		capture = plural(captured, "captures", "capture")
+	}
+	f.add(orderFault, Finding{
+		Slug: "stimulus_in_vulnerable_time", Channel: "V", Evidence: ids, Count: n,
+		Text: fmt.Sprintf("%s about the T wave, %s ms after the start of the QRS before it, while part of the ventricles has recovered and part has not; %s: consistent with stimulation in the vulnerable time.",
+			plural(n, "ventricular stimulus falls", "ventricular stimuli fall"), wholes(after), capture),
+		Note:   "Such a stimulus can start a ventricular arrhythmia in a real heart, seldom; this model has no fibrillation of the ventricles.",
+		clause: fmt.Sprintf("ventricular stimulus in the vulnerable time (%s)", times(n)),
 	})
 }
 

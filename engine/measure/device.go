@@ -44,6 +44,12 @@ type Device struct {
 	Fusion       int      `json:"fusion_count"`
 	Pseudofusion int      `json:"pseudofusion_count"`
 
+	// Conduction as the device's leads have it, median: from the signal of a P, tracked
+	// or not, and from an atrial stimulus, to the signal of the QRS it led to. PR at the
+	// surface is another interval.
+	LeadPR *float64 `json:"lead_pr_ms"`
+	LeadAR *float64 `json:"lead_ar_ms"`
+
 	Intervals []Interval `json:"intervals"`
 	Markers   []Marker   `json:"markers"` // in order of time
 }
@@ -104,6 +110,7 @@ func (s *strip) deviceReport() *Device {
 	}
 	r.Pseudofusion = len(s.pseudofusions())
 	s.intervals(r)
+	s.conducted(r)
 	return r
 }
 
@@ -177,6 +184,29 @@ func (s *strip) synchronousCount() int {
 		}
 	}
 	return n
+}
+
+// conducted measures conduction between the leads.
+func (s *strip) conducted(r *Device) {
+	var pr, ar []float64
+	for i := range s.p {
+		a, to := s.dev.at(s.dev.as[i]), s.p[i].to
+		paced := false
+		if k := s.dev.ap[i]; k >= 0 {
+			a, paced = s.dev.at(k), true
+		}
+		if a == nil || to < 0 || !s.descending(i) {
+			continue
+		}
+		switch q := s.dev.at(s.dev.vs[to]); {
+		case q == nil || !q.beat || s.dev.vp[to] >= 0 || q.e.T <= a.e.T:
+		case paced:
+			ar = append(ar, q.e.T.Sub(a.e.T).MS())
+		default:
+			pr = append(pr, q.e.T.Sub(a.e.T).MS())
+		}
+	}
+	r.LeadPR, r.LeadAR = median(pr), median(ar)
 }
 
 // intervalNames in the order of the report.

@@ -127,10 +127,15 @@ func times(n int) string {
 }
 
 func plural(n int, one, many string) string {
+	return strconv.Itoa(n) + " " + oneOr(n, one, many)
+}
+
+// oneOr is the word for one thing or for many.
+func oneOr(n int, one, many string) string {
 	if n == 1 {
-		return "1 " + one
+		return one
 	}
-	return strconv.Itoa(n) + " " + many
+	return many
 }
 
 // blocked is the evidence for blocked P waves: the P and the blocks that stopped it.

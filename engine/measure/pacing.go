@@ -24,6 +24,7 @@ func (f *finder) devices() {
 	f.hysteresis()
 	f.captures()
 	f.pseudo()
+	f.vulnerableTime()
 	f.sensing()
 	f.safety()
 	f.noiseReversion()
@@ -137,8 +138,13 @@ func (f *finder) kinds() kinds {
 }
 
 // since is the interval to the P or QRS before the one it made or sensed, or to the
-// beat of the device before where there is none; 0 for the first.
+// beat of the device before where there is none; 0 for the first. From stimulus to
+// stimulus, and to a signal of a beat, it is the device's own interval: the QRS begins
+// at the one and before the other.
 func (f *finder) since(m *marker) tick.Dur {
+	if b := f.dev.at(m.prev); m.paced() && b != nil && (b.paced() || natureOf(f.log, b.e) == ofBeat) {
+		return m.e.T.Sub(b.e.T)
+	}
 	switch {
 	case m.wave > 0 && m.e.Channel == 'A':
 		return f.pp(int(m.wave))
@@ -176,11 +182,12 @@ func (f *finder) tracking(k, own *pairs) {
 	})
 }
 
-// atrialName names the rhythm that is tracked, by most of its P waves.
-func (f *finder) atrialName(k *pairs) string {
+// atrialName names the rhythm that is tracked, by most of its P waves; of some of them,
+// where ids are given.
+func (f *finder) atrialName(k *pairs, ids ...event.ID) string {
 	sinus, all := 0, 0
 	for i := range f.dev.markers {
-		if m := &f.dev.markers[i]; m.e.Use == event.Tracked && !f.dev.looped[m.e.ID] {
+		if m := &f.dev.markers[i]; m.e.Use == event.Tracked && !f.dev.looped[m.e.ID] && (len(ids) == 0 || contains(ids, m.e.ID)) {
 			all++
 			if m.wave >= 0 && f.pOrigin(int(m.wave)) == fromSinus {
 				sinus++

@@ -98,7 +98,7 @@ var expected = map[string][]string{
 	"vvi-fusion":                      {"ventricular_pacing", "sinus_rhythm", RBBB, "fusion_beat"},
 	"ddi-wandering-pr":                {"av_sequential_pacing", "ventricular_pacing", "sinus_rhythm", "complete_av_block", "av_dissociation"},
 	"vdd-slow-sinus":                  {"p_synchronous_pacing", "ventricular_pacing", "sinus_rhythm", "av_dissociation"},
-	"magnet-asynchronous":             {"av_sequential_pacing", "sinus_rhythm", "fusion_beat", "mode_switch", "functional_non_capture", "functional_non_capture", "pseudofusion"},
+	"magnet-asynchronous":             {"av_sequential_pacing", "sinus_rhythm", "fusion_beat", "mode_switch", "functional_non_capture", "functional_non_capture", "pseudofusion", "stimulus_in_vulnerable_time"},
 	"biventricular-lost":              {"p_synchronous_pacing", "sinus_tachycardia", LBBB, "fusion_beat"},
 	"dual-longer-av-search":           {"p_synchronous_pacing", "atrial_pacing", "sinus_rhythm", "second_degree_av_block", "fusion_beat"},
 	"atrial-pacing-with-backup":       {"av_sequential_pacing", "atrial_pacing", "first_degree_av_block", "second_degree_av_block", "mode_switch"},

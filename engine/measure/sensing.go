@@ -134,13 +134,17 @@ func (f *finder) oversensed(ch byte) {
 			what += words[k]
 		}
 	}
-	effect := fmt.Sprintf("keep stimuli back; the longest RR around them is %s ms", whole(longest))
+	one, many, around := "keeps stimuli back", "keep stimuli back", "them"
+	if n == 1 {
+		around = "it"
+	}
+	effect := fmt.Sprintf("%s; the longest RR around %s is %s ms", oneOr(n, one, many), around, whole(longest))
 	if 2*tracked > n {
-		effect = "are followed by ventricular stimuli"
+		effect = oneOr(n, "is", "are") + " followed by ventricular stimuli"
 	}
 	f.add(orderFault, Finding{
 		Slug: "oversensing", Channel: string(rune(ch)), Evidence: ids, Count: n,
-		Text:   fmt.Sprintf("%s (%s) taken for %s beats %s: consistent with %s oversensing.", plural(n, "signal that no beat of the chamber caused", "signals that no beat of the chamber caused"), what, chamberOf(ch), effect, chamberOf(ch)),
+		Text:   fmt.Sprintf("%s (%s) taken for %s %s: consistent with %s oversensing.", plural(n, "signal that no beat of the chamber caused", "signals that no beat of the chamber caused"), what, oneOr(n, articled(ch)+" beat", chamberOf(ch)+" beats"), effect, chamberOf(ch)),
 		Rivals: []string{"failure of output, if the signals are not seen"},
 		clause: fmt.Sprintf("%s oversensing of %s (%s)", chamberOf(ch), what, times(n)),
 	})

@@ -246,7 +246,14 @@ func (t *Tally) synchrony(f *finder) {
 // uneven then, which is what makes a stimulus about the T wave dangerous (Han and Moe,
 // Circ Res 1964;14:44; Wiggers and Wegria 1940; both from memory).
 func (s *strip) vulnerable() int {
-	n, wave := 0, int32(-1)
+	n := 0
+	s.eachVulnerable(func(*event.Event, int32) { n++ })
+	return n
+}
+
+// eachVulnerable calls found with each such stimulus and the QRS that it follows.
+func (s *strip) eachVulnerable(found func(e *event.Event, wave int32)) {
+	wave := int32(-1)
 	var first, last tick.Time
 	for i := range s.log.Events {
 		e := &s.log.Events[i]
@@ -257,10 +264,9 @@ func (s *strip) vulnerable() int {
 			}
 			first, last = min(first, e.Until), max(last, e.Until)
 		case e.Kind == event.Stimulus && wave >= 0 && e.T > first && e.T < last && s.ventricularStimulus(e):
-			n++
+			found(e, wave)
 		}
 	}
-	return n
 }
 
 func (s *strip) ventricularStimulus(e *event.Event) bool {

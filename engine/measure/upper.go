@@ -115,7 +115,7 @@ func (f *finder) wenckebachPacing(runs []trackedRun) {
 		}
 	}
 	ratio, av := ratios(groups), wholes(runs[longest].av)
-	name := f.atrialName(&pairs{})
+	name := f.atrialName(&pairs{}, ids...)
 	f.add(orderDevice, Finding{
 		Slug: "upper_rate_wenckebach", Evidence: ids, Count: len(runs), Ratio: ratio, PRs: msList(runs[longest].av), Note: judged,
 		Text: fmt.Sprintf("The AV interval grows (%s ms) because the upper-rate interval%s holds the stimulus back, until a P falls in PVARP and is not tracked, %s: consistent with Wenckebach behaviour of the device at its upper rate.",
@@ -157,7 +157,7 @@ func (f *finder) twoToOnePacing(runs []trackedRun) {
 	if 2*blind > len(runs) {
 		where = "blanking, unseen,"
 	}
-	name := f.atrialName(&pairs{})
+	name := f.atrialName(&pairs{}, ids...)
 	if f.has("upper_rate_wenckebach") {
 		name = "also"
 	}

@@ -45,8 +45,11 @@ func OfDevice(p *plan.Plan, set *plan.Device, r *measure.Report) *Device {
 		return nil
 	}
 	s, heart := &set.Settings, p.Patient()
-	if pr := r.Summary.PR; pr != nil {
-		heart.PR = tick.MS(*pr)
+	if r := r.Device; r != nil && r.LeadPR != nil {
+		heart.PR = tick.MS(*r.LeadPR)
+	}
+	if r := r.Device; r != nil && r.LeadAR != nil {
+		heart.AR = tick.MS(*r.LeadAR)
 	}
 	d := &Device{Warnings: []string{}, Arithmetic: []Sum{}, Counted: []Number{}, Intervals: []Interval{}}
 	for _, w := range pacer.Warnings(s, heart) {
@@ -54,7 +57,7 @@ func OfDevice(p *plan.Plan, set *plan.Device, r *measure.Report) *Device {
 	}
 	vs := pacer.Arithmetic(s, heart)
 	for i := range vs {
-		if vs[i].Name == "pattern" && heart.PR > 0 {
+		if vs[i].Name == "pattern" && r.Summary.PR != nil {
 			vs[i].Label += ", if the heart did not conduct"
 		}
 	}

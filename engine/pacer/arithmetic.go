@@ -1,6 +1,7 @@
 package pacer
 
 import (
+	"math"
 	"strconv"
 
 	"escapement/engine/tick"
@@ -22,10 +23,32 @@ type Value struct {
 // known, and the values that need it are left out.
 type Patient struct {
 	PP        tick.Dur // atrial cycle
-	PR        tick.Dur // conducted PR, at the leads
+	PR        tick.Dur // from the signal of a P to that of the QRS it is conducted to
+	AR        tick.Dur // from an atrial stimulus to the signal of the QRS it is conducted to
 	VA        tick.Dur // retrograde conduction time, at the leads
-	AtrialERP tick.Dur
+	AtrialERP tick.Dur // at the cycle ERPCycle
 	Flutter   tick.Dur // cycle of an atrial flutter
+
+	// ERPSlope is how much AtrialERP lengthens with the cycle, per unit; cycles above
+	// ERPLongest count as that. ERPCycle 0: it does not change.
+	ERPSlope             float64
+	ERPCycle, ERPLongest tick.Dur
+
+	// What the leads hear besides the beats of their own chamber; 0: nothing.
+	FarField tick.Dur // a QRS on the atrial channel, so long after it
+	TWave    tick.Dur // its T wave on the ventricular channel
+	Cross    tick.Dur // an atrial stimulus on the ventricular channel
+}
+
+// AtrialERPAt is the atrial refractory period after a cycle.
+func (p *Patient) AtrialERPAt(cycle tick.Dur) tick.Dur {
+	if p.ERPCycle == 0 || p.AtrialERP == 0 {
+		return p.AtrialERP
+	}
+	if p.ERPLongest > 0 {
+		cycle = min(cycle, p.ERPLongest)
+	}
+	return p.AtrialERP + tick.Dur(math.Round(p.ERPSlope*float64(cycle-p.ERPCycle)))
 }
 
 // Sources of the formulas, as the project's fact sheet names and tags them.
@@ -44,7 +67,7 @@ const (
 // other. Values that a mode has no use for are left out.
 func Arithmetic(s *Settings, p Patient) []Value {
 	var vs []Value
-	lri, mtri, tarp := interval(s.LowerRate), interval(s.UpperRate), s.SensedAV+s.PVARP
+	lri, mtri := interval(s.LowerRate), interval(s.UpperRate)
 	vs = append(vs, length("lower_rate_interval", "lower-rate interval (LRI)", lri, "60000 / lower rate",
 		"60000 / "+number(s.LowerRate), sourceDerived))
 	if s.Mode.dual() {
@@ -55,53 +78,13 @@ func Arithmetic(s *Settings, p Patient) []Value {
 		}
 	}
 	if s.Mode.Tracks() {
-		vs = append(vs, length("tarp", "total atrial refractory period (TARP)", tarp, "SAV + PVARP", plus(s.SensedAV, s.PVARP), sourceUpper),
-			rate("two_to_one", "2:1 point", tarp, "60000 / TARP", "60000 / "+number(tarp.MS()), sourceUpper))
+		vs = append(vs, s.tarpValues(mtri)...)
 		if mtri > 0 {
-			vs = append(vs, upperValues(s, p, mtri, tarp)...)
+			vs = append(vs, upperValues(s, p, mtri)...)
 		}
 		vs = append(vs, loopValues(s, p, mtri)...)
 	}
-	return append(vs, rhythmValues(s, p, lri)...)
-}
-
-func upperValues(s *Settings, p Patient, mtri, tarp tick.Dur) []Value {
-	vs := []Value{
-		length("mtri", "upper-rate interval (MTRI)", mtri, "60000 / upper rate", "60000 / "+number(s.UpperRate), sourceDerived),
-		length("wenckebach", "Wenckebach interval (W)", mtri-tarp, "MTRI - TARP", less(mtri, tarp), sourceUpper),
-	}
-	if mtri > tarp {
-		vs = append(vs, length("longest_av", "longest AV delay at the upper rate", mtri-s.PVARP, "MTRI - PVARP", less(mtri, s.PVARP), sourceDerived))
-	}
-	if p.PP > 0 {
-		vs = append(vs, patternValues(s, p.PP, mtri)...)
-	}
-	return vs
-}
-
-func loopValues(s *Settings, p Patient, mtri tick.Dur) []Value {
-	var vs []Value
-	if p.VA > 0 && p.VA >= s.PVARP {
-		sum := "the longer of " + number(mtri.MS()) + " and " + plus(p.VA, s.SensedAV)
-		vs = append(vs, length("loop_cycle", "cycle of an endless loop", max(mtri, p.VA+s.SensedAV), "max(MTRI, VA + SAV), as VA >= PVARP", sum, sourceLoop))
-	}
-	if p.PR > 0 {
-		vs = append(vs, length("locked_below", "P waves may lock in PVARP below", p.PR+s.PVARP, "PR + PVARP", plus(p.PR, s.PVARP), sourceLocked))
-	}
-	if p.Flutter > 0 {
-		vs = append(vs, length("flutter_margin", "flutter cycle less the deaf time; below 0 every second wave is hidden",
-			p.Flutter-s.SensedAV-s.PVAB, "flutter cycle - SAV - PVAB", less(p.Flutter, s.SensedAV)+" - "+number(s.PVAB.MS()), sourceFlutter))
-	}
-	return vs
-}
-
-func rhythmValues(s *Settings, p Patient, lri tick.Dur) []Value {
-	if !s.Mode.dual() || !s.Mode.SensesA() || p.VA == 0 || p.VA >= s.PVARP {
-		return nil
-	}
-	gap := lri - s.PacedAV - p.VA
-	return []Value{length("synchrony_gap", "retrograde P to atrial stimulus; shorter than the atrial refractory period, the stimulus is lost",
-		gap, "LRI - PAV - VA, as VA < PVARP", less(lri, s.PacedAV)+" - "+number(p.VA.MS()), sourceSync)}
+	return append(append(vs, escapeValues(s, p, lri)...), rhythmValues(s, p, lri)...)
 }
 
 func length(name, label string, d tick.Dur, formula, sum, source string) Value {

@@ -37,6 +37,13 @@ func TestArithmetic(t *testing.T) {
 		{"14: loop; read", func(s *Settings) { s.SensedAV = ms(200) }, Patient{VA: ms(380)}, "loop_cycle", 580, "580", "the longer of 500 and 380 + 200 = 580 ms"},
 		{"17: gap; read, derived", func(s *Settings) { s.LowerRate, s.PacedAV, s.PVARP = 80, ms(300), ms(300) }, Patient{VA: ms(250)}, "synchrony_gap", 200, "200", "750 - 300 - 250 = 200 ms"},
 		{"19: flutter; Goethals 2003, Strohmer 2006; read", func(s *Settings) { s.SensedAV, s.PVAB = ms(126), ms(143) }, Patient{Flutter: ms(240)}, "flutter_margin", -29, "-29", "240 - 126 - 143 = -29 ms"},
+		{"W18: 2:1 with SAV 100 and PVARP 250 in exercise", w18, Patient{}, "two_to_one", 171.429, "171.4", "60000 / (100 + 250) = 171.4 /min"},
+		{"W18: TARP", w18, Patient{}, "tarp", 450, "450", "150 + 300 = 450 ms"},
+		{"W18: W", func(s *Settings) { w18(s); s.UpperRate = 150 }, Patient{}, "wenckebach", 50, "50", "400 - 350 = 50 ms"},
+		{"W13: V-based, upper sensor rate", func(s *Settings) { s.Mode.Rate, s.Sensor = 'R', Sensor{Slope: 60, Limit: 120} }, Patient{AR: ms(150)}, "conducted_sensor_rate", 133.333, "133.3", "60000 / (500 - 200 + 150) = 133.3 /min"},
+		{"W11: V-based with AR 150", nil, Patient{AR: ms(150)}, "conducted_rate", 63.158, "63.2", "60000 / (800 + 150) = 63.2 /min"},
+		{"W14: hysteresis", func(s *Settings) { s.Mode, s.LowerRate, s.Hysteresis.Rate = Mode{'V', 'V', 'I', 'O', 'O'}, 70, 50 }, Patient{}, "hysteresis_interval", 1200, "1200", "60000 / 50 = 1200 ms"},
+		{"extra: VVI 60, T sensed at 320", func(s *Settings) { s.Mode, s.VentricularRefractory = Mode{'V', 'V', 'I', 'O', 'O'}, ms(250) }, Patient{TWave: ms(320)}, "t_wave_interval", 1320, "1320", "320 + 1000 = 1320 ms"},
 		{"21: locked; Barold 2012, derived", func(s *Settings) { s.PVARP = ms(310) }, Patient{PR: ms(250)}, "locked_below", 560, "560", "250 + 310 = 560 ms"},
 	} {
 		t.Run(c.name, func(t *testing.T) {
@@ -57,6 +64,39 @@ func TestArithmetic(t *testing.T) {
 	}
 }
 
+// w18 shortens SAV 150 to 100 and PVARP 300 to 250 by 120/min.
+func w18(s *Settings) {
+	s.SensedAV, s.PacedAV, s.PVARP = ms(150), ms(200), ms(300)
+	s.AdaptiveAV = Adaptive{From: 70, To: 120, Shortest: ms(150)}
+	s.AdaptivePVARP = Adaptive{From: 70, To: 120, Shortest: ms(250)}
+}
+
+// A sinus of 45 under a lower rate of 80 was said to be followed 1:1, at a mean
+// ventricular rate of 45.
+func TestNoPatternIsGivenForASinusThatTheLowerRateOvertakes(t *testing.T) {
+	s := Default()
+	for _, c := range []struct {
+		name string
+		base Base
+		pp   float64
+		want bool
+	}{
+		{"slower", VentricularBase, 1333, false},
+		{"as fast, but the AV delay after a P is 50 shorter", VentricularBase, 1000, false},
+		{"just tracked", VentricularBase, 950, true},
+		{"counted from the atrium", AtrialBase, 1000, true},
+	} {
+		s.Base = c.base
+		got := false
+		for _, v := range Arithmetic(&s, Patient{PP: ms(c.pp)}) {
+			got = got || v.Name == "pattern" || v.Name == "mean_rate"
+		}
+		if got != c.want {
+			t.Errorf("%s: pattern given %v, want %v", c.name, got, c.want)
+		}
+	}
+}
+
 func TestWarnings(t *testing.T) {
 	for _, c := range []struct {
 		name    string
@@ -73,7 +113,41 @@ func TestWarnings(t *testing.T) {
 		{"18", func(s *Settings) { s.PacedAV, s.PVARP = ms(300), ms(300) }, Patient{VA: ms(250), AtrialERP: ms(230)}, nil},
 		{"19", func(s *Settings) { s.SensedAV, s.PVAB = ms(126), ms(143) }, Patient{Flutter: ms(240)}, []string{"flutter_hidden"}},
 		{"20", func(s *Settings) { s.SensedAV, s.PVAB = ms(107), ms(105) }, Patient{Flutter: ms(240)}, nil},
-		{"21", func(s *Settings) { s.PVARP, s.SensedAV = ms(310), ms(120) }, Patient{PR: ms(250), PP: ms(540)}, []string{"p_may_lock"}},
+		{"21", func(s *Settings) { s.PVARP, s.SensedAV = ms(310), ms(120) }, Patient{PR: ms(250), PP: ms(540)}, []string{"p_may_lock", "paces_before_conduction"}},
+		{"W18 at rest 2:1 is below the upper rate, in exercise not", func(s *Settings) { w18(s); s.UpperRate = 160 }, Patient{}, nil},
+		{"W9: VA in a PVARP that shortens to less", func(s *Settings) {
+			s.PVARP, s.AdaptivePVARP = ms(320), Adaptive{From: 70, To: 120, Shortest: ms(240)}
+		}, Patient{VA: ms(280)}, []string{"pvarp_shorter_than_va"}},
+		{"14: a loop below the upper rate, cases, read", func(s *Settings) { s.SensedAV, s.Loop = ms(200), Loop{Beats: 8, RateMargin: ms(20), PVARP: ms(500)} }, Patient{VA: ms(380)},
+			[]string{"pvarp_shorter_than_va", "loop_not_found"}},
+		{"the loop detector's PVARP", func(s *Settings) { s.Loop = Loop{Beats: 8, RateMargin: ms(20), PVARP: ms(280)} }, Patient{VA: ms(300)}, []string{"pvarp_shorter_than_va", "loop_pvarp_too_short"}},
+		{"17 with a delayed atrial stimulus", func(s *Settings) { s.LowerRate, s.PacedAV, s.PVARP, s.AtrialDelay = 80, ms(300), ms(300), ms(320) }, Patient{VA: ms(250), AtrialERP: ms(230)}, nil},
+		{"17 at the sensor's rate", func(s *Settings) {
+			s.PacedAV, s.PVARP, s.Mode.Rate, s.Sensor = ms(300), ms(300), 'R', Sensor{Slope: 50, Limit: 80}
+		}, Patient{VA: ms(250), AtrialERP: ms(230)}, []string{"va_synchrony"}},
+		{"gap 240 and an ERP of 230 at 600 ms, 253 at 750", func(s *Settings) { s.LowerRate, s.PacedAV, s.PVARP = 80, ms(260), ms(300) },
+			Patient{VA: ms(250), AtrialERP: ms(230), ERPSlope: 0.155, ERPCycle: ms(600), ERPLongest: ms(1000)}, []string{"va_synchrony"}},
+		{"19 with a switch from half the flutter's rate", func(s *Settings) { s.SensedAV, s.PVAB, s.Switch.Rate = ms(126), ms(143), 122 }, Patient{Flutter: ms(240)}, nil},
+		{"a switch that sinus can reach", func(s *Settings) { s.Switch.Rate = 110 }, Patient{}, []string{"switch_below_upper_rate"}},
+		{"far field after PVAB; Heart Rhythm abstract, read", func(s *Settings) { s.PVAB = ms(60) }, Patient{FarField: ms(110)}, []string{"far_field_counted"}},
+		{"far field within PVAB", func(s *Settings) { s.PVAB = ms(111) }, Patient{FarField: ms(110)}, nil},
+		{"far field after PVARP", func(s *Settings) { s.PVARP = ms(200) }, Patient{FarField: ms(210)}, []string{"far_field_tracked"}},
+		{"T wave after the refractory period", func(*Settings) {}, Patient{TWave: ms(320)}, []string{"t_wave_sensed"}},
+		{"T wave within it", func(s *Settings) { s.VentricularRefractory = ms(350) }, Patient{TWave: ms(320)}, nil},
+		{"crosstalk, safe", func(*Settings) {}, Patient{Cross: ms(45)}, []string{"crosstalk"}},
+		{"crosstalk, blanked", func(s *Settings) { s.PAVB = ms(60) }, Patient{Cross: ms(45)}, nil},
+		{"23: crosstalk, no safety stimulus", func(s *Settings) { s.SafetyStimulus = false }, Patient{Cross: ms(45)}, []string{"crosstalk_inhibits"}},
+		{"no safety stimulus", func(s *Settings) { s.SafetyStimulus = false }, Patient{}, []string{"no_safety_stimulus"}},
+		{"long AV; Barold and Herweg 2012, read", func(s *Settings) { s.PacedAV = ms(310) }, Patient{}, []string{"long_av"}},
+		{"lower rate above the sinus", func(*Settings) {}, Patient{PP: ms(1100)}, []string{"lower_rate_above_sinus"}},
+		{"lower rate above, hysteresis below the sinus", func(s *Settings) { s.Hysteresis.Rate = 50 }, Patient{PP: ms(1100)}, nil},
+		{"paced though it conducts", func(*Settings) {}, Patient{PR: ms(190)}, []string{"paces_before_conduction"}},
+		{"conducts within the AV delay", func(*Settings) {}, Patient{PR: ms(140)}, nil},
+		{"biventricular, above the upper rate", func(s *Settings) { s.Mode.Multisite = 'V' }, Patient{PR: ms(190)}, []string{"biventricular_lost_above_upper_rate"}},
+		{"biventricular, conducts first", func(s *Settings) { s.Mode.Multisite = 'V' }, Patient{PR: ms(140)}, []string{"conducts_before_av_delay"}},
+		{"magnet", func(s *Settings) {
+			s.Magnet = Magnet{Mode: Mode{'D', 'O', 'O', 'O', 'O'}, Rate: 85, To: tick.Time(tick.Second)}
+		}, Patient{}, []string{"magnet_asynchronous"}},
 		{"sensor at 130", func(s *Settings) { s.Mode.Rate, s.Sensor = 'R', Sensor{Slope: 50, Limit: 130} }, Patient{}, []string{"short_alert_window"}},
 		{"sensor at 150", func(s *Settings) { s.Mode.Rate, s.Sensor = 'R', Sensor{Slope: 50, Limit: 150} }, Patient{}, []string{"no_alert_window"}},
 	} {
@@ -176,6 +250,60 @@ func TestPatternAgreesWithTheDevice(t *testing.T) {
 			if e.what == "VP" && e.at.Sub(p) > max(s.SensedAV, mtri-s.PVARP) {
 				rt.Fatalf("AV delay of %v at %v", e.at.Sub(p), e.at)
 			}
+		}
+	})
+}
+
+// The 2:1 point of settings that shorten with the rate: the device, driven 1:1 by a
+// cycle that shortens, loses a P at that cycle and not before, and in 2:1 it comes back
+// where the arithmetic says.
+func TestAdaptiveTwoToOneAgreesWithTheDevice(t *testing.T) {
+	rapid.Check(t, func(rt *rapid.T) {
+		s := Default()
+		s.LowerRate, s.UpperRate = 30, 0
+		s.SensedAV = ms(float64(rapid.IntRange(120, 200).Draw(rt, "sav")))
+		s.PacedAV = s.SensedAV
+		s.PVARP = ms(float64(rapid.IntRange(240, 330).Draw(rt, "pvarp")))
+		from := float64(rapid.IntRange(60, 100).Draw(rt, "from"))
+		to := from + float64(rapid.IntRange(20, 60).Draw(rt, "over"))
+		s.AdaptiveAV = Adaptive{From: from, To: to, Shortest: ms(float64(rapid.IntRange(60, 120).Draw(rt, "shortest")))}
+		s.AdaptivePVARP = Adaptive{From: from, To: to, Shortest: ms(float64(rapid.IntRange(180, 240).Draw(rt, "shortest pvarp")))}
+		end, back := s.shortestTracked(), s.shortestReturn()
+		ratio := func(start, pp tick.Dur) float64 {
+			r := newRig(t, s)
+			at, n, tracked := tick.Time(0), 0, 0
+			for cycle := start; ; cycle += max(-ms(4), min(ms(4), pp-cycle)) {
+				at = at.Add(cycle)
+				r.signal(Atrial, at)
+				if cycle == pp {
+					if n++; n == 40 {
+						break
+					}
+				}
+			}
+			r.run(at.Sub(0).MS() + 1000)
+			var uses []event.Use
+			for _, e := range r.record {
+				if e.what == "AS" {
+					uses = append(uses, e.use)
+				}
+			}
+			for _, u := range uses[len(uses)-20:] {
+				if u == event.Tracked {
+					tracked++
+				}
+			}
+			return float64(tracked) / 20
+		}
+		slow, fast := ms(1200), end-ms(40)
+		if got := ratio(slow, end+ms(2)); got != 1 {
+			rt.Fatalf("just slower than the 2:1 point, %v: %v of the P waves tracked", end, got)
+		}
+		if got := ratio(slow, end-ms(2)); got > 0.6 {
+			rt.Fatalf("just faster than the 2:1 point, %v: %v of the P waves tracked", end, got)
+		}
+		if got := ratio(fast, back+ms(2)); got != 1 {
+			rt.Fatalf("just slower than the return, %v, from faster: %v of the P waves tracked", back, got)
 		}
 	})
 }

@@ -49,15 +49,21 @@ func (s *Settings) limits(p Patient, q Quantity) []Value {
 		case VarySinusRate:
 			vs = s.sinusLimits(mtri)
 		case VaryUpperRate:
-			if tarp := s.SensedAV + s.PVARP; p.PP >= tarp {
+			if tarp := s.TARPAt(p.PP); p.PP >= tarp {
 				vs = append(vs, rate("one_to_one", "1:1 from here on", p.PP, "60000 / PP, as PP >= TARP", "60000 / "+number(p.PP.MS()), sourceUpper))
 			}
 		case VaryPVARP:
+			if s.adapts() {
+				break
+			}
 			vs = append(vs, length("two_to_one", "2:1 above", p.PP-s.SensedAV, "PP - SAV", less(p.PP, s.SensedAV), sourceUpper))
 			if p.VA > 0 {
 				vs = append(vs, length("loop", "an endless loop can run up to here", p.VA, "VA", number(p.VA.MS()), sourceLoop))
 			}
 		case VarySensedAV:
+			if s.adapts() {
+				break
+			}
 			vs = append(vs, length("two_to_one", "2:1 above", p.PP-s.PVARP, "PP - PVARP", less(p.PP, s.PVARP), sourceUpper))
 			if p.Flutter > 0 {
 				vs = append(vs, length("flutter_hidden", "every second wave of a flutter is hidden above", p.Flutter-s.PVAB, "flutter cycle - PVAB", less(p.Flutter, s.PVAB), sourceFlutter))
@@ -79,12 +85,21 @@ func (s *Settings) limits(p Patient, q Quantity) []Value {
 // sinusLimits: where 1:1 ends, each step of the Wenckebach band that the N formula
 // gives, and where 2:1 begins.
 func (s *Settings) sinusLimits(mtri tick.Dur) []Value {
-	tarp := s.SensedAV + s.PVARP
-	two := rate("two_to_one", "2:1 above", tarp, "60000 / TARP", "60000 / "+number(tarp.MS()), sourceUpper)
+	tarp, formula := s.shortestTracked(), "60000 / TARP"
+	if s.adapts() {
+		formula += ", as it is at that rate"
+	}
+	two := rate("two_to_one", "2:1 above", tarp, formula, "60000 / "+number(tarp.MS()), sourceUpper)
 	if mtri <= tarp {
 		return []Value{two}
 	}
 	vs := []Value{rate("one_to_one", "1:1 up to here", mtri, "60000 / MTRI", "60000 / "+number(mtri.MS()), sourceUpper)}
+	if s.adapts() { // after a dropped P the AV delay is another one: no closed form
+		if back := s.shortestReturn(); back < mtri {
+			vs = append(vs, rate("two_to_one", "2:1 above", back, "60000 / TARP, as it is at half that rate", "60000 / "+number(back.MS()), sourceDerived))
+		}
+		return vs
+	}
 	for k := steps; k >= 1; k-- {
 		// (PP - TARP) / (MTRI - PP) = k: N is k+2 from here down, k+1 above. The formula
 		// holds where the pause is not shorter than MTRI, on both sides.
@@ -100,29 +115,48 @@ func (s *Settings) sinusLimits(mtri tick.Dur) []Value {
 	return append(vs, two)
 }
 
-// synchronyLimits solve LRI - PAV - VA = atrial ERP.
+// synchronyLimits solve LRI - PAV - VA = atrial ERP, the ERP being that at LRI.
 func (s *Settings) synchronyLimits(p Patient, q Quantity, lri tick.Dur) []Value {
 	if q != VaryVATime && (p.VA == 0 || q != VaryPVARP && p.VA >= s.PVARP) || q != VaryAtrialERP && p.AtrialERP == 0 {
 		return nil
 	}
+	erp := p.AtrialERPAt(lri)
 	one := func(label string, d tick.Dur, formula, sum string) []Value {
 		return []Value{length("synchrony", "non-reentrant VA synchrony can run "+label, d, formula, sum, sourceSync)}
 	}
 	switch q {
 	case VaryLowerRate:
-		sum := s.PacedAV + p.VA + p.AtrialERP
+		erp, sum := p.synchronyERP(s.PacedAV + p.VA)
 		return []Value{rate("synchrony", "non-reentrant VA synchrony can run above", sum, "60000 / (PAV + VA + atrial ERP), as VA < PVARP",
-			"60000 / ("+plus(s.PacedAV, p.VA)+" + "+number(p.AtrialERP.MS())+")", sourceSync)}
+			"60000 / ("+plus(s.PacedAV, p.VA)+" + "+number(erp.MS())+")", sourceSync)}
 	case VaryPacedAV:
-		return one("above", lri-p.VA-p.AtrialERP, "LRI - VA - atrial ERP, as VA < PVARP", less(lri, p.VA)+" - "+number(p.AtrialERP.MS()))
+		return one("above", lri-p.VA-erp, "LRI - VA - atrial ERP, as VA < PVARP", less(lri, p.VA)+" - "+number(erp.MS()))
 	case VaryVATime:
-		return one("above, up to PVARP", lri-s.PacedAV-p.AtrialERP, "LRI - PAV - atrial ERP", less(lri, s.PacedAV)+" - "+number(p.AtrialERP.MS()))
+		return one("above, up to PVARP", lri-s.PacedAV-erp, "LRI - PAV - atrial ERP", less(lri, s.PacedAV)+" - "+number(erp.MS()))
 	case VaryAtrialERP:
-		return one("above", lri-s.PacedAV-p.VA, "LRI - PAV - VA, as VA < PVARP", less(lri, s.PacedAV)+" - "+number(p.VA.MS()))
+		more := p.AtrialERPAt(lri) - p.AtrialERP // by the cycle, whatever ERP is
+		if p.AtrialERP == 0 {
+			more = 0
+		}
+		return one("above", lri-s.PacedAV-p.VA-more, "LRI - PAV - VA, less what the cycle adds to the ERP, as VA < PVARP", less(lri, s.PacedAV)+" - "+plus(p.VA, more))
 	case VaryPVARP:
-		if lri-s.PacedAV-p.VA < p.AtrialERP {
+		if lri-s.PacedAV-p.VA < erp {
 			return one("above", p.VA, "VA, as LRI - PAV - VA < atrial ERP", number(p.VA.MS()))
 		}
 	}
 	return nil
+}
+
+// synchronyERP is the atrial refractory period at the lower-rate interval that leaves
+// just this much after rest, and that interval.
+func (p *Patient) synchronyERP(rest tick.Dur) (erp, lri tick.Dur) {
+	lri = rest + p.AtrialERP
+	for range 100 { // the slope is far below 1: it settles
+		next := rest + p.AtrialERPAt(lri)
+		if next == lri {
+			break
+		}
+		lri = next
+	}
+	return lri - rest, lri
 }

@@ -17,41 +17,52 @@ const longestPattern = 256
 // (N+1):N, where one dropped P makes a pause that is not shorter than MTRI. Else the
 // next AV delay begins stretched, and the pattern is another one.
 func Pattern(pp, mtri, sav, pvarp tick.Dur) (ps, vs int) {
+	return pattern(pp, mtri, func(tick.Dur) (tick.Dur, tick.Dur) { return sav, pvarp })
+}
+
+// pattern asks for the AV delay and PVARP at an atrial interval: after a P that was not
+// tracked the interval is longer, and so may they be.
+func pattern(pp, mtri tick.Dur, at func(interval tick.Dur) (sav, pvarp tick.Dur)) (ps, vs int) {
 	type state struct {
 		since  tick.Dur // last stimulus to P; the same for all that track at once
+		gap    int      // P waves since the last that was tracked
 		ps, vs int
 	}
 	var seen []state
-	fresh := mtri - sav
-	lastV := -max(fresh, pvarp)
+	sav, pvarp := at(pp)
+	lastP, lastV := -1, -max(mtri-sav, pvarp)
 	for i := range longestPattern {
 		p := tick.Dur(i) * pp
 		since := p - lastV
 		if since < pvarp { // in PVARP, or before the stimulus it waits for
 			continue
 		}
-		since = min(since, max(fresh, pvarp))
+		gap := i - lastP
+		was := pvarp
+		sav, pvarp = at(tick.Dur(gap) * pp)
+		since = min(since, max(mtri-sav, was))
 		for _, s := range seen {
-			if s.since == since {
+			if s.since == since && s.gap == gap {
 				return i - s.ps, vs - s.vs
 			}
 		}
-		seen = append(seen, state{since, i, vs})
+		seen = append(seen, state{since, gap, i, vs})
 		lastV = max(p+sav, lastV+mtri)
+		lastP = i
 		vs++
 	}
 	return 0, 0
 }
 
 func patternValues(s *Settings, pp, mtri tick.Dur) []Value {
-	tarp := s.SensedAV + s.PVARP
-	ps, n := Pattern(pp, mtri, s.SensedAV, s.PVARP)
+	tarp := s.TARPAt(pp)
+	ps, n := pattern(pp, mtri, func(d tick.Dur) (tick.Dur, tick.Dur) { return s.SensedAVAt(d), s.PVARPAt(d) })
 	if n == 0 {
 		return nil
 	}
 	mean := float64(n) * 60e6 / (float64(ps) * float64(pp))
 	pause := 2*pp - tick.Dur(n-1)*(mtri-pp)
-	wenckebach := n > 1 && pp >= tarp && ps == n+1 && n == int((pp-tarp)/(mtri-pp))+2 && pause >= mtri
+	wenckebach := n > 1 && !s.adapts() && pp >= tarp && ps == n+1 && n == int((pp-tarp)/(mtri-pp))+2 && pause >= mtri
 	formula, sum := "each P by the rules of tracking, until they repeat", fmt.Sprintf("%d P waves, %d stimuli", ps, n)
 	switch {
 	case wenckebach:
@@ -59,13 +70,13 @@ func patternValues(s *Settings, pp, mtri tick.Dur) []Value {
 		sum = fmt.Sprintf("floor((%s) / (%s)) + 2 = %d", less(pp, tarp), less(mtri, pp), n)
 	case ps == 1:
 		formula, sum = "P-P >= MTRI and TARP: 1:1", number(pp.MS())+" >= "+number(max(mtri, tarp).MS())
-	case n == 1 && pp < tarp && ps == int((tarp+pp-1)/pp):
+	case n == 1 && !s.adapts() && pp < tarp && ps == int((tarp+pp-1)/pp):
 		formula, sum = "P-P < TARP: TARP / PP, rounded up, to 1", fmt.Sprintf("%s / %s, rounded up = %d", number(tarp.MS()), number(pp.MS()), ps)
 	}
 	vs := []Value{
-		{Name: "pattern", Label: "P waves to ventricular stimuli", Amount: float64(n) / float64(ps), Text: fmt.Sprintf("%d:%d", ps, n),
+		{Name: "pattern", Label: "P waves to ventricular stimuli at sinus " + number(pp.BPM()) + "/min", Amount: float64(n) / float64(ps), Text: fmt.Sprintf("%d:%d", ps, n),
 			Formula: formula, Numbers: sum, Source: sourceDerived},
-		{Name: "mean_rate", Label: "mean ventricular rate", Amount: mean, Unit: "/min", Text: number(mean), Formula: "60000 V / (P PP)",
+		{Name: "mean_rate", Label: "mean ventricular rate then", Amount: mean, Unit: "/min", Text: number(mean), Formula: "60000 V / (P PP)",
 			Numbers: fmt.Sprintf("60000 x %d / (%d x %s) = %s /min", n, ps, number(pp.MS()), number(mean)), Source: sourceDerived},
 	}
 	if wenckebach {

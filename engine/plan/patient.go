@@ -3,6 +3,7 @@ package plan
 import (
 	"slices"
 
+	"escapement/engine/heart"
 	"escapement/engine/pacer"
 	"escapement/engine/tick"
 )
@@ -18,7 +19,11 @@ const flutterFrom = 200
 // which only a strip tells.
 func (p *Plan) Patient() pacer.Patient {
 	const va = "heart.av_node.fast.va_ms"
-	out := pacer.Patient{PP: tick.PerMinute(p.number("heart.sinus.rate_bpm")), AtrialERP: tick.MS(p.number("heart.atria.erp_ms"))}
+	out := pacer.Patient{PP: tick.PerMinute(p.number("heart.sinus.rate_bpm")), AtrialERP: tick.MS(p.number("heart.atria.erp_ms")),
+		ERPSlope: p.number("heart.atria.erp_per_cycle"), ERPCycle: tick.MS(heart.DriveMS), ERPLongest: tick.MS(heart.MuscleCapMS)}
+	if !p.null(device) {
+		out.FarField, out.TWave, out.Cross = tick.MS(p.number(device+".leads.far_field_ms")), tick.MS(p.number(device+".leads.t_wave_ms")), tick.MS(p.number(device+".leads.crosstalk_ms"))
+	}
 	if !p.null(va) && !p.byCurve("heart.av_node.fast") {
 		out.VA = tick.MS(p.number(va))
 	}

@@ -98,9 +98,9 @@ func closed(g *plan.Goal, s *pacer.Settings, p *pacer.Patient, down bool) []Form
 		}
 	case "va_synchrony":
 		if lri := lowest(s); s.Mode.Paced == 'D' && s.Mode.SensesA() && p.VA > 0 && p.VA < s.PVARP && p.AtrialERP > 0 && refuses(g, "sustained") {
-			gap := lri - s.PacedAV - p.VA
-			slack := (gap - p.AtrialERP).MS()
-			return []Form{form("synchrony_gap", slack, "ms", sourceSync, "LRI - PAV - VA = %s - %s - %s = %s ms is %s the atrial refractory period of %s ms", num(lri.MS()), num(s.PacedAV.MS()), num(p.VA.MS()), num(gap.MS()), than(slack, "shorter than", "not shorter than"), num(p.AtrialERP.MS()))}
+			gap, erp := lri-s.PacedAV-p.VA, p.AtrialERPAt(lri)
+			slack := (gap - erp).MS()
+			return []Form{form("synchrony_gap", slack, "ms", sourceSync, "LRI - PAV - VA = %s - %s - %s = %s ms is %s the atrial refractory period of %s ms", num(lri.MS()), num(s.PacedAV.MS()), num(p.VA.MS()), num(gap.MS()), than(slack, "shorter than", "not shorter than"), num(erp.MS()))}
 		}
 	case "longest_pause_ms":
 		if s.Mode.PacesV() && g.AtMost != nil {
