@@ -24,17 +24,18 @@ import { fieldPick } from "./fieldpick.js";
 export function axisForm({ name, store, catalogue, write, allow = () => true, remove }) {
   let axis = /** @type {Axis | undefined} */ (undefined);
   let made = ""; // path and kind that the range fields stand for
+  const sites = new Map(catalogue.sites.map((s) => [s.name, s.label]));
   const all = () => variables(catalogue, store.get().plan).filter(allow);
   const pick = fieldPick(name, all, (path) => {
     const v = all().find((c) => c.path === path);
     if (v) write(axisOver(v, store.get().plan, catalogue), "");
   });
+  const away = remove && el("button", { type: "button", class: "axis-remove", "aria-label": `${name}: remove`, onclick: remove }, "Remove");
   const range = el("div", { class: "axis-range" });
   const where = el("p", { class: "axis-where" });
   const node = el("fieldset", { class: "axis" },
     el("legend", null, name),
-    el("div", { class: "axis-pick" }, pick.node,
-      remove && el("button", { type: "button", class: "axis-remove", "aria-label": `${name}: remove`, onclick: remove }, "Remove")),
+    el("div", { class: "axis-pick" }, pick.node, away),
     where, range);
 
   /** @type {{key: "from" | "to" | "step" | "after_ms", input: HTMLInputElement}[]} */
@@ -69,7 +70,7 @@ export function axisForm({ name, store, catalogue, write, allow = () => true, re
     if (v?.field.kind === "choice") {
       const names = v.field.names ?? {};
       boxes = (v.field.choices ?? []).map((c) => el("input", { type: "checkbox", value: c, onchange: () => axis && write({ ...axis, values: boxes.filter((b) => b.checked).map((b) => b.value) }, "") }));
-      return fill(range, el("div", { class: "axis-boxes" }, boxes.map((b) => el("label", null, b, names[b.value] ?? b.value.replaceAll("_", " ")))));
+      return fill(range, el("div", { class: "axis-boxes" }, boxes.map((b) => el("label", null, b, names[b.value] ?? sites.get(b.value) ?? b.value.replaceAll("_", " ")))));
     }
     if (v?.field.kind === "switch" || v?.field.kind === "group") return fill(range, el("p", { class: "axis-where" }, v.field.kind === "switch" ? "off and on" : "present and absent"));
     text = el("input", {
@@ -82,6 +83,10 @@ export function axisForm({ name, store, catalogue, write, allow = () => true, re
 
   return {
     node,
+    /** Whether there is something to remove. @param {boolean} on */
+    removable(on) {
+      if (away) away.hidden = !on;
+    },
     /** @param {Axis | undefined} now */
     update(now) {
       axis = now;

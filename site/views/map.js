@@ -7,10 +7,10 @@ import { startPool, usualSize } from "../engine/pool.js";
 import { sweeper } from "../engine/sweeper.js";
 import { put } from "../model/path.js";
 import { mapKey, planAt } from "../model/sweep.js";
-import { inksOf, sortsOf } from "./mapchart.js";
+import { sortsOf } from "./mapchart.js";
 import { mapForm } from "./mapform.js";
 import { mapPlot } from "./mapplot.js";
-import { boundaryTables, legendOf, pointTable, rowsTable, tableTools } from "./mapread.js";
+import { boundaryTables, mapLegend, pointTable, rowsTable, tableTools } from "./mapread.js";
 import { pointText } from "./mapwords.js";
 import { openPreset } from "./presets.js";
 
@@ -20,6 +20,8 @@ import { openPreset } from "./presets.js";
  * @typedef {import("../engine/wire.js").Catalogue} Catalogue
  */
 
+const EVERY_MS = 150; // between paintings while it runs
+
 /**
  * @param {HTMLElement} root
  * @param {Store} store
@@ -28,7 +30,7 @@ import { openPreset } from "./presets.js";
  */
 export function mapView(root, store, catalogue, worker) {
   const pool = startPool(worker, usualSize());
-  const sweep = sweeper(pool, () => nextFrame(refresh));
+  const sweep = sweeper(pool, soon);
   let outcome = "";
   let point = 0;
   let kept = -1;
@@ -52,7 +54,8 @@ export function mapView(root, store, catalogue, worker) {
   const goOn = el("button", { type: "button", id: "map-resume", onclick: sweep.resume }, "Go on");
   const stale = el("p", { class: "map-stale", role: "status", hidden: true }, "Computed for an earlier plan: run again. ",
     el("button", { type: "button", onclick: start }, "Run again"));
-  const legend = el("div", { class: "map-key" });
+  const legend = mapLegend();
+  const note = el("p", { class: "aside" });
   const bounds = el("div", { class: "map-changes" });
   const rows = el("div", null);
   const rowsFold = el("details", { class: "fold", ontoggle: () => nextFrame(refresh) }, el("summary", null, el("h3", null, "The map as text")), rows);
@@ -61,7 +64,7 @@ export function mapView(root, store, catalogue, worker) {
   const openButton = el("button", { type: "button", class: "main", id: "map-open", onclick: () => open(point) }, "Open the strip");
   const result = el("div", { class: "map-result", hidden: true },
     stale,
-    el("div", { class: "map-sheet" }, plot.node, legend),
+    el("div", { class: "map-sheet" }, plot.node, legend.node, note),
     el("div", { class: "map-side" },
       table.node,
       el("div", { class: "map-acts" }, openButton, keepButton, compare),
@@ -79,6 +82,21 @@ export function mapView(root, store, catalogue, worker) {
   root.append(pane);
   const seen = new ResizeObserver(() => nextFrame(refresh));
   seen.observe(pane);
+
+  let painted = 0;
+  /** Paints what has come in, but leaves the machine to the map while it runs. */
+  function soon() {
+    const wait = sweep.run()?.state === "running" ? painted + EVERY_MS - performance.now() : 0;
+    if (wait > 0) later();
+    else nextFrame(refresh);
+  }
+  let waiting = 0;
+  function later() {
+    if (waiting === 0) waiting = window.setTimeout(() => {
+      waiting = 0;
+      nextFrame(refresh);
+    }, EVERY_MS);
+  }
 
   function start() {
     const { plan, diagnoses } = store.get();
@@ -200,6 +218,7 @@ export function mapView(root, store, catalogue, worker) {
     say(says, run ? status(run) : state.plan.sweep?.x ? "Not run yet." : "");
     result.hidden = !run?.grid || run.grid.done() === 0;
     if (!run?.grid || result.hidden) return;
+    painted = performance.now();
     const { grid } = run;
     progress.value = grid.done() / grid.of;
     const old = run.key !== mapKey(state.plan);
@@ -214,13 +233,8 @@ export function mapView(root, store, catalogue, worker) {
     keepButton.textContent = kept === point ? "Let go of this point" : "Keep this point";
     compare.disabled = kept < 0 || kept === point;
     openButton.disabled = grid.refused(point) !== undefined;
-    const ratio = 2;
-    fill(legend, grid.head.y && legendOf(sorts, (i, canvas) => {
-      const g = /** @type {CanvasRenderingContext2D} */ (canvas.getContext("2d"));
-      g.scale(ratio, ratio);
-      g.fillStyle = inksOf(g, pane).fill(sorts.sorts[i].look);
-      g.fillRect(0, 0, canvas.width, canvas.height);
-    }), el("p", { class: "aside" }, grid.head.y && run.bounds.get(name)?.length ? "Thick lines: the exact places of change." : ""));
+    legend.show(grid.head.y ? [sorts] : grid.outcomes().filter((o) => o.kind !== "number").map((o) => sortsOf(grid, o.name)));
+    say(note, run.bounds.get(name)?.some((b) => b.found.length > 0) ? "Thick lines: the exact places of change." : "");
     if (rowsFold.open) fill(rows, rowsTable(grid, sorts));
     if (run.state === "done") {
       const about = grid.outcomes().find((o) => o.name === name);

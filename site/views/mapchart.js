@@ -5,93 +5,16 @@ import { num } from "../base/format.js";
 import { byMeaning, lookOf, NONE, REFUSED, saying } from "../model/behaviour.js";
 import { contour, levels } from "../model/contour.js";
 import { nice, tidy } from "../model/sweep.js";
-import { valueText } from "./mapwords.js";
+import { valueText, withUnit } from "./mapwords.js";
 
 /**
  * @typedef {import("../model/grid.js").Grid} Grid
  * @typedef {import("../model/behaviour.js").Look} Look
+ * @typedef {import("./inks.js").Inks} Inks
  * @typedef {import("../engine/sweeper.js").Run} Run
  * @typedef {{x: number, y: number, w: number, h: number}} Box
  * @typedef {{word: string, text: string, look: Look, count: number}} Sort one behaviour, or one step of a number
  */
-
-/**
- * @typedef {object} Inks
- * @property {(name: string) => string} colour of the sheet by name
- * @property {(look: Look) => CanvasPattern | string} fill
- */
-
-/**
- * The sheet's colours, and fills made of them.
- * @param {CanvasRenderingContext2D} g
- * @param {Element} root
- * @returns {Inks}
- */
-export function inksOf(g, root) {
-  const css = getComputedStyle(root);
-  const colour = (/** @type {string} */ name) => css.getPropertyValue(`--${name}`).trim();
-  /** @type {Map<string, CanvasPattern | string>} */
-  const made = new Map();
-  return {
-    colour,
-    fill(look) {
-      const key = `${look.hue} ${look.strength} ${look.pattern}`;
-      let f = made.get(key);
-      if (f === undefined) made.set(key, (f = tile(g, look, colour)));
-      return f;
-    },
-  };
-}
-
-/** @param {string} hex @param {string} on @param {number} share */
-function mix(hex, on, share) {
-  const read = (/** @type {string} */ h) => [1, 3, 5].map((i) => parseInt(h.slice(i, i + 2), 16));
-  const [a, b] = [read(hex), read(on)];
-  return `rgb(${a.map((v, i) => Math.round(v * share + b[i] * (1 - share))).join(" ")})`;
-}
-
-const DENSE = 4; // pixels between lines of change that are both drawn
-
-const TILE = 10; // pixels of the page
-
-/** @param {CanvasRenderingContext2D} g @param {Look} look @param {(name: string) => string} colour */
-function tile(g, look, colour) {
-  const hue = colour(look.hue);
-  const paper = colour("paper");
-  const ground = mix(hue, paper, look.strength * 0.8);
-  if (look.pattern === "plain") return ground;
-  const scale = devicePixelRatio || 1;
-  const canvas = new OffscreenCanvas(TILE * scale, TILE * scale);
-  const t = /** @type {OffscreenCanvasRenderingContext2D} */ (canvas.getContext("2d"));
-  t.scale(scale, scale);
-  t.fillStyle = ground;
-  t.fillRect(0, 0, TILE, TILE);
-  t.strokeStyle = t.fillStyle = mix(hue, paper, Math.min(1, look.strength + 0.3));
-  t.lineWidth = 1.2;
-  t.beginPath();
-  const stroke = (/** @type {number[]} */ ...p) => {
-    t.moveTo(p[0], p[1]);
-    t.lineTo(p[2], p[3]);
-  };
-  const m = TILE / 2;
-  if (look.pattern === "rising" || look.pattern === "lattice") for (const o of [-TILE, 0, TILE]) stroke(o, TILE, o + TILE, 0);
-  if (look.pattern === "falling" || look.pattern === "lattice") for (const o of [-TILE, 0, TILE]) stroke(o, 0, o + TILE, TILE);
-  if (look.pattern === "level") stroke(0, m, TILE, m);
-  if (look.pattern === "upright") stroke(m, 0, m, TILE);
-  if (look.pattern === "cross") {
-    stroke(m - 2.5, m - 2.5, m + 2.5, m + 2.5);
-    stroke(m - 2.5, m + 2.5, m + 2.5, m - 2.5);
-  }
-  t.stroke();
-  if (look.pattern === "dots") {
-    t.beginPath();
-    t.arc(m, m, 1.3, 0, 7);
-    t.fill();
-  }
-  const p = /** @type {CanvasPattern} */ (g.createPattern(canvas, "repeat"));
-  p.setTransform(new DOMMatrix().scale(1 / scale));
-  return p;
-}
 
 /**
  * What there is to tell apart on a map, and which of it every point is: −1 where
@@ -142,7 +65,7 @@ export function sortsOf(grid, outcome) {
 /** @param {number[]} cuts @param {number} low @param {number} high @param {string} unit @returns {Sort[]} */
 function steps(cuts, low, high, unit) {
   if (low > high) return [];
-  const u = unit && !unit.startsWith("/") ? ` ${unit}` : unit;
+  const u = withUnit(unit);
   return Array.from({ length: cuts.length + 1 }, (_, i) => {
     const a = i === 0 ? low : cuts[i - 1];
     const b = i === cuts.length ? high : cuts[i];
@@ -152,11 +75,18 @@ function steps(cuts, low, high, unit) {
 
 /** @typedef {ReturnType<typeof sortsOf>} Sorts */
 
-export const MARGIN = { left: 62, right: 14, top: 10, bottom: 44 };
+const DENSE = 4; // pixels between lines of change that are both drawn
 
-/** @param {number} width @param {number} height @returns {Box} of the points, without the axes */
-export function boxOf(width, height) {
-  return { x: MARGIN.left, y: MARGIN.top, w: Math.max(40, width - MARGIN.left - MARGIN.right), h: Math.max(40, height - MARGIN.top - MARGIN.bottom) };
+const MARGIN = { left: 62, words: 118, right: 14, top: 10, bottom: 44 };
+
+/**
+ * Where the points are, without the axes.
+ * @param {Grid} grid @param {number} width @param {number} height
+ * @returns {Box}
+ */
+export function boxOf(grid, width, height) {
+  const left = grid.head.y?.values.some((v) => typeof v === "string") ? MARGIN.words : MARGIN.left;
+  return { x: left, y: MARGIN.top, w: Math.max(40, width - left - MARGIN.right), h: Math.max(40, height - MARGIN.top - MARGIN.bottom) };
 }
 
 /**
@@ -189,8 +119,8 @@ export function paintMap(g, inks, box, run, s, outcome) {
       i = to;
     }
   }
-  if (s.number) paintContours(g, inks, box, grid, s, outcome);
-  else {
+  if (s.number && smooth(grid.head.x) && grid.head.y && smooth(grid.head.y)) paintContours(g, inks, box, grid, s, outcome);
+  else if (!s.number) {
     outline(g, inks, grid, kind, X, Y);
     paintBounds(g, inks, box, run, outcome);
   }
@@ -198,6 +128,9 @@ export function paintMap(g, inks, box, run, s, outcome) {
   axisX(g, inks, box, grid.head.x, nx);
   if (grid.head.y) axisY(g, inks, box, grid.head.y, ny);
 }
+
+/** Whether values lie between those of an axis: equal lines cross no words. @param {import("../model/grid.js").AxisHead} axis */
+const smooth = (axis) => axis.values.length > 2 && axis.values.every((v) => typeof v === "number");
 
 /** The border between regions, thin. @param {CanvasRenderingContext2D} g @param {Inks} inks @param {Grid} grid @param {Int16Array} kind @param {(i: number) => number} X @param {(j: number) => number} Y */
 function outline(g, inks, { nx, ny }, kind, X, Y) {
@@ -278,12 +211,11 @@ function paintContours(g, inks, box, grid, s, outcome) {
     g.beginPath();
     for (const line of lines) line.forEach(([x, y], i) => (i === 0 ? g.moveTo(X(x), Y(y)) : g.lineTo(X(x), Y(y))));
     g.stroke();
-    const longest = lines.reduce((a, b) => (b.length > a.length ? b : a), /** @type {import("../model/contour.js").Line} */ ([]));
-    if (longest.length < 3) continue;
-    const text = num(level, 1);
-    for (const share of [0.5, 0.35, 0.65, 0.2, 0.8]) {
-      const [x, y] = longest[Math.floor(share * (longest.length - 1))];
-      if (tag(g, inks, text, X(x), Y(y), box, taken)) break;
+    for (const line of lines.filter((l) => l.length > 3).sort((a, b) => b.length - a.length).slice(0, 3)) {
+      for (const share of [0.5, 0.35, 0.65, 0.2, 0.8]) {
+        const [x, y] = line[Math.floor(share * (line.length - 1))];
+        if (tag(g, inks, num(level, 1), X(x), Y(y), box, taken)) break;
+      }
     }
   }
 }
@@ -419,7 +351,7 @@ export const lineHeight = (grid) => MARGIN.top + MARGIN.bottom + grid.outcomes()
  */
 export function paintLine(g, inks, width, run) {
   const grid = /** @type {Grid} */ (run.grid);
-  const all = { ...boxOf(width, lineHeight(grid)) };
+  const all = { ...boxOf(grid, width, lineHeight(grid)) };
   const X = (/** @type {number} */ i) => all.x + (all.w * i) / grid.nx;
   let y = all.y;
   for (const o of grid.outcomes()) {

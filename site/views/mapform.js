@@ -105,6 +105,7 @@ export function mapForm(store, catalogue, map) {
       x.update(sweep?.x);
       y.update(sweep?.y);
       y.node.hidden = !sweep?.x;
+      y.removable(Boolean(sweep?.y));
       list(state);
       show.value = map.shown();
       const about = catalogue.outcomes.find((o) => o.name === show.value);

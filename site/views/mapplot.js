@@ -2,7 +2,8 @@
 
 import { el } from "../base/dom.js";
 import { clamp } from "../base/scale.js";
-import { boxOf, inksOf, lineHeight, MARGIN, paintLine, paintMap } from "./mapchart.js";
+import { inksOfSheet } from "./inks.js";
+import { boxOf, lineHeight, paintLine, paintMap } from "./mapchart.js";
 
 /**
  * @typedef {import("../model/grid.js").Grid} Grid
@@ -42,14 +43,15 @@ export function mapPlot(on) {
 
   /** @returns {Grid | null} */
   const grid = () => run?.grid ?? null;
-  const box = () => boxOf(canvas.clientWidth, height);
+  /** @param {Grid} g */
+  const box = (g) => boxOf(g, node.clientWidth, height);
 
   /** @param {PointerEvent | MouseEvent} e */
   function pointAt(e) {
     const g = grid();
     if (!g) return -1;
     const at = canvas.getBoundingClientRect();
-    const b = box();
+    const b = box(g);
     const i = Math.floor(((e.clientX - at.left - b.x) / b.w) * g.nx);
     const j = g.ny === 1 ? 0 : Math.floor(((b.y + b.h - (e.clientY - at.top)) / b.h) * g.ny);
     return i < 0 || j < 0 || i >= g.nx || j >= g.ny ? -1 : j * g.nx + i;
@@ -87,9 +89,9 @@ export function mapPlot(on) {
     const g = grid();
     mark.hidden = !g || p < 0 || p >= g.of;
     if (!g || mark.hidden) return;
-    const b = box();
+    const b = box(g);
     const [cw, ch] = [b.w / g.nx, b.h / g.ny];
-    const [w, h] = [Math.max(cw, 5), Math.max(ch, 5)];
+    const [w, h] = [g.head.y ? Math.max(cw, 5) : 5, Math.max(ch, 5)];
     mark.style.width = `${w}px`;
     mark.style.height = `${h}px`;
     mark.style.transform = `translate(${b.x + ((p % g.nx) + 0.5) * cw - w / 2}px, ${b.y + b.h - (Math.floor(p / g.nx) + 0.5) * ch - h / 2}px)`;
@@ -109,17 +111,20 @@ export function mapPlot(on) {
       const line = g.head.y === null;
       height = line ? lineHeight(g) : clamp(width * 0.62, 260, Math.max(280, window.innerHeight * 0.52));
       const ratio = devicePixelRatio || 1;
-      canvas.width = Math.round(width * ratio);
-      canvas.height = Math.round(height * ratio);
-      canvas.style.width = `${width}px`;
-      canvas.style.height = `${height}px`;
+      const [w, h] = [Math.round(width * ratio), Math.round(height * ratio)];
+      if (canvas.width !== w || canvas.height !== h) { // it costs as much as a picture
+        canvas.width = w;
+        canvas.height = h;
+        canvas.style.width = `${width}px`;
+        canvas.style.height = `${height}px`;
+      }
       const c = /** @type {CanvasRenderingContext2D} */ (canvas.getContext("2d"));
       c.setTransform(ratio, 0, 0, ratio, 0, 0);
       c.clearRect(0, 0, width, height);
       c.font = `12px ${getComputedStyle(node).fontFamily}`;
-      const inks = inksOf(c, node);
+      const inks = inksOfSheet();
       if (line) paintLine(c, inks, width, r);
-      else paintMap(c, inks, box(), r, sorts, outcome);
+      else paintMap(c, inks, box(g), r, sorts, outcome);
     },
 
     /** @param {number} p @param {number} keptPoint -1 for none */
@@ -128,6 +133,5 @@ export function mapPlot(on) {
       place(cursor, p);
       place(kept, keptPoint);
     },
-    margin: MARGIN,
   };
 }

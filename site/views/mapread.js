@@ -5,6 +5,7 @@ import { el, fill, say } from "../base/dom.js";
 import { count, num } from "../base/format.js";
 import { saying } from "../model/behaviour.js";
 import { writeCSV } from "../model/grid.js";
+import { inksOfSheet } from "./inks.js";
 import { download } from "./file.js";
 import { outcomeText, valueText, whereText, withUnit } from "./mapwords.js";
 
@@ -120,12 +121,40 @@ export function tableTools(grid) {
     el("button", { type: "button", id: "map-save", onclick: save }, "Save as CSV"), said);
 }
 
-/** The legend: colour and pattern, word, number of points. @param {Sorts} s @param {(i: number, canvas: HTMLCanvasElement) => void} swatch */
-export function legendOf(s, swatch) {
-  return el("ul", { class: "map-legend", "aria-label": `Legend: ${s.about?.label ?? ""}` }, s.sorts.flatMap((sort, i) => {
-    if (sort.count === 0) return [];
-    const canvas = el("canvas", { class: "map-swatch", width: 44, height: 28, "aria-hidden": "true" });
-    swatch(i, canvas);
-    return [el("li", null, canvas, sort.text, el("span", { class: "aside" }, ` ${sort.count}`))];
-  }));
+/** The legend: colour and pattern, word, number of points. */
+export function mapLegend() {
+  const node = el("div", { class: "map-key" });
+  let made = "";
+  /** @type {HTMLElement[]} */
+  let counts = [];
+
+  /** @param {Sorts} s */
+  function list(s) {
+    const inks = inksOfSheet();
+    return el("ul", { class: "map-legend", "aria-label": `Legend: ${s.about?.label ?? ""}` }, s.sorts.flatMap((sort) => {
+      const number = el("span", { class: "aside" });
+      counts.push(number);
+      if (sort.count === 0) return [];
+      const canvas = el("canvas", { class: "map-swatch", width: 44, height: 28, "aria-hidden": "true" });
+      const g = /** @type {CanvasRenderingContext2D} */ (canvas.getContext("2d"));
+      g.scale(2, 2);
+      g.fillStyle = inks.fill(sort.look);
+      g.fillRect(0, 0, 22, 14);
+      return [el("li", null, canvas, sort.text, number)];
+    }));
+  }
+
+  return {
+    node,
+    /** @param {Sorts[]} all one for each band; their headings where there are several */
+    show(all) {
+      const key = JSON.stringify([inksOfSheet().key, all.map((s) => [s.about?.name, s.sorts.filter((x) => x.count > 0).map((x) => x.text)])]);
+      if (key !== made) {
+        made = key;
+        counts = [];
+        fill(node, all.map((s) => [all.length > 1 && el("p", { class: "map-legend-of" }, s.about?.label ?? ""), list(s)]).flat());
+      }
+      all.flatMap((s) => s.sorts).forEach((sort, i) => say(counts[i], String(sort.count)));
+    },
+  };
 }
