@@ -12,6 +12,8 @@ import { fieldPick } from "./fieldpick.js";
  * @typedef {import("../engine/wire.js").Catalogue} Catalogue
  */
 
+/** @typedef {ReturnType<typeof axisForm>} AxisForm */
+
 /**
  * @param {object} about
  * @param {string} about.name

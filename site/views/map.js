@@ -13,6 +13,7 @@ import { mapPlot } from "./mapplot.js";
 import { boundaryTables, mapLegend, pointTable, rowsTable, tableTools } from "./mapread.js";
 import { pointText } from "./mapwords.js";
 import { openPreset } from "./presets.js";
+import { searchView } from "./search.js";
 
 /**
  * @typedef {import("../model/store.js").Store} Store
@@ -75,10 +76,11 @@ export function mapView(root, store, catalogue, worker) {
     el("ul", null, catalogue.presets.filter((p) => p.plan.sweep).map((p) => el("li", null,
       el("button", { type: "button", class: "link", "data-map": p.name, onclick: () => openPreset(store, p) }, p.title.replace(/^Map: /, "")),
       el("span", { class: "aside" }, ` ${p.note.split(". ")[0]}.`)))));
+  const search = searchView(store, catalogue, worker, () => turn("map"));
+  const body = el("div", { class: "map-body" }, form.node, el("div", { class: "map-progress" }, progress, cancel, goOn, says), empty, result, live);
+  const modes = /** @type {const} */ (["map", "search"]).map((m) => el("button", { type: "button", id: `map-mode-${m}`, "aria-pressed": String(m === "map"), onclick: () => turn(m) }, m === "map" ? "Map of values" : "Settings search"));
   const pane = el("section", { class: "map", id: "map", role: "tabpanel", "aria-label": "Map", hidden: true },
-    form.node,
-    el("div", { class: "map-progress" }, progress, cancel, goOn, says),
-    empty, result, live);
+    el("div", { class: "map-modes", role: "group", "aria-label": "Map or settings search" }, modes), body, search.node);
   root.append(pane);
   const seen = new ResizeObserver(() => nextFrame(refresh));
   seen.observe(pane);
@@ -96,6 +98,20 @@ export function mapView(root, store, catalogue, worker) {
       waiting = 0;
       nextFrame(refresh);
     }, EVERY_MS);
+  }
+
+  /** @param {"map" | "search"} to */
+  function turn(to) {
+    modes.forEach((b, i) => b.setAttribute("aria-pressed", String((i === 0) === (to === "map"))));
+    body.hidden = to !== "map";
+    search.node.hidden = to !== "search";
+    if (to === "search") {
+      search.warm();
+      search.update(store.get());
+    } else {
+      form.update(store.get());
+      nextFrame(refresh);
+    }
   }
 
   function start() {
@@ -207,7 +223,7 @@ export function mapView(root, store, catalogue, worker) {
   function refresh() {
     const run = sweep.run();
     const state = store.get();
-    if (state.tab !== "map" || pane.hidden) return;
+    if (state.tab !== "map" || body.hidden) return;
     const running = run?.state === "running";
     pane.dataset.run = run?.state ?? "none";
     empty.hidden = run !== null || Boolean(state.plan.sweep?.x);
@@ -269,15 +285,21 @@ export function mapView(root, store, catalogue, worker) {
           entered = true;
         }
       }
+      if (changed.has("preset") || !entered) {
+        if (state.plan.goals && !state.plan.sweep && body.hidden === false) turn("search");
+        else if (state.plan.sweep && !state.plan.goals && body.hidden) turn("map");
+      }
       if (state.tab !== "map") return;
       if (["tab", "plan", "diagnoses", "dark"].some((k) => changed.has(k))) {
         form.update(state);
         nextFrame(refresh);
+        if (!search.node.hidden) search.update(state);
       }
     },
     destroy() {
       seen.disconnect();
       pool.stop();
+      search.stop();
       pane.remove();
     },
   };

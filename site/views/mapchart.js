@@ -1,5 +1,5 @@
-// Paints a sweep: regions of behaviour or steps of a number, lines of equal value,
-// exact boundaries, axes. One way it is bands and curves over one axis.
+// Paints a sweep of two values: regions of behaviour or steps of a number, lines of
+// equal value, exact boundaries, axes.
 
 import { num } from "../base/format.js";
 import { byMeaning, lookOf, NONE, REFUSED, saying } from "../model/behaviour.js";
@@ -77,7 +77,7 @@ function steps(cuts, low, high, unit) {
 
 const DENSE = 4; // pixels between lines of change that are both drawn
 
-const MARGIN = { left: 62, words: 118, right: 14, top: 10, bottom: 44 };
+export const MARGIN = { left: 62, words: 118, right: 14, top: 10, bottom: 44 };
 
 /**
  * Where the points are, without the axes.
@@ -168,7 +168,7 @@ export function placeOn(values, v) {
 }
 
 /** @param {CanvasRenderingContext2D} g @param {Inks} inks @param {Box} box @param {Run} run @param {string} outcome */
-function paintBounds(g, inks, box, run, outcome) {
+export function paintBounds(g, inks, box, run, outcome) {
   const grid = /** @type {Grid} */ (run.grid);
   g.strokeStyle = inks.colour("ink");
   g.lineWidth = 2;
@@ -221,7 +221,7 @@ function paintContours(g, inks, box, grid, s, outcome) {
 }
 
 /** A word on paper of its own, where no other stands. @param {CanvasRenderingContext2D} g @param {Inks} inks @param {string} text @param {number} x @param {number} y @param {Box} box @param {Box[]} taken */
-function tag(g, inks, text, x, y, box, taken) {
+export function tag(g, inks, text, x, y, box, taken) {
   const w = g.measureText(text).width + 8;
   const b = { x: Math.min(Math.max(x - w / 2, box.x + 1), box.x + box.w - w - 1), y: Math.min(Math.max(y - 8, box.y + 1), box.y + box.h - 17), w, h: 16 };
   if (taken.some((o) => o.x < b.x + b.w + 2 && b.x < o.x + o.w + 2 && o.y < b.y + b.h + 2 && b.y < o.y + o.h + 2)) return false;
@@ -325,7 +325,7 @@ function axisY(g, inks, box, axis, n) {
 const titleOf = (axis) => (axis.unit ? `${axis.label}, ${axis.unit}` : axis.label);
 
 /** @param {CanvasRenderingContext2D} g @param {Inks} inks @param {Box} box */
-function frame(g, inks, box) {
+export function frame(g, inks, box) {
   g.strokeStyle = inks.colour("rule-strong");
   g.lineWidth = 1;
   g.strokeRect(box.x + 0.5, box.y + 0.5, box.w - 1, box.h - 1);
@@ -336,85 +336,4 @@ function fitting(g, text, width) {
   let t = text;
   while (t.length > 1 && g.measureText(t).width > width) t = t.slice(0, -1);
   return t === text ? t : `${t.slice(0, -1)}…`;
-}
-
-const BAND = 30;
-const CURVE = 92;
-const GAP = 22;
-
-/** How high a chart of one axis is. @param {Grid} grid */
-export const lineHeight = (grid) => MARGIN.top + MARGIN.bottom + grid.outcomes().reduce((h, o) => h + GAP + (o.kind === "number" ? CURVE : BAND), 0);
-
-/**
- * Bands of behaviours and curves of numbers over one axis.
- * @param {CanvasRenderingContext2D} g @param {Inks} inks @param {number} width @param {Run} run
- */
-export function paintLine(g, inks, width, run) {
-  const grid = /** @type {Grid} */ (run.grid);
-  const all = { ...boxOf(grid, width, lineHeight(grid)) };
-  const X = (/** @type {number} */ i) => all.x + (all.w * i) / grid.nx;
-  let y = all.y;
-  for (const o of grid.outcomes()) {
-    const s = sortsOf(grid, o.name);
-    g.textAlign = "left";
-    g.textBaseline = "alphabetic";
-    g.fillStyle = inks.colour("ink");
-    g.fillText(o.unit ? `${o.label}, ${o.unit}` : o.label, all.x, y + GAP - 6);
-    y += GAP;
-    const box = { x: all.x, y, w: all.w, h: o.kind === "number" ? CURVE : BAND };
-    if (o.kind === "number") curve(g, inks, box, grid, s, o.name, X);
-    else band(g, inks, box, run, s, o.name, X);
-    frame(g, inks, box);
-    y += box.h;
-  }
-  axisX(g, inks, { ...all, h: y - all.y }, grid.head.x, grid.nx);
-}
-
-/** @param {CanvasRenderingContext2D} g @param {Inks} inks @param {Box} box @param {Run} run @param {Sorts} s @param {string} outcome @param {(i: number) => number} X */
-function band(g, inks, box, run, s, outcome, X) {
-  const grid = /** @type {Grid} */ (run.grid);
-  for (let i = 0; i < grid.nx;) {
-    const at = (/** @type {number} */ p) => (grid.stand(p) < 0 ? -1 : s.at(grid.stand(p)));
-    const k = at(i);
-    let to = i + 1;
-    while (to < grid.nx && at(to) === k) to++;
-    if (k >= 0) {
-      g.fillStyle = inks.fill(s.sorts[k].look);
-      g.fillRect(X(i), box.y, X(to) - X(i), box.h);
-      if (g.measureText(s.sorts[k].text).width + 12 < X(to) - X(i)) tag(g, inks, s.sorts[k].text, (X(i) + X(to)) / 2, box.y + box.h / 2, box, []);
-    }
-    i = to;
-  }
-  paintBounds(g, inks, box, { ...run, bounds: new Map([[outcome, (run.bounds.get(outcome) ?? []).filter((b) => b.along === 0)]]) }, outcome);
-}
-
-/** @param {CanvasRenderingContext2D} g @param {Inks} inks @param {Box} box @param {Grid} grid @param {Sorts} s @param {string} outcome @param {(i: number) => number} X */
-function curve(g, inks, box, grid, s, outcome, X) {
-  if (!(s.high >= s.low)) return;
-  const pad = (s.high - s.low) * 0.08 || 1;
-  const Y = (/** @type {number} */ v) => box.y + box.h - (box.h * (v - s.low + pad)) / (s.high - s.low + 2 * pad);
-  g.textAlign = "right";
-  g.textBaseline = "middle";
-  for (const v of s.cuts.filter((_, i) => s.cuts.length < 5 || i % 2 === 0)) {
-    g.fillStyle = inks.colour("rule");
-    g.fillRect(box.x, Math.round(Y(v)), box.w, 1);
-    g.fillStyle = inks.colour("ink-soft");
-    g.fillText(num(v, 2), box.x - 6, Y(v));
-  }
-  g.strokeStyle = g.fillStyle = inks.colour("device");
-  g.lineWidth = 1.5;
-  g.beginPath();
-  let open = false;
-  for (let i = 0; i < grid.nx; i++) {
-    const v = grid.at(i, outcome)?.number;
-    if (v === undefined || v === null) {
-      if (grid.has(i)) open = false;
-      continue;
-    }
-    if (open) g.lineTo(X(i + 0.5), Y(v));
-    else g.moveTo(X(i + 0.5), Y(v));
-    open = true;
-    if (grid.nx < 80) g.fillRect(X(i + 0.5) - 1.5, Y(v) - 1.5, 3, 3);
-  }
-  g.stroke();
 }

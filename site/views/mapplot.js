@@ -3,7 +3,8 @@
 import { el } from "../base/dom.js";
 import { clamp } from "../base/scale.js";
 import { inksOfSheet } from "./inks.js";
-import { boxOf, lineHeight, paintLine, paintMap } from "./mapchart.js";
+import { boxOf, paintMap } from "./mapchart.js";
+import { lineHeight, paintLine } from "./mapline.js";
 
 /**
  * @typedef {import("../model/grid.js").Grid} Grid
