@@ -19,7 +19,7 @@ func (b *builder) measure() {
 		if v := &b.ws.all[i]; v.chamber == 'V' {
 			b.conducted(v)
 		} else {
-			b.retrograde(v)
+			b.retrograde(i)
 		}
 	}
 	b.node()
@@ -57,12 +57,20 @@ func (b *builder) cycles(chamber byte, m Measure, y float64) {
 	}
 }
 
-// ancestor walks from an activation along its conduction and gives the nearest
-// activation at a site of the tissue, or nil.
+// ancestor walks from an activation along its conduction, within one passage, and
+// gives the nearest activation at a site of the tissue, or nil. A passage ends at
+// another wave of the atria or the ventricles: what lies beyond is an earlier turn.
 func (b *builder) ancestor(e *event.Event, tissue event.Tissue) *event.Event {
-	for e != nil && e.Kind == event.Activate && e.Rule == event.Conducted {
-		if e = b.l.At(e.Cause); e != nil && e.Kind == event.Activate && b.l.Sites[e.Site].Tissue == tissue {
+	start := b.ws.of[e.ID]
+	for e.Kind == event.Activate && e.Rule == event.Conducted {
+		if e = b.l.At(e.Cause); e == nil || e.Kind != event.Activate {
+			return nil
+		}
+		if b.l.Sites[e.Site].Tissue == tissue {
 			return e
+		}
+		if b.l.Sites[e.Site].Chamber() != 0 && b.ws.of[e.ID] != start {
+			return nil
 		}
 	}
 	return nil
@@ -81,7 +89,8 @@ func (b *builder) conducted(v *wave) {
 }
 
 // retrograde measures a P that came from below.
-func (b *builder) retrograde(v *wave) {
+func (b *builder) retrograde(number int) {
+	v := &b.ws.all[number]
 	for i, id := range v.members {
 		if v.entries[i] != below && v.entries[i] != beside {
 			continue
@@ -96,6 +105,7 @@ func (b *builder) retrograde(v *wave) {
 		if v.entries[i] == beside {
 			return
 		}
+		b.sister(number, e)
 		if h := b.ancestor(e, event.His); h != nil {
 			b.dim(HA, h, e, b.lay.y[h.Site], b.lay.aFoot, event.Node)
 		} else if j := b.ancestor(e, event.Node); j != nil {
@@ -104,6 +114,25 @@ func (b *builder) retrograde(v *wave) {
 		return
 	}
 }
+
+// sister measures a P that came up without the ventricles, as in re-entry in the AV
+// node, from the QRS of the same activation of the junction.
+func (b *builder) sister(number int, e *event.Event) {
+	a, j := b.top(&b.ws.all[number]), b.ancestor(e, event.Node)
+	if a == nil || j == nil || b.ancestor(e, event.Ventricle) != nil {
+		return
+	}
+	for i := max(number-sisters, 0); i < min(number+sisters, len(b.ws.all)); i++ {
+		q := &b.ws.all[i]
+		if from := q.first(b.l); q.chamber == 'V' && b.ancestor(from, event.Node) == j {
+			b.dim(VA, from, a, b.lay.vTop, b.lay.aTop, event.Node)
+			return
+		}
+	}
+}
+
+// sisters is how many waves before or after a P its QRS may have begun.
+const sisters = 4
 
 // top is the activation of a wave at the top of the atria, the right atrium, to
 // which VA runs, or nil where the wave did not come so far.

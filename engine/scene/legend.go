@@ -1,5 +1,11 @@
 package scene
 
+import (
+	"slices"
+
+	"escapement/engine/ladder"
+)
+
 // sign is an entry of the legend: a text and what it explains, drawn in the 3.2 mm
 // from x on, about y; nil for letters, which the text holds.
 type sign struct {
@@ -35,6 +41,7 @@ func (s *sheet) legend() {
 		{"left bundle", func(x, y float64) { s.sample(Line, BundleLeft, x+0.8, y-1.2, x+2.4, y+1.2, 0) }},
 		{"right bundle", func(x, y float64) { s.sample(Line, BundleRight, x+0.8, y-1.2, x+2.4, y+1.2, 0) }},
 	}
+	signs = append(signs, s.pathwaySigns()...)
 	if tiersOf(s.in, &s.o) == 0 {
 		signs = nil
 	}
@@ -59,6 +66,23 @@ func (s *sheet) legend() {
 		x += w + 1.6*h
 	}
 	s.y = line + max(0.7*h, 1.7)
+}
+
+// pathwaySigns explain the strokes of pathways, where the strip has any.
+func (s *sheet) pathwaySigns() []sign {
+	var out []sign
+	has := func(c Class) bool {
+		return slices.ContainsFunc(s.in.Diagram.Strokes, func(t ladder.Stroke) bool { return classOf(t.Tissue, t.Branch) == c })
+	}
+	for _, k := range []struct {
+		text  string
+		class Class
+	}{{"slow pathway", NodeSlow}, {"accessory pathway", Accessory}} {
+		if has(k.class) {
+			out = append(out, sign{k.text, func(x, y float64) { s.sample(Line, k.class, x+0.2, y-1.2, x+3, y+1.2, 0) }})
+		}
+	}
+	return out
 }
 
 func (s *sheet) sample(shape Shape, c Class, x, y, x2, y2, r float64) {

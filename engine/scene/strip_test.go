@@ -245,3 +245,26 @@ func TestLessImportantLabelsGoFirst(t *testing.T) {
 		t.Errorf("%d numbers are left at the smallest scale", had)
 	}
 }
+
+// The legend explains the strokes of a pathway where the strip has one.
+func TestLegendShowsPathwaysOfTheStrip(t *testing.T) {
+	for _, c := range []struct {
+		name, log   string
+		slow, aside bool
+	}{
+		{"none", "pvc.log", false, false},
+		{"a slow pathway", "reentry.log", true, false},
+		{"an accessory pathway", "accessory.log", false, true},
+	} {
+		l := logs(t)[c.log]
+		s := Strip(Input{Log: l, Diagram: ladder.Build(l, ladder.Options{Form: ladder.Full})}, Options{Legend: true})
+		slow, aside := false, false
+		for _, m := range s.Marks {
+			slow = slow || m.Class == Note && m.Text == "slow pathway"
+			aside = aside || m.Class == Note && m.Text == "accessory pathway"
+		}
+		if slow != c.slow || aside != c.aside {
+			t.Errorf("%s: slow %v, accessory %v", c.name, slow, aside)
+		}
+	}
+}
