@@ -39,6 +39,11 @@ type Interval struct {
 	Longest float64  `json:"longest_ms"`
 }
 
+// usualMargin is how much stronger than the threshold a chronic output is, and than the
+// programmed sensitivity the signal: the first common practice, from memory; the second
+// an education page, read.
+const usualMargin = 2
+
 // OfDevice is nil where the plan has no pacemaker, that is where set is nil.
 func OfDevice(p *plan.Plan, set *plan.Device, r *measure.Report) *Device {
 	if set == nil {
@@ -107,9 +112,15 @@ func (d *Device) leads(p *plan.Plan, set *plan.Device) {
 				muscle[0].Label = "capture threshold of the muscle beside it"
 				d.put(muscle[:1], l.name+"_muscle_")
 			}
+			if margin := own.Amplitude / own.Threshold; own.Threshold > 0 && own.Captures() && margin < usualMargin {
+				d.Warnings = append(d.Warnings, fmt.Sprintf("The %s output of %.2f V is %.1f times the threshold of %.2f V; 2 times is usual.", l.label, own.Amplitude, margin, own.Threshold))
+			}
 			if !own.Captures() {
 				d.Warnings = append(d.Warnings, fmt.Sprintf("The %s output of %.2f V is below the threshold of %.2f V: no stimulus captures.", l.label, own.Amplitude, own.Threshold))
 			}
+		}
+		if margin := volt("signal_mv") / volt("sensitivity_mv"); l.listensTo && set.Leads[l.lead].Senses && margin < usualMargin {
+			d.Warnings = append(d.Warnings, fmt.Sprintf("The %s signal of %g mV is %.1f times the sensitivity of %g mV; 2 times is usual.", l.label, volt("signal_mv"), margin, volt("sensitivity_mv")))
 		}
 		if l.listensTo && !set.Leads[l.lead].Senses {
 			d.Warnings = append(d.Warnings, fmt.Sprintf("The %s signal of %g mV is below the sensitivity of %g mV: the heart is not sensed there.", l.label, volt("signal_mv"), volt("sensitivity_mv")))

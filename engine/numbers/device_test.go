@@ -125,3 +125,22 @@ func TestVulnerableStimuliAreFound(t *testing.T) {
 	}
 	t.Errorf("not found: %s", r.Statement)
 }
+
+// The preset's threshold is 1.125 V at 0.2 ms: b (1 + c / t) = 0.375 (1 + 0.4 / 0.2). Law:
+// Geddes 2004, read; a margin of two: common practice.
+func TestMarginsAreJudged(t *testing.T) {
+	for _, c := range []struct {
+		name, old, changed string
+		warns              string
+	}{
+		{"1.0 V at 0.2 ms", "", "", "below the threshold"},
+		{"1.2 V at 0.2 ms, threshold 1.125", `"amplitude_v": 1`, `"amplitude_v": 1.2`, "1.1 times the threshold"},
+		{"2.25 V", `"amplitude_v": 1`, `"amplitude_v": 2.25`, ""},
+		{"signal 9 mV at a sensitivity of 5", `"amplitude_v": 1`, `"sensitivity_mv": 5, "amplitude_v": 2.25`, "1.8 times the sensitivity"},
+	} {
+		d, _ := beside(t, "vvi-output-below-threshold", c.old, c.changed)
+		if c.warns == "" && d.warns("times the") || !d.warns(c.warns) && c.warns != "" {
+			t.Errorf("%s: %q", c.name, d.Warnings)
+		}
+	}
+}
