@@ -144,7 +144,8 @@ func (f *finder) addRun(g gathered) {
 }
 
 // dissociation: at least two beats that began below the atria in their own time,
-// and at least two P waves from above that did not conduct meanwhile.
+// and at least two P waves from above that did not conduct meanwhile. Fibrillation has
+// no P waves.
 func (f *finder) dissociation() {
 	var ids []event.ID
 	beats, waves := 0, 0
@@ -165,7 +166,7 @@ func (f *finder) dissociation() {
 	var cycles []tick.Dur
 	for i := range f.p {
 		w := &f.p[i]
-		if !w.retrograde && w.to < 0 && !w.premature && !f.tracked(i) && w.t >= from.Add(-tick.Second) && w.t <= to.Add(tick.Second) {
+		if !w.retrograde && w.to < 0 && !w.premature && !f.tracked(i) && !f.arrival(i) && w.t >= from.Add(-tick.Second) && w.t <= to.Add(tick.Second) {
 			waves++
 			ids = append(ids, w.id)
 			if i > 0 {

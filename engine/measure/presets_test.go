@@ -68,6 +68,7 @@ var expected = map[string][]string{
 	"wpw-fibrillation":    {"atrial_fibrillation", "pre_excited_fibrillation", "av_reentrant_beat", "concealed_conduction", "pre_excitation"},
 
 	// With a device.
+	"vvi-atrial-fibrillation":         {"ventricular_pacing", "atrial_fibrillation", "fusion_beat"},
 	"dual-treadmill-two-to-one":       {"upper_rate_two_to_one", "p_synchronous_pacing", "sinus_tachycardia"},
 	"dual-one-to-one-to-140":          {"upper_rate_wenckebach", "p_synchronous_pacing", "sinus_tachycardia"},
 	"dual-upper-rate-wenckebach":      {"upper_rate_wenckebach", "p_synchronous_pacing", "sinus_tachycardia"},
