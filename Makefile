@@ -49,6 +49,11 @@ edge: need-go ## build the print service for an edge host, into wasm/press/edge/
 test: need-go need-browser need-edf lint site ## everything a contributor must pass (installs what it needs)
 	@bash .ci/tests
 
+.PHONY: test-edge
+test-edge: need-go need-node site edge ## the print service on an edge host against the native handler (installs the host)
+	@bash .ci/need edge
+	@node --test wasm/press/edge/edge.test.js
+
 .PHONY: lint
 lint: need-go need-node ## format, vet, staticcheck, types of the page
 	@bad="$$(gofmt -l $$(git ls-files -co --exclude-standard '*.go'))"; if [ -n "$$bad" ]; then echo "gofmt would change:"; echo "$$bad"; exit 1; fi

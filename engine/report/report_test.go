@@ -308,3 +308,23 @@ func diff(want, got string) string {
 	}
 	return "got more lines"
 }
+
+// Both strips stand on one page; what there is no room for is left out and named.
+func TestBothStripsStandOnOnePage(t *testing.T) {
+	lanes := strings.Fields("lead:I lead:II lead:V1 lead:V6 axis ladder device")
+	pages, err := Compare([2]*Case{preset(t, "dual-treadmill-two-to-one"), preset(t, "dual-one-to-one-to-140")}, [2]string{"before", "after"}, nil, Options{Lanes: lanes})
+	if err != nil {
+		t.Fatal(err)
+	}
+	sound(t, pages)
+	ladders := 0
+	for _, l := range pages[0].Lanes {
+		if l.Name == "ladder" {
+			ladders++
+		}
+	}
+	all := places(pages)
+	if ladders != 2 || !strings.Contains(all, "Left out for want of room: ") || strings.Contains(all, "want of room: II") {
+		t.Errorf("%d ladders on the first page:\n%s", ladders, all)
+	}
+}

@@ -1,6 +1,9 @@
 package scene
 
-import "fmt"
+import (
+	"fmt"
+	"slices"
+)
 
 // Comparison is what a page of two strips says: one above the other on axes that
 // agree, and in what they differ.
@@ -17,8 +20,9 @@ type Part struct {
 	Strip                  Excerpt
 }
 
-// Pages lays the comparison out. Both strips stand on the first page; where their
-// lanes are too high for that even with low ladders, each has a page of its own.
+// Pages lays the comparison out. Both strips stand on the first page; where their lanes
+// are too high for that even with low ladders, the leads that say least go first, and
+// where that does not help each strip has a page of its own.
 func (c *Comparison) Pages(p Paper) ([]*Scene, error) {
 	b, err := newBook(p, c.Title, c.Date, c.Version)
 	if err != nil {
@@ -56,8 +60,17 @@ func (b *book) pair(parts *[2]Part) error {
 		}
 		o.To = min(o.To, e.In.Log.Span)
 	}
-	room := b.bottom - b.y - heads[0].height - heads[1].height - 14 // scales and signs
-	systems, err := b.two(parts, &os, room)
+	room := b.bottom - b.y - heads[0].height - heads[1].height - 20 // scales and signs
+	asked := os[0].leadLanes()
+	systems, fits, err := b.two(parts, &os, room)
+	for err == nil && !fits {
+		fewer := os
+		if !Fewer(&fewer[0]) || !Fewer(&fewer[1]) {
+			break // a page for each
+		}
+		os = fewer
+		systems, fits, err = b.two(parts, &os, room)
+	}
 	if err != nil {
 		return err
 	}
@@ -75,12 +88,23 @@ func (b *book) pair(parts *[2]Part) error {
 	if parts[1].Strip.In.Diagram != nil && parts[1].Strip.In.Diagram.Device != nil {
 		in, o = parts[1].Strip.In, os[1]
 	}
-	b.explain(in, o, "")
+	gone := ""
+	kept := os[0].leadLanes()
+	for _, name := range asked {
+		if !slices.Contains(kept, name) {
+			gone += ", " + name
+		}
+	}
+	if gone != "" {
+		gone = "Left out for want of room: " + gone[2:] + ". "
+	}
+	b.explain(in, o, gone)
 	return nil
 }
 
-// two draws both strips, with ladders as low as it takes to fit the room together.
-func (b *book) two(parts *[2]Part, os *[2]Options, room float64) ([2]*Scene, error) {
+// two draws both strips, with ladders as low as it takes to fit the room together, and
+// tells whether they do.
+func (b *book) two(parts *[2]Part, os *[2]Options, room float64) ([2]*Scene, bool, error) {
 	var out [2]*Scene
 	for share := 1.0; ; share -= 0.1 {
 		total, least := 0.0, true
@@ -96,13 +120,13 @@ func (b *book) two(parts *[2]Part, os *[2]Options, room float64) ([2]*Scene, err
 			}
 			s, err := b.system(parts[i].Strip, o)
 			if err != nil {
-				return out, fmt.Errorf("strip %d: %w", i+1, err)
+				return out, false, fmt.Errorf("strip %d: %w", i+1, err)
 			}
 			out[i] = s
 			total += s.Height - pad + 1.5
 		}
 		if total <= room || least {
-			return out, nil
+			return out, total <= room, nil
 		}
 	}
 }
@@ -136,7 +160,7 @@ func differences(w float64, before, after string, ds []Difference) []rowLine {
 			group = d.Group
 			head := rowOf(cell{class: Strong, text: group, w: w})
 			head.keep = true
-			rows = append(rows, rowLine{height: 0.8, gap: true}, head)
+			rows = append(rows, rowLine{height: 0.8, gap: true, keep: true}, head)
 		}
 		name := d.Label
 		if d.Unit != "" {

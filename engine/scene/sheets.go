@@ -75,7 +75,7 @@ func Roll(in Input, o Options, f Form) (*Scene, error) {
 // below, cut at large squares, and then on the next page. Every page carries the
 // scales and the caution, and the legend where asked for. The error is a [*RoomError] or says what is wrong with the paper.
 func Sheets(in Input, o Options, p Paper, f Form) ([]*Scene, error) {
-	o.Pulse = true
+	o.Pulse, o.end = true, in.Log.Span
 	o.fill(&in)
 	if p.Margin == 0 {
 		p.Margin = EdgeMM
@@ -105,6 +105,9 @@ func cut(o *Options, p Paper, longest tick.Dur) ([][2]tick.Time, error) {
 	if longest > 0 {
 		most = min(most, tick.Time(longest))
 	}
+	if o.Fill {
+		o.widen(most)
+	}
 	if o.To-o.From <= most {
 		return [][2]tick.Time{{o.From, o.To}}, nil
 	}
@@ -123,6 +126,24 @@ func cut(o *Options, p Paper, longest tick.Dur) ([][2]tick.Time, error) {
 	}
 	return parts, nil
 }
+
+// widen makes a window of whole lines, each of line, within the strip. Lines are cut
+// at large squares where there are several.
+func (o *Options) widen(line tick.Time) {
+	if o.To-o.From > line && line > squareTime {
+		line -= line % squareTime
+	}
+	if line <= 0 {
+		return
+	}
+	length := (o.To - o.From + line - 1) / line * line
+	o.To = min(o.From+length, o.end)
+	o.From = max(0, o.To-length)
+}
+
+// mostCloser is the part of its height by which the signals of a print move together,
+// as on the page, before it is refused: more, and nobody could tell the traces apart.
+const mostCloser = 0.3
 
 // folio is a print in the making.
 type folio struct {
@@ -160,6 +181,10 @@ func (b *folio) fit(parts [][2]tick.Time) (each int, err error) {
 		rest, least = rest-b.o.LadderMM, leastTier*tiers
 	}
 	each = min(int((room+betweenMM)/(rest+least+betweenMM)), len(parts))
+	if short := rest + least - room; each == 0 && b.o.Closer == 0 && short <= mostCloser*rest {
+		b.o.Closer = short + 1 // lanes end on whole millimetres
+		return b.fit(parts)
+	}
 	if each == 0 {
 		return 0, &RoomError{"height", rest + least + b.paper.Height - room, b.paper.Height}
 	}

@@ -175,3 +175,66 @@ func pulseHeight(s *Scene) float64 {
 	}
 	return 0
 }
+
+// A window that is to fill its page has whole lines, within the strip, and holds what
+// was asked for.
+func TestAWindowFillsItsLines(t *testing.T) {
+	rapid.Check(t, func(r *rapid.T) {
+		in, o, p := anyPrint(r)
+		o.Fill = true
+		asked := o
+		asked.fill(&in)
+		if asked.To > in.Log.Span || asked.From >= in.Log.Span {
+			r.Skip("not a window of the strip")
+		}
+		o.end = in.Log.Span
+		o.fill(&in)
+		parts, err := cut(&o, p, 0)
+		if err != nil {
+			r.Skip(err.Error())
+		}
+		from, to := parts[0][0], parts[len(parts)-1][1]
+		if from > asked.From || to < asked.To || from < 0 || to > in.Log.Span {
+			r.Fatalf("asked for %v to %v of %v, got %v to %v", asked.From, asked.To, in.Log.Span, from, to)
+		}
+		first, last := parts[0], parts[len(parts)-1]
+		if whole := first[1] - first[0]; last[1]-last[0] != whole && !(from == 0 && to == in.Log.Span) {
+			r.Fatalf("the last line is %v of %v long, and there is more strip", last[1]-last[0], whole)
+		}
+	})
+}
+
+// Lanes of a print that are too high move together as on the page; the scale stays, and
+// where they would lie on one another the print is refused.
+func TestLanesOfAPrintMoveTogetherBeforeItIsRefused(t *testing.T) {
+	log := logs(t)["device_upper_rate.log"]
+	in := Input{Log: log, Record: bumps(log)}
+	o := Options{Caution: true, MMPerMV: 10}
+	height := func(leads int) (float64, error) {
+		o.Leads = nil
+		for l := range leads {
+			o.Leads = append(o.Leads, lead.Name(l))
+		}
+		pages, err := Sheets(in, o, Paper{Width: 297, Height: 150}, StripForm)
+		if err != nil {
+			return 0, err
+		}
+		return pages[0].Lanes[0].Y1 - pages[0].Lanes[0].Y0, nil
+	}
+	loose, err := height(2)
+	if err != nil {
+		t.Fatal(err)
+	}
+	closer, refused := false, false
+	for n := 3; n <= 12; n++ {
+		h, err := height(n)
+		if err != nil {
+			refused = true
+		} else if h < loose {
+			closer = true
+		}
+	}
+	if !closer || !refused {
+		t.Errorf("moved together: %v, refused: %v", closer, refused)
+	}
+}

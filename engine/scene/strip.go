@@ -61,6 +61,11 @@ type Options struct {
 	// needs it; without, only lanes that are high enough anyway have one.
 	Pulse bool
 
+	// Fill lets the window on pages go on to the end of its last line; where the strip
+	// ends before that, the window begins earlier.
+	Fill bool
+	end  tick.Time // of the strip
+
 	// Paper is the form in which [Paper12] sets the twelve leads.
 	Paper Form12
 

@@ -26,6 +26,10 @@ export class Refusal extends Error {
  * @property {number} [speed_mm_s]
  * @property {number} [gain_mm_mv]
  * @property {string[]} [leads]
+ * @property {string[]} [lanes] from top to bottom, in place of the leads
+ * @property {number} [egm_gain] mm/mV
+ * @property {string} [paper_form] the twelve leads as on paper, "3x4 + rhythm"
+ * @property {boolean} [fill] the window goes on to the end of its last line
  * @property {"full" | "plain" | "none"} [ladder]
  * @property {boolean} [device]
  * @property {number} [from_ms]
@@ -38,6 +42,8 @@ export class Refusal extends Error {
 
 /** @typedef {{blob: Blob, pages: number}} Printed */
 
+/** What the service is at: it is loaded once, and draws after that. @typedef {"loading" | "drawing"} Stage */
+
 /**
  * @typedef {object} Waiting
  * @property {number} number
@@ -46,6 +52,7 @@ export class Refusal extends Error {
  * @property {boolean} preview
  * @property {(printed: Printed | null) => void} resolve null when a newer preview took its place
  * @property {(err: Error) => void} reject
+ * @property {(stage: Stage) => void} [tell]
  */
 
 /** @typedef {ReturnType<typeof startPress>} Press */
@@ -79,10 +86,14 @@ export function startPress(url) {
     worker = null;
   }
 
-  /** @param {{number: number, status?: number, headers?: Record<string, string>, bytes?: ArrayBuffer, fault?: string}} reply */
-  function receive({ number, status = 0, headers = {}, bytes = new ArrayBuffer(0), fault }) {
+  /** @param {{number: number, status?: number, headers?: Record<string, string>, bytes?: ArrayBuffer, fault?: string, stage?: Stage}} reply */
+  function receive({ number, status = 0, headers = {}, bytes = new ArrayBuffer(0), fault, stage }) {
     const r = running;
     if (!r || number !== r.number) return;
+    if (stage !== undefined) {
+      r.tell?.(stage);
+      return;
+    }
     if (fault !== undefined) {
       fail(new Fault(fault));
       return;
@@ -117,29 +128,30 @@ export function startPress(url) {
    * @param {string} route "strip.pdf" and so on
    * @param {Order} order
    * @param {boolean} preview
+   * @param {(stage: Stage) => void} [tell]
    * @returns {Promise<Printed | null>}
    */
-  function ask(route, order, preview) {
+  function ask(route, order, preview, tell) {
     return new Promise((resolve, reject) => {
       last++;
       if (preview) {
         for (const w of waiting) if (w.preview) w.resolve(null);
         waiting = waiting.filter((w) => !w.preview);
       }
-      waiting.push({ number: last, route, order, preview, resolve, reject });
+      waiting.push({ number: last, route, order, preview, resolve, reject, tell });
       next();
     });
   }
 
   return {
-    /** @param {string} route @param {Order} order */
-    async print(route, order) {
-      const printed = await ask(route, order, false);
+    /** @param {string} route @param {Order} order @param {(stage: Stage) => void} [tell] */
+    async print(route, order, tell) {
+      const printed = await ask(route, order, false, tell);
       if (!printed) throw new Fault("the print was dropped");
       return printed;
     },
-    /** @param {string} route @param {Order} order */
-    preview: (route, order) => ask(route, order, true),
+    /** @param {string} route @param {Order} order @param {(stage: Stage) => void} [tell] */
+    preview: (route, order, tell) => ask(route, order, true, tell),
     stop() {
       end();
       running?.resolve(null);

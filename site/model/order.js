@@ -1,6 +1,7 @@
 // What a print is asked for, from what is chosen and what the timeline shows. Holds
 // no DOM.
 
+import { FIXED, show } from "./lanes.js";
 import { shown } from "./view.js";
 
 /** @typedef {import("../engine/press.js").Order} Order */
@@ -15,6 +16,7 @@ import { shown } from "./view.js";
  * @property {number} gain mm/mV
  * @property {"full" | "plain" | "none"} ladder
  * @property {boolean} device its lane, where there is one
+ * @property {string} form how the twelve leads are set, one of the view's PAPERS
  * @property {string} date as 2026-12-01, or ""
  * @property {number} page of the preview, and of a picture
  */
@@ -50,6 +52,9 @@ export const GAINS = [5, 10, 20];
 /** Text stands, strips lie. @param {string} print */
 export const usualPaper = (print) => (print === "report" || print === "comparison" ? "a4" : "a4-landscape");
 
+/** Whether the ladder, or else the device, is among the lanes shown. @param {import("./view.js").View} view */
+export const usualLadder = (view) => (view.lanes.includes("ladder") ? view.ladder : "none");
+
 const TWELVE_MS = 10000; // a page of twelve leads (common practice)
 
 /**
@@ -75,10 +80,28 @@ export function orderOf(state, c) {
     plan, paper: c.paper, speed_mm_s: c.speed, gain_mm_mv: c.gain, ladder: c.ladder, device: c.device,
     from_ms: from, to_ms: to, date: c.date, page: c.page, version: version(),
   };
-  if (c.print !== "twelve" && c.print !== "ladder") order.leads = view.leads;
+  if (c.print === "twelve") order.paper_form = c.form;
+  else if (c.print !== "ladder") {
+    order.lanes = lanesOf(view, c);
+    order.egm_gain = view.egm_gain;
+    if (view.paper && c.print === "strip") order.paper_form = view.paper;
+  }
+  if (c.range === "view" && c.print !== "twelve") order.fill = true;
   if (c.print === "ladder" && c.ladder === "none") order.ladder = "full";
   if (c.print === "comparison") order.before = /** @type {any} */ (state).before?.plan;
   return order;
+}
+
+/**
+ * The lanes shown, with those that were chosen beside them.
+ * @param {import("./view.js").View} view
+ * @param {Choice} c
+ */
+function lanesOf(view, c) {
+  let lanes = view.lanes;
+  if (c.ladder !== "none") lanes = show(lanes, "ladder");
+  if (c.device) lanes = show(lanes, "device");
+  return lanes.length > 0 ? lanes : FIXED;
 }
 
 /** The version that `make site` wrote into the page. */

@@ -118,6 +118,27 @@ describe("print and export", () => {
     assert.equal(await page.isVisible(".print-picture"), true);
   }));
 
+  test("with a strip kept as before, both are printed on one page, with the lanes of the timeline", () => listening(async (page, url) => {
+    await openPreset(page, "dual-treadmill-two-to-one");
+    await page.click("#keep-before");
+    await openPreset(page, "dual-one-to-one-to-140");
+    await page.click("#print");
+    assert.equal(await page.inputValue("#print-print"), "comparison", "with a strip before, both are what one wants");
+    await drawn(page);
+    assert.equal(await page.innerText(".print-wrong"), "");
+    const file = await saved(page);
+    assert.equal(file.bytes.subarray(0, 4).toString(), "%PDF");
+    assert.ok(file.bytes.equals(await native(page, url)), "differs from the native handler's");
+    const order = await page.evaluate(() => JSON.parse(/** @type {any} */ (window).asked.at(-1).body));
+    assert.deepEqual([order.before.title, order.plan.title], ["Treadmill: the rate halves at 130", "Settings that follow the sinus to 140"]);
+    assert.ok(order.lanes.includes("ladder") && order.lanes.includes("device"), order.lanes.join());
+    await page.keyboard.press("Escape");
+    await page.click("#keep-before"); // let go
+    await page.click("#print");
+    assert.equal(await page.inputValue("#print-print"), "strip");
+    assert.equal(await page.locator('#print-print option[value="comparison"]').isDisabled(), true);
+  }));
+
   test("a plan with wrong values is not printed, and the dialog says so", () => listening(async (page) => {
     await page.fill(AH, "5000");
     await page.waitForSelector(".row.wrong");
@@ -187,12 +208,13 @@ describe("print and export", () => {
   }));
 
   test("an order holds what is chosen and what the timeline shows", () => {
-    const state = /** @type {any} */ ({ plan: { title: "x" }, answer: { span_ms: 12000 }, view: { t0_ms: 4000, width_mm: 100, mm_per_s: 25, leads: ["II"] } });
-    const choice = { print: "strip", format: "pdf", paper: "a4", range: "view", speed: 25, gain: 10, ladder: /** @type {const} */ ("full"), device: true, date: "2026-12-01", page: 1 };
+    const state = /** @type {any} */ ({ plan: { title: "x" }, answer: { span_ms: 12000 }, view: { t0_ms: 4000, width_mm: 100, mm_per_s: 25, leads: ["II"], lanes: ["egm:V", "lead:II", "axis", "ladder"], egm_gain: 20, paper: "" } });
+    const choice = { print: "strip", format: "pdf", paper: "a4", range: "view", speed: 25, gain: 10, ladder: /** @type {const} */ ("full"), device: true, form: "3x4 + rhythm", date: "2026-12-01", page: 1 };
     for (const [name, patch, want] of /** @type {[string, any, any][]} */ ([
-      ["the part shown", {}, { from_ms: 4000, to_ms: 8000, leads: ["II"] }],
-      ["the whole", { range: "whole" }, { from_ms: 0, to_ms: 12000 }],
-      ["ten seconds of twelve leads", { print: "twelve" }, { from_ms: 2000, to_ms: 12000, leads: undefined }],
+      ["the part shown", {}, { from_ms: 4000, to_ms: 8000, fill: true, leads: undefined, lanes: ["egm:V", "lead:II", "axis", "ladder", "device"], egm_gain: 20, paper_form: undefined }],
+      ["without the device", { device: false }, { lanes: ["egm:V", "lead:II", "axis", "ladder"] }],
+      ["the whole", { range: "whole" }, { from_ms: 0, to_ms: 12000, fill: undefined }],
+      ["ten seconds of twelve leads", { print: "twelve" }, { from_ms: 2000, to_ms: 12000, lanes: undefined, paper_form: "3x4 + rhythm" }],
       ["one line of a report", { print: "report" }, { from_ms: 4000, to_ms: 0 }],
       ["data", { print: "data" }, { from_ms: undefined, date: undefined, plan: state.plan }],
       ["a ladder there is", { print: "ladder", ladder: "none" }, { ladder: "full" }],

@@ -4,7 +4,8 @@
 import { el, fill, say } from "../base/dom.js";
 import { count } from "../base/format.js";
 import { fileName } from "../model/document.js";
-import { FORMATS, NOTES, orderOf, PAPERS, PRINTS, SPEEDS, GAINS, usualPaper } from "../model/order.js";
+import { FORMATS, NOTES, orderOf, PAPERS, PRINTS, SPEEDS, GAINS, usualLadder, usualPaper } from "../model/order.js";
+import { PAPERS as FORMS12 } from "../model/view.js";
 import { Refusal } from "../engine/press.js";
 import { dialog } from "./dialog.js";
 import { download } from "./file.js";
@@ -18,6 +19,9 @@ import { download } from "./file.js";
 /** Today as the date field wants it, where the user is. */
 const today = () => new Date(Date.now() - new Date().getTimezoneOffset() * 60000).toISOString().slice(0, 10);
 
+/** What the user reads while waiting. */
+const STAGES = { loading: "Loading the printing press, about 5 MB. This is done once.", drawing: "Drawing." };
+
 const QUIET_MS = 200; // a choice made with the keyboard passes over others
 
 /**
@@ -26,7 +30,8 @@ const QUIET_MS = 200; // a choice made with the keyboard passes over others
  */
 export function printDialog(store, press) {
   /** @type {Choice} */
-  let choice = { print: "strip", format: "pdf", paper: "", range: "view", speed: 25, gain: 10, ladder: "full", device: true, date: today(), page: 1 };
+  let choice = { print: "strip", format: "pdf", paper: "", range: "view", speed: 25, gain: 10, ladder: "full", device: true, form: "3x4 + rhythm", date: today(), page: 1 };
+  let picked = false; // a print was chosen by hand
   let url = "";
   let round = 0; // of previews: an older answer is dropped
   let timer = 0;
@@ -42,7 +47,8 @@ export function printDialog(store, press) {
   const print = pick("print", "Print", PRINTS);
   const format = pick("format", "As", FORMATS.drawing);
   const paper = pick("paper", "Paper", PAPERS);
-  const range = pick("range", "Part", [["view", "what the timeline shows"], ["whole", "the whole strip"]]);
+  const range = pick("range", "Part", [["view", "what the timeline shows, to the end of the line"], ["whole", "the whole strip"]]);
+  const form12 = pick("form", "Form", FORMS12.map((f) => [f, f]));
   const speed = pick("speed", "Speed", SPEEDS.map((v) => [String(v), `${v} mm/s`]));
   const gain = pick("gain", "Gain", GAINS.map((v) => [String(v), `${v} mm/mV`]));
   const ladder = pick("ladder", "Ladder", [["full", "every level"], ["plain", "plain"], ["none", "none"]]);
@@ -62,7 +68,7 @@ export function printDialog(store, press) {
   const turn = el("div", { class: "print-turn", hidden: true }, back, where, on);
   const save = el("button", { type: "submit", id: "print-save", class: "main" }, "Save");
   const form = el("form", { class: "print-form", onsubmit: (/** @type {Event} */ e) => { e.preventDefault(); keep(); } },
-    print.row, format.row, paper.row, range.row, speed.row, gain.row, leadsRow, ladder.row, deviceRow, dateRow,
+    print.row, format.row, paper.row, range.row, speed.row, gain.row, form12.row, leadsRow, ladder.row, deviceRow, dateRow,
     el("p", { class: "hint" }, "No names and no numbers of patients: the title of the plan and this date are all that is printed beside the drawing."), save);
   const frame = el("div", { class: "print-frame" }, picture);
   const box = dialog("Print and export", "print", el("div", { class: "print-body" }, form,
@@ -83,9 +89,10 @@ export function printDialog(store, press) {
   function set(patch) {
     choice = { ...choice, page: 1, ...patch };
     if ("print" in patch) {
+      picked = true;
       choice.format = FORMATS[choice.print === "data" ? "data" : "drawing"][0][0];
       choice.paper = usualPaper(choice.print);
-      choice.ladder = choice.print === "twelve" ? "none" : store.get().view.ladder;
+      choice.ladder = choice.print === "twelve" ? "none" : usualLadder(store.get().view);
     }
     paint();
     clearTimeout(timer);
@@ -101,16 +108,24 @@ export function printDialog(store, press) {
     for (const o of paper.select.options) o.hidden = o.disabled = o.value === "roll" && text;
     for (const o of ladder.select.options) o.hidden = o.disabled = o.value === "none" && choice.print === "ladder";
     fill(format.select, FORMATS[data ? "data" : "drawing"].map(([value, name]) => el("option", { value }, name)));
-    for (const [field, select] of /** @type {[keyof Choice, HTMLSelectElement][]} */ ([["print", print.select], ["format", format.select], ["paper", paper.select], ["range", range.select], ["speed", speed.select], ["gain", gain.select], ["ladder", ladder.select]])) select.value = String(choice[field]);
+    for (const [field, select] of /** @type {[keyof Choice, HTMLSelectElement][]} */ ([["print", print.select], ["format", format.select], ["paper", paper.select], ["range", range.select], ["speed", speed.select], ["gain", gain.select], ["ladder", ladder.select], ["form", form12.select]])) select.value = String(choice[field]);
     device.checked = choice.device;
     if (date.value !== choice.date) date.value = choice.date;
     for (const row of [paper.row, range.row, speed.row, ladder.row, dateRow]) row.hidden = data;
     gain.row.hidden = data || choice.print === "ladder";
+    form12.row.hidden = choice.print !== "twelve";
     leadsRow.hidden = choice.print === "ladder" || choice.print === "twelve" || (data && choice.format !== "edf");
     deviceRow.hidden = data || !answer?.device || choice.ladder === "none";
     frame.hidden = data;
-    say(leads, data ? "all twelve" : view.leads.length === 12 ? "all twelve, as on the timeline" : view.leads.length ? `${view.leads.join(", ")}, as on the timeline` : "none, as on the timeline");
+    say(leads, data ? "all twelve" : lanesSaid(view));
     say(save, `Save ${FORMATS.drawing.concat(FORMATS.data).find(([f]) => f === choice.format)?.[1] ?? ""}`);
+  }
+
+  /** Which lanes are printed, in a few words. @param {import("../model/view.js").View} view */
+  function lanesSaid(view) {
+    const others = view.lanes.filter((l) => /^(egm|membrane):/.test(l)).length;
+    const of = view.paper && choice.print === "strip" ? `twelve leads ${view.paper}` : view.leads.length === 12 ? "all twelve" : view.leads.join(", ") || "none";
+    return `${of}${others > 0 ? ` and ${count(others, "other signal")}` : ""}, as on the timeline`;
   }
 
   /** @param {Blob | null} blob */
@@ -158,9 +173,11 @@ export function printDialog(store, press) {
       busy(false, NOTES[choice.format]);
       return;
     }
-    busy(true, picture.hidden ? "Preparing the preview; the first one loads the printing press, about 5 MB." : "Drawing.");
+    busy(true, picture.hidden ? "Preparing the preview." : "Drawing.");
     try {
-      const printed = await press().preview(`${choice.print}.svg`, orderOf(state, choice));
+      const printed = await press().preview(`${choice.print}.svg`, orderOf(state, choice), (stage) => {
+        if (mine === round) busy(true, STAGES[stage]);
+      });
       if (!printed || mine !== round) return;
       show(printed.blob);
       picture.alt = `Preview of page ${choice.page}`;
@@ -188,7 +205,7 @@ export function printDialog(store, press) {
     busy(true, "Printing.");
     try {
       const route = taken.print === "data" ? `strip.${taken.format}` : `${taken.print}.${taken.format}`;
-      const { blob } = await press().print(route, orderOf(state, taken));
+      const { blob } = await press().print(route, orderOf(state, taken), (stage) => busy(true, STAGES[stage]));
       const name = fileName(state.plan, state.answer?.title ?? "").replace(/\.json$/, `${taken.print === "data" ? "" : `-${taken.print}`}.${taken.format}`);
       download(blob, name);
       busy(false, `Saved as ${name}, ${Math.max(1, Math.round(blob.size / 1024))} kB.`);
@@ -202,12 +219,14 @@ export function printDialog(store, press) {
 
   function open() {
     const { view } = store.get();
+    const { before } = /** @type {any} */ (store.get());
+    if (!before && choice.print === "comparison") choice.print = "strip";
+    else if (before && !picked) Object.assign(choice, { print: "comparison", paper: usualPaper("comparison") });
     choice = {
-      ...choice, page: 1, paper: choice.paper || usualPaper(choice.print),
+      ...choice, page: 1, paper: choice.paper || usualPaper(choice.print), form: view.paper || choice.form,
       speed: SPEEDS.includes(view.mm_per_s) ? view.mm_per_s : 25, gain: GAINS.includes(view.mm_per_mv) ? view.mm_per_mv : 10,
-      ladder: choice.print === "twelve" ? "none" : view.ladder, device: !view.no_device,
+      ladder: choice.print === "twelve" ? "none" : usualLadder(view), device: !view.no_device,
     };
-    if (choice.print === "comparison" && !(/** @type {any} */ (store.get()).before)) choice.print = "strip";
     paint();
     box.showModal();
     preview();

@@ -23,6 +23,7 @@ WebAssembly.compileStreaming = async (/** @type {Response | PromiseLike<Response
 };
 
 const HOST = "./build/worker.js"; // made by `make site`
+const RUNTIME = "./build/runtime.js"; // holds the compiled module, from which every request gets an instance
 
 async function load() {
   const host = (await import(HOST)).default;
@@ -40,6 +41,7 @@ async function load() {
       };
     }
   };
+  await (await import(RUNTIME)).loadModule();
   return host;
 }
 
@@ -55,7 +57,9 @@ scope.onmessage = async (/** @type {MessageEvent} */ e) => {
   const { number, url, body } = e.data;
   output = "";
   try {
+    scope.postMessage({ number, stage: "loading" });
     const host = await ready;
+    scope.postMessage({ number, stage: "drawing" });
     const broken = new Promise((_, reject) => {
       fail = reject;
     });

@@ -2,12 +2,9 @@ package session
 
 import (
 	"math"
-	"slices"
-	"strings"
 
 	"escapement/engine/event"
 	"escapement/engine/ladder"
-	"escapement/engine/lead"
 	"escapement/engine/scene"
 )
 
@@ -56,59 +53,10 @@ func fitHalves(o *scene.Options, before, after scene.Half, room float64) {
 		p.LadderMM, p.To = least, p.From+1
 		return scene.Stack(before, after, nil, p).Height + changesRoom - 2*least
 	}
-	for rest()+2*least > room && fewer(o) {
+	for rest()+2*least > room && scene.Fewer(o) {
 	}
 	o.LadderMM = math.Min(math.Max((room-rest())/2, least), mostTier*units)
 	o.Closer = math.Max(rest()+2*least-room, 0) / 2
-}
-
-// fewer leaves out the lead that says least about rhythm: the last that is neither II
-// nor V1, then V1. It keeps one, and tells whether it left out any.
-func fewer(o *scene.Options) bool {
-	if o.Lanes != nil {
-		at := weakest(o.Lanes, func(lane string) (lead.Name, bool) {
-			name, ok := strings.CutPrefix(lane, "lead:")
-			if !ok {
-				return 0, false
-			}
-			return lead.Parse(name)
-		})
-		if at >= 0 {
-			o.Lanes = slices.Delete(slices.Clone(o.Lanes), at, at+1)
-		}
-		return at >= 0
-	}
-	at := weakest(o.Leads, func(n lead.Name) (lead.Name, bool) { return n, true })
-	if at >= 0 {
-		o.Leads = slices.Delete(slices.Clone(o.Leads), at, at+1)
-	}
-	return at >= 0
-}
-
-// weakest is the place of the lead to leave out, or -1.
-func weakest[T any](list []T, of func(T) (lead.Name, bool)) int {
-	at, n, worst := -1, 0, -1
-	for i := len(list) - 1; i >= 0; i-- {
-		l, ok := of(list[i])
-		if !ok {
-			continue
-		}
-		n++
-		rank := 2
-		switch l {
-		case lead.II:
-			rank = 0
-		case lead.V1:
-			rank = 1
-		}
-		if rank > worst {
-			at, worst = i, rank
-		}
-	}
-	if n < 2 {
-		return -1
-	}
-	return at
 }
 
 // bothTimes is times for a sheet of two: no event of the upper half can be moved.

@@ -152,7 +152,7 @@ func sheets(r *Request, leads []lead.Name, form scene.Form) ([]*scene.Scene, err
 		in.Diagram = ladder.Build(c.Log, ladder.Options{Form: r.form()})
 	}
 	o := scene.Options{
-		From: tick.Time(tick.MS(r.From)), To: tick.Time(tick.MS(r.To)), MMPerS: r.Speed, MMPerMV: r.Gain, Leads: leads, Lanes: r.Lanes, Paper: r.twelve,
+		From: tick.Time(tick.MS(r.From)), To: tick.Time(tick.MS(r.To)), MMPerS: r.Speed, MMPerMV: r.Gain, Leads: leads, Lanes: r.Lanes, Paper: r.twelve, Fill: r.Fill,
 		Grid: true, Legend: true, Caution: true, NoDevice: !r.Device, Title: c.Plan.Title, Statement: c.Measure.Statement, Imprint: r.imprint(),
 	}
 	if o.Title == "" {

@@ -32,6 +32,7 @@ type Request struct {
 	Device  bool     // its lane, where the plan has one
 	From    float64  // ms
 	To      float64  // ms; 0 is the end of the strip
+	Fill    bool     // a strip's window goes on to the end of its last line
 	Dots    float64  // a millimetre, for PNG
 	Page    int      // from 1, for SVG and PNG, which hold one
 	Date    string   // as it stands on the print, or ""
@@ -72,6 +73,7 @@ var fields = []slot{
 	{"device", "true, false", false, func(r *Request) any { return &r.Device }, func(r *Request) bool { return true }},
 	{"from_ms", "a number from 0", false, func(r *Request) any { return &r.From }, func(r *Request) bool { return r.From >= 0 }},
 	{"to_ms", "a number above from_ms; 0 for the end of the strip", false, func(r *Request) any { return &r.To }, func(r *Request) bool { return r.To == 0 || r.To > r.From }},
+	{"fill", "true, false", false, func(r *Request) any { return &r.Fill }, func(r *Request) bool { return true }},
 	{"dots_mm", "a number from 2 to 48", false, func(r *Request) any { return &r.Dots }, func(r *Request) bool { return r.Dots >= 2 && r.Dots <= 48 }},
 	{"page", "a whole number from 1", false, func(r *Request) any { return &r.Page }, func(r *Request) bool { return r.Page >= 1 }},
 	{"date", "a date as 2026-12-01, or nothing", true, func(r *Request) any { return &r.Date }, func(r *Request) bool { return date.MatchString(r.Date) }},
