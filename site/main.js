@@ -15,6 +15,7 @@ import { createStore } from "./model/store.js";
 import { FIRST_VIEW } from "./model/view.js";
 import { takeUp } from "./model/work.js";
 import { accountView } from "./views/account.js";
+import { announceView } from "./views/announce.js";
 import { beforeView } from "./views/before.js";
 import { calipersView } from "./views/calipers.js";
 import { drawersView } from "./views/drawers.js";
@@ -34,6 +35,7 @@ import { presentView } from "./views/present.js";
 import { presetsDialog } from "./views/presets.js";
 import { printDialog } from "./views/print.js";
 import { settingsView } from "./views/settings.js";
+import { steadyFocus } from "./views/steady.js";
 import { tableView } from "./views/table.js";
 import { timelineView } from "./views/timeline.js";
 import { trialView } from "./views/trial.js";
@@ -130,6 +132,7 @@ function build(catalogue, found) {
     trialView(part("account"), store, ask),
     overview, calipers, before,
     drawersView(part("settings"), part("account"), store),
+    announceView(document.body, store),
   ];
   globalKeys(store, {
     "/": () => {
@@ -170,6 +173,7 @@ function build(catalogue, found) {
   nextFrame(refresh);
   compute();
   file.follow();
+  steadyFocus(() => document.getElementById("timeline"));
   workOffline((takeOver) => notices.tell("newer", "A newer version of the page is ready.", { acts: [{ label: "Reload", act: takeOver }] }));
 }
 

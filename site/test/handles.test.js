@@ -202,7 +202,7 @@ describe("why not", () => {
     await page.focus("#timeline");
     await page.keyboard.press("0");
     await settled(page);
-    await page.keyboard.press("w");
+    await page.keyboard.press("g");
     await page.waitForFunction(() => document.querySelector("#account h2")?.textContent?.startsWith("Why no stimulus"));
     assert.match(await page.innerText(".account-body"), /lower-rate interval began/i);
     await page.locator("[data-setting]").first().click();

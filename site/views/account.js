@@ -27,7 +27,7 @@ const MOST_LED = 12; // consequences listed
  * @param {(way: {shiftKey: boolean}, finding?: number) => void} jump goes to the next place of a finding
  */
 export function accountView(root, store, focusSetting, before, jump) {
-  const title = el("h2", { "aria-live": "polite" }, "Measured");
+  const title = el("h2", null, "Measured");
   const back = el("button", { type: "button", id: "deselect", onclick: () => store.set({ selected: 0, gap: null, lit: [] }) }, "Measured");
   const shut = el("button", { type: "button", class: "drawer-close", onclick: () => store.set({ drawer: "" }) }, "Close");
   const body = el("div", { class: "account-body" });

@@ -43,7 +43,7 @@ export function bandView(layer, pick) {
           const at = e.detail > 0 ? Math.round(s.from + ((e.clientX - node.getBoundingClientRect().left) / node.offsetWidth) * (s.to - s.from)) : Math.round((s.from + s.to) / 2);
           pick(clamp(at, s.from, s.to));
         },
-      }, letter(i), i > 0 && x1 - x0 > 26 && el("small", null, String(s.from)));
+      }, letter(i), i > 0 && x1 - x0 > 26 && el("small", { "data-at": String(s.from) }));
       node.style.left = `${x0}px`;
       node.style.width = `${Math.max(x1 - x0, 2)}px`;
       node.style.height = `${TALL_PX}px`;

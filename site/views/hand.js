@@ -228,7 +228,7 @@ export function handView(paper, store, ask, place, reach) {
         nudge((e.key === "ArrowRight" ? 1 : -1) * (e.shiftKey ? 10 : 1));
         return true;
       }
-      if (!e.altKey && e.key.toLowerCase() === "w") {
+      if (!e.altKey && e.key.toLowerCase() === "g") {
         const { account, selected, view } = store.get();
         e.preventDefault();
         whyGap(hairAt ?? (selected && account ? account.t_ms : view.t0_ms + shown(view) / 2), true);

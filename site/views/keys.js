@@ -14,7 +14,7 @@ export const KEYS = [
     [", .", "previous and next event"],
     ["C", "from the selected event to its cause"],
     ["Alt ← →", "move the selected stimulus, window, P or discharge by a step; with Shift by ten"],
-    ["W", "why no stimulus came here: at the pointer, or at the selected event"],
+    ["G", "why no stimulus came here: at the pointer, or at the selected event"],
     ["B, Shift B", "try an atrial or a ventricular beat: at the pointer, or after the selected event"],
     ["Esc", "select nothing"],
     ["+ −", "stretch and squeeze time"],
@@ -126,6 +126,7 @@ function step(store, way) {
 export function globalKeys(store, acts) {
   /** @param {KeyboardEvent} e */
   function listen(e) {
+    if (e.defaultPrevented) return; // another has taken it
     const key = e.key.toLowerCase();
     if ((e.ctrlKey || e.metaKey) && !e.altKey && (key === "z" || key === "y")) {
       e.preventDefault();

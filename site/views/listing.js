@@ -24,7 +24,8 @@ export function listingView(root, store, engine) {
   const list = el("ol", { class: "lines" });
   const before = el("button", { type: "button", onclick: () => turn(-1) }, "Earlier");
   const after = el("button", { type: "button", onclick: () => turn(1) }, "Later");
-  const pane = el("section", { class: "listing", hidden: true, "aria-label": "Listing of events" },
+  const pane = el("section", { class: "listing", id: "listing", hidden: true, role: "tabpanel", "aria-labelledby": "tab-listing" },
+    el("h2", { class: "unseen" }, "Listing of events"),
     el("div", { class: "part" }, head, before, after), list);
   root.append(pane);
 

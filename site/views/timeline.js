@@ -36,8 +36,8 @@ export function timelineView(root, store, ask, catalogue, over) {
   const pin = el("div", { class: "pin", hidden: true, "aria-hidden": "true" });
   const paper = el("div", { class: "paper" }, canvas, pin, hair, over);
   const pane = el("div", {
-    id: "timeline", class: "timeline", tabIndex: 0, role: "group",
-    "aria-label": "Timeline. Arrow keys pan, comma and full stop walk the events, Alt with an arrow moves the selected one, B tries a beat, question mark lists all keys.",
+    id: "timeline", class: "timeline", tabIndex: 0, role: "application", "aria-roledescription": "timeline",
+    "aria-label": "Timeline. Arrow keys pan, comma and full stop walk the events, Alt with an arrow moves the selected one, B tries a beat, G tells why no stimulus came, question mark lists all keys.",
     onkeydown: (/** @type {KeyboardEvent} */ e) => hand.keys(e) || timelineKeys(e, store),
     onscroll: () => hideHair(),
   }, paper);

@@ -76,8 +76,18 @@ export function toolbarView(root, store, catalogue, tools) {
   const gains = GAINS.map((gain) => press(String(gain), () => set({ mm_per_mv: gain }), `${gain} millimetres a millivolt`));
   const ladders = /** @type {const} */ (["plain", "full"]).map((l) => press(l, () => set({ ladder: l, ladder_chosen: true }), l === "plain" ? "Atria, node, ventricles" : "Every level of the conduction system"));
   const tabs = /** @type {const} */ (["timeline", "listing", "map"]).map((t) => el("button", {
-    type: "button", role: "tab", id: `tab-${t}`, onclick: () => store.set({ tab: t }),
+    type: "button", role: "tab", id: `tab-${t}`, "aria-controls": t, onclick: () => store.set({ tab: t }), onkeydown: turn,
   }, `${t[0].toUpperCase()}${t.slice(1)}`));
+
+  /** Arrows go from tab to tab, as in any list of tabs. @param {KeyboardEvent} e */
+  function turn(e) {
+    const by = e.key === "ArrowRight" ? 1 : e.key === "ArrowLeft" ? -1 : 0;
+    const to = tabs[(tabs.indexOf(/** @type {any} */ (e.target)) + by + tabs.length) % tabs.length];
+    if (by === 0) return;
+    e.preventDefault();
+    to.click();
+    to.focus();
+  }
 
   const bar = el("div", { class: "toolbar" },
     el("button", { type: "button", class: "drawer-open", id: "open-settings", onclick: () => store.set({ drawer: "settings" }) }, "Settings"),
@@ -97,7 +107,10 @@ export function toolbarView(root, store, catalogue, tools) {
     /** @param {State} state @param {Set<string>} changed */
     update(state, changed) {
       if (changed.has("tab")) {
-        tabs.forEach((b) => b.setAttribute("aria-selected", String(b.id === `tab-${state.tab}`)));
+        for (const b of tabs) {
+          b.setAttribute("aria-selected", String(b.id === `tab-${state.tab}`));
+          b.tabIndex = b.id === `tab-${state.tab}` ? 0 : -1;
+        }
         for (const d of drawing) d.toggleAttribute("hidden", state.tab !== "timeline");
       }
       if (!changed.has("view") && !changed.has("answer")) return;
