@@ -128,7 +128,7 @@ function build(catalogue, found) {
     timelineView(part("centre"), store, ask, catalogue, [calipers.over]),
     listingView(part("centre"), store, engine),
     mapView(part("centre"), store, catalogue, new URL("engine/worker.js", import.meta.url)),
-    accountView(part("account"), store, settings.focusSetting, before, overview.jump),
+    accountView(part("account"), store, settings.focusSetting, before, overview.jump, catalogue),
     trialView(part("account"), store, ask),
     overview, calipers, before,
     drawersView(part("settings"), part("account"), store),

@@ -149,25 +149,26 @@ func counted(r *measure.Device) []Number {
 		{Name: "ventricular_paced_percent", Label: "ventricle paced", Value: r.VentricularPaced, Unit: "%", Help: "VP of VS and VP."},
 		{Name: "av_synchronous_percent", Label: "AV synchronous", Value: r.Synchronous, Unit: "%", Help: "QRS complexes with a P at most 300 ms before them (Circulation 2024;150:439)."},
 		{Name: "as_count", Label: "AS, P sensed", Value: atrium(r.AS), Help: "Atrial signals that the timing used."},
-		{Name: "ap_count", Label: "AP, atrial stimuli", Value: atrium(r.AP)},
+		{Name: "ap_count", Label: "AP, atrial stimuli", Value: atrium(r.AP), Help: "Stimuli in the atrium."},
 		{Name: "vs_count", Label: "VS, R sensed", Value: ventricle(r.VS), Help: "Ventricular signals that the timing used."},
-		{Name: "vp_count", Label: "VP, ventricular stimuli", Value: ventricle(r.VP)},
+		{Name: "vp_count", Label: "VP, ventricular stimuli", Value: ventricle(r.VP), Help: "Stimuli in the ventricle."},
 		{Name: "longest_without_qrs_ms", Label: "longest without QRS", Value: &r.Longest, Unit: "ms", Help: "Between QRS complexes, or to an end of the strip."},
 		{Name: "atrial_refractory_count", Label: "atrial, refractory", Value: some(r.RefractoryA), Help: "Atrial signals in refractory periods."},
 		{Name: "ventricular_refractory_count", Label: "ventricular, refractory", Value: some(r.RefractoryV), Help: "Ventricular signals in refractory periods."},
 		{Name: "atrial_blanked_count", Label: "atrial, not heard", Value: some(r.BlankedA), Help: "Atrial depolarisations in blanking periods."},
 		{Name: "ventricular_blanked_count", Label: "ventricular, not heard", Value: some(r.BlankedV), Help: "Ventricular depolarisations in blanking periods."},
-		{Name: "atrial_no_capture_count", Label: "AP without capture", Value: some(r.LostA)},
-		{Name: "ventricular_no_capture_count", Label: "VP without capture", Value: some(r.LostV)},
-		{Name: "fusion_count", Label: "fusion beats", Value: some(r.Fusion)},
-		{Name: "pseudofusion_count", Label: "pseudofusion beats", Value: some(r.Pseudofusion)},
-		{Name: "safety_stimulus_count", Label: "safety stimuli", Value: some(r.Safety)},
-		{Name: "noise_count", Label: "noise", Value: some(r.Noise)},
-		{Name: "mode_change_count", Label: "mode changes", Value: some(r.ModeChanges)},
+		{Name: "atrial_no_capture_count", Label: "AP without capture", Value: some(r.LostA), Help: "Atrial stimuli that no P followed."},
+		{Name: "ventricular_no_capture_count", Label: "VP without capture", Value: some(r.LostV), Help: "Ventricular stimuli that no QRS followed."},
+		{Name: "fusion_count", Label: "fusion beats", Value: some(r.Fusion), Help: "QRS complexes that a stimulus and the heart made together."},
+		{Name: "pseudofusion_count", Label: "pseudofusion beats", Value: some(r.Pseudofusion), Help: "Stimuli within a QRS that the heart made itself."},
+		{Name: "safety_stimulus_count", Label: "safety stimuli", Value: some(r.Safety), Help: "Early ventricular stimuli after a signal in the crosstalk window."},
+		{Name: "noise_count", Label: "noise", Value: some(r.Noise), Help: "Signals that were taken for noise."},
+		{Name: "mode_change_count", Label: "mode changes", Value: some(r.ModeChanges), Help: "How often the device changed its mode."},
 	}
 	out := []Number{}
 	for _, n := range list {
 		if n.Value != nil {
+			n.Source = modelled
 			out = append(out, n)
 		}
 	}

@@ -47,12 +47,12 @@ func Measured(s *measure.Summary) []Number {
 		{"pr_ms", "PR", s.PR, "ms", between(120, 200), "Start of P to the first ventricular activation it led to.", statpearls},
 		{"p_ms", "P", s.P, "ms", between(60, 120), "Duration in all leads together.", "Upper limit: consensus on interatrial block, Bayes de Luna et al., 2012; lower end common practice."},
 		{"qrs_ms", "QRS", s.QRS, "ms", between(70, 110), "Duration in all leads together.", aha3},
-		{"qt_ms", "QT", s.QT, "ms", nil, "Start of QRS to end of T in all leads together.", ""},
+		{"qt_ms", "QT", s.QT, "ms", nil, "Start of QRS to end of T in all leads together; what is normal depends on the rate, see QTcF.", practice},
 		{"qtc_fridericia_ms", "QTcF", s.Fridericia, "ms", between(350, 450), "QT corrected by Fridericia: divided by the cube root of RR in seconds.", aha4},
 		{"qrs_axis_deg", "QRS axis", s.QRSAxis, "°", between(-30, 90), "In the frontal plane, by area.", aha3},
 		{"p_axis_deg", "P axis", s.PAxis, "°", between(0, 75), "In the frontal plane, by area.", "Common practice."},
 		{"ah_ms", "AH", s.AH, "ms", between(55, 125), "Low atrial septum to His bundle.", alboni},
 		{"hv_ms", "HV", s.HV, "ms", between(35, 55), "His bundle to the first ventricular activation.", alboni},
-		{"va_ms", "VA", s.VA, "ms", nil, "First ventricular activation to the activation of the right atrium that it led to.", ""},
+		{"va_ms", "VA", s.VA, "ms", nil, "First ventricular activation to the activation of the right atrium that it led to.", modelled},
 	}
 }

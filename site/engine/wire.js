@@ -25,6 +25,7 @@
 
 /** @typedef {{name: string, title: string, note: string, plan: any}} Preset */
 /** @typedef {{name: string, label: string}} SiteName */
+/** @typedef {{name: string, text: string, normal: string, source: string}} Meaning */
 /** @typedef {{name: string, label: string, unit?: string, kind: "number" | "word" | "words", help: string, source?: string, slow?: boolean}} Outcome what a run comes to; see engine/plan */
 
 /**
@@ -54,6 +55,7 @@
  * @property {SiteName[]} sites
  * @property {SiteName[]} lanes electrograms and action potentials that a view may show
  * @property {Outcome[]} outcomes of a run, which a sweep may ask for
+ * @property {Meaning[]} meanings of sums, intervals, rows of a comparison and findings
  * @property {string[]} modes of pacing, without the letters for rate modulation and multisite pacing
  * @property {{light: Styles, dark: Styles}} styles
  * @property {{plain: number, full: number}} margins_mm what a scene needs beside its time axis

@@ -92,6 +92,7 @@ const STATES = [
     await page.click("#tab-listing");
     await page.waitForSelector(".lines li");
   } },
+  { name: "map, not yet run", reach: (page) => page.click("#tab-map") },
   { name: "settings unfolded, with a table of settings", reach: async (page) => {
     await openPreset(page, DEVICE);
     await page.evaluate(() => document.querySelectorAll("#settings details").forEach((d) => { /** @type {HTMLDetailsElement} */ (d).open = true; }));

@@ -5,6 +5,7 @@ import { el, fill } from "../base/dom.js";
 import { num, seconds } from "../base/format.js";
 import { reveal } from "../model/view.js";
 import { deviceParts } from "./arithmetic.js";
+import { meaningView } from "./meaning.js";
 import { rangeBar, verdict } from "./range.js";
 
 /**
@@ -25,14 +26,16 @@ const MOST_LED = 12; // consequences listed
  * @param {(path: string) => void} focusSetting
  * @param {import("./before.js").BeforeView} before
  * @param {(way: {shiftKey: boolean}, finding?: number) => void} jump goes to the next place of a finding
+ * @param {import("../engine/wire.js").Catalogue} catalogue
  */
-export function accountView(root, store, focusSetting, before, jump) {
+export function accountView(root, store, focusSetting, before, jump, catalogue) {
   const title = el("h2", null, "Measured");
   const back = el("button", { type: "button", id: "deselect", onclick: () => store.set({ selected: 0, gap: null, lit: [] }) }, "Measured");
   const shut = el("button", { type: "button", class: "drawer-close", onclick: () => store.set({ drawer: "" }) }, "Close");
   const body = el("div", { class: "account-body" });
-  const device = deviceParts();
   root.append(el("div", { class: "part" }, title, back, shut), body);
+  const means = meaningView(root, catalogue);
+  const device = deviceParts(means);
 
   /** @param {number} id @param {number} t */
   function go(id, t) {
@@ -98,7 +101,7 @@ export function accountView(root, store, focusSetting, before, jump) {
     back.hidden = true;
     if (before.shown(state)) {
       title.textContent = "Differences";
-      fill(body, before.panel(state));
+      fill(body, before.panel(state, means));
       return;
     }
     title.textContent = "Measured";
@@ -109,10 +112,10 @@ export function accountView(root, store, focusSetting, before, jump) {
       answer.device && device.sums(answer.device),
       answer.device && device.counts(answer.device),
       answer.device && el("h3", null, "Medians of the strip"),
-      el("dl", { class: "numbers" }, answer.measured.filter((m) => m.value !== null).map(row).flat()),
+      means.list(el("dl", { class: "numbers" }, answer.measured.filter((m) => m.value !== null).map(row).flat())),
       answer.findings.length > 0 && el("section", null,
         el("h3", null, "Consistent with"),
-        el("ul", { class: "findings" }, answer.findings.map(finding))),
+        means.list(el("ul", { class: "findings" }, answer.findings.map(finding)))),
       el("p", { class: "hint" }, "Press any stroke, wave or bar to read why it came."));
   }
 
@@ -122,7 +125,7 @@ export function accountView(root, store, focusSetting, before, jump) {
     bar.show(m.value, m.normal);
     const how = m.normal && m.value !== null ? verdict(m.value, m.normal) : "normal";
     return [
-      el("dt", { title: m.source ? `${m.help} ${m.source}` : m.help }, m.label),
+      el("dt", null, means.name(m.label, { text: m.help, normal: m.normal ? `${num(m.normal[0], 0)}–${num(m.normal[1], 0)}${m.unit === "°" ? "°" : ` ${m.unit}`}` : "", source: m.source })),
       el("dd", { "data-verdict": how },
         el("span", { class: "value" }, num(m.value ?? NaN, 0)),
         el("span", { class: "unit" }, m.unit),
@@ -147,6 +150,8 @@ export function accountView(root, store, focusSetting, before, jump) {
           }, f.text)
         : el("span", null, f.text),
       places > 1 && el("button", { type: "button", class: "places", "aria-label": `Next of ${places} places: ${f.text}`, title: "Goes to the next place on the strip", onclick: () => jump({ shiftKey: false }, at) }, `next of ${places} places`),
+      " ",
+      means.name("what it means", means.of(`finding:${f.slug}`)),
       f.note && el("p", { class: "aside" }, f.note),
       f.rivals.length > 0 && el("p", { class: "aside" }, `Fits as well: ${f.rivals.join("; ")}.`));
   }
@@ -159,7 +164,10 @@ export function accountView(root, store, focusSetting, before, jump) {
         if (state.account && state.account.event === state.selected) event(state.account);
       } else if (state.gap) gap(state.gap);
       else if (state.answer) measured(state.answer, state);
-      if (changed.has("selected")) body.scrollTop = 0;
+      if (changed.has("selected")) {
+        body.scrollTop = 0;
+        means.clear();
+      }
     },
     destroy() {
       fill(root);

@@ -9,7 +9,8 @@ import { num } from "../base/format.js";
  * @typedef {import("../engine/wire.js").Sum} Sum
  */
 
-export function deviceParts() {
+/** @param {import("./meaning.js").Meanings} means */
+export function deviceParts(means) {
   /** Which parts are unfolded, kept while the numbers change. @type {Record<string, boolean>} */
   const open = { Arithmetic: true, "What the device did": true };
 
@@ -27,27 +28,28 @@ export function deviceParts() {
     sums: (d) => [
       d.warnings.length > 0 && el("ul", { class: "doubts", "aria-label": "Warnings about the settings" },
         d.warnings.map((w) => el("li", null, el("span", { class: "sign", "aria-hidden": "true" }, "▲"), el("span", null, el("span", { class: "unseen" }, "Warning: "), w)))),
-      part("Arithmetic", el("dl", { class: "sums" }, d.arithmetic.map(sum).flat())),
+      part("Arithmetic", means.list(el("dl", { class: "sums" }, d.arithmetic.map((s) => sum(s, means)).flat()))),
     ],
 
     /** @param {Device} d */
     counts: (d) => part("What the device did",
-      el("dl", { class: "counts" }, d.counted.flatMap((c) => [
-        el("dt", { title: c.help }, c.label),
-        el("dd", null, num(c.value ?? NaN, 1), c.unit && el("span", { class: "unit" }, ` ${c.unit}`))])),
-      d.intervals.length > 0 && el("table", { class: "intervals" },
+      means.list(el("dl", { class: "counts" }, d.counted.flatMap((c) => [
+        el("dt", null, means.name(c.label, { text: c.help, normal: "", source: c.source })),
+        el("dd", null, num(c.value ?? NaN, 1), c.unit && el("span", { class: "unit" }, ` ${c.unit}`))]))),
+      d.intervals.length > 0 && means.list(el("table", { class: "intervals" },
         el("thead", null, el("tr", null, ["interval", "count", "median", "from", "to, ms"].map((h) => el("th", { scope: "col" }, h)))),
-        el("tbody", null, d.intervals.map((i) => el("tr", null, el("th", { scope: "row" }, i.name),
-          [i.count, i.median_ms ?? NaN, i.least_ms, i.longest_ms].map((v) => el("td", null, num(v, 0)))))))),
+        el("tbody", null, d.intervals.map((i) => el("tr", null, el("th", { scope: "row" }, means.name(i.name, means.of(`interval:${i.name}`))),
+          [i.count, i.median_ms ?? NaN, i.least_ms, i.longest_ms].map((v) => el("td", null, num(v, 0))))))))),
   };
 }
 
-/** @param {Sum} s */
-function sum(s) {
+/** @param {Sum} s @param {import("./meaning.js").Meanings} means */
+function sum(s, means) {
+  const m = means.of(`sum:${s.name}`);
   return [
-    el("dt", { "data-sum": s.name }, s.label),
+    el("dt", { "data-sum": s.name }, means.name(s.label, m && { ...m, text: `${m.text} ${signs(s.formula)}.`, source: s.source })),
     el("dd", { class: "amount" }, s.text.replace("-", "−"), s.unit && el("span", { class: "unit" }, ` ${s.unit}`)),
-    el("dd", { class: "formula", title: s.source }, `${signs(s.formula)}: ${signs(s.numbers)}`),
+    el("dd", { class: "formula" }, `${signs(s.formula)}: ${signs(s.numbers)}`),
   ];
 }
 

@@ -50,14 +50,14 @@ export function beforeView(store) {
       }, name)));
   }
 
-  /** @param {State} state */
-  function panel(state) {
+  /** @param {State} state @param {import("./meaning.js").Meanings} means */
+  function panel(state, means) {
     const c = state.contrast;
     return [
       tabs(state),
       !c && el("p", { class: "aside" }, state.diagnoses.length > 0 ? "The plan as it stands cannot be computed; there is nothing to compare." : "Comparing."),
       c && sums(c),
-      c && table(c),
+      c && means.list(table(c, means)),
       c && el("p", { class: "panels-foot" },
         el("button", { type: "button", onclick: swap }, "Swap before and after"),
         el("button", { type: "button", onclick: toggle }, "Let go of before")),
@@ -76,15 +76,15 @@ export function beforeView(store) {
         c.first !== 0 && el("button", { type: "button", class: "link", id: "first-difference", onclick: () => store.set({ selected: c.first }) }, "Go to the first")));
   }
 
-  /** @param {Contrast} c */
-  function table(c) {
+  /** @param {Contrast} c @param {import("./meaning.js").Meanings} means */
+  function table(c, means) {
     const parts = [...new Set(c.rows.map((r) => r.part))];
     return el("table", { class: "contrast" },
       el("caption", { class: "unseen" }, "Numbers before and after, and what differs"),
       el("thead", null, el("tr", null, head("what"), head("before"), head("after"), head("change"))),
       parts.map((part) => el("tbody", null,
         el("tr", null, el("th", { scope: "rowgroup", colSpan: 4 }, part)),
-        c.rows.filter((r) => r.part === part).map(row))));
+        c.rows.filter((r) => r.part === part).map((r) => row(r, c, means)))));
   }
 
   /** @param {string} name */
@@ -92,20 +92,29 @@ export function beforeView(store) {
     return el("th", { scope: "col" }, name);
   }
 
-  /** @param {Row} r */
-  function row(r) {
+  /** @param {Row} r @param {Contrast} c @param {import("./meaning.js").Meanings} means */
+  function row(r, c, means) {
+    const name = means.name(r.name, meaningOf(r, means));
     const change = el("td", { class: r.by.length > 9 ? "by long" : "by" }, `${SIGN[r.sign]} ${r.by.replace(/^[+−]/, "")}`.trim());
     if (["Findings", "Warnings"].includes(r.part) && (r.before === "yes" || r.after === "yes")) {
       return el("tr", { "data-sign": r.sign }, el("th", { scope: "row", colSpan: 3 }, r.name), change);
     }
     if (r.part === "Beats") {
-      return el("tr", { "data-sign": r.sign }, el("th", { scope: "row", colSpan: 4 }, `${SIGN[r.sign]} ${r.name}: ${r.before === "" ? `${r.after}, ${r.by}` : r.by}`));
+      return el("tr", { "data-sign": r.sign }, el("th", { scope: "row", colSpan: 4 }, `${SIGN[r.sign]} `.trimStart(), name, `: ${r.before === "" ? `${r.after}, ${r.by}` : r.by}`));
     }
     if (r.part === "Settings" || r.part === "Findings") { // their values are too long for columns
       return el("tr", { "data-sign": r.sign }, el("th", { scope: "row", colSpan: 3 }, el("span", { title: r.place }, r.name),
         el("span", { class: "change" }, `${r.before || "nothing"} → ${r.after || "nothing"}`)), change);
     }
-    return el("tr", { "data-sign": r.sign }, el("th", { scope: "row" }, r.name), value(r.before), value(r.after), change);
+    return el("tr", { "data-sign": r.sign }, el("th", { scope: "row" }, name), value(r.before), value(r.after), change);
+  }
+
+  /** A row is a number of its own, an interval of the device, or a number that is measured. @param {Row} r @param {import("./meaning.js").Meanings} means */
+  function meaningOf(r, means) {
+    const own = means.of(`row:${r.name}`, `interval:${r.name}`);
+    const { answer } = store.get();
+    const n = own ? null : [...(answer?.measured ?? []), ...(answer?.device?.counted ?? [])].find((m) => m.label === r.name);
+    return own ?? (n ? { text: n.help, normal: n.normal ? `${n.normal[0]}–${n.normal[1]} ${n.unit}` : "", source: n.source } : null);
   }
 
   /** @param {string} text */

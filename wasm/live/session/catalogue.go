@@ -5,6 +5,7 @@ import (
 
 	"escapement/engine/field"
 	"escapement/engine/heart"
+	"escapement/engine/numbers"
 	"escapement/engine/pacer"
 	"escapement/engine/plan"
 	"escapement/engine/scene"
@@ -12,12 +13,13 @@ import (
 )
 
 type catalogueReply struct {
-	Fields   []plan.Field   `json:"fields"`
-	Presets  []preset       `json:"presets"`
-	Sites    []site         `json:"sites"`
-	Lanes    []site         `json:"lanes"`    // electrograms and action potentials that a view may show
-	Outcomes []plan.Outcome `json:"outcomes"` // of a run, which a sweep may ask for
-	Modes    []string       `json:"modes"`    // of a device, without letters IV and V
+	Fields   []plan.Field      `json:"fields"`
+	Presets  []preset          `json:"presets"`
+	Sites    []site            `json:"sites"`
+	Lanes    []site            `json:"lanes"`    // electrograms and action potentials that a view may show
+	Outcomes []plan.Outcome    `json:"outcomes"` // of a run, which a sweep may ask for
+	Meanings []numbers.Meaning `json:"meanings"` // of sums, intervals, differences and findings
+	Modes    []string          `json:"modes"`    // of a device, without letters IV and V
 	Styles   struct {
 		Light json.RawMessage `json:"light"`
 		Dark  json.RawMessage `json:"dark"`
@@ -39,7 +41,7 @@ type site struct {
 }
 
 func catalogue() *catalogueReply {
-	r := &catalogueReply{Fields: plan.Catalogue(), Outcomes: plan.Outcomes(), Modes: pacer.Modes}
+	r := &catalogueReply{Fields: plan.Catalogue(), Outcomes: plan.Outcomes(), Modes: pacer.Modes, Meanings: numbers.Meanings()}
 	r.Margins.Plain, r.Margins.Full = marginPlain+edge, marginFull+edge
 	for _, e := range presets.List() {
 		file, ok := presets.Read(e.Name)
