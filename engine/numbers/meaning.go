@@ -81,6 +81,8 @@ var intervals = []Meaning{
 	{"AP-AS", "From an atrial stimulus to the next sensed P.", "", timing},
 	{"AS-AP", "From a sensed P to the next atrial stimulus.", "", timing},
 	{"AS-AS", "From one sensed P to the next.", "", timing},
+	{"V-V", "From one ventricular marker of the device to the next, sensed or stimulated.", "", timing},
+	{"A-A", "From one atrial marker of the device to the next, sensed or stimulated.", "", timing},
 }
 
 // rows of a comparison that are no median of [Measured].

@@ -13,7 +13,7 @@ import { el } from "../base/dom.js";
  * @param {Store} store
  */
 export function drawersView(settings, account, store) {
-  const narrow = matchMedia("(max-width: 1100px)");
+  const narrow = matchMedia("(max-width: 68.75em)");
   const shade = el("div", { class: "drawer-shade", hidden: true, onclick: shut });
   document.body.append(shade);
   /** @type {Element | null} */

@@ -200,5 +200,5 @@ export function timelineView(root, store, ask, catalogue, over) {
 
 /** Whether Settings and Account are drawers. */
 function narrow() {
-  return matchMedia("(max-width: 1100px)").matches;
+  return matchMedia("(max-width: 68.75em)").matches;
 }
