@@ -137,7 +137,7 @@ describe("a map on the page", () => {
     await page.keyboard.type("sinus rate");
     await page.keyboard.press("Enter");
     await settled(page);
-    assert.equal(await page.inputValue('[data-axis="from"]'), "45");
+    assert.equal(await page.inputValue('[data-axis="from"]'), "44");
     await range(page, 0, { from: "60", to: "100", step: "20" });
     await run(page);
     assert.match(await asText(page), /1:1 60 to 100/);
@@ -153,12 +153,12 @@ describe("a map on the page", () => {
     await page.click("#map-mode-search");
     await page.click("#search-run");
     await page.waitForSelector(".search-table");
-    await page.waitForFunction(() => document.querySelector("#search")?.getAttribute("data-run") === "done", null, { timeout: 60000 });
+    await page.waitForFunction(() => document.querySelector("#goal-search")?.getAttribute("data-run") === "done", null, { timeout: 60000 });
     await page.selectOption('[aria-label="Goal 1: outcome"]', "endless_loop");
     await settled(page);
-    assert.equal(await page.isVisible("#search .map-stale"), true);
+    assert.equal(await page.isVisible("#goal-search .map-stale"), true);
     await page.click("#search-run");
-    await page.waitForFunction(() => document.querySelector("#search")?.getAttribute("data-run") === "done" && !document.querySelector(".search.old"), null, { timeout: 60000 });
+    await page.waitForFunction(() => document.querySelector("#goal-search")?.getAttribute("data-run") === "done" && !document.querySelector(".search.old"), null, { timeout: 60000 });
     const best = await page.locator(".search-table tbody tr.chosen td").nth(1).innerText();
     assert.ok(Number(best) >= 320, best); // a loop starts where PVARP is under VA, 320 ms
     await page.click("#search-use");

@@ -29,6 +29,14 @@ export const KEYS = [
     ["Enter", "march the interval along the strip"],
     ["Esc", "calipers off"],
   ]],
+  ["On the map", [
+    ["← → ↑ ↓", "from point to point; with Shift by ten"],
+    ["Home End", "first and last value across; Page Up, Page Down upwards"],
+    ["Enter", "open the strip of the point"],
+    ["A", "keep the point to compare, or let go of it"],
+    ["D", "compare the strips of the kept point and this one"],
+    ["R, Esc", "run the map, cancel it"],
+  ]],
   ["While presenting", [
     ["Space →", "reveal the next beat; Shift → one wave"],
     ["←", "cover the last beat again; Shift ← one wave"],

@@ -38,7 +38,7 @@ export function searchView(store, catalogue, worker, toMap) {
   const stale = el("p", { class: "map-stale", role: "status", hidden: true }, "Searched for an earlier plan or earlier goals: search again.");
   const results = el("div", { class: "search-found" });
   const bar = el("div", { class: "map-progress" }, run, progress, cancel, goOn, says);
-  const node = el("div", { class: "search", id: "search", hidden: true }, form.node, el("div", { class: "search-side" }, bar, faults, stale, results));
+  const node = el("div", { class: "search", id: "goal-search", hidden: true }, form.node, el("div", { class: "search-side" }, bar, faults, stale, results));
   let chosen = 0;
   let told = /** @type {any} */ (null);
 
