@@ -43,6 +43,7 @@ var allowed = map[string][]string{
 	"engine/press":          {"engine/scene"},
 	"engine/signal":         {"engine/event", "engine/lead", "engine/field", "engine/heart", "engine/membrane", "engine/pacer", "engine/plan", "engine/scene"},
 	"engine/study":          {"engine/tick", "engine/event", "engine/plan", "engine/sim"},
+	"engine/manoeuvre":      {"engine/tick", "engine/event", "engine/plan", "engine/sim", "engine/measure", "engine/study"},
 	"engine/numbers":        {"engine/tick", "engine/event", "engine/pacer", "engine/plan", "engine/measure"},
 	"engine/report": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
 		"engine/contrast", "engine/numbers", "engine/scene", "engine/signal"},
@@ -52,7 +53,7 @@ var allowed = map[string][]string{
 	"presets": {},
 	"wasm/live/session": {"engine/tick", "engine/event", "engine/lead", "engine/heart", "engine/pacer", "engine/plan", "engine/sim", "engine/ladder", "engine/field", "engine/measure",
 		"engine/contrast", "engine/account", "engine/handle", "engine/nomenclature", "engine/numbers", "engine/scene", "engine/signal", "engine/study", "presets",
-		"engine/sweep", "engine/search"},
+		"engine/sweep", "engine/search", "engine/manoeuvre"},
 	"wasm/press/service": {"engine/tick", "engine/event", "engine/lead", "engine/plan", "engine/ladder", "engine/numbers", "engine/export", "engine/report", "engine/scene", "engine/signal", "engine/press", "presets"},
 }
 

@@ -11,7 +11,7 @@ import { note } from "../base/timing.js";
 export class Fault extends Error {}
 
 /** @typedef {{json: any, points: Float32Array | null}} Reply */
-/** @typedef {"catalogue" | "compute" | "layout" | "account" | "contrast" | "listing" | "table" | "flip" | "extra" | "scan" | "gap" | "search" | "search_plan"} Op */
+/** @typedef {"catalogue" | "compute" | "layout" | "account" | "contrast" | "listing" | "table" | "flip" | "extra" | "scan" | "gap" | "search" | "search_plan" | "sense" | "against"} Op */
 /**
  * @typedef {object} Request
  * @property {number} number
@@ -24,7 +24,7 @@ export class Fault extends Error {}
 /** @typedef {ReturnType<typeof startEngine>} Engine */
 
 const PATIENCE_MS = 1500; // how long a computation may hold up a newer one
-const ORDER = /** @type {Op[]} */ (["catalogue", "compute", "layout", "account", "contrast", "listing", "table", "extra", "gap", "flip", "scan", "search_plan", "search"]);
+const ORDER = /** @type {Op[]} */ (["catalogue", "compute", "layout", "account", "contrast", "listing", "table", "extra", "gap", "flip", "scan", "search_plan", "search", "sense", "against"]);
 
 /**
  * @param {URL} url of the worker's script

@@ -9,9 +9,11 @@ import (
 	"io"
 	"os"
 	"os/signal"
+	"strconv"
 	"strings"
 	"time"
 
+	"escapement/engine/manoeuvre"
 	"escapement/engine/plan"
 	"escapement/engine/search"
 )
@@ -24,15 +26,20 @@ const searchUsage = `escapement search PLAN: the settings that reach the plan's 
   -budget N            stop after so many runs
   -state FILE          go on from FILE where it is there, and keep the state in it
   -plan N              the plan with combination N; -in SITUATION puts it there
+  -sensitivity N       how far each number of the heart can move before a goal changes
+                       sides, with combination N; -1 for the plan's own settings
+  -against PLAN2       the manoeuvres of the laboratory that two hearts answer most
+                       differently, and maps of their extrastimuli; needs no goals
 
 Each combination that is listed was run in every situation. Where none holds every goal,
 the smallest sets of goals that conflict are listed, with how near each comes.
 `
 
 type searchArgs struct {
-	goals, state, in string
-	most, workers    int
-	budget, point    int
+	goals, state, in     string
+	against, sensitivity string
+	most, workers        int
+	budget, point        int
 }
 
 func searchFlags(args []string) (*searchArgs, error) {
@@ -42,6 +49,8 @@ func searchFlags(args []string) (*searchArgs, error) {
 	f.StringVar(&a.goals, "goals", "", "")
 	f.StringVar(&a.state, "state", "", "")
 	f.StringVar(&a.in, "in", "", "")
+	f.StringVar(&a.against, "against", "", "")
+	f.StringVar(&a.sensitivity, "sensitivity", "", "")
 	f.IntVar(&a.most, "most", 20, "")
 	f.IntVar(&a.workers, "j", 0, "")
 	f.IntVar(&a.budget, "budget", 0, "")
@@ -73,6 +82,9 @@ func runSearch(args []string, in io.Reader, out, notes io.Writer) error {
 	if err != nil {
 		return err
 	}
+	if a.against != "" {
+		return a.compare(p, in, out)
+	}
 	if a.goals != "" {
 		b, err := os.ReadFile(a.goals)
 		if err != nil {
@@ -85,6 +97,9 @@ func runSearch(args []string, in io.Reader, out, notes io.Writer) error {
 	s, err := search.New(p)
 	if err != nil {
 		return err
+	}
+	if a.sensitivity != "" {
+		return a.sense(s, out)
 	}
 	if a.point >= 0 || a.in != "" {
 		return a.open(s, out)
@@ -153,4 +168,36 @@ func (a *searchArgs) keep(st *search.State) error {
 		return err
 	}
 	return os.WriteFile(a.state, b, 0o644)
+}
+
+// compare does the manoeuvres of the laboratory on two plans.
+func (a *searchArgs) compare(p *plan.Plan, in io.Reader, out io.Writer) error {
+	other, err := read(a.against, in)
+	if err != nil {
+		return err
+	}
+	c, err := manoeuvre.Compare(p, other, manoeuvre.Usual(), a.most)
+	if err != nil {
+		return err
+	}
+	return writeJSON(out, c)
+}
+
+// sense moves each number of the heart.
+func (a *searchArgs) sense(s *search.Search, out io.Writer) error {
+	n, err := strconv.Atoi(a.sensitivity)
+	if err != nil || n < -1 || n >= s.Len() {
+		return &usageError{fmt.Sprintf("-sensitivity is %q; allowed: a combination from 0 to %d, or -1", a.sensitivity, s.Len()-1)}
+	}
+	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt)
+	defer stop()
+	var rows []*search.Sensed
+	for _, p := range s.Probes(nil) {
+		x, err := s.Sense(ctx, p, n)
+		if err != nil {
+			return err
+		}
+		rows = append(rows, x)
+	}
+	return writeJSON(out, s.Sensitivity(rows, n))
 }

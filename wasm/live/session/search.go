@@ -14,6 +14,8 @@ type searching struct {
 	file   []byte
 	search *search.Search
 	state  *search.State
+
+	sensing *sensing // nil until it was asked how far the heart may move
 }
 
 // searched is the reply of search. Diagnoses are those of the plan or its goals.

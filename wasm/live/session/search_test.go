@@ -91,3 +91,43 @@ func TestASearchThatCannotBeIsDiagnosed(t *testing.T) {
 		})
 	}
 }
+
+// A sensitivity in parts is that of one call.
+func TestASensitivityInParts(t *testing.T) {
+	file, _ := presets.Read("goals-treadmill-shorter-av")
+	ask := func(s *Session, count int) sensedReply {
+		b, _ := s.Call("sense", []byte(fmt.Sprintf(`{"plan":%s,"combination":27,"count":%d,"numbers":["heart.av_node.fast.va_ms","heart.sinus.rate_bpm","heart.atria.erp_ms"]}`, file, count)))
+		var r sensedReply
+		if err := json.Unmarshal(b, &r); err != nil || !r.OK {
+			t.Fatalf("%s (%v)", b, err)
+		}
+		return r
+	}
+	whole := ask(New(), 100)
+	s, n := New(), 0
+	for {
+		r := ask(s, 2)
+		if n++; r.Done < r.Of {
+			continue
+		}
+		a, _ := json.Marshal(r)
+		b, _ := json.Marshal(whole)
+		if string(a) != string(b) || n < 2 {
+			t.Errorf("in %d parts\n%s\nin one\n%s", n, a, b)
+		}
+		return
+	}
+}
+
+func TestTwoHeartsAreCompared(t *testing.T) {
+	a, _ := presets.Read("avnrt-overdrive")
+	b, _ := presets.Read("avrt-overdrive")
+	reply, _ := New().Call("against", []byte(fmt.Sprintf(`{"plan":%s,"other":%s,"most":3,"protocol":{"faster_ms":[30],"drives_ms":[400],"couplings_ms":[300]}}`, a, b)))
+	if s := string(reply); !strings.Contains(s, `"ok":true`) || !strings.Contains(s, `"family":"ventricular_overdrive"`) {
+		t.Errorf("%s", s)
+	}
+	reply, _ = New().Call("against", []byte(`{"plan":{},"other":{}}`))
+	if s := string(reply); !strings.Contains(s, "format: nothing") {
+		t.Errorf("%s", s)
+	}
+}

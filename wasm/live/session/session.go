@@ -95,6 +95,10 @@ func (s *Session) Call(op string, args []byte) (reply []byte, points []float32) 
 		return s.search(args), nil
 	case "search_plan":
 		return s.searchPlan(args), nil
+	case "sense":
+		return s.sense(args), nil
+	case "against":
+		return against(args), nil
 	case "boundary":
 		return s.boundary(args), nil
 	case "extra":
