@@ -41,7 +41,7 @@ type Comparison struct {
 	Distance string       `json:"distance"` // how it is reckoned
 	Tried    int          `json:"tried"`
 	Left     []string     `json:"left_out"` // families that could not be done, and why
-	Best     []Difference `json:"best"` // the most different of each family, in the order of Ranked
+	Best     []Difference `json:"best"`     // the most different of each family, in the order of Ranked
 	Ranked   []Difference `json:"ranked"`
 	Zones    [2][]*Zone   `json:"zones"` // by heart: atrial, ventricular
 }
