@@ -14,7 +14,7 @@ import (
 // both sides always stand in it; findings, warnings and settings only where they
 // differ.
 type Row struct {
-	Part   string `json:"part"` // Rates, Paced, Intervals, Counts, Findings, Warnings, Settings
+	Part   string `json:"part"` // in this order: Findings, Warnings, Rates, Paced, Intervals, Counts, Beats, Settings
 	Name   string `json:"name"`
 	Before string `json:"before"` // "none" where the side has no such number, "" for what is not there
 	After  string `json:"after"`
@@ -25,7 +25,9 @@ type Row struct {
 
 func (c *Contrast) table(before, after Side) []Row {
 	b, a := gauge(before.Report, before), gauge(after.Report, after)
-	out := []Row{}
+	// What the strips are consistent with comes first: it is what is argued about.
+	out := append([]Row{}, findings(before.Report, after.Report)...)
+	out = append(out, lists("Warnings", before.Warnings, after.Warnings)...)
 	for i := range b {
 		if b[i].value == nil && a[i].value == nil {
 			continue
@@ -33,8 +35,6 @@ func (c *Contrast) table(before, after Side) []Row {
 		out = append(out, compare(&b[i], a[i].value))
 	}
 	out = append(out, c.moved()...)
-	out = append(out, findings(before.Report, after.Report)...)
-	out = append(out, lists("Warnings", before.Warnings, after.Warnings)...)
 	for _, x := range c.Change {
 		r := Row{Part: "Settings", Name: x.Label, Before: x.Before, After: x.After, By: "changed", Sign: Altered, Place: x.Path}
 		switch {

@@ -109,6 +109,8 @@ func TestWarnings(t *testing.T) {
 		{"W4: upper-rate interval = TARP", func(s *Settings) { s.UpperRate = 150 }, Patient{}, []string{"no_wenckebach"}},
 		{"VA 280", func(*Settings) {}, Patient{VA: ms(280)}, []string{"pvarp_shorter_than_va"}},
 		{"VA 240", func(*Settings) {}, Patient{VA: ms(240)}, []string{"pvarp_close_to_va"}},
+		{"VA not known, PVARP 249", func(s *Settings) { s.PVARP = ms(249) }, Patient{}, []string{"pvarp_short_if_va"}},
+		{"VA 200 known, PVARP 249", func(s *Settings) { s.PVARP = ms(249) }, Patient{VA: ms(200)}, nil},
 		{"17", func(s *Settings) { s.LowerRate, s.PacedAV, s.PVARP = 80, ms(300), ms(300) }, Patient{VA: ms(250), AtrialERP: ms(230)}, []string{"va_synchrony"}},
 		{"18", func(s *Settings) { s.PacedAV, s.PVARP = ms(300), ms(300) }, Patient{VA: ms(250), AtrialERP: ms(230)}, nil},
 		{"19", func(s *Settings) { s.SensedAV, s.PVAB = ms(126), ms(143) }, Patient{Flutter: ms(240)}, []string{"flutter_hidden"}},
