@@ -12,7 +12,7 @@ import { EMPTY } from "./model/document.js";
 import { openShelf } from "./model/kept.js";
 import { decodeLink, PREFIX } from "./model/link.js";
 import { createStore } from "./model/store.js";
-import { FIRST_VIEW } from "./model/view.js";
+import { FIRST_VIEW, withChoices } from "./model/view.js";
 import { takeUp } from "./model/work.js";
 import { accountView } from "./views/account.js";
 import { announceView } from "./views/announce.js";
@@ -114,7 +114,7 @@ function build(catalogue, found) {
     { id: "file-link", label: "Copy link", key: "L", act: file.copyLink },
     { id: "file-picture", label: "Copy picture", key: "I", act: picture.copy },
     { id: "file-present", label: "Present", key: "T", act: present.toggle },
-    { id: "file-screen", label: "Full screen", key: "W", act: picture.fullScreen },
+    { id: "file-screen", label: "Full screen", key: "Z", act: picture.fullScreen },
   ]);
   const before = beforeView(store);
   const calipers = calipersView(store);
@@ -149,7 +149,7 @@ function build(catalogue, found) {
     "ctrl p": print.open,
     i: picture.copy,
     t: present.toggle,
-    w: picture.fullScreen,
+    z: picture.fullScreen,
     m: calipers.toggle,
     n: overview.jump,
   });
@@ -183,7 +183,7 @@ async function opening() {
   const found = await takeUp(shelf, () => sessionStorage, navigator.locks, linked);
   const { work } = found;
   const kept = work?.kept ? shelf.read("kept", work.kept.id) : null;
-  if (work) store.set({ plan: work.plan, preset: work.preset, kept: work.kept && kept && "plan" in kept ? { ...work.kept, title: kept.title } : null });
+  if (work) store.set({ view: withChoices(store.get().view, work.view), plan: work.plan, preset: work.preset, kept: work.kept && kept && "plan" in kept ? { ...work.kept, title: kept.title } : null });
   return found;
 }
 

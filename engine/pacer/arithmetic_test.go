@@ -133,7 +133,7 @@ func TestWarnings(t *testing.T) {
 		{"a switch that sinus can reach", func(s *Settings) { s.Switch.Rate = 110 }, Patient{}, []string{"switch_below_upper_rate"}},
 		{"far field after PVAB; Heart Rhythm abstract, read", func(s *Settings) { s.PVAB = ms(60) }, Patient{FarField: ms(110)}, []string{"far_field_counted"}},
 		{"far field within PVAB", func(s *Settings) { s.PVAB = ms(111) }, Patient{FarField: ms(110)}, nil},
-		{"far field after PVARP", func(s *Settings) { s.PVARP = ms(200) }, Patient{FarField: ms(210)}, []string{"far_field_tracked"}},
+		{"far field after PVARP", func(s *Settings) { s.PVARP = ms(200) }, Patient{FarField: ms(210)}, []string{"pvarp_short_if_va", "far_field_tracked"}},
 		{"T wave after the refractory period", func(*Settings) {}, Patient{TWave: ms(320)}, []string{"t_wave_sensed"}},
 		{"T wave within it", func(s *Settings) { s.VentricularRefractory = ms(350) }, Patient{TWave: ms(320)}, nil},
 		{"crosstalk, safe", func(*Settings) {}, Patient{Cross: ms(45)}, []string{"crosstalk"}},

@@ -16,6 +16,7 @@ import { readPlan } from "./document.js";
  * @property {Plan} plan
  * @property {boolean} idle a working copy that holds nothing of its own
  * @property {{id: string, stamp: string} | null} kept the kept plan that a working copy came from
+ * @property {unknown} [view] choices of the view of a working copy
  */
 
 /** @typedef {{id: string, raw: string}} Unreadable */
@@ -53,7 +54,7 @@ export function openShelf(open) {
       if (r.format !== FORMAT || typeof r.title !== "string" || !Number.isFinite(r.saved) || typeof r.stamp !== "string") return { id, raw };
       const { plan } = readPlan(JSON.stringify(r.plan));
       const from = r.kept && typeof r.kept.id === "string" && typeof r.kept.stamp === "string" ? { id: r.kept.id, stamp: r.kept.stamp } : null;
-      return { id, title: r.title, saved: r.saved, stamp: r.stamp, preset: String(r.preset ?? ""), plan, idle: r.idle === true, kept: from };
+      return { id, title: r.title, saved: r.saved, stamp: r.stamp, preset: String(r.preset ?? ""), plan, idle: r.idle === true, kept: from, view: r.view };
     } catch {
       return { id, raw };
     }
@@ -75,9 +76,9 @@ export function openShelf(open) {
       if (there && there.stamp !== over) return { ok: false, why: "changed", saved: there.saved };
     }
     const stamp = fresh();
-    const { title = "", preset = "", plan, idle = false, kept = null } = what;
+    const { title = "", preset = "", plan, idle = false, kept = null, view } = what;
     try {
-      s.setItem(stem(kind) + id, JSON.stringify({ format: FORMAT, title, saved: Date.now(), stamp, preset, plan, idle, kept }));
+      s.setItem(stem(kind) + id, JSON.stringify({ format: FORMAT, title, saved: Date.now(), stamp, preset, plan, idle, kept, view }));
     } catch {
       return { ok: false, why: "full" };
     }

@@ -34,6 +34,38 @@ export const FIRST_VIEW = { t0_ms: 0, width_mm: 200, height_mm: 140, mm_per_s: 2
 /** A sheet as high as this, in CSS pixels, has room for every level of the ladder. */
 const FULL_FROM_PX = 760;
 
+/** What of a view is chosen by hand and comes back after a reload; where one looks and how much room there is do not. */
+const CHOICES = /** @type {const} */ (["mm_per_mv", "lanes", "leads", "paper", "egm_gain", "ladder", "ladder_chosen", "no_device"]);
+
+/** The choices of a view, to be kept. @param {View} v @returns {Partial<View>} */
+export function choices(v) {
+  return Object.fromEntries(CHOICES.map((k) => [k, v[k]]));
+}
+
+/**
+ * A view with choices that were kept. What is not of the right kind is left out: the
+ * text may have been written by another version of the page.
+ * @param {View} v
+ * @param {unknown} kept
+ * @returns {View}
+ */
+export function withChoices(v, kept) {
+  if (typeof kept !== "object" || kept === null) return v;
+  const texts = (/** @type {unknown} */ list) => Array.isArray(list) && list.every((x) => typeof x === "string");
+  const known = CHOICES.filter((k) => {
+    const value = /** @type {any} */ (kept)[k];
+    return Array.isArray(v[k]) ? texts(value) : typeof value === typeof v[k];
+  });
+  const out = { ...v, ...Object.fromEntries(known.map((k) => [k, /** @type {any} */ (kept)[k]])) };
+  if (out.paper !== "" && !PAPERS.includes(out.paper)) out.paper = v.paper;
+  if (out.ladder !== "plain" && out.ladder !== "full") out.ladder = v.ladder;
+  if (!GAINS.includes(out.mm_per_mv)) out.mm_per_mv = v.mm_per_mv;
+  if (!(out.egm_gain > 0 && out.egm_gain <= 100)) out.egm_gain = v.egm_gain;
+  const leads = out.lanes.filter((l) => l.startsWith("lead:")).map((l) => l.slice(5));
+  const kinds = out.lanes.every((l) => /^(lead|egm|membrane):|^(axis|ladder|device)$/.test(l));
+  return kinds && out.lanes.length > 0 && leads.length === out.leads.length && leads.every((l) => LEADS.includes(l) && out.leads.includes(l)) ? out : { ...out, lanes: v.lanes, leads: v.leads };
+}
+
 /**
  * The ladder's form for a sheet of a height.
  * @param {View} v

@@ -15,8 +15,8 @@ describe("the hand on the timeline", () => {
       return (await ink(page)).marks;
     };
     const before = await marks();
-    await page.click(".pop summary");
-    await page.click("text=all twelve");
+    await page.click(".toolbar .pop summary");
+    await page.click('.toolbar .choices button:text-is("all twelve")');
     assert.ok((await marks()) > before);
     await page.click('.group >> text="full"');
     await page.click('[title="50 millimetres a second"]');
@@ -29,14 +29,14 @@ describe("the hand on the timeline", () => {
   test("selecting an event shows its account, and the chain walks back to a focus", () => onPage(async (page) => {
     await openPreset(page, "wenckebach-4-3");
     await walkTo(page, "block");
-    const said = await page.innerText(".sentences");
+    const said = await page.innerText(".account-body .sentences");
     assert.ok(said.length > 30 && /\d/.test(said), said);
     const steps = page.locator(".chain button");
     const many = await steps.count();
     assert.ok(many >= 2, `${many} steps`);
     await steps.last().click();
     await settled(page);
-    assert.match((await page.innerText("#account h2")) + (await page.innerText(".sentences")), /sinus/i);
+    assert.match((await page.innerText("#account h2")) + (await page.innerText(".account-body .sentences")), /sinus/i);
     await page.click("#deselect");
     await settled(page);
     assert.equal(await page.innerText("#account h2"), "Measured");

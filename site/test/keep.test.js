@@ -54,6 +54,17 @@ describe("the working copy", () => {
     assert.equal(await page.inputValue(AH), "141");
   }));
 
+  test("leads, gain and ladder chosen by hand are there after a reload", () => onPage(async (page) => {
+    await page.click('.toolbar .pop summary');
+    await page.click('.toolbar .choices button:text-is("II")');
+    await page.click('[title="20 millimetres a millivolt"]');
+    await settled(page);
+    await page.reload();
+    await settled(page);
+    assert.equal(await page.getAttribute('[title="20 millimetres a millivolt"]', "aria-pressed"), "true");
+    assert.equal(await page.innerText(".toolbar .pop .chosen"), "II");
+  }));
+
   test("a closed tab's plan comes back; two living tabs have one each", () => withPerson(async (context, url) => {
     const a = (await openPage(context, url)).page;
     await settled(a);

@@ -9,7 +9,7 @@ import { flipLog } from "../model/flips.js";
 import * as handles from "../model/handle.js";
 import { covers, drop, dropWithin, get, put, steps } from "../model/path.js";
 import { createStore } from "../model/store.js";
-import { FIRST_VIEW, fitSpeed, ladderFor, onStrip, pan, reveal, shown, zoomTo } from "../model/view.js";
+import { choices, FIRST_VIEW, fitSpeed, ladderFor, onStrip, pan, reveal, shown, withChoices, zoomTo } from "../model/view.js";
 import { headingOf, idle, modeWords } from "../views/device.js";
 import { fraction, valueAt, verdict } from "../views/range.js";
 
@@ -274,4 +274,15 @@ test("an outcome's flip stands between two values that were seen, and is then kn
   assert.deepEqual(log.flips().map((f) => [f.low, f.high, f.below, f.above, f.exact]), [[260, 280, "Tracked 1:1", "Every other P in PVARP", false]]);
   log.found(260, 280, 274, 275);
   assert.deepEqual(log.known().map((f) => [f.low, f.high, f.exact]), [[274, 275, true]]);
+});
+
+test("choices of a view are kept, where one looks is not, and what is not of the right kind is left out", () => {
+  const chosen = { ...FIRST_VIEW, t0_ms: 4000, lanes: ["lead:II", "ladder"], leads: ["II"], mm_per_mv: 20, ladder: /** @type {const} */ ("full"), ladder_chosen: true };
+  const kept = JSON.parse(JSON.stringify(choices(chosen)));
+  assert.deepEqual(withChoices(FIRST_VIEW, kept), { ...chosen, t0_ms: 0 });
+  for (const [name, odd] of /** @type {[string, any][]} */ ([
+    ["nothing", undefined], ["null", null], ["a text", "x"], ["a paper that is not known", { paper: "9x9" }], ["a gain of nothing", { mm_per_mv: 0 }],
+    ["no lanes", { lanes: [], leads: [] }], ["lanes that are no texts", { lanes: [1], leads: ["II"] }], ["leads that are no lanes", { leads: ["aVR"] }],
+    ["a lead that is not known", { lanes: ["lead:X"], leads: ["X"] }], ["a ladder that is not known", { ladder: "tall" }], ["a lane of an unknown kind", { lanes: ["lead:II", "odd:1"], leads: ["II"] }],
+  ])) assert.deepEqual(withChoices(FIRST_VIEW, odd), FIRST_VIEW, name);
 });

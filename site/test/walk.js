@@ -112,3 +112,56 @@ export async function ringAt(page) {
   assert.ok(box && ring, "no ring was found");
   return { x: box.x + ring.x, y: box.y + ring.y + 2 };
 }
+
+/** What a field of the settings holds. @param {Page} page @param {string} path */
+export const value = (page, path) => page.inputValue(`[data-field="${path}"]`);
+
+/**
+ * Moves the pointer over a part of the sheet until the tip begins with some words.
+ * @param {Page} page @param {string} words @param {{from?: number, to?: number, top?: number}} [where] in shares of the sheet
+ */
+export async function findHandle(page, words, { from = 0.45, to = 0.8, top = 0.4 } = {}) {
+  const box = await page.locator("#timeline canvas").boundingBox();
+  assert.ok(box);
+  const spot = await page.evaluate(({ words, from, to, top }) => {
+    const canvas = /** @type {HTMLCanvasElement} */ (document.querySelector("#timeline canvas"));
+    const tip = /** @type {HTMLElement} */ (document.querySelector(".tip"));
+    const b = canvas.getBoundingClientRect();
+    const foot = Math.min(b.bottom, innerHeight) - 3;
+    for (let y = foot; y > b.top + top * b.height; y -= 3) {
+      for (let x = b.left + from * b.width; x < b.left + to * b.width; x += 4) {
+        canvas.dispatchEvent(new PointerEvent("pointermove", { clientX: x, clientY: y, pointerType: "mouse", pointerId: 1, bubbles: true }));
+        if (!tip.hidden && tip.textContent?.startsWith(words)) return { x, y };
+      }
+    }
+    return null;
+  }, { words, from, to, top });
+  assert.ok(spot, `nothing on the sheet moves ${words}`);
+  await page.mouse.move(spot.x, spot.y);
+  assert.ok((await page.innerText(".tip")).startsWith(words));
+  return spot;
+}
+
+/** Presses twice on an empty place in the upper part of the ladder. @param {Page} page @param {number} share of the sheet's width */
+export async function tryBeat(page, share) {
+  const box = await page.locator("#timeline canvas").boundingBox();
+  assert.ok(box);
+  const spot = await page.evaluate(({ share }) => {
+    const canvas = /** @type {HTMLCanvasElement} */ (document.querySelector("#timeline canvas"));
+    const ghost = /** @type {HTMLElement} */ (document.querySelector(".ghost"));
+    const b = canvas.getBoundingClientRect();
+    const x = b.left + share * b.width;
+    for (let y = b.top + 0.3 * b.height; y < b.bottom; y += 6) {
+      canvas.dispatchEvent(new PointerEvent("pointermove", { clientX: x, clientY: y, pointerType: "mouse", pointerId: 1, bubbles: true }));
+      if (!ghost.hidden) return { x, y };
+    }
+    return null;
+  }, { share });
+  assert.ok(spot, "no empty place in a tier");
+  await page.mouse.click(spot.x, spot.y);
+  await settled(page);
+  assert.equal(await page.isVisible("#deselect"), false, "one press selects nothing and tries nothing");
+  await page.mouse.click(spot.x, spot.y);
+  await settled(page);
+  await page.waitForSelector(".outcome:not([hidden])");
+}

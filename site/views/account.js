@@ -106,9 +106,11 @@ export function accountView(root, store, focusSetting, before, jump, catalogue) 
     }
     title.textContent = "Measured";
     const note = String(state.plan.note || answer.note || "");
+    const preset = catalogue.presets.find((p) => p.name === state.preset);
+    const old = preset !== undefined && preset.plan !== state.plan && preset.plan.note === state.plan.note; // its numbers may no longer hold
     fill(body,
       before.tabs(state),
-      note && el("section", { class: "look" }, el("h3", null, "Look for"), el("p", null, note)),
+      note && el("section", { class: "look" }, el("h3", null, old ? "Look for, in the preset as it was" : "Look for"), el("p", null, note)),
       answer.device && device.sums(answer.device),
       answer.device && device.counts(answer.device),
       answer.device && el("h3", null, "Medians of the strip"),

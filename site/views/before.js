@@ -96,6 +96,7 @@ export function beforeView(store) {
   function row(r, c, means) {
     const name = means.name(r.name, meaningOf(r, means));
     const change = el("td", { class: r.by.length > 9 ? "by long" : "by" }, `${SIGN[r.sign]} ${r.by.replace(/^[+−]/, "")}`.trim());
+    if (r.sign === "altered" && r.by === "changed") change.replaceChildren(el("span", { "aria-hidden": "true" }, SIGN.altered), el("span", { class: "unseen" }, r.by));
     if (["Findings", "Warnings"].includes(r.part) && (r.before === "yes" || r.after === "yes")) {
       return el("tr", { "data-sign": r.sign }, el("th", { scope: "row", colSpan: 3 }, r.name), change);
     }

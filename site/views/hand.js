@@ -132,7 +132,7 @@ export function handView(paper, store, ask, place, reach) {
     const from = /** @type {Handle} */ (move.moved());
     const value = later({ ...from, value: move.value() }, steps);
     move.to(value);
-    show(from, value, value === h.max ? "most" : value === h.min ? "least" : "");
+    show(from, value);
     clearTimeout(keyed);
     keyed = window.setTimeout(() => {
       keyed = 0;
@@ -141,13 +141,14 @@ export function handView(paper, store, ask, place, reach) {
     }, 1500);
   }
 
-  /** @param {Handle} h @param {number} value @param {string} limit */
-  function show(h, value, limit) {
+  /** @param {Handle} h @param {number} value */
+  function show(h, value) {
     const { scene, diagnoses } = store.get();
     if (!scene) return;
     const now = move.now();
     const at = h.fixed && now ? now.t_ms : timeOf(h, value);
     const refused = diagnoses[0];
+    const limit = value >= h.max ? "most" : value <= h.min ? "least" : "";
     const words = `${told({ ...h, coupling_ms: now?.coupling_ms ?? -1 }, value)}${limit ? `, the ${limit} that is allowed` : ""}`;
     over.grip(scene, { ...h, ...(now ? { y0: now.y0, y1: now.y1 } : {}), t_ms: at }, refused ? `${words}: ${refused.note || refused.text}` : words);
   }
@@ -168,9 +169,9 @@ export function handView(paper, store, ask, place, reach) {
       const h = move.held();
       if (!h || !scene || !answer) return;
       const ms = Math.min(Math.max(timeAt(scene, place(e).x) - off, 0), answer.span_ms);
-      const { value, limit } = valueAt(h, ms, stepFor(h, (scene.axis.mm_per_s * PX_PER_MM) / 1000));
+      const { value } = valueAt(h, ms, stepFor(h, (scene.axis.mm_per_s * PX_PER_MM) / 1000));
       move.to(value);
-      show(h, value, limit);
+      show(h, value);
     },
 
     /** @param {boolean} back */
@@ -252,7 +253,7 @@ export function handView(paper, store, ask, place, reach) {
         selectWanted();
         showFlips();
         const h = move.moved();
-        if (h && (move.held() || keyed)) show(h, move.value(), valueAt(h, timeOf(h, move.value())).limit);
+        if (h && (move.held() || keyed)) show(h, move.value());
       }
     },
 

@@ -1,6 +1,7 @@
 // Keeps the working copy of this tab as it changes, and tells when that fails.
 
 import { whenQuiet } from "../base/frame.js";
+import { choices } from "../model/view.js";
 import { idle } from "../model/work.js";
 import { download } from "./file.js";
 
@@ -26,10 +27,10 @@ export function keepWork(store, shelf, found, notices, presets, acts) {
   function write() {
     if (!due) return;
     due = false;
-    const { plan, preset, kept } = store.get();
+    const { plan, preset, kept, view } = store.get();
     const held = kept ? shelf.read("kept", kept.id) : null;
     const known = [presets.find((p) => p.name === preset)?.plan, held && "plan" in held ? held.plan : null];
-    const outcome = shelf.write("working", found.tab, { plan, preset, kept: kept ? { id: kept.id, stamp: kept.stamp } : null, title: String(plan.title ?? ""), idle: idle(plan, known) });
+    const outcome = shelf.write("working", found.tab, { plan, preset, kept: kept ? { id: kept.id, stamp: kept.stamp } : null, title: String(plan.title ?? ""), idle: idle(plan, known), view: choices(view) });
     lost = !outcome.ok && !idle(plan, known);
     if (outcome.ok) {
       notices.clear("storage");
@@ -44,8 +45,11 @@ export function keepWork(store, shelf, found, notices, presets, acts) {
   }
   const later = whenQuiet(300, write);
 
-  const unsubscribe = store.subscribe((_state, changed) => {
-    if (!["plan", "preset", "kept"].some((k) => changed.has(k))) return;
+  let chosen = JSON.stringify(choices(store.get().view));
+  const unsubscribe = store.subscribe((state, changed) => {
+    const now = changed.has("view") ? JSON.stringify(choices(state.view)) : chosen;
+    if (now === chosen && !["plan", "preset", "kept"].some((k) => changed.has(k))) return;
+    chosen = now;
     due = true;
     later();
   });

@@ -60,7 +60,7 @@ export const KEYS = [
     ["Ctrl P", "print or export; in that dialog: save"],
     ["I", "copy the sheet as a picture"],
     ["T", "present: cover what comes next"],
-    ["W", "full screen"],
+    ["Z", "full screen"],
     ["Ctrl Z", "undo; with Shift, or Ctrl Y, redo"],
     ["?", "this list"],
   ]],
