@@ -73,6 +73,7 @@ golden: need-go ## rewrite the goldens and show what changed
 bench: need-go need-browser site ## benchmarks: work per second and ratios taken in one run
 	$(GO) test -run '^$$' -bench . ./...
 	node site/test/frame.bench.js
+	node site/test/map.bench.js
 
 .PHONY: need-go need-node need-browser need-edf
 need-go:

@@ -120,6 +120,7 @@ export function mapView(root, store, catalogue, worker) {
     kept = -1;
     refined = "";
     fill(bounds);
+    pane.dataset.run = "running"; // the rest of the page follows with the next frame
     sweep.start(plan);
   }
 
@@ -226,6 +227,7 @@ export function mapView(root, store, catalogue, worker) {
     if (state.tab !== "map" || body.hidden) return;
     const running = run?.state === "running";
     pane.dataset.run = run?.state ?? "none";
+    pane.dataset.firstMs = String(Math.round(run?.first_ms ?? 0));
     empty.hidden = run !== null || Boolean(state.plan.sweep?.x);
     cancel.hidden = !running;
     goOn.hidden = run?.state !== "cancelled" && run?.state !== "failed";
