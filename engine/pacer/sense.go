@@ -8,7 +8,7 @@ import (
 // Sense tells the device of a signal above sensitivity on a channel. The id is the
 // sense event's; windows that it opens or ends name it.
 func (d *Device) Sense(now tick.Time, ch Channel, id event.ID) Sensed {
-	d.advance(now)
+	d.Advance(now)
 	if ch == Atrial {
 		return d.senseA(id)
 	}

@@ -72,9 +72,11 @@ func (d *Device) clear(s slot) {
 	d.stale = true
 }
 
-// advance opens the windows that begin in the middle of others up to now, so that a
-// signal at that very instant finds them.
-func (d *Device) advance(now tick.Time) {
+// Advance opens the windows that begin in the middle of others up to now, so that a
+// signal at that very instant finds them. A kernel that numbers what it records calls it
+// before it records the signal, or the window that decides its use would come after it;
+// [Device.Sense] does it in any case.
+func (d *Device) Advance(now tick.Time) {
 	d.now = now
 	for _, s := range [...]slot{slotCrosstalk, slotNoiseV, slotNoiseA} {
 		if dl := d.timers[s]; dl.at <= now {

@@ -121,7 +121,6 @@ func (s *Search) Sense(ctx context.Context, p Probe, combination int) (*Sensed, 
 type mover struct {
 	s        *Search
 	w        *worker
-	room     int
 	settings []plan.Value
 	known    map[float64]string // looked up only
 	runs     int

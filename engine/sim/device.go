@@ -118,6 +118,7 @@ func (v *device) signal(after tick.Dur, ch pacer.Channel, site event.SiteID, cau
 
 // sense gives a signal to the device and records what it did with it.
 func (v *device) sense(site event.SiteID, ch pacer.Channel, cause event.ID) {
+	v.d.Advance(v.m.now)
 	id := v.m.record(event.Event{Kind: event.Sense, Rule: event.Signal, Site: site, Path: event.None, Channel: letter(ch), Cause: cause})
 	done := v.d.Sense(v.m.now, ch, id)
 	e := v.m.at(id)

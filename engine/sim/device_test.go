@@ -9,6 +9,7 @@ import (
 
 	"escapement/engine/event"
 	"escapement/engine/plan"
+	"escapement/engine/tick"
 )
 
 // mark is what a device's record shows: a stimulus or a signal with its use.
@@ -197,5 +198,37 @@ func TestAPThatSwitchesTheModeNamesAnEarlierWindow(t *testing.T) {
 		if m.e.Kind == event.Sense && m.e.By >= m.e.ID {
 			t.Errorf("%v %s is decided by event %d, later than itself (%d)", m.ms, m.what, m.e.By, m.e.ID)
 		}
+	}
+}
+
+// A ventricular signal at the very instant at which the crosstalk window opens was
+// recorded before that window, and named an event yet to come as its reason.
+func TestASignalAsTheCrosstalkWindowOpensComesAfterIt(t *testing.T) {
+	heart, device := `"sinus":{"rate_bpm":40}`, `"mode":"DDD","lower_rate_bpm":60,"pavb_ms":30`
+	l, err := Play(program(t, 6000, heart, device))
+	if err != nil {
+		t.Fatal(err)
+	}
+	paced := tick.Time(0)
+	for i := range l.Events {
+		if e := &l.Events[i]; e.Kind == event.Stimulus && e.Channel == 'A' && e.T > 2500000 {
+			paced = e.T
+			break
+		}
+	}
+	l, err = Play(program(t, 6000, heart, device, stimulus(paced.MS()+30, "rv_apex")))
+	if err != nil {
+		t.Fatal(err)
+	}
+	found := false
+	for i := range l.Events {
+		e := &l.Events[i]
+		found = found || e.Kind == event.Sense && e.Use == event.Safety && e.By > 0
+	}
+	if !found {
+		t.Error("no signal in the crosstalk window")
+	}
+	for _, err := range event.Validate(l) {
+		t.Error(err)
 	}
 }
