@@ -58,7 +58,12 @@ type number struct {
 // the device's intervals are medians.
 func gauge(r *measure.Report, s Side) []number {
 	s0 := &r.Summary
-	pr, rr := spread(r, "P", func(b *measure.Beat) *float64 { return b.PR }), spread(r, "QRS", func(b *measure.Beat) *float64 { return b.RR })
+	pr, rr := spread(r, "P", func(b *measure.Beat) *float64 {
+		if b.Retrograde { // no PR of a P that came up
+			return nil
+		}
+		return b.PR
+	}), spread(r, "QRS", func(b *measure.Beat) *float64 { return b.RR })
 	longest := without(r, s.Log.Span.MS())
 	out := []number{
 		{"Rates", "P rate", "/min", s0.PRate},

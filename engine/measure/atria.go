@@ -126,6 +126,9 @@ func (f *finder) otherAtrial() {
 			Text:   fmt.Sprintf("%s in a row from one place in the atria, %s: consistent with %s.", plural(g.beats, "P wave", "P waves"), perMinute(cycle), g.words),
 			clause: g.words + " " + perMinute(cycle),
 		}
+		if g.words == "atrial flutter" {
+			x.Text = fmt.Sprintf("%s from one circuit in the atria, %s: consistent with atrial flutter.", plural(g.beats, "flutter wave", "flutter waves"), perMinute(cycle))
+		}
 		if g.slug == "atrial_flutter" {
 			f.conductedFlutter(&x, g.ids)
 		}

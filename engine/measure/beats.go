@@ -54,7 +54,7 @@ func (s *strip) pBeat(i int, surf *surface) Beat {
 	}
 	if w.to >= 0 {
 		b.To = s.v[w.to].id
-		if !s.begunByDevice(int(w.to)) { // else its QRS began before it arrived
+		if !s.begunByDevice(int(w.to)) && !s.arrival(i) { // else its QRS began before it arrived
 			b.PR = ms(s.pr(i))
 		}
 	} else if w.his != 0 || len(w.blocks) > 0 {
@@ -135,8 +135,8 @@ func (s *strip) vBeat(j int, surf *surface, first []event.ID) Beat {
 	if w.p >= 0 {
 		p := &s.p[w.p]
 		b.From = p.id
-		b.PR = ms(w.t.Sub(p.t))
-		b.Retrograde = false
+		b.PR = msIf(!s.arrival(int(w.p)), w.t.Sub(p.t))
+		b.returned = p.retrograde
 		if !p.retrograde && w.his != 0 && s.mark[w.his].p == w.p {
 			b.AH = s.since(p.septum, w.his)
 			b.PA = s.since(p.id, p.septum)
@@ -146,7 +146,7 @@ func (s *strip) vBeat(j int, surf *surface, first []event.ID) Beat {
 		b.To = s.p[w.retro].id
 		b.VA = s.va(int(w.retro))
 	}
-	if w.his != 0 {
+	if w.his != 0 && s.leads(j) {
 		b.HV = s.since(w.his, w.id)
 		b.H = s.since(w.his, first[w.his])
 	}
@@ -164,7 +164,15 @@ func nonNil(ids []event.ID) []event.ID {
 	return ids
 }
 
-// summarise takes medians over the beats.
+// leads tells whether the His activation by which a QRS came lies on the way to it: in
+// antidromic re-entry it is the retrograde one of the beat before.
+func (s *strip) leads(j int) bool {
+	w := &s.v[j]
+	return w.p < 0 || s.log.At(w.his).T >= s.p[w.p].t
+}
+
+// summarise takes medians over the beats. PR is that of P waves from above; waves of
+// flutter and fibrillation have no PR, and what is no P wave has no P duration or axis.
 func (s *strip) summarise(beats []Beat) Summary {
 	pick := func(kind string, get func(*Beat) *float64) []float64 {
 		var v []float64
@@ -185,20 +193,57 @@ func (s *strip) summarise(beats []Beat) Summary {
 	}
 	sum.PRate = rate(pick("P", func(b *Beat) *float64 { return b.PP }))
 	sum.VRate = rate(pick("QRS", func(b *Beat) *float64 { return b.RR }))
-	sum.PR = median(pick("QRS", func(b *Beat) *float64 { return b.PR }))
-	sum.P = median(pick("P", func(b *Beat) *float64 { return b.PDur }))
+	if s.fibrillating() {
+		sum.VRate = meanRate(pick("QRS", func(b *Beat) *float64 { return b.RR }))
+	}
+	waves := s.waves()
+	own := func(get func(*Beat) *float64) func(*Beat) *float64 {
+		return func(b *Beat) *float64 {
+			if waves[b.ID] {
+				return get(b)
+			}
+			return nil
+		}
+	}
+	sum.PR = median(pick("QRS", func(b *Beat) *float64 {
+		if waves[b.From] && !b.returned {
+			return b.PR
+		}
+		return nil
+	}))
+	sum.P = median(pick("P", own(func(b *Beat) *float64 { return b.PDur })))
 	sum.QRS = median(pick("QRS", func(b *Beat) *float64 { return b.QRS }))
 	sum.QT = median(pick("QRS", func(b *Beat) *float64 { return b.QT }))
-	sum.AH = median(pick("P", func(b *Beat) *float64 { return b.AH }))
+	sum.AH = median(pick("P", own(func(b *Beat) *float64 { return b.AH })))
 	sum.HV = median(pick("QRS", func(b *Beat) *float64 { return b.HV }))
 	sum.VA = median(pick("P", func(b *Beat) *float64 { return b.VA }))
-	sum.PAxis = middleAngle(pick("P", func(b *Beat) *float64 { return b.Axis }))
+	sum.PAxis = middleAngle(pick("P", own(func(b *Beat) *float64 { return b.Axis })))
 	sum.QRSAxis = middleAngle(pick("QRS", func(b *Beat) *float64 { return b.Axis }))
 	sum.Bazett = median(pick("QRS", func(b *Beat) *float64 { return b.Bazett }))
 	sum.Fridericia = median(pick("QRS", func(b *Beat) *float64 { return b.Fridericia }))
 	sum.Framingham = median(pick("QRS", func(b *Beat) *float64 { return b.Framingham }))
 	sum.Hodges = median(pick("QRS", func(b *Beat) *float64 { return b.Hodges }))
 	return sum
+}
+
+// waves are the P waves that no driver of the atria made, by id.
+func (s *strip) waves() map[event.ID]bool {
+	own := make(map[event.ID]bool, len(s.p))
+	for i := range s.p {
+		own[s.p[i].id] = !s.driven(i)
+	}
+	return own
+}
+
+// fibrillating tells whether most of the atrial waves are those of fibrillation.
+func (s *strip) fibrillating() bool {
+	n := 0
+	for i := range s.p {
+		if s.arrival(i) {
+			n++
+		}
+	}
+	return 2*n > len(s.p)
 }
 
 // median rounds to a thousandth, a microsecond where v is in milliseconds.
@@ -213,6 +258,15 @@ func median(v []float64) *float64 {
 	}
 	m = math.Round(m*1000) / 1000
 	return &m
+}
+
+// meanRate is the rate of the mean interval, as beats are counted over a strip.
+func meanRate(intervals []float64) *float64 {
+	sum := 0.0
+	for _, x := range intervals {
+		sum += x
+	}
+	return rate([]float64{sum / float64(max(len(intervals), 1))})
 }
 
 func rate(intervals []float64) *float64 {

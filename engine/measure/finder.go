@@ -21,6 +21,7 @@ type finder struct {
 // Order of the families in the list and in the sentence.
 const (
 	orderDevice = 10 * (iota + 1)
+	orderTachycardia
 	orderAtria
 	orderExit
 	orderBlock
@@ -51,6 +52,7 @@ func (f *finder) all() {
 	f.fusion()
 	f.qt()
 	f.devices()
+	f.once()
 	slices.SortStableFunc(f.found, func(a, b Finding) int { return a.order - b.order })
 }
 
@@ -97,6 +99,34 @@ func statement(found []Finding) (string, []Clause) {
 	}
 	s := strings.Join(words, ", ") + "."
 	return strings.ToUpper(s[:1]) + s[1:], clauses
+}
+
+// once takes out of the sentence what another clause has said: the beats of a train
+// that was judged, the block that makes flutter's ratio, and what fibrillation brings
+// with it. The findings stay.
+func (f *finder) once() {
+	quiet := func(x *Finding, slugs ...string) {
+		if slices.Contains(slugs, x.Slug) {
+			x.clause = ""
+		}
+	}
+	for k := range f.found {
+		x := &f.found[k]
+		for _, o := range f.report.Overdrive {
+			if x.FromUS >= o.FromUS && x.UntilUS <= o.LastUS.Add(tick.Second/2) {
+				quiet(x, "ventricular_stimulation", "retrograde_conduction", "fusion_beat")
+			}
+		}
+		if f.has("atrial_flutter") {
+			quiet(x, "functional_av_block")
+		}
+		if f.has("atrial_fibrillation") {
+			quiet(x, "av_reentrant_beat", "concealed_conduction")
+		}
+		if f.has("pre_excited_fibrillation") {
+			quiet(x, "pre_excitation")
+		}
+	}
 }
 
 // whole writes milliseconds without decimals.

@@ -59,10 +59,27 @@ func (f *finder) conductedFlutter(x *Finding, waves []event.ID) {
 		x.Ratio = fmt.Sprintf("%d:1 to %d:1", lo, hi)
 		x.clause += " with variable conduction, " + x.Ratio
 	}
-	x.Text = strings.TrimSuffix(x.Text, ".") + "; one of so many waves is conducted: " + x.Ratio + "."
+	v := f.following(in)
+	x.clause += v
+	x.Text = strings.TrimSuffix(x.Text, ".") + "; AV conduction " + x.Ratio + v + "."
 	if x.Ratio == "2:1" {
-		x.Rivals = []string{"sinus or atrial tachycardia at half the rate, every second wave hidden in the QRS or T"}
+		x.Rivals = []string{"sinus or atrial tachycardia at half the rate, every second wave hidden in the QRS or T", "re-entry in the AV node or over an accessory pathway"}
 	}
+}
+
+// following is the mean rate of the QRS complexes that come one after the other from
+// waves of a set, as a part of a clause.
+func (f *finder) following(in func(event.ID) bool) string {
+	var rr []tick.Dur
+	for j := 1; j < len(f.v); j++ {
+		if a, b := f.v[j-1].p, f.v[j].p; a >= 0 && b >= 0 && in(f.p[a].id) && in(f.p[b].id) {
+			rr = append(rr, f.rr(j))
+		}
+	}
+	if len(rr) == 0 {
+		return ""
+	}
+	return ", ventricles " + perMinute(mean(rr))
 }
 
 // fibrillation is named from the arrivals that the model knows: the leads show
@@ -91,13 +108,15 @@ func (f *finder) fibrillation() {
 			rr = append(rr, f.rr(j))
 		}
 	}
-	text := fmt.Sprintf("%s arrive at the right atrium, mean interval %s ms, at random", plural(len(ids), "wave", "waves"), whole(mean(d)))
+	text := fmt.Sprintf("%s arrive at the right atrium at irregular intervals, mean %s ms", plural(len(ids), "wave", "waves"), whole(mean(d)))
 	x := Finding{Slug: "atrial_fibrillation", Evidence: ids, Count: len(ids), clause: "atrial fibrillation"}
 	if len(rr) > 2 {
 		lo, hi := slices.Min(rr), slices.Max(rr)
 		text += fmt.Sprintf("; RR %s to %s ms", whole(lo), whole(hi))
 		if hi-lo < 20*tick.Millisecond {
 			text += ", regular: the ventricles do not follow"
+		} else {
+			x.Rivals = []string{"atrial flutter with variable conduction", "multifocal atrial tachycardia"}
 		}
 		x.clause += ", ventricles " + perMinute(mean(rr))
 	}
@@ -128,9 +147,9 @@ func (f *finder) fastestPreExcited() {
 	if least == 0 {
 		return
 	}
-	x := Finding{Slug: "pre_excited_fibrillation", Evidence: ids, clause: fmt.Sprintf("shortest pre-excited RR %s ms", whole(least)),
+	x := Finding{Slug: "pre_excited_fibrillation", Evidence: ids, clause: fmt.Sprintf("pre-excited with a shortest RR of %s ms", whole(least)),
 		Text:   fmt.Sprintf("Shortest RR between pre-excited beats %s ms: consistent with fibrillation conducted over an accessory pathway.", whole(least)),
 		Note:   "250 ms or less is taken for a risk (ESC 2019, from memory).",
-		Rivals: []string{"polymorphic ventricular tachycardia"}}
-	f.add(orderConduction, x)
+		Rivals: []string{"polymorphic ventricular tachycardia", "atrial fibrillation with bundle branch block"}}
+	f.add(orderAtria, x)
 }

@@ -222,10 +222,10 @@ func (f *finder) ventricularOverdrive() {
 			}
 			means, rivals := o.means()
 			x.Text += ": consistent with " + means + "."
-			x.Rivals, x.clause = rivals, fmt.Sprintf("after the ventricular train PPI - TCL %.0f ms", *o.PPITCL)
+			x.Rivals, x.clause = rivals, fmt.Sprintf("ventricular train at %.0f ms (PPI - TCL %.0f ms, SA - VA %.0f ms)", o.CycleMS, *o.PPITCL, *o.SAVA)
 			x.Note = "Limits 115 and 85 ms: Michaud et al., JACC 2001;38:1163, trains 10 to 40 ms faster than the tachycardia; atypical AV-nodal re-entry against septal pathways. A pathway far from the paced site lengthens PPI as the node does."
 		}
-		f.add(orderConduction, x)
+		f.add(orderTachycardia, x)
 	}
 }
 

@@ -57,12 +57,12 @@ var expected = map[string][]string{
 	"long-short":             {"sinus_rhythm", "premature_atrial", "aberrant_conduction"},
 
 	// Re-entry.
-	"avnrt-typical":       {"sinus_rhythm", "premature_atrial", "av_nodal_reentry"},
-	"avrt-orthodromic":    {"sinus_rhythm", "premature_atrial", "orthodromic_reentry"},
+	"avnrt-typical":       {"av_nodal_reentry", "sinus_rhythm", "premature_atrial"},
+	"avrt-orthodromic":    {"orthodromic_reentry", "sinus_rhythm", "premature_atrial"},
 	"wpw-sinus":           {"sinus_rhythm", "pre_excitation"},
-	"avrt-antidromic":     {"sinus_rhythm", "premature_atrial", "antidromic_reentry", "pre_excitation"},
-	"avnrt-overdrive":     {"sinus_rhythm", "ventricular_stimulation", "premature_atrial", "retrograde_conduction", "av_nodal_reentry", "ventricular_overdrive", "fusion_beat"},
-	"avrt-overdrive":      {"sinus_rhythm", "ventricular_stimulation", "premature_atrial", "retrograde_conduction", "orthodromic_reentry", "ventricular_overdrive", "fusion_beat"},
+	"avrt-antidromic":     {"antidromic_reentry", "sinus_rhythm", "premature_atrial", "pre_excitation"},
+	"avnrt-overdrive":     {"av_nodal_reentry", "ventricular_overdrive", "sinus_rhythm", "ventricular_stimulation", "premature_atrial", "retrograde_conduction", "fusion_beat"},
+	"avrt-overdrive":      {"orthodromic_reentry", "ventricular_overdrive", "sinus_rhythm", "ventricular_stimulation", "premature_atrial", "retrograde_conduction", "fusion_beat"},
 	"flutter-2-1":         {"atrial_flutter", "functional_av_block"},
 	"atrial-fibrillation": {"atrial_fibrillation", "aberrant_conduction"},
 	"wpw-fibrillation":    {"atrial_fibrillation", "pre_excited_fibrillation", "av_reentrant_beat", "concealed_conduction", "pre_excitation"},

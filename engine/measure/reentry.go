@@ -128,8 +128,8 @@ func (f *finder) gatherTurn(c *circuit, i int, goesOn bool) {
 }
 
 var circuits = [rounds]struct{ slug, words, short, one string }{
-	typical:     {"av_nodal_reentry", "typical re-entry in the AV node (down the slow, up the fast pathway)", "AV-nodal re-entry, typical", "av_nodal_echo"},
-	atypical:    {"av_nodal_reentry_atypical", "atypical re-entry in the AV node (up the slow pathway)", "AV-nodal re-entry, atypical", "av_nodal_echo"},
+	typical:     {"av_nodal_reentry", "typical re-entry in the AV node (down the slow, up the fast pathway)", "typical AV-nodal re-entry", "av_nodal_echo"},
+	atypical:    {"av_nodal_reentry_atypical", "atypical re-entry in the AV node (up the slow pathway)", "atypical AV-nodal re-entry", "av_nodal_echo"},
 	orthodromic: {"orthodromic_reentry", "orthodromic re-entry (down the AV node, up an accessory pathway)", "orthodromic AV re-entry", "av_reentrant_beat"},
 	antidromic:  {"antidromic_reentry", "antidromic re-entry (down an accessory pathway)", "antidromic AV re-entry", "av_reentrant_beat"},
 	throughNode: {"av_reentry", "re-entry through atria and ventricles", "AV re-entry", "av_reentrant_beat"},
@@ -140,7 +140,10 @@ func (f *finder) addCircuit(k round, c *circuit) {
 	x := Finding{Evidence: c.ids, Count: c.n, Rivals: rivals(k, c)}
 	va := ""
 	if len(c.va) > 0 {
-		va = fmt.Sprintf(", earliest atrial activation %s ms after the QRS", whole(medianDur(c.va)))
+		va = fmt.Sprintf(", earliest atrial activation %s ms after the start of the QRS", whole(medianDur(c.va)))
+		if d := medianDur(c.va); d < 0 {
+			va = fmt.Sprintf(", earliest atrial activation %s ms before the start of the QRS", whole(-d))
+		}
 	}
 	if c.n < 3 {
 		x.Slug, x.clause = name.one, "echo beats in the AV node"
@@ -158,7 +161,7 @@ func (f *finder) addCircuit(k round, c *circuit) {
 	}
 	x.Text = fmt.Sprintf("%s back to the atria%s: consistent with %s.", plural(c.n, "impulse comes", "impulses come"), va, name.words)
 	x.Note = surfaceRP(c)
-	f.add(orderConduction, x)
+	f.add(orderTachycardia, x)
 }
 
 // surfaceRP says what the surface shows of the order: RP against PR.
@@ -168,6 +171,8 @@ func surfaceRP(c *circuit) string {
 	}
 	rp, pr := medianDur(c.va), medianDur(c.pr)
 	switch {
+	case rp < 0:
+		return "The P is hidden in the QRS or begins just before it."
 	case rp < throughVentricles:
 		return fmt.Sprintf("RP %s ms: the P is hidden in the QRS or its end.", whole(rp))
 	case rp < pr:
@@ -203,15 +208,20 @@ func rivals(k round, c *circuit) []string {
 func (f *finder) preExcitation() {
 	var ids []event.ID
 	var pr, qrs []float64
-	n, shown := 0, 0
+	n, shown, waves := 0, 0, 0
 	for j := range f.v {
-		if !f.v[j].accessory || f.own(j) {
+		if !f.v[j].accessory || f.own(j) || !f.descending(int(f.v[j].p)) {
 			continue
 		}
 		n++
 		ids = append(append(ids, f.v[j].id), f.v[j].roots...)
-		d := f.v[j].t.Sub(f.p[f.v[j].p].t).MS()
-		pr = append(pr, d)
+		d := 0.0
+		if p := int(f.v[j].p); f.arrival(p) {
+			waves++
+		} else {
+			d = f.v[j].t.Sub(f.p[p].t).MS()
+			pr = append(pr, d)
+		}
 		if w := f.surf.vWave[j]; w != nil {
 			q := w.Offset.Sub(w.Onset).MS()
 			qrs = append(qrs, q)
@@ -223,16 +233,21 @@ func (f *finder) preExcitation() {
 	if n == 0 {
 		return
 	}
-	x := Finding{
-		Slug: "pre_excitation", Evidence: ids, Count: n, clause: "pre-excitation",
-		Text: fmt.Sprintf("%s over an accessory pathway, PR %.0f ms: consistent with pre-excitation.", plural(n, "QRS is entered", "QRS complexes are entered"), *median(pr)),
+	what := plural(n, "QRS is entered", "QRS complexes are entered") + " over an accessory pathway"
+	if len(pr) > 0 {
+		what += fmt.Sprintf(", PR %.0f ms", *median(pr))
 	}
+	x := Finding{Slug: "pre_excitation", Evidence: ids, Count: n, clause: "pre-excitation"}
 	if len(qrs) > 0 {
-		x.Text = fmt.Sprintf("%s over an accessory pathway, PR %.0f ms, QRS %.0f ms: consistent with pre-excitation.", plural(n, "QRS is entered", "QRS complexes are entered"), *median(pr), *median(qrs))
+		what += fmt.Sprintf(", QRS %.0f ms", *median(qrs))
 		x.Note = fmt.Sprintf("On the surface %d of them have both a PR under 120 ms and a QRS of 120 ms or more, with a slow start (delta wave).", shown)
+		if waves == n {
+			x.Note = fmt.Sprintf("On the surface %d of them have a QRS of 120 ms or more, with a slow start (delta wave); fibrillation has no PR to judge by.", shown)
+		}
 		if shown < n {
 			x.Rivals = []string{"intraventricular conduction delay", "ventricular beats late in the cycle"}
 		}
 	}
+	x.Text = what + ": consistent with pre-excitation."
 	f.add(orderConduction, x)
 }

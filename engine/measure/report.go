@@ -80,6 +80,8 @@ type Beat struct {
 	Axis    *float64 `json:"axis_deg"`     // of this wave, by area
 	AxisNet *float64 `json:"axis_net_deg"` // by net amplitude
 	Shape   *int     `json:"morphology"`
+
+	returned bool // QRS: the P it came from had come up
 }
 
 // QTc is the corrected QT by the four named formulas, null where not measured.
@@ -90,7 +92,8 @@ type QTc struct {
 	Hodges     *float64 `json:"qtc_hodges_ms"`
 }
 
-// Summary holds medians over the strip and counts.
+// Summary holds medians over the strip and counts. In fibrillation VRate is that of the
+// mean RR.
 type Summary struct {
 	PRate   *float64 `json:"p_rate_bpm"`
 	VRate   *float64 `json:"v_rate_bpm"`

@@ -43,8 +43,8 @@ func Measured(s *measure.Summary) []Number {
 	between := func(lo, hi float64) *[2]float64 { return &[2]float64{lo, hi} }
 	return []Number{
 		{"p_rate_bpm", "P rate", s.PRate, "/min", between(60, 100), "Median rate of P waves.", "Common practice."},
-		{"v_rate_bpm", "QRS rate", s.VRate, "/min", between(60, 100), "Median rate of QRS complexes.", "Common practice."},
-		{"pr_ms", "PR", s.PR, "ms", between(120, 200), "Start of P to the first ventricular activation it led to.", statpearls},
+		{"v_rate_bpm", "QRS rate", s.VRate, "/min", between(60, 100), "Median rate of QRS complexes; in atrial fibrillation that of the mean RR.", "Common practice."},
+		{"pr_ms", "PR", s.PR, "ms", between(120, 200), "Start of a P from above to the first ventricular activation it led to; not of a P that came up, nor of a wave of flutter or fibrillation.", statpearls},
 		{"p_ms", "P", s.P, "ms", between(60, 120), "Duration in all leads together.", "Upper limit: consensus on interatrial block, Bayes de Luna et al., 2012; lower end common practice."},
 		{"qrs_ms", "QRS", s.QRS, "ms", between(70, 110), "Duration in all leads together.", aha3},
 		{"qt_ms", "QT", s.QT, "ms", nil, "Start of QRS to end of T in all leads together; what is normal depends on the rate, see QTcF.", practice},

@@ -3,6 +3,7 @@ package sim
 import (
 	"encoding/json"
 	"math"
+	"slices"
 	"testing"
 
 	"escapement/presets"
@@ -166,6 +167,16 @@ var deviceFacts = map[string]func(strip){
 		s.modes("DDD>DDI DDI>DDD")
 		s.every("V-V in flutter", diffs(within(s.at("VP"), 5000, 18000)), 1000)
 		s.every("sinus tracked again", tail(s.delays("AS tracked", "VP"), 2), 110)
+	},
+	"vvi-atrial-fibrillation": func(s strip) {
+		sensed, paced := s.at("VS"), s.at("VP")
+		if len(sensed) < 5 || len(paced) < 5 {
+			s.t.Errorf("%d sensed, %d paced: want both", len(sensed), len(paced))
+		}
+		for _, at := range paced {
+			last := append(before(sensed, at), before(paced, at)...)
+			near(s.t, "since the last beat", at-slices.Max(last), 1000, exact)
+		}
 	},
 	"vvi-undersensing": func(s strip) {
 		s.every("V-V of the deaf device", diffs(s.at("VP")), 1000)
