@@ -112,7 +112,12 @@ func (m *Mover) wave(e *event.Event) span {
 // cycle is how a focus came to discharge: when its rate had run through one cycle.
 func (m *Mover) cycle(e *event.Event) span {
 	f, s := m.set.focus[e.Site], span{after: before0(e)}
-	if f == nil || f.twice {
+	if c := m.log.At(s.after); e.Rule == event.Circuit && c != nil {
+		now := m.set.at(flutterCycle, c.T)
+		now.per = 1
+		return ruled(s.after, now)
+	}
+	if f == nil || f.twice || e.Rule != event.Phase4 {
 		return s
 	}
 	start := tick.Time(0)

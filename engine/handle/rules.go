@@ -1,6 +1,8 @@
 package handle
 
 import (
+	"fmt"
+	"strconv"
 	"strings"
 
 	"escapement/engine/event"
@@ -46,6 +48,8 @@ func (m *Mover) Settings(id event.ID) []Setting {
 	return out
 }
 
+const flutterCycle = "heart.atria.flutter.cycle_ms"
+
 // names are the paths, those of the device without their stem.
 func (m *Mover) names(e *event.Event) []string {
 	switch e.Kind {
@@ -59,6 +63,12 @@ func (m *Mover) names(e *event.Event) []string {
 	case event.Sense:
 		return m.ofSense(e)
 	case event.Discharge:
+		switch e.Rule {
+		case event.Circuit:
+			return []string{flutterCycle}
+		case event.Arrival:
+			return []string{"heart.atria.fibrillation.cycle_ms", "heart.atria.fibrillation.shortest_ms"}
+		}
 		if f := m.set.focus[e.Site]; f != nil && !f.twice {
 			if e.Cause == 0 && f.first > 0 {
 				return []string{f.path + "first_ms"}
@@ -69,6 +79,9 @@ func (m *Mover) names(e *event.Event) []string {
 		return m.ofBlock(e)
 	case event.Activate:
 		if e.Rule == event.Conducted && e.Path >= 0 {
+			if way, ok := m.pathway(e); ok {
+				return []string{way + "_ms"}
+			}
 			return ofPath(m.log.Paths[e.Path].Name, e.Dir, false)
 		}
 	}
@@ -149,6 +162,16 @@ func (m *Mover) ofBlock(e *event.Event) []string {
 		return erp(m.log.Sites[e.Site].Tissue)
 	}
 	p := &m.log.Paths[e.Path]
+	if way, ok := m.pathway(e); ok && e.Rule != event.SiteRefractory {
+		switch e.Rule {
+		case event.PathRefractory:
+			return []string{way + "_erp_ms"}
+		case event.OneWay:
+			at := strings.LastIndexByte(way, '.') + 1
+			return []string{way[:at] + "concealed_" + way[at:]}
+		}
+		return nil
+	}
 	if e.Rule == event.SiteRefractory {
 		end := &m.log.Sites[p.Exit(e.Dir)]
 		if end.Tissue == event.Purkinje {
@@ -157,6 +180,21 @@ func (m *Mover) ofBlock(e *event.Event) []string {
 		return erp(end.Tissue)
 	}
 	return ofPath(p.Name, e.Dir, true)
+}
+
+// pathway is the stem of the values of the accessory pathway that an event is in, with
+// the direction: "heart.pathways[0].down".
+func (m *Mover) pathway(e *event.Event) (string, bool) {
+	p := &m.log.Paths[e.Path]
+	number, err := strconv.Atoi(strings.TrimPrefix(p.Name, "pathway_"))
+	if p.Tissue != event.Accessory || err != nil {
+		return "", false
+	}
+	way := "down"
+	if e.Dir == event.Up {
+		way = "up"
+	}
+	return fmt.Sprintf("heart.pathways[%d].%s", number-1, way), true
 }
 
 func erp(t event.Tissue) []string {

@@ -69,8 +69,14 @@ func (s *settings) add(site event.SiteID, path string, first float64, overdrive 
 func (s *settings) or(path string) float64 {
 	var list int
 	var name string
-	if n, _ := fmt.Sscanf(path, "heart.foci[%d].%s", &list, &name); n == 2 && list < len(s.p.Foci) {
-		if v, ok := s.p.Foci[list][name]; ok {
+	items := s.p.Foci
+	n, _ := fmt.Sscanf(path, "heart.foci[%d].%s", &list, &name)
+	if n < 2 {
+		n, _ = fmt.Sscanf(path, "heart.pathways[%d].%s", &list, &name)
+		items = s.p.Pathways
+	}
+	if n == 2 && list < len(items) {
+		if v, ok := items[list][name]; ok {
 			return v.Number
 		}
 		if f, ok := plan.FieldAt(path); ok && f.Default != nil {
@@ -168,6 +174,11 @@ func (s *settings) label(path, own string) string {
 				}
 			}
 		}
+	case strings.HasPrefix(path, "heart.pathways["):
+		if n, _ := fmt.Sscanf(path, "heart.pathways[%d].%s", &place, &name); n == 2 && len(s.p.Pathways) > 1 {
+			return fmt.Sprintf("accessory pathway %d, %s", place+1, own)
+		}
+		return "accessory pathway, " + own
 	case strings.HasPrefix(path, "interventions["):
 		if n, _ := fmt.Sscanf(path, "interventions[%d].%s", &place, &name); n != 2 || place >= len(s.p.Interventions) {
 			return own

@@ -174,7 +174,7 @@ var deviceFacts = map[string]func(strip){
 			s.t.Errorf("%d sensed, %d paced: want both", len(sensed), len(paced))
 		}
 		for _, at := range paced {
-			last := append(before(sensed, at), before(paced, at)...)
+			last := slices.Concat(before(sensed, at), before(paced, at))
 			near(s.t, "since the last beat", at-slices.Max(last), 1000, exact)
 		}
 	},
