@@ -127,7 +127,8 @@ export async function findHandle(page, words, { from = 0.45, to = 0.8, top = 0.4
     const canvas = /** @type {HTMLCanvasElement} */ (document.querySelector("#timeline canvas"));
     const tip = /** @type {HTMLElement} */ (document.querySelector(".tip"));
     const b = canvas.getBoundingClientRect();
-    const foot = Math.min(b.bottom, innerHeight) - 3;
+    const pane = /** @type {HTMLElement} */ (document.querySelector("#timeline"));
+    const foot = Math.min(b.bottom, pane.getBoundingClientRect().bottom) - 3; // what is scrolled away cannot be taken hold of
     for (let y = foot; y > b.top + top * b.height; y -= 3) {
       for (let x = b.left + from * b.width; x < b.left + to * b.width; x += 4) {
         canvas.dispatchEvent(new PointerEvent("pointermove", { clientX: x, clientY: y, pointerType: "mouse", pointerId: 1, bubbles: true }));
