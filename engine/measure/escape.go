@@ -151,7 +151,7 @@ func (f *finder) dissociation() {
 	beats, waves := 0, 0
 	var from, to tick.Time
 	for j := range f.v {
-		if f.own(j) && !f.v[j].premature && f.v[j].retro < 0 && !f.followsAtrium(j) {
+		if f.own(j) && !f.v[j].premature && f.v[j].retro < 0 && !f.followsAtrium(j) && !f.inFibrillation(f.v[j].t) {
 			if beats == 0 {
 				from = f.v[j].t
 			}

@@ -16,6 +16,12 @@ func (s *strip) arrival(i int) bool {
 	return o != nil && o.Rule == event.Arrival
 }
 
+// inFibrillation tells whether the last atrial wave before t is one of fibrillation.
+func (s *strip) inFibrillation(t tick.Time) bool {
+	i, _ := slices.BinarySearchFunc(s.p, t, func(w pwave, t tick.Time) int { return int(w.t - t) })
+	return i > 0 && s.arrival(i-1)
+}
+
 // driven tells whether a P comes from a driver of the atria.
 func (s *strip) driven(i int) bool {
 	o := s.log.At(s.mark[s.p[i].id].origin)

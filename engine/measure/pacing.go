@@ -125,6 +125,7 @@ func (f *finder) kinds() kinds {
 			}
 		case m.paced() && before.paced():
 			k.sequential.add(m.e.T.Sub(before.e.T), f.since(m), before.e.ID, m.e.ID)
+		case m.paced() && f.fibrillates(before): // has a finding of its own
 		case m.paced():
 			k.tracked.add(m.e.T.Sub(before.e.T), f.since(before), before.e.ID, m.e.ID)
 		case before.paced() && natureOf(f.log, m.e) == ofBeat:

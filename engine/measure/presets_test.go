@@ -94,6 +94,7 @@ var expected = map[string][]string{
 	"dual-far-field-switch":           {"p_synchronous_pacing", "av_sequential_pacing", "ventricular_pacing", "sinus_rhythm", "complete_av_block", "av_dissociation", "mode_switch"},
 	"dual-far-field-hidden":           {"p_synchronous_pacing", "sinus_rhythm"},
 	"dual-flutter-lock-in":            {"upper_rate_two_to_one", "p_synchronous_pacing", "sinus_rhythm", "atrial_stimulation"},
+	"dual-fibrillation-switch":        {"tracked_fibrillation", "p_synchronous_pacing", "ventricular_pacing", "sinus_rhythm", "atrial_fibrillation", "mode_switch"},
 	"dual-flutter-switch":             {"upper_rate_two_to_one", "p_synchronous_pacing", "ventricular_pacing", "sinus_rhythm", "atrial_stimulation", "complete_av_block", "av_dissociation", "mode_switch"},
 	"vvi-undersensing":                {"ventricular_pacing", "sinus_rhythm", "fusion_beat", "functional_non_capture", "undersensing"},
 	"vvi-fusion":                      {"ventricular_pacing", "sinus_rhythm", RBBB, "fusion_beat"},

@@ -22,6 +22,7 @@ func TestTachycardiaIsSaidFirst(t *testing.T) {
 		{"flutter-2-1", "Atrial flutter 250/min conducted 2:1, ventricles 125/min."},
 		{"atrial-fibrillation", "Atrial fibrillation, ventricles 92/min, aberrant conduction in 1 beat."},
 		{"wpw-fibrillation", "Atrial fibrillation, ventricles 196/min, pre-excited with a shortest RR of 212 ms."},
+		{"dual-fibrillation-switch", "DDD: atrial fibrillation tracked up to the upper rate (V-V 500 to 558 ms), sinus 70/min tracked 1:1 (AV 150 ms), ventricular pacing 60/min, atrial fibrillation, ventricles 77/min, mode change DDD to DDI at 9.0 s (fast atrium)."},
 		{"vvi-atrial-fibrillation", "VVI: ventricular pacing 60/min, atrial fibrillation, ventricles 70/min, 3 fusion beats."},
 	} {
 		l := preset(t, c.name)
@@ -109,5 +110,14 @@ func TestPreExcitationIsReadInBeatsFromAbove(t *testing.T) {
 	l := preset(t, "wpw-fibrillation")
 	if f := Of(l, field.New().Record(l)).finding("pre_excitation"); f == nil || strings.Contains(f.Text+f.Note, "PR under") || strings.Contains(f.Text, "PR ") {
 		t.Errorf("fibrillation: %+v", f)
+	}
+}
+
+// Fibrillation that a device tracked was called Wenckebach behaviour and 2:1 at the
+// upper rate: there is no atrial rate to have a ratio with.
+func TestTrackedFibrillationHasNoRatio(t *testing.T) {
+	r := measured(t, "dual-fibrillation-switch", `"rate_bpm": 170`, `"rate_bpm": 0`)
+	if got, want := slugs(r), []string{"tracked_fibrillation", "p_synchronous_pacing", "sinus_rhythm", "atrial_fibrillation"}; !slices.Equal(got, want) {
+		t.Errorf("without the switch: got %v, want %v\n%s", got, want, r.Statement)
 	}
 }

@@ -31,7 +31,7 @@ func (f *finder) upperRuns() []trackedRun {
 			run = trackedRun{open: true} // the heart's own beat, or a loop
 		case m.e.Channel == 'V' && m.beat:
 			p := f.dev.marker(m.e.Cause)
-			if p == nil || p.e.Use != event.Tracked {
+			if p == nil || p.e.Use != event.Tracked || f.fibrillates(p) {
 				run = trackedRun{open: true}
 				continue
 			}
@@ -42,7 +42,7 @@ func (f *finder) upperRuns() []trackedRun {
 		case m.e.Channel == 'A' && m.paced():
 			run = trackedRun{open: true}
 		case m.e.Channel == 'A' && (m.e.Use == event.Refractory || m.e.Use == event.Blanked):
-			if len(run.av) == 0 || m.e.By == 0 || !f.fromAboveP(m) {
+			if len(run.av) == 0 || m.e.By == 0 || !f.fromAboveP(m) || f.fibrillates(m) {
 				continue
 			}
 			run.ids = append(run.ids, m.e.ID, m.e.By)
@@ -69,6 +69,42 @@ func (r *trackedRun) trim(f *finder) {
 // fromAboveP tells whether a signal is a P from above.
 func (f *finder) fromAboveP(m *marker) bool { return m.wave >= 0 && f.descending(int(m.wave)) }
 
+// fibrillates tells whether a signal is a wave of fibrillation.
+func (f *finder) fibrillates(m *marker) bool { return m.wave >= 0 && f.arrival(int(m.wave)) }
+
+// trackedFibrillation names ventricular stimuli after waves of fibrillation: neither
+// Wenckebach nor 2:1 behaviour, for there is no atrial rate to follow.
+func (f *finder) trackedFibrillation() {
+	var ids []event.ID
+	var vv []tick.Dur
+	n, last := 0, tick.Time(0)
+	for i := range f.dev.markers {
+		m := &f.dev.markers[i]
+		if m.e.Channel != 'V' || !m.beat {
+			continue
+		}
+		p := f.dev.marker(m.e.Cause)
+		if !m.paced() || p == nil || p.e.Channel != 'A' || p.e.Use != event.Tracked || !f.fibrillates(p) {
+			last = 0
+			continue
+		}
+		if n++; last > 0 {
+			vv = append(vv, m.e.T.Sub(last))
+		}
+		ids, last = append(ids, p.e.ID, m.e.ID), m.e.T
+	}
+	if n < 3 || len(vv) < 2 { // fewer are chance (a choice)
+		return
+	}
+	span := whole(slices.Min(vv)) + " to " + whole(slices.Max(vv)) + " ms"
+	f.add(orderDevice, Finding{
+		Slug: "tracked_fibrillation", Evidence: ids, Count: n, Note: judged,
+		Text:   fmt.Sprintf("%s tracked with V-V %s, no shorter than the upper-rate interval%s: consistent with tracking of atrial fibrillation.", plural(n, "wave of fibrillation is", "waves of fibrillation are"), span, f.upperInterval()),
+		Rivals: []string{"tracking of atrial premature beats", "tracking of far-field or other signals in the atrial channel"},
+		clause: "atrial fibrillation tracked up to the upper rate (V-V " + span + ")",
+	})
+}
+
 // upperRate names what the device makes of P waves faster than it may follow. Source
 // of the terms: Furman, PACE 1985;8:197.
 func (f *finder) upperRate() {
@@ -82,6 +118,7 @@ func (f *finder) upperRate() {
 			halves = append(halves, r)
 		}
 	}
+	f.trackedFibrillation()
 	f.wenckebachPacing(periods)
 	f.twoToOnePacing(halves)
 }

@@ -73,6 +73,7 @@ var findings = []Meaning{
 	{"p_synchronous_pacing", "The device senses P and stimulates the ventricles after the AV delay.", "", practice},
 	{"pacing_inhibited", "The device hears the heart and stimulates nothing.", "", practice},
 	{"upper_rate_wenckebach", "Above the upper rate the device follows P with growing AV delays until one falls into PVARP.", "", "Furman 1985, upper rate behavior (abstract read)."},
+	{"tracked_fibrillation", "Waves of fibrillation start the AV delay: the ventricles are paced irregularly, up to the upper rate.", "", practice},
 	{"upper_rate_two_to_one", "Every second P falls into PVARP and is not followed.", "", "Furman 1985, upper rate behavior (abstract read)."},
 	{"mode_switch", "The device leaves a tracking mode while the atria are fast.", "", practice},
 	{"endless_loop_tachycardia", "Each stimulus is conducted up to the atria, and the P it makes starts the next stimulus.", "", practice},

@@ -168,6 +168,17 @@ var deviceFacts = map[string]func(strip){
 		s.every("V-V in flutter", diffs(within(s.at("VP"), 5000, 18000)), 1000)
 		s.every("sinus tracked again", tail(s.delays("AS tracked", "VP"), 2), 110)
 	},
+	"dual-fibrillation-switch": func(s strip) {
+		s.modes("DDD>DDI DDI>DDD")
+		tracked := diffs(within(s.at("VP"), 4400, 9000))
+		lo, hi := slices.Min(tracked), slices.Max(tracked)
+		near(s.t, "shortest V-V: the upper rate", lo, 500, exact)
+		if hi-lo < 20 {
+			s.t.Errorf("V-V %v: the ventricles follow regularly", tracked)
+		}
+		s.every("V-V after the switch", diffs(within(s.at("VP"), 9100, 18000)), 1000)
+		s.every("sinus tracked again", tail(s.delays("AS tracked", "VP"), 2), 150)
+	},
 	"vvi-atrial-fibrillation": func(s strip) {
 		sensed, paced := s.at("VS"), s.at("VP")
 		if len(sensed) < 5 || len(paced) < 5 {
