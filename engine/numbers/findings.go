@@ -82,6 +82,7 @@ var findings = []Meaning{
 	{"hysteresis_pause", "After a beat of the heart the device waits longer than the lower rate.", "", practice},
 	{"loss_of_capture", "Stimuli that should capture do not.", "none", practice},
 	{"functional_non_capture", "Stimuli that fall on refractory muscle: they cannot capture.", "", practice},
+	{"stimulus_in_vulnerable_time", "A ventricular stimulus about the T wave, while part of the ventricles has recovered and part has not.", "none", practice},
 	{"undersensing", "Beats of the heart that the device does not hear although it listens.", "none", practice},
 	{"oversensing", "The device hears what is no beat of that chamber.", "none", practice},
 	{"crosstalk_inhibition", "The ventricular channel hears the atrial stimulus and withholds its own.", "none", practice},
