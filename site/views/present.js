@@ -27,7 +27,7 @@ export function presentView(root, store, fullScreen) {
   const all = el("button", { type: "button", id: "present-all", title: "End", onclick: () => to(Infinity) }, "Reveal all");
   const bar = el("div", { class: "present", role: "group", "aria-label": "Presentation" }, ask,
     el("div", { class: "present-tools" }, back, next, wave, all,
-      el("button", { type: "button", title: "W", onclick: fullScreen }, "Full screen"),
+      el("button", { type: "button", title: "Z", onclick: fullScreen }, "Full screen"),
       el("button", { type: "button", id: "present-leave", title: "Esc", onclick: leave }, "Leave")));
   root.append(bar);
   root.hidden = true;
@@ -90,7 +90,7 @@ export function presentView(root, store, fullScreen) {
       End: () => to(Infinity),
       Escape: leave,
       t: leave,
-      w: fullScreen,
+      z: fullScreen,
     };
     e.stopPropagation();
     const act = acts[e.key.length === 1 ? e.key.toLowerCase() : e.key];
