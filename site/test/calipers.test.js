@@ -58,10 +58,13 @@ describe("calipers on the sheet", () => {
     await page.mouse.down();
     await page.mouse.move(x + 78, y, { steps: 6 }); // 20 mm are 75.6 px: the next beat is in reach
     await page.mouse.up();
+    await settled(page);
     assert.equal(await page.innerText(".caliper-text"), "1600 ms · 38/min · 40 mm");
     await page.click("text=March");
+    await settled(page);
     assert.ok(Number(await page.getAttribute(".caliper-march", "data-count")) >= 2);
     await page.click("text=Pin");
+    await settled(page);
     assert.equal(await page.locator(".caliper-pin").count(), 1);
     assert.equal(await page.evaluate(() => /** @type {any} */ (window).asked), 0);
     await page.keyboard.press("Control+z");
@@ -76,12 +79,15 @@ describe("calipers on the sheet", () => {
     await page.focus(".caliper-leg[data-leg=b_ms]");
     await page.keyboard.press("Shift+ArrowRight");
     await page.keyboard.press("Shift+ArrowRight");
+    await settled(page);
     assert.match(await page.innerText(".caliper-text"), /^802 ms/);
     await page.keyboard.press("ArrowLeft");
+    await settled(page);
     assert.match(await page.innerText(".caliper-text"), /^800 ms/);
     assert.match((await page.getAttribute(".caliper-leg[data-leg=b_ms]", "aria-valuetext")) ?? "", / s; 800 ms, 75\/min, 20 mm$/);
     await page.waitForFunction(() => document.querySelector(".calipers [role=status]")?.textContent?.startsWith("800 ms"));
     await page.keyboard.press("Escape");
+    await settled(page);
     assert.equal(await page.isHidden(".calipers"), true);
     assert.equal(await page.evaluate(() => document.activeElement?.id), "timeline");
   }));
