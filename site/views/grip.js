@@ -14,7 +14,7 @@ import { pan, zoomTo } from "../model/view.js";
  * @typedef {object} On
  * @property {(e: PointerEvent) => void} moveHair
  * @property {() => void} hideHair
- * @property {(e: PointerEvent) => void} pick
+ * @property {(e: PointerEvent, held: Handle | null) => void} pick
  * @property {(e: PointerEvent) => {x: number, y: number}} place in millimetres
  * @property {(h: Handle, at: {x: number, y: number}) => void} take a handle has begun to move, taken hold of at a place
  * @property {(e: PointerEvent) => void} drag it to the pointer
@@ -99,7 +99,7 @@ export function grip(canvas, store, on, reach) {
   function lift(e) {
     const was = down.delete(e.pointerId);
     canvas.classList.remove("grabbed");
-    if (was && !moved && e.type === "pointerup") on.pick(e);
+    if (was && !moved && e.type === "pointerup") on.pick(e, held);
     if (held && moved) on.drop(e.type === "pointercancel");
     held = null;
     if (down.size === 1) from = { x: [...down.values()][0].x, t0: store.get().view.t0_ms };

@@ -127,14 +127,16 @@ export function timelineView(root, store, ask, catalogue, over) {
     pane.classList.toggle("over-handle", hand.hover(e) !== null);
   }
 
-  /** @param {PointerEvent} e */
-  function pick(e) {
+  /** @param {PointerEvent} e @param {import("../model/handle.js").Handle | null} held what could be moved there */
+  function pick(e, held) {
     const { scene, present } = store.get();
     if (!scene || present) return;
     const { x, y } = place(e);
     const hit = nearest(scene, x, y, REACH_PX / PX_PER_MM);
     hand.press(e, hit);
-    store.set({ selected: hit?.event ?? 0, drawer: hit && narrow() ? "account" : store.get().drawer });
+    // Ends of windows crowd: a press there is meant for what the pointer has named.
+    const named = held && (!hit || hit.cls.startsWith("window")) ? held.event : hit?.event ?? 0;
+    store.set({ selected: named, drawer: named && narrow() ? "account" : store.get().drawer });
   }
 
   const hand = handView(paper, store, ask, place, HANDLE_PX);
