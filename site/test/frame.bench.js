@@ -31,7 +31,7 @@ try {
   await page.fill('[data-field="span_ms"]', "30000");
   await page.keyboard.press("Enter");
   await page.click("text=+ premature beat");
-  await page.click(".pop summary");
+  await page.click(".toolbar .pop summary");
   await page.click("text=all twelve");
   await page.keyboard.press("Escape");
   await settled(page);

@@ -66,13 +66,13 @@ describe("lanes on the page", () => {
 
   test("twelve leads as on paper are chosen and let go of", () => onPage(async (page) => {
     await settled(page);
-    await page.click(".pop summary");
+    await page.click(".toolbar .pop summary");
     await page.click('#papers >> text="6x2"');
     await settled(page);
-    assert.match(await page.innerText(".pop summary"), /6x2/);
+    assert.match(await page.innerText(".toolbar .pop summary"), /6x2/);
     await page.click('#papers >> text="6x2"');
     await settled(page);
-    assert.match(await page.innerText(".pop summary"), /I, II, V1, V6/);
+    assert.match(await page.innerText(".toolbar .pop summary"), /I, II, V1, V6/);
   }));
 
   test("the device's lane is in sight without scrolling", () => onPage(async (page) => {
