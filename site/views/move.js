@@ -125,6 +125,7 @@ export function moves(store, ask, changed) {
       }
       if (!keys.has("answer") && !keys.has("scene")) return;
       if (keys.has("answer")) note();
+      if (!under && state.selected === 0) return; // let go of meanwhile
       const at = this.now();
       if (at && state.computed === last && at.event !== state.selected && Math.abs(at.t_ms - timeOf(handle, value)) < 400) store.set({ selected: at.event });
     },
