@@ -6,8 +6,7 @@ import (
 	"testing"
 
 	"escapement/engine/event"
-	"escapement/engine/plan"
-	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
 	"escapement/engine/tick"
 	"escapement/presets"
 )
@@ -167,15 +166,7 @@ func TestListing(t *testing.T) {
 // Every event of every preset can be accounted for.
 func TestPresets(t *testing.T) {
 	for _, p := range presets.List() {
-		b, _ := presets.Read(p.Name)
-		doc, err := plan.Decode(b)
-		if err != nil {
-			t.Fatal(err)
-		}
-		l, err := sim.Run(doc)
-		if err != nil {
-			t.Fatal(err)
-		}
+		l := simtest.Preset(t, p.Name).Log
 		for id := event.ID(1); int(id) <= len(l.Events); id++ {
 			check(t, l, id)
 		}

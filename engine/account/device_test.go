@@ -5,23 +5,14 @@ import (
 	"testing"
 
 	"escapement/engine/event"
-	"escapement/engine/plan"
-	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
 	"escapement/engine/tick"
 )
 
 // run makes a log from the body of a plan.
 func run(t testing.TB, body string) *event.Log {
 	t.Helper()
-	p, err := plan.Decode([]byte(`{"format":"escapement-plan/1",` + body + `}`))
-	if err != nil {
-		t.Fatal(err)
-	}
-	l, err := sim.Run(p)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return l
+	return simtest.Body(t, body).Log
 }
 
 const (

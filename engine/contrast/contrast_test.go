@@ -11,34 +11,18 @@ import (
 	"escapement/engine/event"
 	"escapement/engine/measure"
 	"escapement/engine/plan"
-	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
 	"escapement/engine/tick"
 	"escapement/presets"
 )
 
-func side(t interface{ Fatal(...any) }, file string) Side {
-	p, err := plan.Decode([]byte(file))
-	if err != nil {
-		t.Fatal(err)
-	}
-	prog, err := p.Compile()
-	if err != nil {
-		t.Fatal(err)
-	}
-	log, err := sim.Play(prog)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return Side{Log: log, Report: measure.Of(log, nil), Plan: p}
+func of(p simtest.Played) Side {
+	return Side{Log: p.Log, Report: measure.Of(p.Log, nil), Plan: p.Plan}
 }
 
-func preset(t interface{ Fatal(...any) }, name string) Side {
-	file, ok := presets.Read(name)
-	if !ok {
-		t.Fatal("no preset " + name)
-	}
-	return side(t, string(file))
-}
+func side(t simtest.T, file string) Side { return of(simtest.Play(t, file)) }
+
+func preset(t simtest.T, name string) Side { return of(simtest.Preset(t, name)) }
 
 func TestATimelineDoesNotDifferFromItself(t *testing.T) {
 	for _, e := range presets.List() {
@@ -66,7 +50,7 @@ var opposite = [...]Sign{Same: Same, Gone: New, New: Gone, Earlier: Later, Later
 func TestComparingTheOtherWayRoundGivesTheSame(t *testing.T) {
 	names := presets.List()
 	sides := map[string]Side{}
-	get := func(t interface{ Fatal(...any) }, name string) Side {
+	get := func(t simtest.T, name string) Side {
 		if _, ok := sides[name]; !ok {
 			sides[name] = preset(t, name)
 		}

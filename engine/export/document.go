@@ -9,6 +9,7 @@ import (
 	"escapement/engine/measure"
 	"escapement/engine/numbers"
 	"escapement/engine/scene"
+	"escapement/engine/timeline"
 )
 
 // Format is the value of the document's "format" field.
@@ -31,7 +32,7 @@ type document struct {
 // JSON writes one document: the plan, every event, all measures, the findings and the
 // arithmetic. Times are microseconds in fields that end in _us and milliseconds in those
 // that end in _ms.
-func JSON(w io.Writer, s *Strip) error {
+func JSON(w io.Writer, s *timeline.Timeline) error {
 	var lines bytes.Buffer
 	if err := s.Log.WriteJSON(&lines); err != nil {
 		return err
@@ -39,7 +40,7 @@ func JSON(w io.Writer, s *Strip) error {
 	d := document{
 		Format: Format, About: Computed, Caution: scene.CautionText, Plan: json.RawMessage(s.Plan.Encode()),
 		SpanUS: int64(s.Log.Span), Fingerprint: fmt.Sprintf("%016x", s.Log.Fingerprint()), Events: []json.RawMessage{},
-		Measured: numbers.Measured(&s.Measure.Summary), Measure: s.Measure, Device: s.Device,
+		Measured: numbers.Measured(&s.Measure.Summary), Measure: s.Measure, Device: s.Beside(),
 	}
 	for _, l := range bytes.Split(bytes.TrimSpace(lines.Bytes()), []byte{'\n'}) {
 		if len(l) > 0 {

@@ -7,23 +7,5 @@
 // recording.
 package export
 
-import (
-	"escapement/engine/event"
-	"escapement/engine/lead"
-	"escapement/engine/measure"
-	"escapement/engine/numbers"
-	"escapement/engine/plan"
-)
-
-// Strip is what is exported. Record is nil where there are no leads, Device where there
-// is no pacemaker.
-type Strip struct {
-	Plan    *plan.Plan
-	Log     *event.Log
-	Record  *lead.Record
-	Measure *measure.Report
-	Device  *numbers.Device
-}
-
 // Computed stands in every export.
 const Computed = "Computed by a model, not recorded from a person."

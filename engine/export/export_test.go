@@ -19,37 +19,26 @@ import (
 	"escapement/engine/export/edf"
 	"escapement/engine/field"
 	"escapement/engine/lead"
-	"escapement/engine/measure"
-	"escapement/engine/numbers"
 	"escapement/engine/plan"
 	"escapement/engine/scene"
 	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
+	"escapement/engine/timeline"
 	"escapement/presets"
 )
 
 var update = flag.Bool("update", false, "rewrite the goldens")
 
-func strip(t *testing.T, file []byte) *Strip {
+func strip(t *testing.T, file []byte) *timeline.Timeline {
 	t.Helper()
-	p, err := plan.Decode(file)
+	s, err := timeline.Of(simtest.Play(t, string(file)).Plan, field.New())
 	if err != nil {
 		t.Fatal(err)
 	}
-	prog, err := p.Compile()
-	if err != nil {
-		t.Fatal(err)
-	}
-	log, err := sim.Play(prog)
-	if err != nil {
-		t.Fatal(err)
-	}
-	s := &Strip{Plan: p, Log: log, Record: field.Record(log)}
-	s.Measure = measure.Of(log, s.Record)
-	s.Device = numbers.OfDevice(p, prog.Device, s.Measure)
 	return s
 }
 
-func preset(t *testing.T, name string) *Strip {
+func preset(t *testing.T, name string) *timeline.Timeline {
 	t.Helper()
 	file, ok := presets.Read(name)
 	if !ok {
@@ -117,7 +106,7 @@ func TestTheTableIsWhole(t *testing.T) {
 			t.Fatal(err)
 		}
 		var b bytes.Buffer
-		if err := CSV(&b, &Strip{Plan: p, Log: log}); err != nil {
+		if err := CSV(&b, &timeline.Timeline{Plan: p, Log: log}); err != nil {
 			t.Fatal(err)
 		}
 		if n := bytes.Count(b.Bytes(), []byte{'\n'}); n != bytes.Count(b.Bytes(), []byte("\r\n")) || n != len(log.Events)+1 {

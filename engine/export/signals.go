@@ -13,6 +13,7 @@ import (
 	"escapement/engine/lead"
 	"escapement/engine/scene"
 	"escapement/engine/tick"
+	"escapement/engine/timeline"
 )
 
 // EDFOptions are the choices of [EDF].
@@ -32,7 +33,7 @@ var ErrNoLeads = errors.New("export: this strip has no leads to write; they are 
 //	AS AP AR VS VP VR  what the device marked
 //	Finding: ...     a part of the rhythm, over the time that it covers
 //	any sentence     an event, as in the listing of the page
-func EDF(w io.Writer, s *Strip, o EDFOptions) error {
+func EDF(w io.Writer, s *timeline.Timeline, o EDFOptions) error {
 	if s.Record == nil {
 		return ErrNoLeads
 	}
@@ -54,7 +55,7 @@ func EDF(w io.Writer, s *Strip, o EDFOptions) error {
 
 // annotations are all that happened, in order of time; at one time the caution comes
 // first, then findings, waves and markers, then events.
-func annotations(s *Strip) []edf.Annotation {
+func annotations(s *timeline.Timeline) []edf.Annotation {
 	out := []edf.Annotation{{Text: Computed + " " + scene.CautionText}}
 	for i := range s.Measure.Findings {
 		f := &s.Measure.Findings[i]

@@ -7,6 +7,7 @@ import (
 
 	"escapement/engine/account"
 	"escapement/engine/event"
+	"escapement/engine/timeline"
 )
 
 // Columns are the names of the columns of [CSV], with their units. They are stable; new
@@ -20,7 +21,7 @@ var Columns = []string{
 // CSV writes the events as a table after RFC 4180: a line of names, then an event a
 // line, lines ended by CR LF, fields quoted where they need it. A field that an event
 // does not have is empty.
-func CSV(w io.Writer, s *Strip) error {
+func CSV(w io.Writer, s *timeline.Timeline) error {
 	c := csv.NewWriter(w)
 	c.UseCRLF = true
 	if err := c.Write(Columns); err != nil {

@@ -6,27 +6,14 @@ import (
 	"testing"
 
 	"escapement/engine/event"
-	"escapement/engine/plan"
-	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
 	"escapement/engine/tick"
 )
 
 // electrogramsFingerprint is what TestElectrogramBits found on linux/amd64.
 const electrogramsFingerprint = 0xf89520f8b110540e
 
-// played runs a plan.
-func played(t *testing.T, file string) *event.Log {
-	t.Helper()
-	p, err := plan.Decode([]byte(file))
-	if err != nil {
-		t.Fatal(err)
-	}
-	log, err := sim.Run(p)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return log
-}
+func played(t *testing.T, file string) *event.Log { return simtest.Play(t, file).Log }
 
 // first is when a signal first leaves zero by more than mv between two instants, in ms;
 // -1 where it does not.

@@ -9,25 +9,15 @@ import (
 	"escapement/engine/event"
 	"escapement/engine/plan"
 	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
 	"escapement/engine/tick"
 	"escapement/presets"
 )
 
 func run(t *testing.T, file string) (*plan.Plan, *event.Log, *Mover) {
 	t.Helper()
-	p, err := plan.Decode([]byte(file))
-	if err != nil {
-		t.Fatal(err)
-	}
-	prog, err := p.Compile()
-	if err != nil {
-		t.Fatal(err)
-	}
-	log, err := sim.Play(prog)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return p, log, New(p, prog.Device, log)
+	p := simtest.Play(t, file)
+	return p.Plan, p.Log, New(p.Plan, p.Program.Device, p.Log)
 }
 
 // same tells whether two logs hold the same things in the same order up to an event.

@@ -7,24 +7,13 @@ import (
 
 	"escapement/engine/event"
 	"escapement/engine/field"
-	"escapement/engine/plan"
-	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
 )
 
 // paced runs a plan and measures it, without leads.
 func paced(t testing.TB, body string) (*event.Log, *Report) {
 	t.Helper()
-	p, err := plan.Decode([]byte(`{"format":"escapement-plan/1",` + body + `}`))
-	if err != nil {
-		t.Fatal(err)
-	}
-	l, err := sim.Run(p)
-	if err != nil {
-		t.Fatal(err)
-	}
-	for _, err := range event.Validate(l) {
-		t.Fatal(err)
-	}
+	l := simtest.Body(t, body).Log
 	r := Of(l, nil)
 	checkReport(t, l, r)
 	return l, r

@@ -6,27 +6,11 @@ import (
 
 	"escapement/engine/event"
 	"escapement/engine/field"
-	"escapement/engine/plan"
-	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
 	"escapement/presets"
 )
 
-func preset(t testing.TB, name string) *event.Log {
-	t.Helper()
-	b, ok := presets.Read(name)
-	if !ok {
-		t.Fatalf("no preset %s", name)
-	}
-	p, err := plan.Decode(b)
-	if err != nil {
-		t.Fatal(err)
-	}
-	l, err := sim.Run(p)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return l
-}
+func preset(t testing.TB, name string) *event.Log { return simtest.Preset(t, name).Log }
 
 // expected is everything that may be said of each preset, in order: a finding
 // too many is as wrong as one too few. Definitions as in report.go.

@@ -6,32 +6,17 @@ import (
 	"strings"
 	"testing"
 
-	"escapement/engine/event"
 	"escapement/engine/field"
 	"escapement/engine/plan"
 	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
 	"escapement/presets"
 )
 
 // measured runs a preset, changed by one replacement of its text where old is given.
 func measured(t *testing.T, name, old, with string) *Report {
 	t.Helper()
-	b, ok := presets.Read(name)
-	if !ok || old != "" && !strings.Contains(string(b), old) {
-		t.Fatalf("no preset %s with %q", name, old)
-	}
-	p, err := plan.Decode([]byte(strings.Replace(string(b), old, with, 1)))
-	if err != nil {
-		t.Fatal(err)
-	}
-	l, err := sim.Run(p)
-	if err != nil {
-		t.Fatal(err)
-	}
-	for _, e := range event.Validate(l) {
-		t.Error(e)
-	}
-	return Of(l, nil)
+	return Of(simtest.Changed(t, name, old, with).Log, nil)
 }
 
 // The same ventricular train in two tachycardias, read off the log. PPI - TCL over 115

@@ -6,33 +6,17 @@ import (
 
 	"escapement/engine/event"
 	"escapement/engine/field"
-	"escapement/engine/plan"
-	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
 	"escapement/engine/tick"
 
 	"pgregory.net/rapid"
 )
 
-type fatal interface {
-	Helper()
-	Fatal(...any)
-}
-
 // trace runs a plan and gives a site's membrane.
-func trace(t fatal, file, site string) (*event.Log, *Trace) {
+func trace(t simtest.T, file, site string) (*event.Log, *Trace) {
 	t.Helper()
-	p, err := plan.Decode([]byte(file))
-	if err != nil {
-		t.Fatal(err)
-	}
-	prog, err := p.Compile()
-	if err != nil {
-		t.Fatal(err)
-	}
-	log, err := sim.Run(p)
-	if err != nil {
-		t.Fatal(err)
-	}
+	p := simtest.Play(t, file)
+	prog, log := p.Program, p.Log
 	v, a := field.Shapes()
 	hearts := []InForce{{Heart: prog.Heart}}
 	for _, c := range prog.Changes {

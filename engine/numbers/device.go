@@ -13,10 +13,10 @@ import (
 // Device is what there is to say of a pacemaker: the sums that follow from its
 // settings, and what it did on the strip.
 type Device struct {
-	Warnings   []string   `json:"warnings"` // about the settings; the strip stands all the same
-	Arithmetic []Sum      `json:"arithmetic"`
-	Counted    []Number   `json:"counted"`
-	Intervals  []Interval `json:"intervals"`
+	Warnings   []string           `json:"warnings"` // about the settings; the strip stands all the same
+	Arithmetic []Sum              `json:"arithmetic"`
+	Counted    []Number           `json:"counted"`
+	Intervals  []measure.Interval `json:"intervals"`
 }
 
 // Sum is a number that follows from settings, with how it was reached.
@@ -28,15 +28,6 @@ type Sum struct {
 	Formula string `json:"formula"`
 	Numbers string `json:"numbers"`
 	Source  string `json:"source"`
-}
-
-// Interval is a kind of interval of the device: between its markers, by their names.
-type Interval struct {
-	Name    string   `json:"name"`
-	Count   int      `json:"count"`
-	Median  *float64 `json:"median_ms"`
-	Least   float64  `json:"least_ms"`
-	Longest float64  `json:"longest_ms"`
 }
 
 // usualMargin is how much stronger than the threshold a chronic output is, and than the
@@ -56,7 +47,7 @@ func OfDevice(p *plan.Plan, set *plan.Device, r *measure.Report) *Device {
 	if r := r.Device; r != nil && r.LeadAR != nil {
 		heart.AR = tick.MS(*r.LeadAR)
 	}
-	d := &Device{Warnings: []string{}, Arithmetic: []Sum{}, Counted: []Number{}, Intervals: []Interval{}}
+	d := &Device{Warnings: []string{}, Arithmetic: []Sum{}, Counted: []Number{}, Intervals: []measure.Interval{}}
 	for _, w := range pacer.Warnings(s, heart) {
 		d.Warnings = append(d.Warnings, upper(w.Text)+".")
 	}
@@ -70,9 +61,7 @@ func OfDevice(p *plan.Plan, set *plan.Device, r *measure.Report) *Device {
 	d.leads(p, set)
 	if r := r.Device; r != nil {
 		d.Counted = counted(r)
-		for _, i := range r.Intervals {
-			d.Intervals = append(d.Intervals, Interval{i.Name, i.Count, i.Median, i.Least, i.Longest})
-		}
+		d.Intervals = append(d.Intervals, r.Intervals...)
 	}
 	return d
 }

@@ -7,36 +7,15 @@ import (
 
 	"escapement/engine/field"
 	"escapement/engine/measure"
-	"escapement/engine/plan"
-	"escapement/engine/sim"
-	"escapement/presets"
+	"escapement/engine/sim/simtest"
 )
 
 // beside gives what stands beside a preset, changed, and what was found on its strip.
 func beside(t *testing.T, preset, old, changed string) (*Device, *measure.Report) {
 	t.Helper()
-	file, ok := presets.Read(preset)
-	if !ok {
-		t.Fatalf("no preset %q", preset)
-	}
-	text := string(file)
-	if old != "" && !strings.Contains(text, old) {
-		t.Fatalf("%s has no %s", preset, old)
-	}
-	p, err := plan.Decode([]byte(strings.Replace(text, old, changed, 1)))
-	if err != nil {
-		t.Fatal(err)
-	}
-	prog, err := p.Compile()
-	if err != nil {
-		t.Fatal(err)
-	}
-	log, err := sim.Play(prog)
-	if err != nil {
-		t.Fatal(err)
-	}
-	r := measure.Of(log, field.Record(log))
-	return OfDevice(p, prog.Device, r), r
+	p := simtest.Changed(t, preset, old, changed)
+	r := measure.Of(p.Log, field.Record(p.Log))
+	return OfDevice(p.Plan, p.Program.Device, r), r
 }
 
 func (d *Device) sum(t *testing.T, name string) Sum {

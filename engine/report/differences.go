@@ -5,16 +5,16 @@ import (
 	"strings"
 
 	"escapement/engine/contrast"
-	"escapement/engine/numbers"
 	"escapement/engine/plan"
 	"escapement/engine/scene"
+	"escapement/engine/timeline"
 )
 
 // Differences are the lines for [Compare]: numbers of both cases, and the findings,
 // warnings and settings in which they differ. Numbers that agree are left out.
-func Differences(before, after *Case) []scene.Difference {
+func Differences(before, after *timeline.Timeline) []scene.Difference {
 	out := []scene.Difference{}
-	for _, r := range contrast.Of(before.side(), after.side()).Rows {
+	for _, r := range contrast.Of(before.Side(), after.Side()).Rows {
 		if r.Sign == contrast.Same {
 			continue
 		}
@@ -22,14 +22,6 @@ func Differences(before, after *Case) []scene.Difference {
 		out = append(out, scene.Difference{Group: r.Part, Label: name, Before: r.Before, After: r.After, Change: r.By})
 	}
 	return out
-}
-
-func (c *Case) side() contrast.Side {
-	s := contrast.Side{Log: c.Log, Report: c.Measure, Plan: c.Plan}
-	if d := numbers.OfDevice(c.Plan, c.Device, c.Measure); d != nil {
-		s.Warnings = d.Warnings
-	}
-	return s
 }
 
 // named is the name of a setting together with the part that it belongs to, or the

@@ -10,62 +10,16 @@ package report
 import (
 	"fmt"
 
-	"escapement/engine/event"
-	"escapement/engine/field"
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
-	"escapement/engine/measure"
 	"escapement/engine/numbers"
-	"escapement/engine/plan"
 	"escapement/engine/scene"
-	"escapement/engine/signal"
-	"escapement/engine/sim"
 	"escapement/engine/tick"
+	"escapement/engine/timeline"
 )
 
-// Case is a computed plan.
-type Case struct {
-	Plan    *plan.Plan
-	Device  *plan.Device // nil: none
-	Log     *event.Log
-	Record  *lead.Record // nil for a strip longer than LeadsUpTo
-	Measure *measure.Report
-
-	signals *signal.Source
-}
-
-// LeadsUpTo is the longest strip that has leads.
-const LeadsUpTo = numbers.LeadsUpTo
-
-// Run computes a plan. Errors are those of [plan.Plan.Compile] and [sim.Play].
-func Run(p *plan.Plan) (*Case, error) { return RunWith(p, field.New()) }
-
-// RunWith computes a plan with a field that may know some of its waves already.
-func RunWith(p *plan.Plan, f *field.Field) (*Case, error) {
-	prog, err := p.Compile()
-	if err != nil {
-		return nil, err
-	}
-	log, err := sim.Play(prog)
-	if err != nil {
-		return nil, err
-	}
-	c := &Case{Plan: p, Device: prog.Device, Log: log, signals: signal.Of(prog, log, f)}
-	if log.Span <= LeadsUpTo {
-		c.Record = f.Record(log)
-	}
-	c.Measure = measure.Of(log, c.Record)
-	return c, nil
-}
-
-// Signals are the electrograms and action potentials among the lanes, for a scene; gain
-// is the scale of electrograms, mm a millivolt, 0: 10. A strip without leads has none.
-func (c *Case) Signals(lanes []string, gain float64) []scene.Sampled {
-	if c.Record == nil {
-		return nil
-	}
-	return c.signals.Lanes(lanes, gain)
-}
+// rows makes the rows of a report out of a timeline.
+type rows struct{ *timeline.Timeline }
 
 // Options say what is printed. The zero value is A4 with leads II and V1, the full
 // ladder and as much of the strip's beginning as one line holds.
@@ -85,7 +39,8 @@ type Options struct {
 }
 
 // Build lays out the report of one plan.
-func Build(c *Case, o Options) ([]*scene.Scene, error) {
+func Build(t *timeline.Timeline, o Options) ([]*scene.Scene, error) {
+	c := rows{t}
 	strip, err := c.excerpt(&o)
 	if err != nil {
 		return nil, err
@@ -96,7 +51,7 @@ func Build(c *Case, o Options) ([]*scene.Scene, error) {
 	}
 	measured := numbers.Measured(&c.Measure.Summary)
 	r.Readings = readings(measured)
-	if d := numbers.OfDevice(c.Plan, c.Device, c.Measure); d != nil {
+	if d := c.Beside(); d != nil {
 		r.Warnings, r.Sums, r.Counted = d.Warnings, sums(d.Arithmetic), readings(d.Counted)
 	}
 	if c.Record == nil {
@@ -108,10 +63,11 @@ func Build(c *Case, o Options) ([]*scene.Scene, error) {
 
 // Compare lays out two plans one above the other, named as given ("before", "after"),
 // with the lines in which they differ; nil are those of [Differences].
-func Compare(cases [2]*Case, names [2]string, differences []scene.Difference, o Options) ([]*scene.Scene, error) {
+func Compare(two [2]*timeline.Timeline, names [2]string, differences []scene.Difference, o Options) ([]*scene.Scene, error) {
 	if differences == nil {
-		differences = Differences(cases[0], cases[1])
+		differences = Differences(two[0], two[1])
 	}
+	cases := [2]rows{{two[0]}, {two[1]}}
 	title := first(names[0]) + " and " + names[1]
 	if t := cases[1].title(); t == cases[0].title() {
 		title += ": " + t
@@ -140,14 +96,14 @@ func first(s string) string {
 	return string(s[0]-'a'+'A') + s[1:]
 }
 
-func (c *Case) title() string {
+func (c rows) title() string {
 	if c.Plan.Title == "" {
 		return "Untitled plan"
 	}
 	return c.Plan.Title
 }
 
-func (c *Case) excerpt(o *Options) (scene.Excerpt, error) {
+func (c rows) excerpt(o *Options) (scene.Excerpt, error) {
 	span := c.Log.Span
 	if o.From < 0 || o.From >= span || o.To != 0 && (o.To <= o.From || o.To > span) {
 		return scene.Excerpt{}, fmt.Errorf("report: the window from %v to %v ms does not lie in the strip of %v ms", o.From, o.To, span)

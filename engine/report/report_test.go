@@ -8,16 +8,18 @@ import (
 	"strings"
 	"testing"
 
+	"escapement/engine/field"
 	"escapement/engine/plan"
 	"escapement/engine/press"
 	"escapement/engine/scene"
 	"escapement/engine/tick"
+	"escapement/engine/timeline"
 	"escapement/presets"
 )
 
 var update = flag.Bool("update", false, "rewrite the goldens")
 
-func preset(t *testing.T, name string) *Case {
+func preset(t *testing.T, name string) *timeline.Timeline {
 	t.Helper()
 	file, ok := presets.Read(name)
 	if !ok {
@@ -27,7 +29,7 @@ func preset(t *testing.T, name string) *Case {
 	if err != nil {
 		t.Fatal(err)
 	}
-	c, err := Run(p)
+	c, err := timeline.Of(p, field.New())
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -200,7 +202,7 @@ func TestRefusals(t *testing.T) {
 }
 
 func TestTwoStripsOnOnePage(t *testing.T) {
-	cases := [2]*Case{preset(t, "dual-treadmill-two-to-one"), preset(t, "dual-one-to-one-to-140")}
+	cases := [2]*timeline.Timeline{preset(t, "dual-treadmill-two-to-one"), preset(t, "dual-one-to-one-to-140")}
 	list := []scene.Difference{{Label: "PVARP", Before: "300", After: "230", Change: "-70", Unit: "ms"}, {Label: "mean ventricular rate", Before: "65", After: "130", Change: "+65", Unit: "/min"}}
 	pages, err := Compare(cases, [2]string{"before", "after"}, list, Options{})
 	if err != nil {
@@ -227,7 +229,7 @@ func TestTwoStripsOnOnePage(t *testing.T) {
 // Left alone, a comparison finds its differences, under names that say what they
 // belong to.
 func TestDifferencesAreFound(t *testing.T) {
-	pages, err := Compare([2]*Case{preset(t, "dual-treadmill-two-to-one"), preset(t, "dual-one-to-one-to-140")}, [2]string{"before", "after"}, nil, Options{})
+	pages, err := Compare([2]*timeline.Timeline{preset(t, "dual-treadmill-two-to-one"), preset(t, "dual-one-to-one-to-140")}, [2]string{"before", "after"}, nil, Options{})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -312,7 +314,7 @@ func diff(want, got string) string {
 // Both strips stand on one page; what there is no room for is left out and named.
 func TestBothStripsStandOnOnePage(t *testing.T) {
 	lanes := strings.Fields("lead:I lead:II lead:V1 lead:V6 axis ladder device")
-	pages, err := Compare([2]*Case{preset(t, "dual-treadmill-two-to-one"), preset(t, "dual-one-to-one-to-140")}, [2]string{"before", "after"}, nil, Options{Lanes: lanes})
+	pages, err := Compare([2]*timeline.Timeline{preset(t, "dual-treadmill-two-to-one"), preset(t, "dual-one-to-one-to-140")}, [2]string{"before", "after"}, nil, Options{Lanes: lanes})
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -73,7 +73,7 @@ func sums(list []numbers.Sum) []scene.Sum {
 	return out
 }
 
-func (c *Case) findings() []scene.Remark {
+func (c rows) findings() []scene.Remark {
 	var out []scene.Remark
 	for i := range c.Measure.Findings {
 		f := &c.Measure.Findings[i]

@@ -10,7 +10,7 @@ import (
 
 // settings lists what the plan states and, assumed, the everyday numbers that it does
 // not. What its mode has no use for and what lies in an absent part is left out.
-func (c *Case) settings() []scene.Setting {
+func (c rows) settings() []scene.Setting {
 	p := c.Plan
 	var out []scene.Setting
 	for _, f := range plan.Catalogue() {
@@ -25,7 +25,7 @@ func (c *Case) settings() []scene.Setting {
 	return append(out, items("Interventions", "interventions[]", "at_ms", p.Interventions)...)
 }
 
-func (c *Case) setting(f *plan.Field) (scene.Setting, bool) {
+func (c rows) setting(f *plan.Field) (scene.Setting, bool) {
 	p := c.Plan
 	s := scene.Setting{Group: group(f.Path), Label: label(f)}
 	if f.Kind == plan.Group {
@@ -95,7 +95,7 @@ func words(f *plan.Field, text string) string {
 // idle tells whether nothing uses an everyday number that the plan does not state: the
 // node's clinical numbers where its curve is given outright, and what the mode of the
 // device has no use for.
-func (c *Case) idle(path string) bool {
+func (c rows) idle(path string) bool {
 	const fast = "heart.av_node.fast."
 	if strings.HasPrefix(path, fast) {
 		_, curve := c.Plan.Stated(fast + "min_ms")

@@ -6,22 +6,14 @@ import (
 	"escapement/engine/field"
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
-	"escapement/engine/plan"
 	"escapement/engine/scene"
-	"escapement/engine/sim"
+	"escapement/engine/sim/simtest"
 )
 
 // BenchmarkTwelveLeads lays out and encodes 30 s of twelve leads with the ladder
 // at the columns of a screen.
 func BenchmarkTwelveLeads(b *testing.B) {
-	p, err := plan.Decode([]byte(`{"format":"escapement-plan/1","span_ms":30000}`))
-	if err != nil {
-		b.Fatal(err)
-	}
-	l, err := sim.Run(p)
-	if err != nil {
-		b.Fatal(err)
-	}
+	l := simtest.Body(b, `"span_ms":30000`).Log
 	in := scene.Input{Log: l, Record: field.Record(l)}
 	var o scene.Options
 	o.Grid, o.ColumnMM = true, 0.26

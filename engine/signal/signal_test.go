@@ -6,30 +6,13 @@ import (
 	"testing"
 
 	"escapement/engine/field"
-	"escapement/engine/plan"
-	"escapement/engine/sim"
-	"escapement/presets"
+	"escapement/engine/sim/simtest"
 )
 
 func source(t *testing.T, preset string) *Source {
 	t.Helper()
-	file, ok := presets.Read(preset)
-	if !ok {
-		t.Fatalf("no preset %q", preset)
-	}
-	p, err := plan.Decode(file)
-	if err != nil {
-		t.Fatal(err)
-	}
-	prog, err := p.Compile()
-	if err != nil {
-		t.Fatal(err)
-	}
-	log, err := sim.Play(prog)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return Of(prog, log, field.New())
+	p := simtest.Preset(t, preset)
+	return Of(p.Program, p.Log, field.New())
 }
 
 func TestLanesAreThoseAskedForInTheirOrder(t *testing.T) {

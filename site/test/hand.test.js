@@ -3,7 +3,7 @@
 import assert from "node:assert/strict";
 import { describe, test } from "node:test";
 import { settled } from "./host.js";
-import { ink, onPage, openPreset, stage, walkTo } from "./walk.js";
+import { ink, onPage, openPreset, ringAt, stage, walkTo } from "./walk.js";
 
 describe("the hand on the timeline", () => {
   stage();
@@ -73,24 +73,7 @@ describe("the hand on the timeline", () => {
     const first = await settled(page);
     const at = () => page.inputValue('[data-field="interventions[0].at_ms"]');
     const began = await at();
-    const canvas = page.locator("#timeline canvas");
-    const box = await canvas.boundingBox();
-    assert.ok(box);
-    // The ring is the only thing in the device's colour; it stands in the ladder.
-    const ring = await page.evaluate(() => {
-      const from = /** @type {HTMLCanvasElement} */ (document.querySelector("#timeline canvas"));
-      const copy = new OffscreenCanvas(from.width, from.height);
-      const g = /** @type {OffscreenCanvasRenderingContext2D} */ (copy.getContext("2d", { willReadFrequently: true }));
-      g.drawImage(from, 0, 0);
-      const d = g.getImageData(0, 0, copy.width, copy.height).data;
-      for (let i = 0; i < d.length; i += 4) {
-        if (d[i] === 0x34 && d[i + 1] === 0x47 && d[i + 2] === 0xb5) return { x: (i / 4) % copy.width, y: Math.floor(i / 4 / copy.width) };
-      }
-      return null;
-    });
-    assert.ok(ring, "no ring was found");
-    const x = box.x + ring.x;
-    const y = box.y + ring.y + 2;
+    const { x, y } = await ringAt(page);
     await page.mouse.move(x, y);
     assert.equal(await page.locator(".over-handle").count(), 1);
     await page.mouse.down();

@@ -14,9 +14,9 @@ import (
 	"escapement/engine/ladder"
 	"escapement/engine/plan"
 	"escapement/engine/press"
-	"escapement/engine/report"
 	"escapement/engine/scene"
 	"escapement/engine/tick"
+	"escapement/engine/timeline"
 )
 
 // drawing is what the flags of draw ask for.
@@ -92,7 +92,7 @@ func (d *drawing) scene(p *plan.Plan) (*scene.Scene, error) {
 	if o.Lanes, o.Paper, err = d.lanes.read("draw"); err != nil {
 		return nil, err
 	}
-	c, err := report.Run(p)
+	c, err := timeline.Of(p, field.New())
 	if err != nil {
 		return nil, err
 	}

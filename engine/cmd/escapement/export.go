@@ -9,8 +9,7 @@ import (
 	"time"
 
 	"escapement/engine/export"
-	"escapement/engine/numbers"
-	"escapement/engine/report"
+	"escapement/engine/timeline"
 )
 
 // exporting writes a computed strip in an open format, by the ending of the file's name.
@@ -47,10 +46,10 @@ func exporting(args []string, in io.Reader) error {
 			return &usageError{fmt.Sprintf("export: start %q; it is written as 2026-12-01T08:30:00", start)}
 		}
 	}
-	var write func(io.Writer, *export.Strip) error
+	var write func(io.Writer, *timeline.Timeline) error
 	switch ext := strings.ToLower(filepath.Ext(out)); ext {
 	case ".edf":
-		write = func(w io.Writer, s *export.Strip) error { return export.EDF(w, s, o) }
+		write = func(w io.Writer, s *timeline.Timeline) error { return export.EDF(w, s, o) }
 	case ".csv":
 		write = export.CSV
 	case ".json":
@@ -62,10 +61,5 @@ func exporting(args []string, in io.Reader) error {
 	if err != nil {
 		return err
 	}
-	s := exported(c)
-	return create(out, func(w io.Writer) error { return write(w, s) })
-}
-
-func exported(c *report.Case) *export.Strip {
-	return &export.Strip{Plan: c.Plan, Log: c.Log, Record: c.Record, Measure: c.Measure, Device: numbers.OfDevice(c.Plan, c.Device, c.Measure)}
+	return create(out, func(w io.Writer) error { return write(w, c) })
 }

@@ -7,12 +7,14 @@ import (
 	"path/filepath"
 	"strings"
 
+	"escapement/engine/field"
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
 	"escapement/engine/press"
 	"escapement/engine/report"
 	"escapement/engine/scene"
 	"escapement/engine/tick"
+	"escapement/engine/timeline"
 )
 
 // paper is what the flags of report ask for.
@@ -75,15 +77,15 @@ func (q *paper) pages(arg string, in io.Reader) ([]*scene.Scene, error) {
 	if err != nil {
 		return nil, err
 	}
-	return report.Compare([2]*report.Case{before, c}, [2]string{"before", "after"}, nil, o)
+	return report.Compare([2]*timeline.Timeline{before, c}, [2]string{"before", "after"}, nil, o)
 }
 
-func computed(arg string, in io.Reader) (*report.Case, error) {
+func computed(arg string, in io.Reader) (*timeline.Timeline, error) {
 	p, err := read(arg, in)
 	if err != nil {
 		return nil, err
 	}
-	return report.Run(p)
+	return timeline.Of(p, field.New())
 }
 
 func (q *paper) options() (report.Options, error) {

@@ -47,7 +47,7 @@ func (s *Session) account(args []byte) []byte {
 	if q.Event < 0 && s.before != nil {
 		t, id, sign = s.before, -q.Event, -1
 	}
-	a := account.Of(t.log, id)
+	a := account.Of(t.Log, id)
 	if a == nil {
 		return none
 	}
@@ -64,11 +64,11 @@ func (s *Session) account(args []byte) []byte {
 
 // notTracked answers for a depolarisation of the atria; of a signal the account itself
 // tells it.
-func (t *timeline) notTracked(id, sign event.ID) *notThat {
-	if t.log.At(id).Kind != event.Activate || t.pacer == nil || !t.pacer.Settings.Mode.Tracks() {
+func (t *sheet) notTracked(id, sign event.ID) *notThat {
+	if t.Log.At(id).Kind != event.Activate || t.Device == nil || !t.Device.Settings.Mode.Tracks() {
 		return nil
 	}
-	w := account.WhyNotTracked(t.log, id)
+	w := account.WhyNotTracked(t.Log, id)
 	if w == nil || len(w.Sentences) == 0 {
 		return nil
 	}
@@ -101,7 +101,7 @@ func (s *Session) listing(args []byte) []byte {
 		return none
 	}
 	r := listingReply{Lines: []line{}}
-	for _, l := range account.Listing(s.current.log, tick.Time(tick.MS(q.From)), tick.Time(tick.MS(q.To))) {
+	for _, l := range account.Listing(s.current.Log, tick.Time(tick.MS(q.From)), tick.Time(tick.MS(q.To))) {
 		text := l.Text
 		if _, rest, ok := strings.Cut(text, " s: "); ok { // the page has a column for the time
 			text = rest

@@ -8,12 +8,10 @@ import (
 
 	"escapement/engine/event"
 	"escapement/engine/ladder"
-	"escapement/engine/lead"
 	"escapement/engine/measure"
 	"escapement/engine/numbers"
 	"escapement/engine/plan"
-	"escapement/engine/signal"
-	"escapement/engine/sim"
+	"escapement/engine/timeline"
 )
 
 type computeReply struct {
@@ -77,7 +75,7 @@ func (s *Session) compute(args []byte) ([]byte, []float32) {
 
 // reply puts the parts together by hand: the scene is JSON already, and encoding/json
 // would read it all again.
-func (t *timeline) reply(a *answer, scene []byte) []byte {
+func (t *sheet) reply(a *answer, scene []byte) []byte {
 	text := encode(a)
 	out := make([]byte, 0, len(text)+len(scene)+64)
 	out = append(append(out, `{"ok":true,"answer":`...), text...)
@@ -85,44 +83,35 @@ func (t *timeline) reply(a *answer, scene []byte) []byte {
 	return append(out, '}')
 }
 
-func (s *Session) run(file []byte) (*timeline, error) {
+func (s *Session) run(file []byte) (*sheet, error) {
 	p, err := plan.Decode(file)
 	if err != nil {
 		return nil, err
 	}
-	prog, err := p.Compile()
+	t, err := timeline.Of(p, s.field)
 	if err != nil {
 		return nil, err
 	}
-	log, err := sim.Play(prog)
-	if err != nil {
-		return nil, err
-	}
-	var rec *lead.Record
-	if log.Span <= numbers.LeadsUpTo {
-		rec = s.field.Record(log)
-	}
-	return &timeline{file: file, plan: p, pacer: prog.Device, log: log, record: rec, drawn: pressed(log, rec), report: measure.Of(log, rec), diagrams: map[ladder.Form]*ladder.Diagram{},
-		signals: signal.Of(prog, log, s.field)}, nil
+	return &sheet{Timeline: t, file: file, drawn: pressed(t.Log, t.Record), diagrams: map[ladder.Form]*ladder.Diagram{}}, nil
 }
 
-func (t *timeline) answer() *answer {
+func (t *sheet) answer() *answer {
 	a := &answer{
-		Title: t.plan.Title, Note: t.plan.Note,
-		Statement: sentence(t.report.Statement, t.report.Clauses), Warnings: []string{}, Findings: []finding{},
-		Measured: numbers.Measured(&t.report.Summary), Events: len(t.log.Events), Span: t.log.Span.MS(),
-		Fingerprint: fmt.Sprintf("%016x", t.log.Fingerprint()),
+		Title: t.Plan.Title, Note: t.Plan.Note,
+		Statement: sentence(t.Measure.Statement, t.Measure.Clauses), Warnings: []string{}, Findings: []finding{},
+		Measured: numbers.Measured(&t.Measure.Summary), Events: len(t.Log.Events), Span: t.Log.Span.MS(),
+		Fingerprint: fmt.Sprintf("%016x", t.Log.Fingerprint()),
 		Overview:    t.overview(),
-		Device:      numbers.OfDevice(t.plan, t.pacer, t.report),
+		Device:      t.Beside(),
 	}
-	if t.record == nil {
+	if t.Record == nil {
 		a.Warnings = append(a.Warnings, numbers.NoLeads)
 	}
-	for i := range t.report.Findings {
-		f := &t.report.Findings[i]
+	for i := range t.Measure.Findings {
+		f := &t.Measure.Findings[i]
 		out := finding{Slug: f.Slug, Ratio: f.Ratio, Text: f.Text, Events: list(f.Evidence), T: f.FromUS.MS(), Note: f.Note, Rivals: f.Rivals}
 		if len(f.Evidence) > 0 {
-			out.T = t.log.At(f.Evidence[0]).T.MS()
+			out.T = t.Log.At(f.Evidence[0]).T.MS()
 		}
 		if out.Rivals == nil {
 			out.Rivals = []string{}

@@ -8,7 +8,6 @@ import (
 
 	"escapement/engine/contrast"
 	"escapement/engine/event"
-	"escapement/engine/numbers"
 	"escapement/engine/scene"
 	"escapement/engine/tick"
 )
@@ -32,8 +31,8 @@ type eventCount struct {
 }
 
 // known is the timeline of a plan: computed, or one of those at hand.
-func (s *Session) known(file []byte) (*timeline, error) {
-	for _, t := range [...]*timeline{s.current, s.before} {
+func (s *Session) known(file []byte) (*sheet, error) {
+	for _, t := range [...]*sheet{s.current, s.before} {
 		if t != nil && bytes.Equal(t.file, file) {
 			return t, nil
 		}
@@ -56,14 +55,6 @@ func (s *Session) keep(file []byte) (doubt []string) {
 	return doubt
 }
 
-func (t *timeline) side() contrast.Side {
-	side := contrast.Side{Log: t.log, Report: t.report, Plan: t.plan}
-	if d := numbers.OfDevice(t.plan, t.pacer, t.report); d != nil {
-		side.Warnings = d.Warnings
-	}
-	return side
-}
-
 // compared is how two timelines differ, and what of it every drawing needs.
 type compared struct {
 	*contrast.Contrast
@@ -76,7 +67,7 @@ func (s *Session) contrast() *compared {
 	if s.differs != nil {
 		return s.differs
 	}
-	c := &compared{Contrast: contrast.Of(s.before.side(), s.current.side())}
+	c := &compared{Contrast: contrast.Of(s.before.Side(), s.current.Side())}
 	for i := range c.Events {
 		switch d := &c.Events[i]; d.Sign {
 		case contrast.Gone:
@@ -100,7 +91,7 @@ func (s *Session) contrasted() []byte {
 		return none
 	}
 	c := s.contrast()
-	r := contrastReply{Title: s.before.plan.Title, Statement: s.before.report.Statement, After: s.current.plan.Title, Shared: c.Shared.MS(), Rows: c.Rows}
+	r := contrastReply{Title: s.before.Plan.Title, Statement: s.before.Measure.Statement, After: s.current.Plan.Title, Shared: c.Shared.MS(), Rows: c.Rows}
 	for i := range c.Events {
 		d := &c.Events[i]
 		if r.First == 0 {

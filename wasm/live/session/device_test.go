@@ -94,7 +94,7 @@ func TestAPressOnAQRSSelectsTheFirstMuscle(t *testing.T) {
 	s := New()
 	for _, plan := range []string{`"heart":{}`, `"heart":{"his_purkinje":{"left_bundle":null}}`, block + `,"pacemaker":{}`} {
 		computed(t, s, plan)
-		log := s.current.log
+		log := s.current.Log
 		d, numbers := reply[struct {
 			Marks   int
 			Classes []string

@@ -48,13 +48,13 @@ func shapeOf(slug string) string {
 
 // flags lists where the findings are, in order of time. What holds from the beginning
 // and is a matter of rhythm has no place; one that begins later has its beginning.
-func (t *timeline) flags() []spot {
-	for apart := min(max(tick.Dur(t.log.Span)/100, leastApart), mostApart); ; apart *= 2 {
+func (t *sheet) flags() []spot {
+	for apart := min(max(tick.Dur(t.Log.Span)/100, leastApart), mostApart); ; apart *= 2 {
 		out := []spot{}
-		for i := range t.report.Findings {
-			out = append(out, t.places(&t.report.Findings[i], i, apart)...)
+		for i := range t.Measure.Findings {
+			out = append(out, t.places(&t.Measure.Findings[i], i, apart)...)
 		}
-		if len(out) > mostFlags && apart < tick.Dur(t.log.Span) {
+		if len(out) > mostFlags && apart < tick.Dur(t.Log.Span) {
 			continue
 		}
 		slices.SortStableFunc(out, func(a, b spot) int { return cmp.Compare(a.T, b.T) })
@@ -62,11 +62,11 @@ func (t *timeline) flags() []spot {
 	}
 }
 
-func (t *timeline) places(f *measure.Finding, at int, apart tick.Dur) []spot {
+func (t *sheet) places(f *measure.Finding, at int, apart tick.Dur) []spot {
 	shape := shapeOf(f.Slug)
 	var out []spot
 	for _, id := range f.Evidence {
-		e := t.log.At(id)
+		e := t.Log.At(id)
 		if n := len(out); n > 0 && e.T.MS()-out[n-1].Until <= apart.MS() {
 			out[n-1].Until = e.T.MS()
 			continue

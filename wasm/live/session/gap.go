@@ -36,13 +36,13 @@ func (s *Session) gap(args []byte) []byte {
 	}
 	decode(args, &q)
 	t := s.current
-	if t == nil || t.pacer == nil || !t.pacer.Settings.Mode.PacesV() {
+	if t == nil || t.Device == nil || !t.Device.Settings.Mode.PacesV() {
 		return none
 	}
 	at := tick.Time(tick.MS(q.T))
-	from, to := tick.Time(-1), t.log.Span
-	for i := range t.report.Beats {
-		b := &t.report.Beats[i]
+	from, to := tick.Time(-1), t.Log.Span
+	for i := range t.Measure.Beats {
+		b := &t.Measure.Beats[i]
 		if b.Kind == "P" {
 			continue
 		}
@@ -56,19 +56,19 @@ func (s *Session) gap(args []byte) []byte {
 		return none
 	}
 	from, to = t.noticed(from), t.noticed(to)
-	w := account.WhyGap(t.log, from, to)
+	w := account.WhyGap(t.Log, from, to)
 	if w == nil {
 		return none
 	}
 	r := gapReply{From: from.MS(), To: to.MS(), Sentences: w.Sentences, Settings: []linked{},
 		Title: fmt.Sprintf("Why no stimulus for %.0f ms", to.Sub(from).MS()),
-		Long:  to.Sub(from).MS() > 60000/t.pacer.Settings.LowerRate+1}
+		Long:  to.Sub(from).MS() > 60000/t.Device.Settings.LowerRate+1}
 	evidence := slices.Clone(w.Evidence)
 	slices.Sort(evidence)
 	evidence = slices.Compact(evidence)
 	r.Lines = t.lines(evidence)
 	for _, id := range evidence {
-		if t.log.At(id).Kind == event.Window {
+		if t.Log.At(id).Kind == event.Window {
 			r.Settings = t.link(r.Settings, id)
 		}
 	}
@@ -80,9 +80,9 @@ const late = 150 * tick.Millisecond
 
 // noticed is when the device paced or sensed the QRS complex that began at a time; that
 // time where it did neither.
-func (t *timeline) noticed(qrs tick.Time) tick.Time {
-	for i := range t.log.Events {
-		e := &t.log.Events[i]
+func (t *sheet) noticed(qrs tick.Time) tick.Time {
+	for i := range t.Log.Events {
+		e := &t.Log.Events[i]
 		if e.T > qrs.Add(late) {
 			break
 		}
@@ -94,7 +94,7 @@ func (t *timeline) noticed(qrs tick.Time) tick.Time {
 }
 
 // link adds the settings of an event that are not yet in a list.
-func (t *timeline) link(list []linked, id event.ID) []linked {
+func (t *sheet) link(list []linked, id event.ID) []linked {
 	for _, s := range t.moves().Settings(id) {
 		if !slices.ContainsFunc(list, func(l linked) bool { return l.Path == s.Path }) {
 			list = append(list, linked{s.Path, s.Label, s.Unit, s.Value})

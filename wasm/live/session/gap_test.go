@@ -26,8 +26,8 @@ func TestTheOutcomeOfAnExtraBeatAndItsScan(t *testing.T) {
 	plan := `{"format":"escapement-plan/1","interventions":[{"at_ms":3900,"do":"stimulate","site":"right_atrium"}]}`
 	reply[computeReply](t, s, "compute", asked{Plan: []byte(plan), View: usual()})
 	var id int
-	for i := range s.current.log.Events {
-		if e := &s.current.log.Events[i]; e.Kind.String() == "stimulus" {
+	for i := range s.current.Log.Events {
+		if e := &s.current.Log.Events[i]; e.Kind.String() == "stimulus" {
 			id = int(e.ID)
 		}
 	}

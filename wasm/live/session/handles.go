@@ -36,14 +36,14 @@ type handled struct {
 const narrowest = 1.2
 
 // moves reads once what the events hang on.
-func (t *timeline) moves() *handle.Mover {
+func (t *sheet) moves() *handle.Mover {
 	if t.mover == nil {
-		t.mover = handle.New(t.plan, t.pacer, t.log)
+		t.mover = handle.New(t.Plan, t.Device, t.Log)
 	}
 	return t.mover
 }
 
-func (t *timeline) handles(s *scene.Scene, o *scene.Options) handles {
+func (t *sheet) handles(s *scene.Scene, o *scene.Options) handles {
 	out := handles{Values: []handled{}, List: [][]float64{}}
 	var found []handle.Handle
 	for _, h := range t.moves().In(o.From, o.To) {
@@ -74,7 +74,7 @@ func (t *timeline) handles(s *scene.Scene, o *scene.Options) handles {
 		if h.Fixed {
 			flags += 2
 		}
-		if e := t.log.At(h.Event); e.Kind == event.Stimulus && e.Needed > 0 {
+		if e := t.Log.At(h.Event); e.Kind == event.Stimulus && e.Needed > 0 {
 			coupling = e.Recovery.MS()
 		}
 		row := []float64{float64(h.Event), float64(k), h.T.MS(), h.From.MS(), round(h.Per), flags, coupling, round(hold.Y0), round(hold.Y1)}

@@ -25,9 +25,9 @@ type overview struct {
 // four-thousandth of the strip are one.
 const overviewMarks = 4000
 
-func (t *timeline) overview() overview {
+func (t *sheet) overview() overview {
 	o := overview{[]float64{}, []float64{}, []float64{}, []float64{}, []float64{}, []float64{}, []float64{}, t.trend(), t.flags()}
-	gap := tick.Dur(t.log.Span) / overviewMarks
+	gap := tick.Dur(t.Log.Span) / overviewMarks
 	var last [7]tick.Time
 	put := func(line int, into *[]float64, at tick.Time) {
 		if len(*into) > 0 && at.Sub(last[line]) < gap {
@@ -36,19 +36,19 @@ func (t *timeline) overview() overview {
 		last[line] = at
 		*into = append(*into, at.MS())
 	}
-	for i := range t.report.Beats {
-		b := &t.report.Beats[i]
+	for i := range t.Measure.Beats {
+		b := &t.Measure.Beats[i]
 		if b.Kind == "P" {
 			put(0, &o.Atrium, b.T)
 			if !b.Conducted && len(b.Blocks) > 0 && !b.Retrograde {
-				put(2, &o.Blocks, t.log.At(b.Blocks[0]).T)
+				put(2, &o.Blocks, t.Log.At(b.Blocks[0]).T)
 			}
 		} else {
 			put(1, &o.Ventricle, b.T)
 		}
 	}
-	for i := range t.log.Events {
-		e := &t.log.Events[i]
+	for i := range t.Log.Events {
+		e := &t.Log.Events[i]
 		if e.Kind != event.Stimulus {
 			continue
 		}

@@ -104,8 +104,5 @@ func (s *Session) searchPlan(args []byte) []byte {
 	if err != nil {
 		return fail(err)
 	}
-	return encode(struct {
-		OK   bool            `json:"ok"`
-		Plan json.RawMessage `json:"plan"`
-	}{true, p.Encode()})
+	return opened(p)
 }

@@ -33,37 +33,30 @@ import (
 	"escapement/engine/handle"
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
-	"escapement/engine/measure"
-	"escapement/engine/plan"
 	"escapement/engine/scene"
-	"escapement/engine/signal"
 	"escapement/engine/study"
+	"escapement/engine/timeline"
 )
 
 // Session is one page's engine. Use it from one goroutine.
 type Session struct {
 	field     *field.Field
-	current   *timeline  // nil until a plan was computed
+	current   *sheet     // nil until a plan was computed
 	sweeping  *sweeping  // nil until a plan was swept
 	searching *searching // nil until goals were searched for
-	before    *timeline  // nil: there is nothing to compare with
+	before    *sheet     // nil: there is nothing to compare with
 	differs   *compared  // the two, compared when first asked for
 	scanned   *study.Scan
 }
 
-// timeline is a computed plan.
-type timeline struct {
-	file     []byte     // the plan as it came
-	begun    []event.ID // see first
-	plan     *plan.Plan
-	pacer    *plan.Device // nil: none
-	log      *event.Log
-	record   *lead.Record // nil for a strip too long to have leads
-	drawn    *lead.Record // the same, with what a press on a wave selects
-	report   *measure.Report
+// sheet is a timeline with what its drawings need.
+type sheet struct {
+	*timeline.Timeline
+	file     []byte                          // the plan as it came
+	begun    []event.ID                      // see first
+	drawn    *lead.Record                    // the leads, with what a press on a wave selects
 	diagrams map[ladder.Form]*ladder.Diagram // made when first drawn
 	mover    *handle.Mover                   // likewise
-	signals  *signal.Source                  // electrograms and action potentials, likewise
 	extents  scene.Extents
 }
 

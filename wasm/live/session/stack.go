@@ -18,9 +18,9 @@ func (s *Session) stack(q *view) ([]byte, []float32) {
 	c := s.contrast()
 	o := s.current.options(q)
 	o.Margin, o.Selected = margin, q.Selected
-	half := func(t *timeline, name string, alone []event.ID) scene.Half {
+	half := func(t *sheet, name string, alone []event.ID) scene.Half {
 		h := scene.Half{Input: t.input(form), Name: name, Says: t.says(), Alone: alone}
-		h.Signals = t.sampled(o.Lanes, q.View.EGMGain)
+		h.Signals = t.Signals(o.Lanes, q.View.EGMGain)
 		return h
 	}
 	before, after := half(s.before, "Before", c.gone), half(s.current, "After", c.fresh)
@@ -30,11 +30,11 @@ func (s *Session) stack(q *view) ([]byte, []float32) {
 }
 
 // says names a half: what plan it is, and its rhythm.
-func (t *timeline) says() string {
-	if t.plan.Title == "" {
-		return t.report.Statement
+func (t *sheet) says() string {
+	if t.Plan.Title == "" {
+		return t.Measure.Statement
 	}
-	return t.plan.Title + ": " + t.report.Statement
+	return t.Plan.Title + ": " + t.Measure.Statement
 }
 
 // leastStacked is the least height of a tier where two ladders share the page, mm.
@@ -66,7 +66,7 @@ func (s *Session) bothTimes(drawn *scene.Scene) [][4]float64 {
 	for i := range drawn.Marks {
 		if id := drawn.Marks[i].Event; id < 0 && !seen[id] {
 			seen[id] = true
-			e := s.before.log.At(-id)
+			e := s.before.Log.At(-id)
 			out = append(out, [4]float64{float64(id), e.T.MS(), 0, s.before.measured(e)})
 		}
 	}

@@ -67,6 +67,11 @@ func (s *Session) sweptPlan(args []byte) []byte {
 	if err != nil {
 		return fail(err)
 	}
+	return opened(p)
+}
+
+// opened is the reply with a plan to go on with.
+func opened(p *plan.Plan) []byte {
 	return encode(struct {
 		OK   bool            `json:"ok"`
 		Plan json.RawMessage `json:"plan"`

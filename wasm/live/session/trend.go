@@ -31,17 +31,17 @@ const (
 	trendParts    = 720
 )
 
-func (t *timeline) trend() *trend {
+func (t *sheet) trend() *trend {
 	n := 0
-	for i := range t.report.Beats {
-		if t.report.Beats[i].Kind == "QRS" {
+	for i := range t.Measure.Beats {
+		if t.Measure.Beats[i].Kind == "QRS" {
 			n++
 		}
 	}
-	if max(n, len(t.report.Beats)-n) <= beatsOneByOne {
+	if max(n, len(t.Measure.Beats)-n) <= beatsOneByOne {
 		return nil
 	}
-	out := &trend{Step: t.log.Span.MS() / trendParts, Blocks: make([]int, trendParts)}
+	out := &trend{Step: t.Log.Span.MS() / trendParts, Blocks: make([]int, trendParts)}
 	out.Atrium = t.rates("P", func(b *measure.Beat, part int) {
 		if !b.Conducted && len(b.Blocks) > 0 && !b.Retrograde {
 			out.Blocks[part]++
@@ -51,17 +51,17 @@ func (t *timeline) trend() *trend {
 	return out
 }
 
-func (t *timeline) rates(kind string, each func(b *measure.Beat, part int)) rates {
+func (t *sheet) rates(kind string, each func(b *measure.Beat, part int)) rates {
 	r := rates{make([]float64, trendParts), make([]float64, trendParts), make([]float64, trendParts), make([]int, trendParts)}
 	var sum [trendParts]tick.Dur
 	var intervals, beats, paced [trendParts]int
 	last := tick.Time(-1)
-	for i := range t.report.Beats {
-		b := &t.report.Beats[i]
+	for i := range t.Measure.Beats {
+		b := &t.Measure.Beats[i]
 		if b.Kind != kind {
 			continue
 		}
-		part := min(int(float64(b.T)/float64(t.log.Span)*trendParts), trendParts-1)
+		part := min(int(float64(b.T)/float64(t.Log.Span)*trendParts), trendParts-1)
 		each(b, part)
 		beats[part]++
 		if b.Paced {

@@ -31,7 +31,7 @@ func (s *Session) extra(args []byte) []byte {
 		return none
 	}
 	t := s.current
-	e := t.log.At(q.Event)
+	e := t.Log.At(q.Event)
 	if e == nil {
 		return none
 	}
@@ -39,24 +39,24 @@ func (s *Session) extra(args []byte) []byte {
 	if item < 0 {
 		return none
 	}
-	p := t.plan.Clone()
+	p := t.Plan.Clone()
 	p.Interventions = slices.Delete(p.Interventions, item, item+1)
 	without, err := sim.Run(p)
 	if err != nil {
 		return none
 	}
-	o := study.Extra(t.log, without, e.ID)
+	o := study.Extra(t.Log, without, e.ID)
 	if o == nil {
 		return none
 	}
-	return encode(extraReply{e.ID, item, t.plan.Interventions[item]["do"].Text == "stimulate", o.Slug, o.Text, o.Sentences, t.lines(o.Events)})
+	return encode(extraReply{e.ID, item, t.Plan.Interventions[item]["do"].Text == "stimulate", o.Slug, o.Text, o.Sentences, t.lines(o.Events)})
 }
 
 // lines tells events in a sentence each.
-func (t *timeline) lines(ids []event.ID) []line {
+func (t *sheet) lines(ids []event.ID) []line {
 	out := []line{}
 	for _, id := range ids {
-		if a := account.Of(t.log, id); a != nil && len(a.Chain) > 0 {
+		if a := account.Of(t.Log, id); a != nil && len(a.Chain) > 0 {
 			out = append(out, line{id, a.T.MS(), a.Chain[0].Text})
 		}
 	}
@@ -105,7 +105,7 @@ func (s *Session) scan(args []byte) []byte {
 	}
 	if q.Start {
 		var err error
-		if s.scanned, err = study.NewScan(s.current.plan, q.Item); err != nil {
+		if s.scanned, err = study.NewScan(s.current.Plan, q.Item); err != nil {
 			s.scanned = nil
 			return encode(scanReply{Item: q.Item, Finished: true, Segments: []segment{}, Fault: err.Error()})
 		}

@@ -59,7 +59,7 @@ func (s *Session) scene(q *view) ([]byte, []float32) {
 
 // scene lays out the part of the timeline that the view asks for and adds the
 // times of the events in it.
-func (t *timeline) scene(q *view) ([]byte, []float32) {
+func (t *sheet) scene(q *view) ([]byte, []float32) {
 	form, margin := ladder.Plain, float64(marginPlain)
 	if q.View.Ladder == "full" {
 		form, margin = ladder.Full, marginFull
@@ -67,7 +67,7 @@ func (t *timeline) scene(q *view) ([]byte, []float32) {
 	in := t.input(form)
 	o := t.options(q)
 	o.Margin = margin
-	in.Signals = t.sampled(o.Lanes, q.View.EGMGain)
+	in.Signals = t.Signals(o.Lanes, q.View.EGMGain)
 	lay := scene.Strip
 	if form, ok := scene.ParseForm12(q.View.Paper); ok {
 		lay, o.Paper, o.Leads = scene.Paper12, form, nil
@@ -78,24 +78,15 @@ func (t *timeline) scene(q *view) ([]byte, []float32) {
 }
 
 // wire is a scene with the times of its events, what of it can be moved, and its tiers.
-func (t *timeline) wire(drawn *scene.Scene, o *scene.Options, times [][4]float64) ([]byte, []float32) {
+func (t *sheet) wire(drawn *scene.Scene, o *scene.Options, times [][4]float64) ([]byte, []float32) {
 	meta, points := scene.Encode(drawn)
 	meta = append(append(meta[:len(meta)-1], `,"times":`...), encode(times)...)
 	meta = append(append(meta, `,"handles":`...), encode(t.handles(drawn, o))...)
 	return append(append(append(meta, `,"tiers":`...), encode(tiers(drawn))...), '}'), points
 }
 
-// sampled are the electrograms and action potentials among the lanes. A strip too long
-// for leads has none.
-func (t *timeline) sampled(lanes []string, gain float64) []scene.Sampled {
-	if t.record == nil {
-		return nil
-	}
-	return t.signals.Lanes(lanes, gain)
-}
-
-func (t *timeline) input(form ladder.Form) scene.Input {
-	return scene.Input{Log: t.log, Record: t.drawn, Diagram: t.diagram(form), Extents: &t.extents}
+func (t *sheet) input(form ladder.Form) scene.Input {
+	return scene.Input{Log: t.Log, Record: t.drawn, Diagram: t.diagram(form), Extents: &t.extents}
 }
 
 // A tier is between so many millimetres high: readable, and not stretched beyond
@@ -119,34 +110,34 @@ func fit(lay func(scene.Input, scene.Options) *scene.Scene, in scene.Input, o sc
 	return math.Min(math.Max(room-rest, least), mostTier*units), math.Max(rest+least-room, 0)
 }
 
-func (t *timeline) options(q *view) scene.Options {
+func (t *sheet) options(q *view) scene.Options {
 	v := &q.View
 	speed := v.MMPerS
 	if !(speed > 0) {
 		speed = 25
 	}
 	from := tick.Time(0)
-	if v.T0 > 0 && v.T0 < t.log.Span.MS() {
+	if v.T0 > 0 && v.T0 < t.Log.Span.MS() {
 		from = tick.Time(tick.MS(v.T0))
 	}
 	room := math.Max(v.Width, 20)
-	to := min(from.Add(tick.MS(math.Min(room/speed*1000, 1e9))), t.log.Span)
+	to := min(from.Add(tick.MS(math.Min(room/speed*1000, 1e9))), t.Log.Span)
 	o := scene.Options{From: from, To: to, MMPerS: speed, MMPerMV: v.MMPerMV, FontMM: fontMM, ColumnMM: 0.13, Grid: true, NoDevice: v.NoDevice, Lanes: v.Lanes}
 	for _, name := range v.Leads {
 		if l, ok := lead.Parse(name); ok {
 			o.Leads = append(o.Leads, l)
 		}
 	}
-	if t.log.At(q.Selected) != nil {
+	if t.Log.At(q.Selected) != nil {
 		o.Selected = q.Selected
 	}
 	return o
 }
 
-func (t *timeline) diagram(f ladder.Form) *ladder.Diagram {
+func (t *sheet) diagram(f ladder.Form) *ladder.Diagram {
 	d := t.diagrams[f]
 	if d == nil {
-		d = ladder.Build(t.log, ladder.Options{Form: f})
+		d = ladder.Build(t.Log, ladder.Options{Form: f})
 		t.diagrams[f] = d
 	}
 	return d
@@ -155,7 +146,7 @@ func (t *timeline) diagram(f ladder.Form) *ladder.Diagram {
 // times gives, for every event that has a mark, its id, its milliseconds, the place,
 // from 1, of the intervention that made it, 0 for none, and 1 for one that people
 // measure from: the beginning of a P or a QRS, a stimulus, a signal of the device.
-func (t *timeline) times(s *scene.Scene) [][4]float64 {
+func (t *sheet) times(s *scene.Scene) [][4]float64 {
 	seen := map[event.ID]bool{}
 	out := [][4]float64{}
 	for i := range s.Marks {
@@ -164,7 +155,7 @@ func (t *timeline) times(s *scene.Scene) [][4]float64 {
 			continue
 		}
 		seen[id] = true
-		e := t.log.At(id)
+		e := t.Log.At(id)
 		out = append(out, [4]float64{float64(id), e.T.MS(), float64(t.intervention(e)), t.measured(e)})
 	}
 	return out
@@ -172,7 +163,7 @@ func (t *timeline) times(s *scene.Scene) [][4]float64 {
 
 // intervention is the place, from 1, of the planned stimulus or the train that
 // begins with this one; moving it moves the event.
-func (t *timeline) intervention(e *event.Event) int {
+func (t *sheet) intervention(e *event.Event) int {
 	if e.Kind != event.Stimulus {
 		return 0
 	}
@@ -180,8 +171,8 @@ func (t *timeline) intervention(e *event.Event) int {
 	if e.Rule == event.Train {
 		do = "train"
 	}
-	for i, it := range t.plan.Interventions {
-		if it["do"].Text == do && tick.Time(tick.MS(it["at_ms"].Number)) == e.T && it["site"].Text == t.log.Sites[e.Site].Name {
+	for i, it := range t.Plan.Interventions {
+		if it["do"].Text == do && tick.Time(tick.MS(it["at_ms"].Number)) == e.T && it["site"].Text == t.Log.Sites[e.Site].Name {
 			return i + 1
 		}
 	}
@@ -189,7 +180,7 @@ func (t *timeline) intervention(e *event.Event) int {
 }
 
 // measured is 1 for an event that people measure from, else 0.
-func (t *timeline) measured(e *event.Event) float64 {
+func (t *sheet) measured(e *event.Event) float64 {
 	switch e.Kind {
 	case event.Stimulus, event.Sense:
 		return 1
@@ -202,11 +193,11 @@ func (t *timeline) measured(e *event.Event) float64 {
 }
 
 // first lists the first activation of every P and QRS, in order.
-func (t *timeline) first() []event.ID {
+func (t *sheet) first() []event.ID {
 	if t.begun == nil {
-		t.begun = make([]event.ID, len(t.report.Beats))
-		for i := range t.report.Beats {
-			t.begun[i] = t.report.Beats[i].ID
+		t.begun = make([]event.ID, len(t.Measure.Beats))
+		for i := range t.Measure.Beats {
+			t.begun[i] = t.Measure.Beats[i].ID
 		}
 		slices.Sort(t.begun)
 	}

@@ -10,13 +10,15 @@ import (
 	"slices"
 	"strings"
 
+	"escapement/engine/field"
 	"escapement/engine/ladder"
 	"escapement/engine/lead"
+	"escapement/engine/numbers"
 	"escapement/engine/plan"
 	"escapement/engine/press"
-	"escapement/engine/report"
 	"escapement/engine/scene"
 	"escapement/engine/tick"
+	"escapement/engine/timeline"
 )
 
 // printed is a finished print.
@@ -142,7 +144,7 @@ func sheets(r *Request, leads []lead.Name, form scene.Form) ([]*scene.Scene, err
 	}
 	signals := len(leads) > 0 || slices.ContainsFunc(r.Lanes, func(l string) bool { return strings.Contains(l, ":") })
 	if signals && c.Record == nil {
-		return nil, refuse(http.StatusUnprocessableEntity, "plan", fmt.Sprintf("a strip of %.0f min", c.Log.Span.Seconds()/60), fmt.Sprintf("leads for strips of up to %.0f min", report.LeadsUpTo.Seconds()/60), "print the ladder alone")
+		return nil, refuse(http.StatusUnprocessableEntity, "plan", fmt.Sprintf("a strip of %.0f min", c.Log.Span.Seconds()/60), fmt.Sprintf("leads for strips of up to %.0f min", numbers.LeadsUpTo.Seconds()/60), "print the ladder alone")
 	}
 	in := scene.Input{Log: c.Log, Signals: c.Signals(r.Lanes, r.EGMGain)}
 	if signals {
@@ -170,12 +172,12 @@ func sheets(r *Request, leads []lead.Name, form scene.Form) ([]*scene.Scene, err
 }
 
 // run computes one of the plans, and sees that the window lies in its strip.
-func (r *Request) run(raw json.RawMessage) (*report.Case, error) {
+func (r *Request) run(raw json.RawMessage) (*timeline.Timeline, error) {
 	p, err := planOf(raw)
 	if err != nil {
 		return nil, err
 	}
-	c, err := report.Run(p)
+	c, err := timeline.Of(p, field.New())
 	if err != nil {
 		return nil, err
 	}

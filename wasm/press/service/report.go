@@ -7,6 +7,7 @@ import (
 	"escapement/engine/report"
 	"escapement/engine/scene"
 	"escapement/engine/tick"
+	"escapement/engine/timeline"
 )
 
 // onePage is the report of a plan: strip, findings, intervals, arithmetic, settings.
@@ -28,7 +29,7 @@ func comparison(r *Request) ([]*scene.Scene, error) {
 	if len(r.Before) == 0 {
 		return nil, refuse(http.StatusBadRequest, "before", "nothing", fields[1].allowed, "a comparison takes two plans")
 	}
-	var cases [2]*report.Case
+	var cases [2]*timeline.Timeline
 	for i, raw := range [...][]byte{r.Before, r.Plan} {
 		var err error
 		if cases[i], err = r.run(raw); err != nil {

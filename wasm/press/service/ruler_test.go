@@ -13,9 +13,10 @@ import (
 	"testing"
 
 	"escapement/engine/event"
+	"escapement/engine/field"
 	"escapement/engine/plan"
-	"escapement/engine/report"
 	"escapement/engine/scene"
+	"escapement/engine/timeline"
 	"escapement/presets"
 )
 
@@ -188,7 +189,7 @@ func peaks(t *testing.T, page *image.Gray, s *scene.Scene, preset string, tolera
 	if err != nil {
 		t.Fatal(err)
 	}
-	c, err := report.Run(p)
+	c, err := timeline.Of(p, field.New())
 	if err != nil {
 		t.Fatal(err)
 	}
