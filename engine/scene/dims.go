@@ -63,6 +63,9 @@ func (r *rungs) row(row int, d *ladder.Dim, texts ...string) bool {
 	return false
 }
 
+// leastStub is the shortest line between a number and the end of its dimension, mm.
+const leastStub = 1.2
+
 // dimension places text and line together if the whole is free. gap is the half
 // width of the break around the middle.
 func (r *rungs) dimension(d *ladder.Dim, text Mark, whole Box, gap float64) bool {
@@ -75,10 +78,12 @@ func (r *rungs) dimension(d *ladder.Dim, text Mark, whole Box, gap float64) bool
 	r.room.box(whole)
 	y := text.Y - 0.35*DimText.height(r.o.FontMM)
 	x0, x1 := r.Axis.X(max(d.T0, r.o.From)), r.Axis.X(min(d.T1, r.o.To))
-	if gap > 0 {
+	switch {
+	case gap > 0 && (x1-x0)/2-gap < leastStub: // with its neighbour's it would read as a plus sign
+	case gap > 0:
 		r.dimLine(x0, (x0+x1)/2-gap, y, d.Event)
 		r.dimLine((x0+x1)/2+gap, x1, y, d.Event)
-	} else {
+	default:
 		r.dimLine(x0, x1, y, d.Event)
 	}
 	r.ticks(d, y)
