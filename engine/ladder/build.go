@@ -120,7 +120,7 @@ func (b *builder) block(e *event.Event) {
 func (b *builder) part(p *event.Path) string {
 	switch {
 	case p.Tissue == event.Accessory:
-		return "AP"
+		return "pathway"
 	case p.Name == "av_slow":
 		return "slow"
 	case p.Tissue != event.Purkinje:
