@@ -16,13 +16,17 @@
 //	sweep      {plan, points}          some points of the plan's sweep, in columns; or its diagnoses
 //	sweep_plan {plan, point, seed}     the plan of one point
 //	boundary   {plan, outcome, from, along, at, after}  where along an axis of the sweep an outcome changes
+//	search     {plan, budget, most, state, keep, again}  a slice of the search for the plan's goals, and what it has found
+//	search_plan {plan, combination, situation}  the plan with a combination of settings
+//	sense      {plan, combination, numbers, count, again}  how far the heart may move under a combination
+//	against    {plan, other, protocol, most}  the manoeuvres that tell two plans apart
 //
 // compute may name a plan to compare with. Its timeline is kept and drawn above the
 // present one until compute names another or none; its events have negative ids.
 //
-// Every answer but those of operations that take a plan is null while nothing has been computed. An operation
-// that does not exist and arguments that are not JSON are bugs of the page and
-// panic.
+// Every answer but those of operations that take a plan is null while nothing has been
+// computed. An operation that does not exist and arguments that are not JSON are bugs of
+// the page and panic.
 package session
 
 import (
