@@ -39,10 +39,17 @@ export async function serveSite({ dir = join("site", "dist"), port = "0" } = {})
   };
 }
 
-export async function openBrowser() {
+/**
+ * Tests see each page once, for seconds: compiling its WebAssembly for speed would take
+ * more of the machine than it gives back. Benchmarks leave it as it is for people.
+ */
+export const BRIEF = ["--js-flags=--liftoff-only"];
+
+/** @param {string[]} [flags] beside the usual ones */
+export async function openBrowser(flags = []) {
   const executablePath = process.env.CHROMIUM ?? PLACES.find((p) => existsSync(p));
   if (!executablePath) throw new Error("no Chromium found; set CHROMIUM to its path");
-  const browser = await chromium.launch({ executablePath, headless: true, args: QUIET });
+  const browser = await chromium.launch({ executablePath, headless: true, args: [...QUIET, ...flags] });
   return { browser, stop: () => browser.close() };
 }
 

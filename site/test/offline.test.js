@@ -6,7 +6,7 @@ import { appendFileSync, cpSync, mkdtempSync, readFileSync, rmSync } from "node:
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { after, before, describe, test } from "node:test";
-import { newPerson, openBrowser, openPage, ROOT, serveSite, settled } from "./host.js";
+import { BRIEF, newPerson, openBrowser, openPage, ROOT, serveSite, settled } from "./host.js";
 import { AH, barePage, onPage, openPreset, stage } from "./walk.js";
 
 /** @typedef {import("playwright-core").Page} Page */
@@ -35,7 +35,7 @@ describe("without a network", () => {
   /** @type {Awaited<ReturnType<typeof openBrowser>>} */
   let browser;
   before(async () => {
-    browser = await openBrowser();
+    browser = await openBrowser(BRIEF);
   });
   after(() => browser?.stop());
 

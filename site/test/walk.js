@@ -3,7 +3,7 @@
 
 import assert from "node:assert/strict";
 import { after, before } from "node:test";
-import { newPerson, openBrowser, openPage, serveSite, settled } from "./host.js";
+import { BRIEF, newPerson, openBrowser, openPage, serveSite, settled } from "./host.js";
 
 /** @typedef {import("playwright-core").Page} Page */
 
@@ -19,7 +19,7 @@ let browser;
 export function stage() {
   before(async () => {
     site = await serveSite();
-    browser = await openBrowser();
+    browser = await openBrowser(BRIEF);
   });
   after(async () => {
     await browser?.stop();
